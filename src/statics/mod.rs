@@ -1,0 +1,308 @@
+//! Lines of thrust of a plane arch or cable under given forces.
+//!
+//! Knows no drawing, no layer and no job file: only curves, forces and depths. Units are metres and kilonewtons (or
+//! metres and unit loads). Compression is positive, eccentricity is positive toward the extrados (the side of the
+//! normal, upward for an axis that runs from left to right), loads down are negative in `y`.
+
+use crate::geometry::{Path, Point, Vec2};
+
+/// A force that acts on the span.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Force {
+    /// Where it acts, m.
+    pub at: Point,
+    /// Components to the right and upward, kN.
+    pub force: Vec2,
+}
+
+/// Depth of the rib or ring along the axis, measured along the joint, m.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Depth {
+    /// The same everywhere.
+    Constant(f64),
+    /// Linear along the axis between the springings and the crown.
+    Linear {
+        /// At both springings.
+        springing: f64,
+        /// At the crown.
+        crown: f64,
+    },
+    /// Values at lengths along the axis, ascending, linear between.
+    Table(Vec<(f64, f64)>),
+}
+
+/// How the span is held.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord)]
+pub enum Support {
+    /// Both springings built in.
+    Hingeless,
+    /// A hinge at both springings.
+    TwoHinged,
+    /// Hinges at springings and crown.
+    ThreeHinged,
+    /// A ring without tension on rigid abutments.
+    None,
+}
+
+/// A kind of line of thrust.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord)]
+pub enum LineKind {
+    /// Least possible largest eccentricity over depth (or eccentricity, where no depth is known).
+    Closest,
+    /// Through three given points.
+    Through,
+    /// Least push with the line inside the ring.
+    LeastThrust,
+    /// Greatest push with the line inside the ring.
+    GreatestThrust,
+    /// Least complementary energy.
+    Elastic,
+}
+
+/// A span with its loads: all that the statics need.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Problem {
+    /// Axis from the left springing to the right one, m.
+    pub axis: Path,
+    /// Point forces, in any order.
+    pub forces: Vec<Force>,
+    /// Uniform downward weight per metre of axis, acting on the axis, kN/m; 0 for a weightless rib.
+    pub weight_on_axis: f64,
+    /// Depth of the rib or ring; `None` where only the axis is known.
+    pub depth: Option<Depth>,
+    /// Whether the section can take tension.
+    pub tension: bool,
+    /// How the span is held; `None` when nothing was said.
+    pub support: Option<Support>,
+    /// Drawn hinges, m.
+    pub hinges: Vec<Point>,
+    /// Three points for the `through` line, m; `None`: springings and crown of the axis.
+    pub through: Option<[Point; 3]>,
+    /// The line that is to govern; `None`: by the kind of rib.
+    pub govern: Option<LineKind>,
+    /// Lines wanted beside the governing one.
+    pub draw: Vec<LineKind>,
+}
+
+/// Whether the span pushes or pulls.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum SpanKind {
+    /// Compression throughout.
+    Arch,
+    /// Hanging: the axis lies wholly below its chord under net downward load.
+    Cable,
+}
+
+/// How a computation ended.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Status {
+    /// There is such a line.
+    Found,
+    /// There is none.
+    None,
+    /// The optimum has no bound.
+    Unbounded,
+    /// Not computed, with a reason.
+    Refused,
+}
+
+/// The three unknowns of a line of thrust, in the origin of the drawing's elevation (m, kN, kN·m).
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Reaction {
+    /// Push of the left abutment on the rib, to the right positive.
+    pub horizontal: f64,
+    /// Its upward reaction.
+    pub vertical: f64,
+    /// Moment at the left springing.
+    pub moment: f64,
+}
+
+/// Forces in one joint.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Station {
+    /// Point of the axis, m.
+    pub at: Point,
+    /// Length along the axis from the left springing, m.
+    pub s: f64,
+    /// Axial force, compression positive, kN.
+    pub thrust: f64,
+    /// Shear, kN.
+    pub shear: f64,
+    /// Moment of the thrust about the axis point, kN·m.
+    pub moment: f64,
+    /// Moment over thrust, m, positive toward the extrados; `None` where the thrust vanishes.
+    pub eccentricity: Option<f64>,
+    /// Height of the line of thrust above the axis point, m; `None` where the thrust is vertical.
+    pub vertical_offset: Option<f64>,
+    /// Depth of the joint, m.
+    pub depth: Option<f64>,
+}
+
+/// Largest and root mean square eccentricity along the continuous axis.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Offset {
+    /// Largest absolute eccentricity, m.
+    pub max_abs: f64,
+    /// The eccentricity there with its sign, m.
+    pub signed: f64,
+    /// The axis point where, m.
+    pub at: Point,
+    /// Its length along the axis, m.
+    pub s: f64,
+    /// Root mean square over the length of the axis, m.
+    pub rms: f64,
+}
+
+/// Largest value of eccentricity over depth along the continuous axis.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Use {
+    /// Largest `|e| / d`.
+    pub ratio: f64,
+    /// The axis point where, m.
+    pub at: Point,
+    /// Its length along the axis, m.
+    pub s: f64,
+}
+
+/// Primal and dual value of an optimum, and what separates them relative to their size.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Proof {
+    /// Value reached.
+    pub primal: f64,
+    /// Bound that no line can beat.
+    pub dual: f64,
+    /// `|primal − dual|` over the larger of 1 and their size.
+    pub gap: f64,
+}
+
+/// What an abutment does to the rib.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct End {
+    /// Push on the rib, positive inward, kN.
+    pub horizontal: f64,
+    /// Upward reaction, kN.
+    pub vertical: f64,
+    /// Eccentricity at the springing, m; `None` where the thrust vanishes.
+    pub eccentricity: Option<f64>,
+}
+
+/// One line of thrust.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Line {
+    /// What defines it.
+    pub kind: LineKind,
+    /// The support it was computed for, where one counts.
+    pub support: Option<Support>,
+    /// Whether it was found; everything below is `None` or empty unless it was.
+    pub status: Status,
+    /// Why not, when it was not.
+    pub reason: Option<String>,
+    /// The unknowns.
+    pub reaction: Option<Reaction>,
+    /// The left abutment.
+    pub left: Option<End>,
+    /// The right abutment.
+    pub right: Option<End>,
+    /// The line of thrust as a string polygon (with distributed weight: as many points as keep it within a
+    /// hundred-thousandth of the span), from the left springing joint to the right one, m.
+    pub vertices: Vec<Point>,
+    /// Offset from the axis.
+    pub offset: Option<Offset>,
+    /// Use of the depth, where one is known.
+    pub depth_use: Option<Use>,
+    /// Springings, crown, loads (before and after), the worst place, and evenly spaced joints between.
+    pub stations: Vec<Station>,
+    /// Proof of optimality of an optimum.
+    pub proof: Option<Proof>,
+}
+
+/// The fitted pole of the graphic method.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct PoleFit {
+    /// Minus the pole's place from the start of the load line: comparable with the push, kN.
+    pub horizontal: f64,
+    /// As `horizontal`, upward: comparable with the left vertical reaction, kN.
+    pub vertical: f64,
+    /// Weighted root mean square distance of the rays from the pole, kN.
+    pub scatter: f64,
+    /// Scatter over the absolute horizontal; `None` when that is zero.
+    pub scatter_ratio: Option<f64>,
+}
+
+/// Which rule chose the governing line.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Rule {
+    /// `[line] govern` in the job.
+    Asked,
+    /// Three hinges leave one line.
+    ThreeHinges,
+    /// An elastic support was declared and the depth is known.
+    ElasticSupport,
+    /// A ring without tension: the most favourable line.
+    RingWithoutTension,
+    /// Only the axis is known, or a section that takes tension with no support declared.
+    AxisOnly,
+    /// A cable through its supports and its lowest point.
+    Cable,
+}
+
+/// One load with its place along the ring.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Placed {
+    /// Index into [`Problem::forces`].
+    pub force: usize,
+    /// Length along the axis where its line of action meets the axis, m.
+    pub foot: f64,
+}
+
+/// What came out for one span and one set of loads.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Analysis {
+    /// Arch or cable.
+    pub kind: SpanKind,
+    /// Crown: the axis point farthest from the chord, measured vertically, m.
+    pub crown: Point,
+    /// Horizontal distance of the springings, m.
+    pub span: f64,
+    /// Height of the crown over the chord (negative for a cable), m.
+    pub rise: f64,
+    /// Forces in their order along the ring; those that meet no piece of the axis are in `off_span`.
+    pub order: Vec<Placed>,
+    /// Indices of forces whose line of action misses the axis.
+    pub off_span: Vec<usize>,
+    /// Sum of all forces that count, kN.
+    pub total: Vec2,
+    /// The graphic method's pole; `None` with fewer than two load feet.
+    pub pole: Option<PoleFit>,
+    /// The governing line: an index into `lines`.
+    pub governs: usize,
+    /// Why it governs.
+    pub rule: Rule,
+    /// All lines, the governing one first.
+    pub lines: Vec<Line>,
+    /// Largest relative residual of the equilibrium self-checks over all lines found.
+    pub residual: f64,
+}
+
+/// Why a span could not be analysed.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+pub enum Unsolved {
+    /// No force has an effect on the span.
+    #[error("no load acts on the span")]
+    NoLoad,
+    /// The axis crosses itself.
+    #[error("the axis crosses itself near ({0:.3}, {1:.3}) m")]
+    SelfCrossing(f64, f64),
+    /// The axis has no rise.
+    #[error("the axis is straight between its springings: it has no rise to carry the loads by thrust")]
+    NoRise,
+    /// More than three hinges, or three that contradict the support, or three on one line.
+    #[error("{0}")]
+    Hinges(String),
+    /// A cable that would have to push.
+    #[error("{0}")]
+    SlackCable(String),
+    /// Something asked that is not built for this span.
+    #[error("{0}")]
+    NotBuilt(String),
+}
