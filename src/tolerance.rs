@@ -11,3 +11,23 @@ pub const SAME_PLACE: f64 = 1e-12;
 /// Radians by which a direction may miss the end of an arc and still count as its end. Larger: points beyond an
 /// arc's end count as on it; smaller: crossings at the very end get lost to rounding.
 pub const SAME_ANGLE: f64 = 1e-12;
+
+/// Part by which a value may pass a limit and still meet it. No unit. Larger: a limit that is broken passes; smaller:
+/// a value equal to its limit fails by rounding.
+pub const LIMIT_MET: f64 = 1e-9;
+
+/// Use of the depth below which an axis counts as a funicular of its loads, so that the geometric factor has no bound.
+/// No unit. Larger: great but finite factors are called unbounded; smaller: rounding is reported as a factor.
+pub const FUNICULAR_USE: f64 = 1e-9;
+
+/// Largest relative residual of the equilibrium self-checks. No unit. Larger: errors of computation pass; smaller:
+/// rounding of long spans is reported.
+pub const EQUILIBRIUM: f64 = 1e-9;
+
+/// Loads whose abscissas differ by less than this part of the span stand in one line. No unit. Larger: close posts count
+/// as one; smaller: drawing noise counts as a gap.
+pub const SAME_ABSCISSA: f64 = 1e-6;
+
+/// Part by which the gaps between loads may differ and still count as even. No unit. Larger: a misplaced post goes
+/// unnoticed; smaller: coordinates rounded to the centimetre are reported.
+pub const EVEN_SPACING: f64 = 0.02;

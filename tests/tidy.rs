@@ -83,20 +83,23 @@ fn imports(code: &str) -> BTreeSet<String> {
         let rest = &code[at + "crate::".len()..];
         if let Some(list) = rest.strip_prefix('{') {
             let mut depth = 1;
+            // True where the next word names a module directly below the crate.
+            let mut fresh = true;
             let mut name = String::new();
             for c in list.chars() {
+                if depth == 1 && fresh && (c.is_alphanumeric() || c == '_') {
+                    name.push(c);
+                    continue;
+                }
+                if !name.is_empty() {
+                    found.insert(std::mem::take(&mut name));
+                    fresh = false;
+                }
                 match c {
                     '{' => depth += 1,
                     '}' => depth -= 1,
+                    ',' if depth == 1 => fresh = true,
                     _ => {}
-                }
-                if depth == 1 && (c.is_alphanumeric() || c == '_') {
-                    name.push(c);
-                } else if !name.is_empty() && depth <= 1 && !c.is_alphanumeric() {
-                    if c == ':' || c == ',' || c == '}' {
-                        found.insert(std::mem::take(&mut name));
-                    }
-                    name.clear();
                 }
                 if depth == 0 {
                     break;

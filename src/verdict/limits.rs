@@ -1,0 +1,245 @@
+//! The stated limits, and the one built in, against what was computed.
+
+use super::{With, length, note, spans};
+use crate::job::Settings;
+use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
+use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
+use crate::tolerance;
+
+/// Judges one span; there is one case so far.
+pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
+    let limits = &settings.limits;
+    let governing = &analysis.lines[analysis.governs];
+    let mut judge = Judge { span, analysis, findings };
+    if governing.status != Status::Found {
+        judge.not_found(governing);
+        return;
+    }
+    if let Some(limit) = limits.offset {
+        judge.offset(governing, limit);
+    }
+    let ring_applies = analysis.kind == SpanKind::Arch;
+    let depth_use = governing.depth_use.filter(|_| ring_applies);
+    match (depth_use, limits.ring) {
+        (Some(used), stated) if stated.is_some() || !settings.rib.tension => {
+            judge.ring(used.ratio * 2.0, spans::xy(used.at), stated);
+        }
+        (None, Some(_)) => judge.not_judged("ring", no_depth(analysis)),
+        _ => {}
+    }
+    if let Some(limit) = limits.kern {
+        match depth_use {
+            Some(used) => judge.kern(used.ratio * 6.0, spans::xy(used.at), limit),
+            None => judge.not_judged("kern", no_depth(analysis)),
+        }
+    }
+    if let Some(limit) = limits.geometric_factor {
+        let closest = analysis.lines.iter().find(|l| l.kind == LineKind::Closest && l.status == Status::Found);
+        match closest.and_then(|l| l.depth_use).filter(|_| ring_applies) {
+            Some(used) => judge.geometric_factor(used.ratio, spans::xy(used.at), limit),
+            None => judge.not_judged("geometric_factor", no_depth(analysis)),
+        }
+    }
+}
+
+fn no_depth(analysis: &Analysis) -> &'static str {
+    match analysis.kind {
+        SpanKind::Cable => "a cable has no ring, kern or factor",
+        SpanKind::Arch => "no depth of the rib is known; give [rib] depth in the job file",
+    }
+}
+
+struct Judge<'a> {
+    span: &'a Span,
+    analysis: &'a Analysis,
+    findings: &'a mut Vec<Finding>,
+}
+
+impl Judge<'_> {
+    /// Adds a finding that belongs to this span and its case.
+    fn add(&mut self, finding: Finding) {
+        let mut finding = finding.of(&self.span.name);
+        finding.case = Some(spans::DRAWN.into());
+        self.findings.push(finding);
+    }
+
+    /// True when the governing line is only the most favourable one, and so not the state of the rib.
+    fn best_case(&self) -> bool {
+        matches!(self.analysis.rule, Rule::RingWithoutTension | Rule::AxisOnly)
+    }
+
+    fn not_found(&mut self, line: &Line) {
+        let reason = line.reason.clone().unwrap_or_else(|| "the loads leave none".into());
+        let mut finding = note(Check::NoLine, format!("no governing line of thrust: {reason}"));
+        finding.verdict = FindingVerdict::Outside;
+        finding.basis = Some("equilibrium".into());
+        self.add(finding);
+    }
+
+    fn not_judged(&mut self, limit: &str, why: &str) {
+        self.add(note(Check::NotJudged, format!("the stated limit `{limit}` was not judged: {why}")).uncheck());
+    }
+
+    fn offset(&mut self, line: &Line, limit: f64) {
+        let Some(offset) = line.offset else { return };
+        let at = spans::xy(offset.at);
+        let holds = offset.max_abs <= limit * (1.0 + tolerance::LIMIT_MET);
+        let side = self.side(offset.signed);
+        let message = if holds {
+            format!(
+                "the line of thrust strays at most {} from the axis, {side}; limit {}",
+                length(offset.max_abs),
+                length(limit)
+            )
+        } else {
+            format!(
+                "the line of thrust strays {} from the axis, {side}; that is {} beyond the limit of {}",
+                length(offset.max_abs),
+                length(offset.max_abs - limit),
+                length(limit)
+            )
+        };
+        let mut finding = self.limit(Check::Offset, "[limits] offset", offset.max_abs, limit, "m", at, holds, message);
+        if !holds {
+            finding = finding.remedy(format!(
+                "move the axis {} by at least {} {}, or change the loads there",
+                self.direction(offset.signed),
+                length(offset.max_abs - limit),
+                self.near(at)
+            ));
+        }
+        self.add(finding);
+    }
+
+    fn ring(&mut self, used: f64, at: Xy, stated: Option<f64>) {
+        let limit = stated.unwrap_or(1.0);
+        let holds = used <= limit * (1.0 + tolerance::LIMIT_MET);
+        let basis = if stated.is_some() { "[limits] ring" } else { "built in: no tension, so inside the ring" };
+        let message = if holds {
+            format!("the line of thrust uses {:.0} % of the half depth at most; limit {:.0} %", used * 100.0, limit * 100.0)
+        } else if used > 1.0 {
+            format!("the line of thrust leaves the ring: {:.0} % of the half depth; limit {:.0} %", used * 100.0, limit * 100.0)
+        } else {
+            format!("the line of thrust uses {:.0} % of the half depth; limit {:.0} %", used * 100.0, limit * 100.0)
+        };
+        let mut finding = self.limit(Check::Ring, basis, used, limit, "of half depth", at, holds, message);
+        if holds && stated.is_none() {
+            // The built-in limit can make a run outside; to be within, the job has to state one.
+            finding.verdict = FindingVerdict::Note;
+        }
+        if !holds {
+            finding = finding.remedy(format!(
+                "a depth of {:.2} times the present one {}, or an axis nearer to the line of thrust",
+                used / limit,
+                self.near(at)
+            ));
+        }
+        self.add(finding);
+    }
+
+    fn kern(&mut self, used: f64, at: Xy, limit: f64) {
+        let holds = used <= limit * (1.0 + tolerance::LIMIT_MET);
+        let best = self.best_case();
+        let message = format!(
+            "{}the line of thrust reaches {used:.2} times a sixth of the depth; limit {limit:.2}",
+            if best { "best case: " } else { "" }
+        );
+        if holds && best {
+            let mut finding = note(
+                Check::NotJudged,
+                format!(
+                    "{message}. The stated limit `kern` was not judged: the closest line is the most favourable one, \
+                     not the state of the rib"
+                ),
+            )
+            .value(used, "of d/6")
+            .at(at)
+            .uncheck()
+            .remedy("declare the support of the rib ([rib] support), so that its own line can be judged");
+            finding.limit = Some(limit);
+            finding.basis = Some("[limits] kern".into());
+            self.add(finding);
+            return;
+        }
+        let mut finding = self.limit(Check::Kern, "[limits] kern", used, limit, "of d/6", at, holds, message);
+        if !holds {
+            finding = finding.remedy(format!(
+                "a depth of {:.2} times the present one {}, or an axis nearer to the line of thrust",
+                used / limit,
+                self.near(at)
+            ));
+        }
+        self.add(finding);
+    }
+
+    /// The geometric factor is one over twice the use of the depth by the closest line; the limit is a least value.
+    fn geometric_factor(&mut self, ratio: f64, at: Xy, limit: f64) {
+        if ratio <= tolerance::FUNICULAR_USE {
+            let mut finding = note(
+                Check::GeometricFactor,
+                format!("the axis is a funicular of the loads: the geometric factor has no bound; limit {limit:.2}"),
+            );
+            finding.verdict = FindingVerdict::Within;
+            finding.limit = Some(limit);
+            finding.unit = Some("1".into());
+            finding.basis = Some("[limits] geometric_factor".into());
+            self.add(finding);
+            return;
+        }
+        let factor = 1.0 / (2.0 * ratio);
+        let holds = factor >= limit * (1.0 - tolerance::LIMIT_MET);
+        let message = format!("geometric factor of safety {factor:.2}; at least {limit:.2} is wanted");
+        let basis = "[limits] geometric_factor";
+        let mut finding = self.limit(Check::GeometricFactor, basis, factor, limit, "1", at, holds, message);
+        if !holds {
+            finding = finding.remedy(format!(
+                "a depth of {:.2} times the present one {}, or an axis nearer to the line of thrust",
+                limit / factor,
+                self.near(at)
+            ));
+        }
+        self.add(finding);
+    }
+
+    #[allow(clippy::too_many_arguments)]
+    fn limit(
+        &self,
+        check: Check,
+        basis: &str,
+        value: f64,
+        limit: f64,
+        unit: &str,
+        at: Xy,
+        holds: bool,
+        message: String,
+    ) -> Finding {
+        let mut finding = note(check, message).value(value, unit).at(at);
+        finding.limit = Some(limit);
+        finding.basis = Some(basis.into());
+        finding.verdict = if holds { FindingVerdict::Within } else { FindingVerdict::Outside };
+        finding
+    }
+
+    fn side(&self, signed: f64) -> &'static str {
+        match (self.analysis.kind, signed >= 0.0) {
+            (SpanKind::Arch, true) => "toward the extrados",
+            (SpanKind::Arch, false) => "toward the intrados",
+            (SpanKind::Cable, true) => "above it",
+            (SpanKind::Cable, false) => "below it",
+        }
+    }
+
+    fn direction(&self, signed: f64) -> &'static str {
+        if signed >= 0.0 { "upward, toward the line," } else { "downward, toward the line," }
+    }
+
+    /// The nearest load to a place, in words.
+    fn near(&self, at: Xy) -> String {
+        let distance = |load: &crate::outcome::Load| (load.at[0] - at[0]).hypot(load.at[1] - at[1]);
+        let nearest = self.span.loads.iter().min_by(|a, b| distance(a).total_cmp(&distance(b)));
+        match nearest {
+            Some(load) => format!("at x = {:.2} m (load {} is nearest)", at[0], load.label),
+            None => format!("at x = {:.2} m", at[0]),
+        }
+    }
+}

@@ -1,0 +1,191 @@
+//! From facts to findings: what was noticed and computed is put into words, held against the stated limits, and summed
+//! up in a verdict. Only here do results get a severity and advice.
+
+mod accept;
+mod limits;
+mod notes;
+mod spans;
+
+use jiff::civil::Date;
+
+use crate::drawing;
+use crate::job::settings::Assumption;
+use crate::job::Settings;
+use crate::model::{Forces, Model};
+use crate::outcome::{Check, Finding, FindingVerdict, Source, Span, Units, Verdict, Xy};
+use crate::statics::Analysis;
+
+/// What came out of a drawing, judged.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Judgement {
+    /// The units of all numbers.
+    pub units: Units,
+    /// The spans with their results.
+    pub spans: Vec<Span>,
+    /// Everything worth saying, worst first.
+    pub findings: Vec<Finding>,
+    /// The verdict.
+    pub verdict: Verdict,
+}
+
+/// Judges the analyses of a model, one for each of its spans in order. `today` decides whether an accepted exception has
+/// run out.
+pub fn judge(
+    settings: &Settings,
+    noticed: &[drawing::Note],
+    model: &Model,
+    analyses: &[Analysis],
+    today: Date,
+) -> Judgement {
+    let units = match model.forces {
+        Forces::Kilonewtons => Units::si(),
+        Forces::UnitLoads => Units::unit_loads(),
+    };
+    let spans: Vec<Span> = model
+        .spans
+        .iter()
+        .zip(analyses)
+        .map(|(span, analysis)| spans::span(span, analysis, settings, model.forces))
+        .collect();
+    let mut findings = Vec::new();
+    notes::drawing(noticed, &mut findings);
+    notes::model(&model.notes, &units, &mut findings);
+    for (analysis, span) in analyses.iter().zip(&spans) {
+        notes::analysis(analysis, span, settings, &units, &mut findings);
+        limits::span(analysis, span, settings, &mut findings);
+    }
+    notes::left_out(settings, model.forces, &mut findings);
+    allow_assumptions(&settings.accept.assumed, &mut findings);
+    accept::exceptions(&settings.accept.finding, today, &mut findings);
+    let verdict = verdict(&mut findings);
+    findings.sort_by_key(|f| (rank(f), f.check));
+    Judgement { units, spans, findings, verdict }
+}
+
+/// Worst first: outside, what keeps the run from being judged, accepted exceptions, limits that hold, notes.
+fn rank(finding: &Finding) -> u8 {
+    match finding.verdict {
+        FindingVerdict::Outside => 0,
+        _ if finding.unchecks => 1,
+        FindingVerdict::Accepted => 2,
+        FindingVerdict::Within => 3,
+        FindingVerdict::Note => 4,
+    }
+}
+
+/// An assumption that the job allows no longer keeps the run from being judged.
+fn allow_assumptions(allowed: &[Assumption], findings: &mut [Finding]) {
+    for finding in findings.iter_mut().filter(|f| f.unchecks) {
+        let assumption = match finding.check {
+            Check::Unit => Assumption::Unit,
+            Check::Layers => Assumption::Layers,
+            Check::Plane => Assumption::Plane,
+            Check::Loads => Assumption::Loads,
+            Check::Sense => Assumption::Sense,
+            Check::Labels => Assumption::Labels,
+            Check::Support => Assumption::Support,
+            Check::Gaps => Assumption::Gaps,
+            Check::Encoding => Assumption::Encoding,
+            _ => continue,
+        };
+        if allowed.contains(&assumption) {
+            finding.unchecks = false;
+            finding.basis = Some("allowed by [accept] assumed".into());
+        }
+    }
+}
+
+/// Sums up; adds a finding when no limit was there to hold.
+fn verdict(findings: &mut Vec<Finding>) -> Verdict {
+    if findings.iter().any(|f| f.verdict == FindingVerdict::Outside) {
+        return Verdict::Outside;
+    }
+    let holds = findings.iter().any(|f| f.verdict == FindingVerdict::Within);
+    let stated = findings.iter().any(|f| matches!(f.check, Check::NotJudged) || f.accepted.is_some());
+    if !holds {
+        let message = if stated {
+            "no stated limit could be shown to hold"
+        } else {
+            "no limit was stated, so there is nothing that could hold"
+        };
+        findings.push(
+            note(Check::NoLimit, message)
+                .uncheck()
+                .remedy("state what must hold under [limits] in the job file, such as `offset = 0.05` (metres)"),
+        );
+    }
+    if findings.iter().any(|f| f.unchecks) { Verdict::Unchecked } else { Verdict::Within }
+}
+
+/// A finding with no limit and no place yet.
+fn note(check: Check, message: impl Into<String>) -> Finding {
+    Finding {
+        check,
+        verdict: FindingVerdict::Note,
+        unchecks: false,
+        value: None,
+        limit: None,
+        unit: None,
+        at: None,
+        span: None,
+        case: None,
+        basis: None,
+        message: message.into(),
+        remedy: None,
+        entity: None,
+        accepted: None,
+    }
+}
+
+/// Short ways to add what a finding knows.
+trait With: Sized {
+    fn uncheck(self) -> Self;
+    fn remedy(self, text: impl Into<String>) -> Self;
+    fn value(self, value: f64, unit: &str) -> Self;
+    fn at(self, at: Xy) -> Self;
+    fn of(self, span: &str) -> Self;
+    fn entity(self, source: &drawing::Source) -> Self;
+}
+
+impl With for Finding {
+    fn uncheck(mut self) -> Self {
+        self.unchecks = true;
+        self
+    }
+    fn remedy(mut self, text: impl Into<String>) -> Self {
+        self.remedy = Some(text.into());
+        self
+    }
+    fn value(mut self, value: f64, unit: &str) -> Self {
+        self.value = Some(value);
+        self.unit = Some(unit.into());
+        self
+    }
+    fn at(mut self, at: Xy) -> Self {
+        self.at = Some(at);
+        self
+    }
+    fn of(mut self, span: &str) -> Self {
+        self.span = Some(span.into());
+        self
+    }
+    fn entity(mut self, from: &drawing::Source) -> Self {
+        self.entity = Some(source(from));
+        self
+    }
+}
+
+/// A source as the results hold it.
+fn source(from: &drawing::Source) -> Source {
+    Source {
+        handle: from.handle.clone(),
+        kind: from.kind.clone(),
+        layer: from.layer.clone(),
+        path: from.path.clone(),
+    }
+}
+
+/// A length in words: millimetres below ten metres, else metres.
+fn length(metres: f64) -> String {
+    if metres.abs() < 10.0 { format!("{:.0} mm", metres * 1000.0) } else { format!("{metres:.2} m") }
+}

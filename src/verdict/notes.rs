@@ -1,0 +1,262 @@
+//! What reader, builder and statics noticed, in words.
+
+use super::{With, length, note, spans};
+use crate::drawing;
+use crate::drawing::{Reason, Role};
+use crate::job::Settings;
+use crate::job::settings::Support;
+use crate::model;
+use crate::model::Forces;
+use crate::model::figures::NoFigure;
+use crate::outcome::{Check, Finding, Span, Units};
+use crate::statics::{Analysis, SpanKind};
+use crate::tolerance;
+
+/// Notes of the reader.
+pub fn drawing(notes: &[drawing::Note], findings: &mut Vec<Finding>) {
+    findings.extend(notes.iter().map(drawing_note));
+}
+
+fn drawing_note(n: &drawing::Note) -> Finding {
+    use drawing::Note;
+    match n {
+        Note::LayerGuessed { role, layer, reason } => note(
+            Check::Layers,
+            format!("layer {layer} was taken as the {}: {}", role_name(*role), reason_words(reason)),
+        )
+        .uncheck()
+        .remedy(format!("name it in the job file: [layers] {} = \"{layer}\"", role.key())),
+        Note::NoLoadLayer => note(Check::Layers, "no layer of loads was found").uncheck(),
+        Note::LayerHidden { layer, frozen } => note(
+            Check::PassedOver,
+            format!("layer {layer} is {} and was read all the same", if *frozen { "frozen" } else { "switched off" }),
+        ),
+        Note::PassedOver { role, layer, kind, count, could_be_load, first } => {
+            let finding = note(
+                Check::PassedOver,
+                format!("{count} {kind} on layer {layer} ({}) passed over: not read as {}", role_name(*role), role_name(*role)),
+            )
+            .entity(first);
+            if *could_be_load {
+                finding.uncheck().remedy("draw these loads as POINT, CIRCLE or INSERT with a label, or move them to another layer")
+            } else {
+                finding
+            }
+        }
+        Note::PaperSpace { layer, count } => {
+            note(Check::PassedOver, format!("{count} entities on layer {layer} stand in paper space and do not count"))
+        }
+        Note::InBlock { role, block, layer, count } => note(
+            Check::PassedOver,
+            format!(
+                "block {block} holds {count} entities on layer {layer} ({}); entities inside blocks were not read",
+                role_name(*role)
+            ),
+        )
+        .uncheck()
+        .remedy("explode the block in a copy of the drawing, or draw the part in model space"),
+        Note::PartNotRead { part, layer, count } => note(
+            Check::PassedOver,
+            format!("layer {layer} ({count} entities) has the name of [layers] {part}, which is not read"),
+        ),
+        Note::UnitAssumed { unit, width, .. } => note(
+            Check::Unit,
+            format!("the drawing states no unit; {} was assumed from an axis {width:.6} drawing units wide", unit.name()),
+        )
+        .uncheck()
+        .remedy(format!("state it in the job file: [drawing] unit = \"{}\"", unit.name())),
+    }
+}
+
+fn role_name(role: Role) -> &'static str {
+    match role {
+        Role::Axis => "axis",
+        Role::Loads => "loads",
+    }
+}
+
+fn reason_words(reason: &Reason) -> String {
+    match reason {
+        Reason::Word(word) => format!("its name holds the word {word}"),
+        Reason::OneLine { span, rise } => {
+            format!("it holds one line from springing to springing, {span:.6} wide and {rise:.6} high in drawing units")
+        }
+        Reason::PointsOver { over, of } => format!("{over} of its {of} points stand over the axis"),
+    }
+}
+
+/// Notes of the builder.
+pub fn model(notes: &[model::Note], units: &Units, findings: &mut Vec<Finding>) {
+    findings.extend(notes.iter().map(|n| model_note(n, units)));
+}
+
+fn model_note(n: &model::Note, units: &Units) -> Finding {
+    use model::Note;
+    match n {
+        Note::GapClosed { span, size, at } => {
+            note(Check::Gaps, format!("a gap of {} in the axis was closed", small_length(*size)))
+                .value(*size, "m")
+                .at(spans::xy(*at))
+                .of(span)
+                .uncheck()
+                .remedy("join the ends in the drawing, or allow it: [accept] assumed = [\"gaps\"]")
+        }
+        Note::DrawnTwice { source, kept } => note(
+            Check::PassedOver,
+            format!("{} lies on {} and was passed over as drawn twice", source.named(), kept.named()),
+        )
+        .entity(source),
+        Note::NoLength { source } => {
+            note(Check::PassedOver, format!("{} has a piece of no length, passed over", source.named())).entity(source)
+        }
+        Note::TextIgnored { source, text, why } => {
+            note(Check::PassedOver, format!("text \"{text}\" is no load: {}", no_figure(why))).entity(source)
+        }
+        Note::LabelUnused { source, text, nearest, .. } => note(
+            Check::Labels,
+            match nearest {
+                Some(d) => format!("label \"{text}\" belongs to no load (the nearest stands {} away)", length(*d)),
+                None => format!("label \"{text}\" belongs to no load"),
+            },
+        )
+        .entity(source)
+        .uncheck()
+        .remedy("move the label next to its load, or to another layer"),
+        Note::LabelDoubtful { label, text, load, other, .. } => note(
+            Check::Labels,
+            format!("label \"{text}\" was given to {}, and could nearly as well belong to {}", load.named(), other.named()),
+        )
+        .entity(label)
+        .uncheck()
+        .remedy("move the label next to its load, or allow it: [accept] assumed = [\"labels\"]"),
+        Note::AttributesUnclear { source, tags } => note(
+            Check::Labels,
+            format!("{} has several attributes with figures ({}), and none says that it is the force", source.named(), tags.join(", ")),
+        )
+        .entity(source)
+        .uncheck(),
+        Note::MarkedTwice { source, kept } => note(
+            Check::PassedOver,
+            format!("{} stands on {} and was counted once", source.named(), kept.named()),
+        )
+        .entity(source),
+        Note::LoadsEqual { count } => note(
+            Check::Loads,
+            format!("none of the {count} loads has a figure: all were taken as equal, and forces are multiples of one of them"),
+        )
+        .uncheck()
+        .remedy("label the loads in the drawing, give [loads] unlabelled, or allow it: [accept] assumed = [\"loads\"]"),
+        Note::Unlabelled { sources, force } => note(
+            Check::Loads,
+            format!("{} loads without a figure got {force} {} each from [loads] unlabelled", sources.len(), units.force),
+        ),
+        Note::ForceUnitAssumed { unit, count, from_labels } => note(
+            Check::Loads,
+            format!(
+                "{count} figures stand without a unit; {unit} was taken{}",
+                if *from_labels { ", as on other labels" } else { "" }
+            ),
+        )
+        .uncheck()
+        .remedy(format!("state it in the job file: [loads] unit = \"{unit}\"")),
+        Note::OffSpan { source, label, at, force } => note(
+            Check::OffSpan,
+            format!("load {label} ({force:.4} {}) stands over no span and is left out", units.force),
+        )
+        .at(spans::xy(*at))
+        .entity(source)
+        .uncheck()
+        .remedy("move it over the span, or to another layer"),
+        Note::NoLoads { span } => note(Check::Loads, "no load stands over this span").of(span).uncheck(),
+        Note::SizeUnlikely { span, size } => note(
+            Check::Unit,
+            format!("a span of {size:.3} m is unlikely for a bridge: unit or scale may be wrong"),
+        )
+        .value(*size, "m")
+        .of(span)
+        .uncheck()
+        .remedy("check $INSUNITS of the drawing, and [drawing] unit and scale of the job"),
+    }
+}
+
+fn no_figure(why: &NoFigure) -> String {
+    match why {
+        NoFigure::NotAForce => "it holds no figure that could be a force".into(),
+        NoFigure::PerLength => "a force per length".into(),
+        NoFigure::Unit(unit) => format!("{unit} is no unit of force that is known"),
+        NoFigure::Several => "several of its lines hold a force".into(),
+        NoFigure::TwoReadings { written, .. } => format!("{written} can be read in two ways"),
+        _ => "its figure could not be read".into(),
+    }
+}
+
+/// A length of any smallness in words.
+fn small_length(metres: f64) -> String {
+    if metres < 0.001 { format!("{:.3} mm", metres * 1000.0) } else { format!("{:.1} mm", metres * 1000.0) }
+}
+
+/// What the statics of a span found worth saying beside the limits.
+pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, findings: &mut Vec<Finding>) {
+    let mut add = |finding: Finding| findings.push(finding.of(&span.name));
+    let residual = note(Check::Equilibrium, "equilibrium of every line closes").value(a.residual, "1");
+    if a.residual > tolerance::EQUILIBRIUM {
+        let mut broken = residual.uncheck().remedy("report this drawing: the computation contradicts itself");
+        broken.message = "equilibrium does not close within the tolerance".into();
+        broken.limit = Some(tolerance::EQUILIBRIUM);
+        add(broken);
+    } else {
+        add(residual);
+    }
+    if a.kind == SpanKind::Arch && settings.rib.support.is_none() {
+        add(note(Check::Support, "no support was declared; a ring without tension on rigid abutments was taken")
+            .uncheck()
+            .remedy("declare it: [rib] support = \"none\" (no tension), or the support there is"));
+    }
+    if a.kind == SpanKind::Arch && matches!(settings.rib.support, Some(Support::None)) && settings.rib.tension {
+        add(note(Check::Support, "support \"none\" with a section that takes tension: only the axis is judged"));
+    }
+    if let Some(uneven) = uneven_spacing(a, span) {
+        add(note(
+            Check::Spacing,
+            format!(
+                "loads are unevenly spaced: gaps from {:.3} m to {:.3} m between neighbours",
+                uneven.0, uneven.1
+            ),
+        )
+        .value(uneven.1 / uneven.0, "1"));
+    }
+    for &i in &a.off_span {
+        add(note(
+            Check::OffSpan,
+            format!("the line of action of load {} does not meet the axis; it is left out", i + 1),
+        )
+        .uncheck());
+    }
+    if let Some(pole) = a.pole {
+        let mut text = format!("the rays of the graphic method scatter by {:.4} {} about their pole", pole.scatter, units.force);
+        if let Some(ratio) = pole.scatter_ratio {
+            text.push_str(&format!(" ({:.2} % of the push)", ratio * 100.0));
+        }
+        let mut finding = note(Check::Offset, text).value(pole.scatter, &units.force);
+        finding.basis = Some("the drawn axis against a funicular of the drawn loads".into());
+        add(finding);
+    }
+}
+
+/// Least and greatest gap between neighbouring loads, when they differ.
+fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
+    let xs: Vec<f64> = span.loads.iter().map(|l| l.at[0]).collect();
+    let gaps = xs.windows(2).map(|w| w[1] - w[0]).filter(|g| *g > a.span * tolerance::SAME_ABSCISSA);
+    let (low, high) = gaps.fold((f64::INFINITY, 0.0_f64), |(low, high), g| (low.min(g), high.max(g)));
+    (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
+}
+
+/// What the computation leaves out.
+pub fn left_out(settings: &Settings, forces: Forces, findings: &mut Vec<Finding>) {
+    let mut parts = vec!["the rib's own weight", "fill", "traffic", "everything out of the plane of the elevation"];
+    if forces == Forces::UnitLoads {
+        parts.push("stresses");
+    }
+    let _ = settings;
+    findings.push(note(Check::LeftOut, format!("left out: {}", parts.join(", "))));
+}

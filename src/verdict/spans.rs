@@ -1,0 +1,190 @@
+//! A span and its analysis as the results hold them.
+
+use crate::geometry::{Path, Point, Segment};
+use crate::job::Settings;
+use crate::model::{self, Forces};
+use crate::outcome::{self, Axis, Case, End, Line, LineKind, Load, Offset, Pole, Proof, Ring, Span, Station, Status, Xy};
+use crate::statics::{self, Analysis, Rule, SpanKind, Support};
+
+/// The name of the one case that a job without cases has.
+pub const DRAWN: &str = "drawn";
+
+/// Puts a span together.
+pub fn span(span: &model::Span, analysis: &Analysis, settings: &Settings, forces: Forces) -> Span {
+    let axis = &span.axis;
+    Span {
+        name: span.name.clone(),
+        kind: match analysis.kind {
+            SpanKind::Arch => "arch",
+            SpanKind::Cable => "cable",
+        }
+        .into(),
+        axis: Axis {
+            span: analysis.span,
+            rise: analysis.rise,
+            length: axis.length(),
+            left: xy(axis.start()),
+            right: xy(axis.end()),
+            crown: xy(analysis.crown),
+            entities: span.sources.iter().map(super::source).collect(),
+            curve: curve(axis),
+        },
+        ring: ring(analysis, settings),
+        loads: loads(span, analysis),
+        cases: vec![case(analysis, forces)],
+    }
+}
+
+/// A point as the results hold it.
+pub fn xy(p: Point) -> Xy {
+    [p.x, p.y]
+}
+
+/// The axis as points with the bulge of the piece that follows.
+fn curve(axis: &Path) -> Vec<[f64; 3]> {
+    let mut out: Vec<[f64; 3]> = axis
+        .segments()
+        .iter()
+        .map(|segment| {
+            let start = segment.start();
+            let bulge = match segment {
+                Segment::Line { .. } => 0.0,
+                Segment::Arc { sweep, .. } => (sweep / 4.0).tan(),
+            };
+            [start.x, start.y, bulge]
+        })
+        .collect();
+    out.push([axis.end().x, axis.end().y, 0.0]);
+    out
+}
+
+fn ring(analysis: &Analysis, settings: &Settings) -> Option<Ring> {
+    let depths = analysis.lines.iter().flat_map(|l| &l.stations).filter_map(|s| s.depth);
+    let (low, high) = depths.fold((f64::INFINITY, 0.0_f64), |(low, high), d| (low.min(d), high.max(d)));
+    (high > 0.0).then_some(Ring { depth_min: low, depth_max: high, width: settings.rib.width })
+}
+
+fn loads(span: &model::Span, analysis: &Analysis) -> Vec<Load> {
+    let letters = outcome::bow::spaces(analysis.order.len());
+    analysis
+        .order
+        .iter()
+        .zip(letters)
+        .map(|(placed, space)| {
+            let load = &span.loads[placed.force];
+            Load {
+                label: load.label.clone(),
+                space,
+                at: xy(load.at),
+                force: [load.force.x, load.force.y],
+                set: load.set.clone(),
+                source: super::source(&load.source),
+                magnitude_from: match load.magnitude_from {
+                    model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
+                    model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
+                    model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
+                    model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
+                },
+                text: load.text.clone(),
+            }
+        })
+        .collect()
+}
+
+fn case(analysis: &Analysis, _forces: Forces) -> Case {
+    let governing = &analysis.lines[analysis.governs];
+    let mut lines: Vec<Line> = vec![line(governing)];
+    lines.extend(
+        analysis.lines.iter().enumerate().filter(|(i, _)| *i != analysis.governs).map(|(_, l)| line(l)),
+    );
+    Case {
+        name: DRAWN.into(),
+        total_load: [analysis.total.x, analysis.total.y],
+        pole: analysis.pole.map(|p| Pole {
+            horizontal: p.horizontal,
+            vertical: p.vertical,
+            scatter: p.scatter,
+            scatter_ratio: p.scatter_ratio,
+        }),
+        governs: kind(governing.kind),
+        governs_why: why(analysis.rule).into(),
+        lines,
+        traffic: Vec::new(),
+        safety: None,
+        residual: analysis.residual,
+    }
+}
+
+/// Which rule chose the governing line, in words.
+pub fn why(rule: Rule) -> &'static str {
+    match rule {
+        Rule::Asked => "asked for by [line] govern",
+        Rule::ThreeHinges => "three hinges leave this line alone",
+        Rule::ElasticSupport => "an elastic support was declared and the depth is known",
+        Rule::RingWithoutTension => {
+            "a ring without tension and no elastic support declared: the most favourable line, the best case"
+        }
+        Rule::AxisOnly => "only the axis counts, with no support declared: the most favourable line, the best case",
+        Rule::Cable => "a cable through its supports and its lowest point",
+    }
+}
+
+/// A kind as the results name it.
+pub fn kind(kind: statics::LineKind) -> LineKind {
+    match kind {
+        statics::LineKind::Closest => LineKind::Closest,
+        statics::LineKind::Through => LineKind::Through,
+        statics::LineKind::LeastThrust => LineKind::LeastThrust,
+        statics::LineKind::GreatestThrust => LineKind::GreatestThrust,
+        statics::LineKind::Elastic => LineKind::Elastic,
+    }
+}
+
+fn line(line: &statics::Line) -> Line {
+    Line {
+        kind: kind(line.kind),
+        support: line.support.and_then(|s| {
+            Some(
+                match s {
+                    Support::Hingeless => "hingeless",
+                    Support::TwoHinged => "two-hinged",
+                    Support::ThreeHinged => "three-hinged",
+                    Support::None => return None,
+                }
+                .to_string(),
+            )
+        }),
+        left: line.left.map(end),
+        right: line.right.map(end),
+        status: match line.status {
+            statics::Status::Found => Status::Found,
+            statics::Status::None => Status::None,
+            statics::Status::Unbounded => Status::Unbounded,
+            statics::Status::Refused => Status::Refused,
+        },
+        reason: line.reason.clone(),
+        vertices: line.vertices.iter().copied().map(xy).collect(),
+        offset: line.offset.map(|o| Offset { max_abs: o.max_abs, signed: o.signed, at: xy(o.at), rms: o.rms }),
+        stations: line.stations.iter().map(station).collect(),
+        proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn end(end: statics::End) -> End {
+    End { horizontal: end.horizontal, vertical: end.vertical, eccentricity: end.eccentricity }
+}
+
+fn station(s: &statics::Station) -> Station {
+    Station {
+        at: xy(s.at),
+        s: s.s,
+        thrust: s.thrust,
+        shear: s.shear,
+        moment: s.moment,
+        eccentricity: s.eccentricity,
+        vertical_offset: s.vertical_offset,
+        depth: s.depth,
+        stress_max: None,
+        stress_min: None,
+    }
+}
