@@ -7,3 +7,4 @@ pub mod refusal;
 pub mod statics;
 pub mod tags;
 pub mod tolerance;
+pub mod write;

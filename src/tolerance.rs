@@ -31,3 +31,23 @@ pub const SAME_ABSCISSA: f64 = 1e-6;
 /// Part by which the gaps between loads may differ and still count as even. No unit. Larger: a misplaced post goes
 /// unnoticed; smaller: coordinates rounded to the centimetre are reported.
 pub const EVEN_SPACING: f64 = 0.02;
+/// A station counts as standing at a joint when nearer to it than this part of the axis' length. No unit. Larger: the
+/// figure of a neighbouring station is shown; smaller: rounding between metres and drawing units loses the station, and
+/// the figure is measured on the drawn line instead.
+pub const SAME_JOINT: f64 = 1e-9;
+
+/// Part by which a joint may miss the end of a piece of the line of thrust and still meet it. No unit. Larger: joints
+/// beyond the line's end get a figure; smaller: a joint through a vertex slips between two pieces.
+pub const PIECE_END: f64 = 1e-9;
+
+/// Radians by which text may lean past the upright and still read from the right. Larger: text stands on its head;
+/// smaller: upright texts of one row turn either way by rounding.
+pub const UPRIGHT: f64 = 1e-9;
+
+/// Part by which a value may fall short of a round figure and still be given it. No unit. Larger: bars come out longer
+/// than what they measure; smaller: 0.3 / 3 is not 0.1 and the next smaller figure is taken.
+pub const ROUND_FIGURE: f64 = 1e-9;
+
+/// A component of the total load smaller than this part of the other is not told. No unit. Larger: a real push sideways
+/// goes unsaid; smaller: rounding of upright loads reads as a push.
+pub const NO_FORCE: f64 = 1e-9;

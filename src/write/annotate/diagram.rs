@@ -1,0 +1,277 @@
+//! The offset diagram: the offset of the governing line along each span, exaggerated, on a straight base line.
+
+use crate::geometry::{Point, Vec2};
+use crate::outcome::{Check, Run};
+use crate::tags::marks::{Across, Along};
+use crate::write::annotate::elevation::dash_of;
+use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
+use crate::write::annotate::shown::{Shown, governing, kind_name};
+use crate::write::text::{self, in_metres};
+
+/// Height of the larger ordinates, in text heights.
+const TALL: f64 = 7.0;
+
+/// A curve over a span: x in drawing units, offset in metres.
+type Curve = Vec<(f64, f64)>;
+
+/// Draws the diagrams of all spans under their spans, below `corner`. Gives back the height of the lowest thing drawn.
+pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, right: f64) -> f64 {
+    let h = canvas.h;
+    let curves: Vec<Curve> = spans.iter().map(offsets).collect();
+    if curves.iter().all(Vec::is_empty) {
+        return corner.y;
+    }
+    let limit = offset_limit(run);
+    let largest = curves.iter().flatten().map(|p| p.1.abs()).fold(0.0, f64::max);
+    // A limit far beyond the line would flatten the diagram; it is then told and not drawn.
+    let drawn_limit = limit.filter(|l| *l <= 6.0 * largest);
+    let reach = drawn_limit.unwrap_or(0.0).max(largest);
+    let factor = exaggeration(reach, h, spans.first().map_or(1.0, |s| s.unit));
+
+    let mut title = format!(
+        "OFFSET OF THE LINE OF THRUST FROM THE AXIS, along the joints, drawn {} times as large; + toward the extrados",
+        text::three_digits(factor)
+    );
+    match (limit, drawn_limit) {
+        (Some(l), Some(_)) => title.push_str(&format!("; limit {} mm dashed", text::millimetres(l))),
+        (Some(l), None) => {
+            title.push_str(&format!("; limit {} mm lies outside the diagram", text::millimetres(l)))
+        }
+        (None, _) => {}
+    }
+    let mut y = corner.y;
+    for line in text::wrap(&title, columns_between(corner.x, right, h)) {
+        y -= h;
+        canvas.text(Layer::OffsetDiagram, "title", &Words::new(line, Point::new(corner.x, y), h));
+        y -= (LEADING - 1.0) * h;
+    }
+    let up = curves.iter().flatten().map(|p| p.1).fold(drawn_limit.unwrap_or(0.0), f64::max);
+    let down = curves.iter().flatten().map(|p| p.1).fold(-drawn_limit.unwrap_or(0.0), f64::min);
+    let unit = spans.first().map_or(1.0, |s| s.unit);
+    let base = y - 3.2 * h - up * factor * unit;
+
+    scale_bar(canvas, Point::new(corner.x - 2.0 * h, base), factor * unit, reach);
+    for (shown, curve) in spans.iter().zip(&curves) {
+        one(shown, curve, canvas, base, factor * unit, drawn_limit, spans.len() > 1);
+    }
+    let lowest = base + down * factor * unit;
+    canvas.extent().map_or(lowest, |(low, _)| low.y.min(lowest))
+}
+
+/// Columns of text that fit between two abscissae, at least thirty.
+pub fn columns_between(left: f64, right: f64, h: f64) -> usize {
+    #[allow(clippy::cast_possible_truncation, clippy::cast_sign_loss)] // clamped to a small positive number
+    let n = ((right - left) / h).clamp(30.0, 200.0) as usize;
+    n
+}
+
+/// The least stated offset limit, m.
+fn offset_limit(run: &Run) -> Option<f64> {
+    run.findings
+        .iter()
+        .filter(|f| f.check == Check::Offset)
+        .filter_map(|f| f.limit.and_then(|l| in_metres(l, f.unit.as_deref())))
+        .min_by(f64::total_cmp)
+}
+
+/// The offset along the span, at the stations; without stations, at the loads and the ends.
+fn offsets(shown: &Shown) -> Curve {
+    let Some(line) = shown.line else { return Vec::new() };
+    let stations: Curve =
+        line.stations.iter().filter_map(|t| t.eccentricity.map(|e| (t.at[0] * shown.unit, e))).collect();
+    if stations.len() > 1 {
+        return stations;
+    }
+    let Some(path) = &shown.path else { return Vec::new() };
+    let mut lengths = vec![0.0, path.length()];
+    lengths.extend(&shown.feet);
+    lengths.extend(shown.worst().map(|w| w.0));
+    lengths.sort_by(f64::total_cmp);
+    lengths.into_iter().filter_map(|s| Some((shown.joint(s)?.0.x, shown.eccentricity(s)?))).collect()
+}
+
+/// How many times as large as the elevation offsets are drawn: 1, 2, 5, 10 …
+fn exaggeration(reach: f64, h: f64, unit: f64) -> f64 {
+    let wanted = TALL * h / (reach * unit);
+    if !wanted.is_finite() || wanted <= 1.0 {
+        return 1.0;
+    }
+    // A line on the axis to within rounding needs no microscope.
+    round_down(wanted).min(10_000.0)
+}
+
+/// The largest of 1, 2, 2.5, 5, 10 … that is not larger than the value (positive).
+pub fn round_down(value: f64) -> f64 {
+    let power = 10_f64.powf(value.log10().floor());
+    let lead = [10.0, 5.0, 2.5, 2.0, 1.0]
+        .into_iter()
+        .find(|l| l * power <= value * (1.0 + crate::tolerance::ROUND_FIGURE))
+        .unwrap_or(1.0);
+    lead * power
+}
+
+/// A bar with the scale of the offsets, upright at the left.
+fn scale_bar(canvas: &mut Canvas, at: Point, scale: f64, reach: f64) {
+    let h = canvas.h;
+    let length = round_down(if reach > 0.0 { reach } else { TALL * h / scale });
+    let top = at + Vec2::new(0.0, length * scale);
+    canvas.line(Layer::OffsetDiagram, "scale", at, top);
+    for end in [at, top] {
+        canvas.line(
+            Layer::OffsetDiagram,
+            "scale",
+            end - Vec2::new(0.5 * h, 0.0),
+            end + Vec2::new(0.5 * h, 0.0),
+        );
+    }
+    let middle = Point::new(at.x - 1.2 * h, f64::midpoint(at.y, top.y));
+    let words = Words::new(format!("{} mm", text::millimetres(length)), middle, h)
+        .centred()
+        .turned(std::f64::consts::FRAC_PI_2);
+    canvas.text(Layer::OffsetDiagram, "scale", &words);
+}
+
+fn one(
+    shown: &Shown,
+    curve: &Curve,
+    canvas: &mut Canvas,
+    base: f64,
+    scale: f64,
+    limit: Option<f64>,
+    several: bool,
+) {
+    let h = canvas.h;
+    let (Some(left), Some(right)) =
+        (curve.iter().map(|p| p.0).min_by(f64::total_cmp), curve.iter().map(|p| p.0).max_by(f64::total_cmp))
+    else {
+        return;
+    };
+    let layer = Layer::OffsetDiagram;
+    let at = |x: f64, e: f64| Point::new(x, base + e * scale);
+    canvas.line(layer, "base", at(left, 0.0), at(right, 0.0));
+    canvas.taken.keep_off(&[at(left, 0.0), at(right, 0.0)]);
+    for x in [left, right] {
+        let tick = Vec2::new(0.0, 0.7 * h);
+        canvas.line(layer, "base", at(x, 0.0) - tick, at(x, 0.0) + tick);
+    }
+    for other in &shown.span.cases {
+        if shown.case.is_some_and(|c| !std::ptr::eq(c, other))
+            && let Some(line) = governing(other)
+        {
+            let points: Vec<Point> = line
+                .stations
+                .iter()
+                .filter_map(|t| t.eccentricity.map(|e| at(t.at[0] * shown.unit, e)))
+                .collect();
+            canvas.chain(Layer::OtherLines, "other-offsets", &points, Some(Dash::Long));
+            canvas.taken.keep_off(&points);
+        }
+    }
+    let points: Vec<Point> = curve.iter().map(|&(x, e)| at(x, e)).collect();
+    for &s in &shown.feet {
+        if let (Some((foot, _)), Some(e)) = (shown.joint(s), shown.eccentricity(s)) {
+            canvas.line(Layer::Offsets, "ordinate", at(foot.x, 0.0), at(foot.x, e));
+            canvas.taken.keep_off(&[at(foot.x, 0.0), at(foot.x, e)]);
+        }
+    }
+    canvas.chain(layer, "offsets", &points, None);
+    canvas.taken.keep_off(&points);
+    if let Some(limit) = limit {
+        for sign in [1.0, -1.0] {
+            let ends = [at(left, sign * limit), at(right, sign * limit)];
+            canvas.dashed(layer, "limit", ends[0], ends[1], Some(Dash::Short));
+            canvas.taken.keep_off(&ends);
+        }
+    }
+    let worst = worst_here(shown, canvas, base, scale);
+    if let Some(limit) = limit {
+        let outside = worst.is_some_and(|e| e.abs() > limit);
+        for sign in [1.0, -1.0] {
+            let places = (0..20).flat_map(|i| {
+                let inset = (right - left) * f64::from(i) / 20.0;
+                [0.9, -0.9].map(|d| {
+                    let p = at(right - inset, sign * limit) + Vec2::new(0.0, sign * d * h);
+                    let words = text::signed_millimetres(sign * limit);
+                    (
+                        Words::new(format!("limit {words}"), p, h).across(Across::Right).along(Along::Middle),
+                        None,
+                    )
+                })
+            });
+            canvas.place(if outside { Layer::Flags } else { layer }, "limit", places);
+        }
+    }
+    if several {
+        let mut name = shown.span.name.clone();
+        if shown.span.cases.len() > 1
+            && let Some(case) = shown.case
+        {
+            name.push_str(&format!(", case {}", case.name));
+        }
+        let places = (0..40).map(|k| {
+            let p = Point::new(f64::midpoint(left, right), base - (1.8 + 0.8 * f64::from(k)) * h);
+            (Words::new(name.clone(), p, h).centred(), None)
+        });
+        canvas.place(layer, "span", places);
+    }
+}
+
+/// Rings the worst ordinate and writes its value beside it. Gives back the value.
+fn worst_here(shown: &Shown, canvas: &mut Canvas, base: f64, scale: f64) -> Option<f64> {
+    let h = canvas.h;
+    let (s, e) = shown.worst()?;
+    let (foot, _) = shown.joint(s)?;
+    let tip = Point::new(foot.x, base + e * scale);
+    canvas.circle(Layer::Offsets, "worst", tip, 0.45 * h);
+    let away = if e < 0.0 { -1.0 } else { 1.0 };
+    let words = format!("max {} mm", text::signed_millimetres(e));
+    let places = (0..30).flat_map(|k| {
+        let d = away * (1.6 + 0.5 * f64::from(k)) * h;
+        [(0.0, Across::Centre), (0.9 * h, Across::Left), (-0.9 * h, Across::Right)].map(|(dx, across)| {
+            let p = tip + Vec2::new(dx, d);
+            (Words::new(words.clone(), p, h).across(across).along(Along::Middle), None)
+        })
+    });
+    canvas.place(Layer::Offsets, "worst", places);
+    Some(e)
+}
+
+/// Samples of all lines drawn, for the key: name and line type.
+pub fn other_kinds(spans: &[Shown]) -> Vec<(String, Dash)> {
+    let mut out: Vec<(String, Dash)> = Vec::new();
+    for shown in spans {
+        for line in shown.case.iter().flat_map(|c| &c.lines) {
+            let governs = shown.line.is_some_and(|g| std::ptr::eq(g, line));
+            if !governs && line.vertices.len() > 1 {
+                out.push((format!("line {}", kind_name(line.kind)), dash_of(line.kind)));
+            }
+        }
+        if shown.span.cases.len() > 1 {
+            out.push(("lines of other cases".into(), Dash::Long));
+        }
+    }
+    out.sort_by(|a, b| a.0.cmp(&b.0));
+    out.dedup();
+    out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn round_figures() {
+        for (value, expected) in
+            [(1.0, 1.0), (1.99, 1.0), (2.4, 2.0), (2.5, 2.5), (9.9, 5.0), (0.03, 0.025), (1000.0, 1000.0)]
+        {
+            assert!((round_down(value) - expected).abs() < 1e-12 * expected, "{value}");
+        }
+    }
+
+    #[test]
+    fn nothing_to_exaggerate() {
+        assert!((exaggeration(0.0, 1.0, 1.0) - 1.0).abs() < f64::EPSILON);
+        assert!((exaggeration(1e-15, 1.0, 1.0) - 10_000.0).abs() < 1e-9);
+        assert!((exaggeration(0.05, 0.25, 1.0) - 25.0).abs() < 1e-9);
+    }
+}

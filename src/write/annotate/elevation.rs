@@ -1,0 +1,389 @@
+//! What is drawn on the elevation itself: lines, ticks, letters, abutment arrows, flags.
+
+use std::f64::consts::{FRAC_PI_2, PI};
+
+use crate::geometry::{Point, Vec2};
+use crate::outcome::{Case, Check, Finding, FindingVerdict, LineKind, Run, Status};
+use crate::tags::marks::{Across, Along};
+use crate::tolerance;
+use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Leader, Words};
+use crate::write::annotate::place::width;
+use crate::write::annotate::shown::{Shown, governing, kind_name, point};
+use crate::write::text;
+
+/// Draws all spans. What texts must keep off is drawn first, then texts from the one that matters most.
+pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
+    for shown in spans {
+        canvas.taken.keep_off(&shown.chords);
+        kern(shown, canvas);
+        other_lines(shown, canvas);
+        line(shown, canvas);
+        for s in joints(shown) {
+            tick(shown, s, canvas);
+        }
+    }
+    let arrows: Vec<[Option<Arrow>; 2]> =
+        spans.iter().map(|s| [arrow(s, true, canvas), arrow(s, false, canvas)]).collect();
+    for shown in spans {
+        worst_figure(shown, canvas);
+    }
+    flags(run, spans, canvas);
+    for (shown, arrows) in spans.iter().zip(&arrows) {
+        for arrow in arrows.iter().flatten() {
+            reaction(run, shown, arrow, spans.len() > 1, canvas);
+        }
+    }
+    for shown in spans {
+        letters(shown, canvas);
+    }
+    for shown in spans {
+        figures(shown, canvas);
+        labels(shown, canvas);
+    }
+}
+
+/// The line type of a kind of line that does not govern.
+pub fn dash_of(kind: LineKind) -> Dash {
+    match kind {
+        LineKind::Closest => Dash::Short,
+        LineKind::Through | LineKind::Elastic => Dash::Long,
+        LineKind::LeastThrust => Dash::Dot,
+        LineKind::GreatestThrust => Dash::TwoDots,
+    }
+}
+
+/// Lines beside the governing one: others of the same case, and the governing ones of other cases.
+pub fn beside<'a>(shown: &Shown<'a>) -> Vec<(String, Dash, &'a [[f64; 2]])> {
+    let mut out = Vec::new();
+    let Some(case) = shown.case else { return out };
+    for line in &case.lines {
+        let governs = shown.line.is_some_and(|g| std::ptr::eq(g, line));
+        if !governs && line.status == Status::Found && line.vertices.len() > 1 {
+            out.push((kind_name(line.kind).to_owned(), dash_of(line.kind), line.vertices.as_slice()));
+        }
+    }
+    for other in &shown.span.cases {
+        if !std::ptr::eq(other, case)
+            && let Some(line) = governing(other)
+        {
+            out.push((format!("case {}", other.name), Dash::Long, line.vertices.as_slice()));
+        }
+    }
+    out
+}
+
+fn line(shown: &Shown, canvas: &mut Canvas) {
+    canvas.chain(Layer::Line, "line", &shown.vertices, None);
+    canvas.taken.keep_off(&shown.vertices);
+}
+
+fn other_lines(shown: &Shown, canvas: &mut Canvas) {
+    for (_, dash, vertices) in beside(shown) {
+        let points: Vec<Point> = vertices.iter().map(|&v| point(v, shown.unit)).collect();
+        canvas.chain(Layer::OtherLines, "other-line", &points, Some(dash));
+        canvas.taken.keep_off(&points);
+    }
+}
+
+/// Names of the lines beside the governing one, each with a short leader.
+fn labels(shown: &Shown, canvas: &mut Canvas) {
+    let h = canvas.h;
+    let out = -shown.inner_side();
+    for (name, _, vertices) in beside(shown) {
+        let n = vertices.len();
+        // Begin at the quarter point, then try the pieces from left to right.
+        let places = (0..n - 1).map(|i| (n / 4 + i) % (n - 1)).flat_map(|i| {
+            let (a, b) = (point(vertices[i], shown.unit), point(vertices[i + 1], shown.unit));
+            let from = a.midpoint(b);
+            let words = name.clone();
+            (3..14).map(move |k| {
+                let at = from + Vec2::new(0.0, out * f64::from(k) * 1.5 * h);
+                let end = at - Vec2::new(0.0, out * 0.9 * h);
+                (Words::new(words.clone(), at, h).centred(), Some((from, end)))
+            })
+        });
+        if let Some((_, Some((from, end)))) = canvas.place(Layer::OtherLines, "other-line-name", places) {
+            canvas.line(Layer::OtherLines, "other-line-name", from, end);
+        }
+    }
+}
+
+/// The middle third, where it is wide enough to be seen.
+fn kern(shown: &Shown, canvas: &mut Canvas) {
+    let Some(line) = shown.line else { return };
+    let depths: Vec<(f64, f64)> =
+        line.stations.iter().filter_map(|t| t.depth.map(|d| (t.s * shown.unit, d * shown.unit))).collect();
+    let widest = depths.iter().map(|d| d.1).fold(0.0, f64::max);
+    if widest / 3.0 < 0.4 * canvas.h {
+        return;
+    }
+    for side in [1.0, -1.0] {
+        let edge: Vec<Point> = depths
+            .iter()
+            .filter_map(|&(s, d)| shown.joint(s).map(|(p, n)| p + n * (side * d / 6.0)))
+            .collect();
+        canvas.chain(Layer::Kern, "kern", &edge, Some(Dash::Dots));
+        canvas.taken.keep_off(&edge);
+    }
+}
+
+/// Joints that get a tick: under every load, and where the line strays most.
+fn joints(shown: &Shown) -> Vec<f64> {
+    let mut out = shown.feet.clone();
+    out.extend(shown.worst().map(|w| w.0));
+    out.sort_by(f64::total_cmp);
+    let near = shown.path.as_ref().map_or(0.0, |p| p.length()) * tolerance::SAME_JOINT;
+    out.dedup_by(|b, a| *b - *a <= near);
+    out
+}
+
+fn tick(shown: &Shown, s: f64, canvas: &mut Canvas) {
+    if let (Some((at, normal)), Some(e)) = (shown.joint(s), shown.eccentricity(s)) {
+        let end = at + normal * (e * shown.unit);
+        canvas.line(Layer::Offsets, "tick", at, end);
+        canvas.taken.keep_off(&[at, end]);
+    }
+}
+
+/// Turns a direction so that text along it reads from below or from the right.
+fn readable(direction: Vec2) -> f64 {
+    let angle = direction.atan2();
+    if angle > FRAC_PI_2 + tolerance::UPRIGHT {
+        angle - PI
+    } else if angle <= -FRAC_PI_2 + tolerance::UPRIGHT {
+        angle + PI
+    } else {
+        angle
+    }
+}
+
+/// Places for a figure along a joint: on the inner side first, farther and farther, then on the outer side. A figure that
+/// has to move away from its tick is tied to it.
+fn figure_places(shown: &Shown, s: f64, e: f64, words: &str, h: f64, far: u32) -> Vec<(Words, Leader)> {
+    let Some((at, normal)) = shown.joint(s) else {
+        return Vec::new();
+    };
+    let mut out = Vec::new();
+    let inner = shown.inner_side();
+    let half = width(words, h) / 2.0;
+    for side in [inner, -inner] {
+        let direction = normal * side;
+        let edge = (e * shown.unit * side).max(0.0);
+        for k in 0..far {
+            let begin = edge + (0.9 + 0.8 * f64::from(k)) * h;
+            let middle = at + direction * (begin + half);
+            let leader =
+                (k > 1).then(|| (at + direction * (edge + 0.4 * h), at + direction * (begin - 0.4 * h)));
+            let words = Words::new(words, middle, h).centred().turned(readable(normal));
+            out.push((words, leader));
+        }
+    }
+    out
+}
+
+fn worst_figure(shown: &Shown, canvas: &mut Canvas) {
+    let Some((s, e)) = shown.worst() else { return };
+    let words = format!("max {} mm", text::signed_millimetres(e));
+    figure(shown, s, e, &words, 24, canvas);
+    if let Some((at, normal)) = shown.joint(s) {
+        canvas.circle(Layer::Offsets, "worst", at + normal * (e * shown.unit), 0.45 * canvas.h);
+    }
+}
+
+fn figure(shown: &Shown, s: f64, e: f64, words: &str, far: u32, canvas: &mut Canvas) {
+    let places = figure_places(shown, s, e, words, canvas.h, far);
+    if let Some((_, Some((a, b)))) = canvas.place(Layer::Offsets, "offset", places) {
+        canvas.line(Layer::Offsets, "offset-leader", a, b);
+    }
+}
+
+/// Figures at the loads, the larger first; one that finds no room near its tick is left out (the offset diagram and the
+/// results hold them all).
+fn figures(shown: &Shown, canvas: &mut Canvas) {
+    let worst = shown.worst().map(|w| w.0);
+    let near = shown.path.as_ref().map_or(0.0, |p| p.length()) * tolerance::SAME_JOINT;
+    let mut list: Vec<(f64, f64)> = joints(shown)
+        .into_iter()
+        .filter(|s| worst.is_none_or(|w| (s - w).abs() > near))
+        .filter_map(|s| shown.eccentricity(s).map(|e| (s, e)))
+        .collect();
+    list.sort_by(|a, b| b.1.abs().total_cmp(&a.1.abs()));
+    for (s, e) in list {
+        figure(shown, s, e, &text::signed_millimetres(e), 6, canvas);
+    }
+}
+
+/// Bow's letters, one in each space between the lines of action, on the side of the loads.
+fn letters(shown: &Shown, canvas: &mut Canvas) {
+    let Some(path) = &shown.path else { return };
+    let h = canvas.h;
+    let length = path.length();
+    let out = -shown.inner_side();
+    let mut edges: Vec<(f64, f64, &str)> = Vec::new();
+    let mut from = 0.0;
+    for (i, group) in shown.groups.iter().enumerate() {
+        let feet = &shown.feet[group.start..group.end];
+        let first = feet.iter().copied().fold(f64::INFINITY, f64::min);
+        let last = feet.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+        edges.push((from, first, &group.before));
+        from = last;
+        if i + 1 == shown.groups.len() {
+            edges.push((from, length, &group.after));
+        }
+    }
+    for (a, b, letter) in edges {
+        // A space with no room between the springing and a load on it lies beyond the springing.
+        let (s, beyond) = if b - a > 2.0 * h {
+            (f64::midpoint(a, b), 0.0)
+        } else if b <= 2.0 * h {
+            (0.0, -2.2 * h)
+        } else if a >= length - 2.0 * h {
+            (length, 2.2 * h)
+        } else {
+            (f64::midpoint(a, b), 0.0)
+        };
+        let Some((at, normal)) = shown.joint(s) else { continue };
+        let at = at + Vec2::new(beyond, 0.0);
+        let places = (0..60).flat_map(|k| {
+            let d = (2.2 + 0.5 * f64::from(k)) * h;
+            let upright = at + Vec2::new(0.0, out * d);
+            let square = at + normal * (out * d);
+            [upright, square].map(|p| (Words::new(letter, p, h).centred(), None))
+        });
+        canvas.place(Layer::Letters, "letter", places);
+    }
+}
+
+/// A drawn abutment arrow.
+struct Arrow {
+    tail: Point,
+    left: bool,
+}
+
+/// The thrust of an abutment on the rib, drawn on the side away from the span along the line of thrust.
+fn arrow(shown: &Shown, left: bool, canvas: &mut Canvas) -> Option<Arrow> {
+    let line = shown.line?;
+    let end = if left { line.left.as_ref()? } else { line.right.as_ref()? };
+    let at = if left { *shown.vertices.first()? } else { *shown.vertices.last()? };
+    let inward = if left { 1.0 } else { -1.0 };
+    let push = Vec2::new(end.horizontal * inward, end.vertical);
+    if push.hypot().partial_cmp(&0.0) != Some(std::cmp::Ordering::Greater) {
+        return None;
+    }
+    let u = push.normalize();
+    let h = canvas.h;
+    let length = 9.0 * h;
+    // A push comes from outside and ends at the springing; a pull begins there.
+    let pushes = u.x * inward >= 0.0;
+    let (tail, tip) = if pushes {
+        (at - u * (length + 0.5 * h), at - u * (0.5 * h))
+    } else {
+        (at + u * (0.5 * h), at + u * (length + 0.5 * h))
+    };
+    canvas.arrow(Layer::Reactions, "reaction", tail, tip);
+    canvas.taken.keep_off(&[tail, tip]);
+    let outer = if pushes { tail } else { tip };
+    Some(Arrow { tail: outer, left })
+}
+
+fn reaction(run: &Run, shown: &Shown, arrow: &Arrow, several: bool, canvas: &mut Canvas) {
+    let Some(line) = shown.line else { return };
+    let end = if arrow.left { &line.left } else { &line.right };
+    let Some(end) = end else { return };
+    let h = canvas.h;
+    let mut lines = Vec::new();
+    if several {
+        let side = if arrow.left { "left" } else { "right" };
+        lines.push(format!("{} {side}", shown.span.name));
+    }
+    lines.push(format!("H {}", text::force(end.horizontal, &run.units)));
+    lines.push(format!("V {}", text::force(end.vertical, &run.units)));
+    if let Some(moment) = springing_moment(shown, arrow.left) {
+        lines.push(format!("M {} {}", text::three_digits(moment), text::moment_unit(&run.units)));
+    }
+    lines.push(format!("angle {} deg", thrust_angle(end.horizontal, end.vertical)));
+    let (outward, across) = if arrow.left { (-1.0, Across::Right) } else { (1.0, Across::Left) };
+    let inside = if arrow.left { Across::Left } else { Across::Right };
+    #[allow(clippy::cast_precision_loss)] // five lines at most
+    let tall = lines.len() as f64 * LEADING * h;
+    let places = (0..40).flat_map(|k| {
+        let down = f64::from(k) * h;
+        let beside = arrow.tail + Vec2::new(outward * 1.2 * h, tall / 2.0 - down);
+        let below = arrow.tail + Vec2::new(0.0, -1.2 * h - down);
+        [(beside, across), (below, across), (below, inside)]
+    });
+    canvas.place_block(Layer::Reactions, "reaction-figures", &lines, places);
+}
+
+/// Moment at a springing: of the station there.
+pub fn springing_moment(shown: &Shown, left: bool) -> Option<f64> {
+    let line = shown.line?;
+    let station = if left { line.stations.first()? } else { line.stations.last()? };
+    let s = if left { 0.0 } else { shown.span.axis.length };
+    let near = shown.span.axis.length * tolerance::SAME_JOINT;
+    ((station.s - s).abs() <= near).then_some(station.moment)
+}
+
+/// Slope of the thrust against the level, degrees to one decimal.
+pub fn thrust_angle(horizontal: f64, vertical: f64) -> String {
+    format!("{:.1}", vertical.atan2(horizontal.abs()).to_degrees())
+}
+
+/// A flag where a limit does not hold: a ring round the place, a staff, and a pennant with the words beside it.
+fn flags(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
+    let h = canvas.h;
+    for finding in run
+        .findings
+        .iter()
+        .filter(|f| matches!(f.verdict, FindingVerdict::Outside | FindingVerdict::Accepted))
+    {
+        let Some(at) = finding.at else { continue };
+        let shown = spans.iter().find(|s| finding.span.as_ref() == Some(&s.span.name)).or(spans.first());
+        let Some(shown) = shown else { continue };
+        let at = point(at, shown.unit);
+        let out = -shown.inner_side();
+        let words = flag_words(finding, shown.case, shown.span.cases.len() > 1);
+        let foot = at + Vec2::new(0.0, out * 0.9 * h);
+        let places = (0..60).flat_map(|k| {
+            let top = at + Vec2::new(0.0, out * (5.0 + 1.2 * f64::from(k)) * h);
+            [(1.0, Across::Left), (-1.0, Across::Right)].map(|(toward, across)| {
+                let words = Words::new(words.clone(), top + Vec2::new(toward * 2.2 * h, 0.0), h)
+                    .across(across)
+                    .along(Along::Middle);
+                (words, Some((foot, top)))
+            })
+        });
+        let Some((words, Some((_, top)))) = canvas.place(Layer::Flags, "flag-words", places) else {
+            continue;
+        };
+        let up = Vec2::new(0.0, 0.6 * h);
+        let peak = top + Vec2::new((words.at.x - top.x).signum() * 1.6 * h, 0.0);
+        canvas.circle(Layer::Flags, "flag", at, 0.9 * h);
+        canvas.line(Layer::Flags, "flag", foot, top + up * out);
+        canvas.triangle(Layer::Flags, "flag", [top + up, top - up, peak]);
+        canvas.taken.keep_off(&[top + up, peak, top - up, top + up]);
+    }
+}
+
+fn flag_words(finding: &Finding, drawn: Option<&Case>, several: bool) -> String {
+    let mut words = check_name(finding.check).to_uppercase();
+    if let Some(figures) = text::against_limit(finding) {
+        words.push(' ');
+        words.push_str(&figures);
+    }
+    if let Some(case) = &finding.case
+        && several
+        && drawn.is_none_or(|c| &c.name != case)
+    {
+        words.push_str(&format!(" (case {case})"));
+    }
+    if finding.verdict == FindingVerdict::Accepted {
+        words.push_str(" (accepted)");
+    }
+    words
+}
+
+/// The name of a check, for people.
+pub fn check_name(check: Check) -> String {
+    serde_json::to_value(check).ok().and_then(|v| v.as_str().map(|s| s.replace('-', " "))).unwrap_or_default()
+}

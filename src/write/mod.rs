@@ -1,0 +1,13 @@
+//! Results turned into what people and other programs read: marks for the drawing, JSON, a summary for the terminal,
+//! and files that are written whole or not at all.
+//!
+//! Knows results and neutral marks only: no bytes of a drawing, no mechanics.
+
+pub mod annotate;
+pub mod file;
+pub mod json;
+#[cfg(test)]
+#[allow(clippy::unwrap_used, clippy::cast_precision_loss, missing_docs)]
+mod sample;
+pub mod terminal;
+pub mod text;
