@@ -51,3 +51,69 @@ pub const ROUND_FIGURE: f64 = 1e-9;
 /// A component of the total load smaller than this part of the other is not told. No unit. Larger: a real push sideways
 /// goes unsaid; smaller: rounding of upright loads reads as a push.
 pub const NO_FORCE: f64 = 1e-9;
+/// Part by which the z component of an entity's normal may miss 1 and the entity still lies flat in the drawing. No unit.
+/// Larger: tilted entities are read as if flat; smaller: normals written with few digits are refused.
+pub const FLAT_NORMAL: f64 = 1e-9;
+
+/// Ends of axis pieces closer than this part of the drawn axis meet. No unit. It covers arcs whose centre, radius and
+/// angles are written with six decimals. Larger: short pieces of a finely drawn axis shrink to nothing; smaller: exact
+/// joints are reported as gaps.
+pub const ENDS_MEET: f64 = 1e-6;
+
+/// Gaps in the axis up to this part of the drawn axis are closed with a straight piece, and told (40 mm for 40 m). No
+/// unit. Larger: faults are bridged; smaller: drawings with coarse snapping are refused.
+pub const GAP: f64 = 1e-3;
+
+/// Ends farther apart than [`GAP`] but within this part of the longer line, and in one direction, are taken for a fault
+/// and refused. No unit. Larger: neighbouring flat spans are refused; smaller: a missing chord makes two spans.
+pub const DOUBTFUL_GAP: f64 = 0.1;
+
+/// Radians by which two ends may turn and still count as one direction for [`DOUBTFUL_GAP`] (10°). At a pier even arches of
+/// rise 1 in 40 turn more.
+pub const DOUBTFUL_TURN: f64 = 0.1745;
+
+/// Part of its length by which an axis must run across. No unit. Larger: steep half arches are refused; smaller: a
+/// vertical line is taken for a span.
+pub const UPRIGHT_AXIS: f64 = 1e-3;
+
+/// Rise over span from which a part of a line can be a span of its own, and largest part of that rise by which it may
+/// lie on the other side of its chord. No unit. Larger: flat spans in one line stay joined; smaller: ripples of a
+/// measured line could be taken for spans.
+pub const OWN_RISE: f64 = 0.01;
+
+/// Depth of a pier or tower under (over) the crowns beside it, as a part of the rise, from which a line is cut there. No
+/// unit. Larger: spans with a high springing stay joined; smaller: a dent near a crown cuts an arch in two.
+pub const OWN_DEPTH: f64 = 0.25;
+
+/// Heights of its letters within which a label is taken for a load (30 mm on paper at the usual 2.5 mm). No unit. Larger:
+/// stray figures find loads; smaller: labels set off from their loads are not taken.
+pub const LABEL_HEIGHTS: f64 = 12.0;
+
+/// Part of the spacing of the loads within which a label is taken whatever its height. No unit. Larger: figures of
+/// neighbours that have no load of their own are taken; smaller: labels in tiny letters are not.
+pub const LABEL_SPACING: f64 = 0.6;
+
+/// Part of the distance to the point by which a text was placed that counts beside the distance to the text itself. No
+/// unit. Larger: long labels written to the left of their loads go astray; smaller: loads under one long label cannot be
+/// told apart.
+pub const LABEL_ANCHOR: f64 = 0.1;
+
+/// Heights of its letters by which another pairing of a label may be worse and is still told as possible. No unit. Larger:
+/// clear drawings are called doubtful; smaller: a label halfway between two loads is not.
+pub const LABEL_DOUBT_HEIGHTS: f64 = 0.5;
+
+/// Axes shorter than this are unlikely to be bridges, m. Larger: models and footbridges are questioned; smaller:
+/// metre drawings read in millimetres are not.
+pub const LEAST_SPAN: f64 = 0.5;
+
+/// Axes longer than this are unlikely to be bridges, m. Larger: millimetre drawings read in metres are not questioned;
+/// smaller: great suspended spans are.
+pub const GREATEST_SPAN: f64 = 3000.0;
+
+/// A metric drawing with no unit whose axis is at least so many units wide is taken to be in millimetres. Larger: small
+/// spans in millimetres are read in metres; smaller: long ones in metres are read in millimetres.
+pub const MILLIMETRES_FROM: f64 = 1000.0;
+
+/// An English drawing with no unit whose axis is at least so many units wide is taken to be in inches. Larger or smaller:
+/// as [`MILLIMETRES_FROM`].
+pub const INCHES_FROM: f64 = 1500.0;

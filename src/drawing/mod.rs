@@ -1,0 +1,32 @@
+//! What a drawing shows: curves of the axis, points of the loads, texts, each with its source.
+//!
+//! Knows layers and entities, and no mechanics.
+
+mod entity;
+mod note;
+pub mod ocs;
+pub mod text;
+pub mod unit;
+
+pub use entity::{Attribute, Curve, PointLike, Source, Text};
+pub use note::{Note, Reason, Role};
+pub use unit::{Unit, UnitSource};
+
+/// What was read from a drawing. Coordinates are drawing units.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Drawing {
+    /// Its unit.
+    pub unit: Unit,
+    /// Layers that serve as the axis.
+    pub axis_layers: Vec<String>,
+    /// Layers that hold loads.
+    pub load_layers: Vec<String>,
+    /// Curves on the axis layers, in the order of the file.
+    pub axis: Vec<Curve>,
+    /// Points on the load layers, in the order of the file.
+    pub points: Vec<PointLike>,
+    /// Texts on the load layers, in the order of the file.
+    pub texts: Vec<Text>,
+    /// What was noticed.
+    pub notes: Vec<Note>,
+}

@@ -1,0 +1,122 @@
+//! What the reader noticed: facts, worded elsewhere.
+
+use super::entity::Source;
+use super::unit::{NoUnit, UnitSource};
+use crate::units::LengthUnit;
+
+/// What a layer serves as.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Role {
+    /// Axis of the rib.
+    Axis,
+    /// Loads and their labels.
+    Loads,
+}
+
+impl Role {
+    /// Its key in `[layers]`.
+    pub fn key(self) -> &'static str {
+        match self {
+            Self::Axis => "axis",
+            Self::Loads => "loads",
+        }
+    }
+}
+
+/// Why a layer was guessed to serve a role.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Reason {
+    /// A word in its name.
+    Word(&'static str),
+    /// It holds one line from springing to springing, and nothing else does so as widely. Span and rise in drawing
+    /// units.
+    OneLine {
+        /// Horizontal distance of its ends.
+        span: f64,
+        /// Height of its crown over (below: negative) its ends.
+        rise: f64,
+    },
+    /// So many of its points stand over the axis.
+    PointsOver {
+        /// Those that do.
+        over: usize,
+        /// All of them.
+        of: usize,
+    },
+}
+
+/// One thing noticed.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Note {
+    /// A layer was guessed, because the job names none.
+    LayerGuessed {
+        /// What it serves as.
+        role: Role,
+        /// The layer.
+        layer: String,
+        /// Why.
+        reason: Reason,
+    },
+    /// No layer of loads was found.
+    NoLoadLayer,
+    /// The layer is frozen or switched off, and was read all the same.
+    LayerHidden {
+        /// The layer.
+        layer: String,
+        /// Frozen (else switched off).
+        frozen: bool,
+    },
+    /// Entities on the layer of a role that are not read.
+    PassedOver {
+        /// The role of their layer.
+        role: Role,
+        /// Their layer.
+        layer: String,
+        /// Their type.
+        kind: String,
+        /// How many.
+        count: usize,
+        /// True when the type could stand for a load (a drawn arrow).
+        could_be_load: bool,
+        /// The first of them.
+        first: Source,
+    },
+    /// Entities of a role's layer that stand in paper space, where nothing counts.
+    PaperSpace {
+        /// The layer.
+        layer: String,
+        /// How many.
+        count: usize,
+    },
+    /// A block that is inserted in the drawing holds entities on the layer of a role; they are not read.
+    InBlock {
+        /// The role.
+        role: Role,
+        /// The block.
+        block: String,
+        /// The layer.
+        layer: String,
+        /// How many.
+        count: usize,
+    },
+    /// A layer carries the name of a part that is not read (ring lines, posts, …).
+    PartNotRead {
+        /// Its key in `[layers]`.
+        part: &'static str,
+        /// The layer.
+        layer: String,
+        /// How many entities it holds.
+        count: usize,
+    },
+    /// The drawing states no usable unit, and this one was assumed.
+    UnitAssumed {
+        /// The unit.
+        unit: LengthUnit,
+        /// Why one had to be assumed.
+        why: NoUnit,
+        /// What it was assumed from.
+        source: UnitSource,
+        /// Horizontal extent of the axis, drawing units, which decided.
+        width: f64,
+    },
+}

@@ -1,0 +1,149 @@
+//! Which text says how large which load is.
+
+use super::figures::{self, Decimal, Figure, NoFigure};
+use super::matching::{self, Row};
+use super::note::Note;
+use crate::drawing::{PointLike, Text};
+use crate::geometry::Point;
+use crate::tolerance;
+
+/// A text on a load layer that could be a load's label.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Label {
+    /// Index of the text.
+    pub text: usize,
+    /// What it says; an error only of a kind that matters when the label belongs to a load.
+    pub figure: Result<Figure, NoFigure>,
+    /// The load it belongs to: an index into the points.
+    pub load: Option<usize>,
+    /// Distance to the nearest load, drawing units; `None` without loads.
+    pub nearest: Option<f64>,
+    /// How far from a load it would have been taken, drawing units.
+    pub reach: f64,
+}
+
+/// Reads all texts, and pairs those that give a figure with the points for which `open` holds. Texts that are no labels
+/// are told.
+pub fn pair(
+    texts: &[Text],
+    points: &[PointLike],
+    open: &[bool],
+    decimal: Decimal,
+    notes: &mut Vec<Note>,
+) -> Vec<Label> {
+    let mut labels = Vec::new();
+    for (index, text) in texts.iter().enumerate() {
+        let figure = figures::read(&text.text, decimal);
+        match figure {
+            Ok(_) | Err(NoFigure::TwoReadings { .. } | NoFigure::Separator(_)) => {
+                labels.push(Label { text: index, figure, load: None, nearest: None, reach: 0.0 })
+            }
+            Err(why) => {
+                notes.push(Note::TextIgnored { source: text.source.clone(), text: text.text.clone(), why })
+            }
+        }
+    }
+    let columns: Vec<usize> = (0..points.len()).filter(|&i| open[i]).collect();
+    let mut by_x: Vec<(Point, usize)> = columns.iter().enumerate().map(|(c, &i)| (points[i].at, c)).collect();
+    by_x.sort_by(|a, b| a.0.x.total_cmp(&b.0.x).then(a.1.cmp(&b.1)));
+    let spacing = spacing(&by_x);
+    let rows: Vec<Row> = labels
+        .iter_mut()
+        .map(|label| {
+            let text = &texts[label.text];
+            label.reach = (tolerance::LABEL_HEIGHTS * text.height).max(tolerance::LABEL_SPACING * spacing);
+            Row { reach: label.reach, doubt: tolerance::LABEL_DOUBT_HEIGHTS * text.height }
+        })
+        .collect();
+    let pairing = matching::pair(&rows, columns.len(), |row, count| {
+        nearest(&texts[labels[row].text], &by_x, rows[row].reach, count)
+    });
+    for (label, column) in labels.iter_mut().zip(&pairing.column_of) {
+        label.load = column.map(|c| columns[c]);
+        if label.load.is_none() {
+            let text = &texts[label.text];
+            label.nearest = points.iter().map(|p| text.distance(p.at)).min_by(f64::total_cmp);
+        }
+    }
+    for alternative in &pairing.alternatives {
+        doubt(alternative, &labels, &columns, texts, points, notes);
+    }
+    labels
+}
+
+/// Tells an alternative pairing that is nearly as good and would give some place another load.
+fn doubt(
+    alternative: &matching::Alternative,
+    labels: &[Label],
+    columns: &[usize],
+    texts: &[Text],
+    points: &[PointLike],
+    notes: &mut Vec<Note>,
+) {
+    let value = |row: usize| labels[row].figure.as_ref().map_or(f64::NAN, |f| f.value);
+    // Each load concerned, with its figure now and then; loads at one place count together.
+    let place = |i: usize| (points[i].at.x.to_bits(), points[i].at.y.to_bits());
+    let mut now = Vec::new();
+    let mut then = Vec::new();
+    for &(row, new) in &alternative.changes {
+        if let Some(load) = labels[row].load {
+            now.push((place(load), value(row).to_bits()));
+        }
+        if let Some(column) = new {
+            then.push((place(columns[column]), value(row).to_bits()));
+        }
+    }
+    now.sort_unstable();
+    then.sort_unstable();
+    if now == then {
+        return;
+    }
+    let label = &labels[alternative.row];
+    let other =
+        alternative.changes.iter().find(|c| c.0 == alternative.row).and_then(|c| c.1).map(|c| columns[c]);
+    if let (Some(load), Some(other)) = (label.load, other) {
+        notes.push(Note::LabelDoubtful {
+            label: texts[label.text].source.clone(),
+            text: texts[label.text].text.clone(),
+            load: points[load].source.clone(),
+            other: points[other].source.clone(),
+            increase: alternative.increase,
+        });
+    }
+}
+
+/// What a pairing costs: distance from the rectangle of the text, and a little for that from the point by which it was
+/// placed, which tells loads under one long text apart.
+fn cost(text: &Text, p: Point) -> f64 {
+    text.distance(p) + tolerance::LABEL_ANCHOR * (p - text.anchor).hypot()
+}
+
+/// The cheapest loads of a text.
+fn nearest(text: &Text, by_x: &[(Point, usize)], reach: f64, count: usize) -> Vec<(f64, usize)> {
+    // Only loads within reach of the circle around the text's rectangle can be cheap enough.
+    let side = |(below, above): (f64, f64)| below.abs().max(above.abs());
+    let radius = reach + side(text.across).hypot(side(text.upright));
+    let from = by_x.partition_point(|p| p.0.x < text.anchor.x - radius);
+    let mut best: Vec<(f64, usize)> = Vec::new();
+    for &(p, column) in by_x[from..].iter().take_while(|p| p.0.x <= text.anchor.x + radius) {
+        if (p.y - text.anchor.y).abs() > radius {
+            continue;
+        }
+        let cost = cost(text, p);
+        if cost >= reach || (best.len() == count && cost >= best[count - 1].0) {
+            continue;
+        }
+        let at = best.partition_point(|b| (b.0, b.1) < (cost, column));
+        best.insert(at, (cost, column));
+        best.truncate(count);
+    }
+    best
+}
+
+/// Middle value of the distances between loads that follow one another from left to right; 0 with fewer than two.
+fn spacing(by_x: &[(Point, usize)]) -> f64 {
+    let mut gaps: Vec<f64> =
+        by_x.windows(2).map(|w| (w[1].0 - w[0].0).hypot()).filter(|&d| d > 0.0).collect();
+    gaps.sort_by(f64::total_cmp);
+    gaps.get(gaps.len() / 2).copied().unwrap_or(0.0)
+}

@@ -1,0 +1,166 @@
+//! From what was read to what is computed: spans with their axes and loads, in metres and kilonewtons.
+//!
+//! Knows layers only as names of load sets; knows no mechanics.
+
+pub mod chain;
+pub mod figures;
+pub mod labels;
+pub mod loads;
+pub mod matching;
+pub mod note;
+pub mod pieces;
+pub mod piers;
+
+use crate::drawing::{Drawing, Source};
+use crate::geometry::{Path, Point, Vec2};
+use crate::refusal::Refusal;
+use crate::tolerance;
+
+pub use figures::Decimal;
+pub use loads::LoadSettings;
+pub use note::Note;
+
+/// Everything that is computed of one drawing.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Model {
+    /// The spans, left to right.
+    pub spans: Vec<Span>,
+    /// What forces are given in.
+    pub forces: Forces,
+    /// Loads that stand over no span.
+    pub off_span: Vec<Load>,
+    /// What was noticed.
+    pub notes: Vec<Note>,
+}
+
+/// What forces are given in.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Forces {
+    /// Kilonewtons.
+    Kilonewtons,
+    /// Multiples of one unknown load, because no load has a figure.
+    UnitLoads,
+}
+
+/// One span.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Span {
+    /// `span 1` … from the left.
+    pub name: String,
+    /// Its axis from the left springing to the right one, m, in the drawing's origin.
+    pub axis: Path,
+    /// The entities of the axis, left to right.
+    pub sources: Vec<Source>,
+    /// Its loads, left to right.
+    pub loads: Vec<Load>,
+}
+
+/// One load.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Load {
+    /// Its name in the drawing (`P3`), or its number from the left within its span.
+    pub label: String,
+    /// Where it acts, m, in the drawing's origin.
+    pub at: Point,
+    /// Components to the right and upward, kN or unit loads.
+    pub force: Vec2,
+    /// Its set: the layer it stands on.
+    pub set: String,
+    /// The entity.
+    pub source: Source,
+    /// Where its magnitude came from.
+    pub magnitude_from: MagnitudeFrom,
+    /// The text it was read from.
+    pub text: Option<String>,
+}
+
+/// Where the magnitude of a load came from.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum MagnitudeFrom {
+    /// A TEXT or MTEXT beside it.
+    Label,
+    /// An attribute of its INSERT.
+    Attribute,
+    /// `[loads] unlabelled` of the job.
+    Job,
+    /// No figures anywhere: all loads are equal.
+    Equal,
+}
+
+/// Builds the model of a drawing.
+///
+/// Loads that stand for a point act straight down (a negative figure: straight up) and belong to the span over which
+/// they stand; a load over the common springing of two spans belongs to the left one.
+///
+/// # Errors
+/// When the axis cannot be told ([`chain::chains`]) or the loads cannot ([`loads::loads`]).
+pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusal> {
+    let metres = drawing.unit.metres;
+    let mut notes = Vec::new();
+    let chains = chain::chains(&drawing.axis)?;
+    notes.extend(chains.doubles.into_iter().map(|(source, kept)| Note::DrawnTwice { source, kept }));
+    notes.extend(chains.lengthless.into_iter().map(|source| Note::NoLength { source }));
+    let mut spans = Vec::new();
+    for (i, chain) in chains.chains.into_iter().enumerate() {
+        let name = format!("span {}", i + 1);
+        for gap in &chain.gaps {
+            notes.push(Note::GapClosed {
+                span: name.clone(),
+                size: gap.size * metres,
+                at: (gap.at.to_vec2() * metres).to_point(),
+            });
+        }
+        let axis = chain.path.shifted_scaled(Vec2::ZERO, metres);
+        let size = axis.end().x - axis.start().x;
+        if !(tolerance::LEAST_SPAN..=tolerance::GREATEST_SPAN).contains(&size) {
+            notes.push(Note::SizeUnlikely { span: name.clone(), size });
+        }
+        spans.push(Span { name, axis, sources: chain.sources, loads: Vec::new() });
+    }
+    let (loads, forces) = loads::loads(&drawing.points, &drawing.texts, settings, metres, &mut notes)?;
+    let off_span = share_out(loads, &mut spans);
+    notes.extend(off_span.iter().map(|load| Note::OffSpan {
+        source: load.source.clone(),
+        label: load.label.clone(),
+        at: load.at,
+        force: -load.force.y,
+    }));
+    notes.extend(spans.iter().filter(|s| s.loads.is_empty()).map(|s| Note::NoLoads { span: s.name.clone() }));
+    Ok(Model { spans, forces, off_span, notes })
+}
+
+/// Gives each load to its span, in order from the left, and numbers those without a name; gives back the rest.
+fn share_out(mut loads: Vec<Load>, spans: &mut [Span]) -> Vec<Load> {
+    loads.sort_by(|a, b| a.at.x.total_cmp(&b.at.x).then(b.at.y.total_cmp(&a.at.y)));
+    let reach: Vec<(f64, f64)> = spans
+        .iter()
+        .map(|s| {
+            let (left, right) = chain::across(&s.axis);
+            let slack = (right - left) * tolerance::ENDS_MEET;
+            (left - slack, right + slack)
+        })
+        .collect();
+    let mut off = Vec::new();
+    for load in loads {
+        match reach.iter().position(|r| r.0 <= load.at.x && load.at.x <= r.1) {
+            Some(span) => spans[span].loads.push(load),
+            None => off.push(load),
+        }
+    }
+    for loads in spans.iter_mut().map(|s| &mut s.loads).chain([&mut off]) {
+        for (i, load) in loads.iter_mut().enumerate() {
+            if load.label.is_empty() {
+                load.label = (i + 1).to_string();
+            }
+        }
+    }
+    off
+}
+
+/// Angle from one direction to another, radians, counter-clockwise positive.
+pub(crate) fn turn(from: Vec2, to: Vec2) -> f64 {
+    from.cross(to).atan2(from.dot(to))
+}
+
+#[cfg(test)]
+mod tests;

@@ -1,0 +1,207 @@
+//! The pieces of all axis curves, tidied: none of no length, none twice, ends that nearly meet made to meet.
+
+use std::collections::BTreeSet;
+
+use crate::drawing::{Curve, Source};
+use crate::geometry::{Point, Segment};
+use crate::tolerance;
+
+/// One straight or circular piece and the curve it comes from.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Piece {
+    /// The piece, drawing units.
+    pub segment: Segment,
+    /// Index of its curve.
+    pub curve: usize,
+    /// Numbers of the places at which it begins and ends; pieces that meet there have the same number.
+    pub nodes: [usize; 2],
+}
+
+/// All pieces with the places at which they meet.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Pieces {
+    /// The pieces, in the order of the curves.
+    pub pieces: Vec<Piece>,
+    /// The places, drawing units.
+    pub nodes: Vec<Point>,
+    /// Diagonal of the rectangle around all pieces, drawing units.
+    pub size: f64,
+    /// Curves of which a piece was drawn twice, with the curve that was kept.
+    pub doubles: Vec<(Source, Source)>,
+    /// Curves of which a piece had no length.
+    pub lengthless: Vec<Source>,
+}
+
+/// Collects the pieces of the curves.
+pub fn collect(curves: &[Curve]) -> Pieces {
+    let raw: Vec<(Segment, usize)> =
+        curves.iter().enumerate().flat_map(|(i, c)| c.pieces.iter().map(move |s| (*s, i))).collect();
+    let size = extent(raw.iter().map(|r| &r.0));
+    let reach = size * tolerance::ENDS_MEET;
+    let mut lengthless: Vec<usize> = Vec::new();
+    let mut kept: Vec<(Segment, usize)> = Vec::with_capacity(raw.len());
+    for (segment, curve) in raw {
+        if segment.length() <= reach {
+            if lengthless.last() != Some(&curve) {
+                lengthless.push(curve);
+            }
+        } else {
+            kept.push((segment, curve));
+        }
+    }
+    let doubles = drop_doubles(&mut kept, reach);
+    let source = |i: usize| curves[i].source.clone();
+    let (pieces, nodes) = meet(kept, reach);
+    Pieces {
+        pieces,
+        nodes,
+        size,
+        doubles: doubles.into_iter().map(|(a, b)| (source(a), source(b))).collect(),
+        lengthless: lengthless.into_iter().map(source).collect(),
+    }
+}
+
+/// Diagonal of the rectangle around ends and middles of the pieces.
+fn extent<'a>(segments: impl Iterator<Item = &'a Segment>) -> f64 {
+    let mut low = Point::new(f64::INFINITY, f64::INFINITY);
+    let mut high = Point::new(f64::NEG_INFINITY, f64::NEG_INFINITY);
+    for segment in segments {
+        for p in [segment.start(), segment.point_at(segment.length() / 2.0), segment.end()] {
+            low = Point::new(low.x.min(p.x), low.y.min(p.y));
+            high = Point::new(high.x.max(p.x), high.y.max(p.y));
+        }
+    }
+    if low.x <= high.x { (high - low).hypot() } else { 0.0 }
+}
+
+/// Ends in an order that does not depend on the direction drawn.
+fn ends(segment: &Segment) -> [Point; 2] {
+    let (a, b) = (segment.start(), segment.end());
+    if (a.x, a.y) <= (b.x, b.y) { [a, b] } else { [b, a] }
+}
+
+/// Takes out pieces that cover another one, and gives the curves of each such pair, every pair of curves once.
+fn drop_doubles(kept: &mut Vec<(Segment, usize)>, reach: f64) -> Vec<(usize, usize)> {
+    // Middles are the same whichever way a piece is drawn, which the order of nearly equal ends is not.
+    let middle = |s: &Segment| s.point_at(s.length() / 2.0);
+    let mut order: Vec<usize> = (0..kept.len()).collect();
+    order.sort_by(|&a, &b| middle(&kept[a].0).x.total_cmp(&middle(&kept[b].0).x).then(a.cmp(&b)));
+    let mut dropped = vec![false; kept.len()];
+    let mut doubles = BTreeSet::new();
+    for (i, &a) in order.iter().enumerate() {
+        if dropped[a] {
+            continue;
+        }
+        let (mid_a, ends_a) = (middle(&kept[a].0), ends(&kept[a].0));
+        for &b in &order[i + 1..] {
+            let mid_b = middle(&kept[b].0);
+            if mid_b.x - mid_a.x > reach {
+                break;
+            }
+            if dropped[b] || (mid_b - mid_a).hypot() > reach {
+                continue;
+            }
+            let ends_b = ends(&kept[b].0);
+            let near = |p: Point, q: Point| (p - q).hypot() <= reach;
+            if (near(ends_a[0], ends_b[0]) && near(ends_a[1], ends_b[1]))
+                || (near(ends_a[0], ends_b[1]) && near(ends_a[1], ends_b[0]))
+            {
+                let (first, second) = (a.min(b), a.max(b));
+                dropped[second] = true;
+                doubles.insert((kept[second].1, kept[first].1));
+                if second == a {
+                    break;
+                }
+            }
+        }
+    }
+    let mut flags = dropped.into_iter();
+    kept.retain(|_| !flags.next().unwrap_or(false));
+    doubles.into_iter().collect()
+}
+
+/// Gives ends that lie within `reach` of one another one place, and bends the pieces to it.
+fn meet(kept: Vec<(Segment, usize)>, reach: f64) -> (Vec<Piece>, Vec<Point>) {
+    let points: Vec<Point> = kept.iter().flat_map(|(s, _)| [s.start(), s.end()]).collect();
+    let is_arc = |end: usize| matches!(kept[end / 2].0, Segment::Arc { .. });
+    let group = clusters(&points, reach);
+    // Ends of straight pieces are written in the file; ends of arcs are computed, so the former decide. Among equals
+    // the lowest coordinates decide, so that the order of entities does not.
+    let mut node_of = vec![usize::MAX; points.len()];
+    let mut nodes: Vec<Point> = Vec::new();
+    let mut best: Vec<(bool, f64, f64)> = Vec::new();
+    for end in 0..points.len() {
+        let root = group[end];
+        if node_of[root] == usize::MAX {
+            node_of[root] = nodes.len();
+            nodes.push(points[end]);
+            best.push((is_arc(end), points[end].x, points[end].y));
+        }
+        let node = node_of[root];
+        let rank = (is_arc(end), points[end].x, points[end].y);
+        if rank < best[node] {
+            best[node] = rank;
+            nodes[node] = points[end];
+        }
+    }
+    let pieces = kept
+        .iter()
+        .enumerate()
+        .map(|(i, &(segment, curve))| {
+            let ends = [node_of[group[2 * i]], node_of[group[2 * i + 1]]];
+            Piece { segment: bend(&segment, nodes[ends[0]], nodes[ends[1]]), curve, nodes: ends }
+        })
+        .collect();
+    (pieces, nodes)
+}
+
+/// The piece with its ends moved a little; an arc keeps the angle that it sweeps.
+fn bend(segment: &Segment, start: Point, end: Point) -> Segment {
+    match *segment {
+        Segment::Line { .. } => Segment::line(start, end),
+        Segment::Arc { radius, sweep, .. } => {
+            let miss = (segment.start() - start).hypot().max((segment.end() - end).hypot());
+            if miss <= radius * tolerance::SAME_PLACE {
+                *segment
+            } else {
+                Segment::bulge(start, end, (sweep / 4.0).tan())
+            }
+        }
+    }
+}
+
+/// Groups of points within `reach` of one another (also by way of others): for each point the lowest index of its group.
+pub fn clusters(points: &[Point], reach: f64) -> Vec<usize> {
+    fn root(parent: &mut [usize], mut i: usize) -> usize {
+        while parent[i] != i {
+            parent[i] = parent[parent[i]];
+            i = parent[i];
+        }
+        i
+    }
+    let mut parent: Vec<usize> = (0..points.len()).collect();
+    for (a, b) in near_pairs(points, reach) {
+        let (a, b) = (root(&mut parent, a), root(&mut parent, b));
+        parent[a.max(b)] = a.min(b);
+    }
+    (0..points.len()).map(|i| root(&mut parent, i)).collect()
+}
+
+/// All pairs of points within `reach` of one another.
+pub fn near_pairs(points: &[Point], reach: f64) -> Vec<(usize, usize)> {
+    let mut order: Vec<usize> = (0..points.len()).collect();
+    order.sort_by(|&a, &b| points[a].x.total_cmp(&points[b].x).then(a.cmp(&b)));
+    let mut pairs = Vec::new();
+    for (i, &a) in order.iter().enumerate() {
+        for &b in &order[i + 1..] {
+            if points[b].x - points[a].x > reach {
+                break;
+            }
+            if (points[b] - points[a]).hypot() <= reach {
+                pairs.push((a.min(b), a.max(b)));
+            }
+        }
+    }
+    pairs.sort_unstable();
+    pairs
+}
