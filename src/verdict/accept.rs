@@ -2,13 +2,14 @@
 
 use jiff::civil::Date;
 
-use crate::job::settings::{Exception, LimitCheck};
+use crate::job::{Exception, LimitCheck};
 use crate::outcome::{Accepted, Check, Finding, FindingVerdict};
 
 /// Turns findings that an exception covers into accepted ones; says why when an exception no longer covers.
 pub fn exceptions(exceptions: &[Exception], today: Date, findings: &mut [Finding]) {
     for finding in findings.iter_mut().filter(|f| f.verdict == FindingVerdict::Outside) {
-        for exception in exceptions.iter().filter(|e| concerns(e, finding)) {
+        let concerning: Vec<&Exception> = exceptions.iter().filter(|e| concerns(e, finding)).collect();
+        for exception in concerning {
             let until = exception.until.map(|d| d.to_string());
             let Some(value) = finding.value else { continue };
             // A factor is accepted down to its value, everything else up to it.

@@ -9,7 +9,7 @@ mod spans;
 use jiff::civil::Date;
 
 use crate::drawing;
-use crate::job::settings::Assumption;
+use crate::job::Assumption;
 use crate::job::Settings;
 use crate::model::{Forces, Model};
 use crate::outcome::{Check, Finding, FindingVerdict, Source, Span, Units, Verdict, Xy};

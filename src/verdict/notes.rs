@@ -4,7 +4,7 @@ use super::{With, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Reason, Role};
 use crate::job::Settings;
-use crate::job::settings::Support;
+use crate::job::Support;
 use crate::model;
 use crate::model::Forces;
 use crate::model::figures::NoFigure;

@@ -24,7 +24,6 @@
 //! Of several cases the governing line of the worst one is drawn heavy (most limits that do not hold, then the largest
 //! offset); the others stand beside it on `OTHER-LINES` and all are listed in the note block.
 
-mod bow;
 mod diagram;
 mod elevation;
 mod note;
@@ -33,7 +32,7 @@ mod place;
 mod polygon;
 mod shown;
 
-pub use bow::{MOST_LETTERED, letter, spaces};
+pub use crate::outcome::bow::{MOST_LETTERED, letter, spaces};
 pub use elevation::check_name;
 pub use note::{CAUTION, heading};
 pub use shown::{governing, kind_name, worst_case};

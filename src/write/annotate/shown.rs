@@ -3,7 +3,7 @@
 use crate::geometry::{Path, Point, Segment, Vec2};
 use crate::outcome::{Case, FindingVerdict, Line, LineKind, Run, Span, Status, Xy};
 use crate::tolerance;
-use crate::write::annotate::bow::{self, Group};
+use crate::outcome::bow::{self, Group};
 
 /// A span as it is drawn.
 #[derive(Debug)]

@@ -3,6 +3,8 @@
 //! Lengths in m, forces in kN (or unit loads), moments in kN·m, stresses in MPa; points are `[x, y]` in the elevation
 //! plane in metres, in the drawing's own origin.
 
+pub mod bow;
+
 use std::collections::BTreeMap;
 
 use schemars::JsonSchema;

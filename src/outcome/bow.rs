@@ -1,7 +1,7 @@
 //! Bow's notation: the spaces between loads are lettered, and each force is named by the two spaces beside it
 //! (R. H. Bow, *Economics of Construction in Relation to Framed Structures*, 1873).
 
-use crate::outcome::Load;
+use super::Load;
 
 /// Loads beyond this number are grouped before they are lettered.
 pub const MOST_LETTERED: usize = 26;
