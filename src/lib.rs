@@ -2,8 +2,10 @@
 //! which every other byte is as it was.
 
 pub mod geometry;
+pub mod job;
 pub mod outcome;
 pub mod refusal;
 pub mod statics;
 pub mod tags;
 pub mod tolerance;
+pub mod units;

@@ -11,3 +11,7 @@ pub const SAME_PLACE: f64 = 1e-12;
 /// Radians by which a direction may miss the end of an arc and still count as its end. Larger: points beyond an
 /// arc's end count as on it; smaller: crossings at the very end get lost to rounding.
 pub const SAME_ANGLE: f64 = 1e-12;
+
+/// Three points are in one straight line when the height of their triangle is below this part of its longest side. No
+/// unit. Larger: flat but real `through` lines are refused; smaller: the push through the points is mostly rounding.
+pub const ONE_STRAIGHT_LINE: f64 = 1e-9;
