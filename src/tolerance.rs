@@ -117,3 +117,6 @@ pub const MILLIMETRES_FROM: f64 = 1000.0;
 /// An English drawing with no unit whose axis is at least so many units wide is taken to be in inches. Larger or smaller:
 /// as [`MILLIMETRES_FROM`].
 pub const INCHES_FROM: f64 = 1500.0;
+/// Three points are in one straight line when the height of their triangle is below this part of its longest side. No
+/// unit. Larger: flat but real `through` lines are refused; smaller: the push through the points is mostly rounding.
+pub const ONE_STRAIGHT_LINE: f64 = 1e-9;
