@@ -4,6 +4,7 @@
 pub mod drawing;
 pub mod geometry;
 pub mod model;
+pub mod job;
 pub mod outcome;
 pub mod refusal;
 pub mod statics;

@@ -114,3 +114,6 @@ pub const POINTS_OVER: f64 = 0.8;
 /// Part of the span by which a guessed load may stand below the axis of an arch (above that of a cable). No unit. Larger:
 /// points of the foundation are taken for loads; smaller: loads drawn on the axis with few digits are not.
 pub const BESIDE_AXIS: f64 = 0.02;
+/// Three points are in one straight line when the height of their triangle is below this part of its longest side. No
+/// unit. Larger: flat but real `through` lines are refused; smaller: the push through the points is mostly rounding.
+pub const ONE_STRAIGHT_LINE: f64 = 1e-9;
