@@ -117,6 +117,42 @@ pub const MILLIMETRES_FROM: f64 = 1000.0;
 /// An English drawing with no unit whose axis is at least so many units wide is taken to be in inches. Larger or smaller:
 /// as [`MILLIMETRES_FROM`].
 pub const INCHES_FROM: f64 = 1500.0;
+
+/// Greatest number that an entity may hold, drawing units. Larger: squares and products lose all digits or overflow;
+/// smaller: grid coordinates in millimetres are refused.
+pub const GREATEST_NUMBER: f64 = 1e12;
+
+/// Part of its length by which a curve may leave the x-y plane and still be flat. No unit. Larger: slanting lines are
+/// read shortened; smaller: heights with rounding noise are refused.
+pub const FLAT: f64 = 1e-6;
+
+/// Width of a letter over its height, for estimating how far a text reaches. No unit. Larger or smaller: labels beside
+/// their loads seem nearer to or farther from the next load than they are.
+pub const LETTER_WIDTH: f64 = 0.7;
+
+/// Distance of lines of a paragraph over the height of its letters (the format's single spacing is 5/3). No unit. Larger
+/// or smaller: as [`LETTER_WIDTH`], for loads above and below.
+pub const LINE_PITCH: f64 = 5.0 / 3.0;
+
+/// Part of the span by which the ends of a line may differ in height and still be guessed to be springings. No unit.
+/// Larger: slanting lines are guessed to be arches; smaller: arches on a slope are not found without a job file.
+pub const LEVEL_ENDS: f64 = 0.2;
+
+/// Rise over span above which no line is guessed to be an arch. No unit. Larger: loops and signatures are; smaller: tall
+/// parabolas are not found without a job file.
+pub const STEEPEST_GUESS: f64 = 2.0;
+
+/// Entities on a layer above which it is not looked at when a layer is guessed by what it holds. A count. Larger: guessing in
+/// a great drawing takes long; smaller: an axis of many chords is not found without a job file.
+pub const GUESS_ENTITIES: u64 = 5000;
+
+/// Part of the points on a layer that must stand over the axis for the layer to be guessed to hold the loads. No unit.
+/// Larger: a stray point hides the loads; smaller: bolt holes are taken for loads.
+pub const POINTS_OVER: f64 = 0.8;
+
+/// Part of the span by which a guessed load may stand below the axis of an arch (above that of a cable). No unit. Larger:
+/// points of the foundation are taken for loads; smaller: loads drawn on the axis with few digits are not.
+pub const BESIDE_AXIS: f64 = 0.02;
 /// Three points are in one straight line when the height of their triangle is below this part of its longest side. No
 /// unit. Larger: flat but real `through` lines are refused; smaller: the push through the points is mostly rounding.
 pub const ONE_STRAIGHT_LINE: f64 = 1e-9;

@@ -2,15 +2,24 @@
 //!
 //! Knows layers and entities, and no mechanics.
 
+pub mod convert;
+mod ends;
 mod entity;
+mod gather;
+pub mod names;
 mod note;
 pub mod ocs;
+mod outlook;
+pub mod read;
+mod roles;
 pub mod text;
 pub mod unit;
 
+pub use ends::{clusters, near_pairs};
 pub use entity::{Attribute, Curve, PointLike, Source, Text};
+pub use gather::{keeps, read_outlined, scan};
 pub use note::{Note, Reason, Role};
-pub use unit::{Unit, UnitSource};
+pub use unit::{NoUnit, Unit, UnitSource};
 
 /// What was read from a drawing. Coordinates are drawing units.
 #[derive(Debug, Clone, PartialEq)]

@@ -75,18 +75,18 @@ pub enum Note {
         /// Their type.
         kind: String,
         /// How many.
-        count: usize,
+        count: u64,
         /// True when the type could stand for a load (a drawn arrow).
         could_be_load: bool,
         /// The first of them.
-        first: Source,
+        first: Option<Source>,
     },
     /// Entities of a role's layer that stand in paper space, where nothing counts.
     PaperSpace {
         /// The layer.
         layer: String,
         /// How many.
-        count: usize,
+        count: u64,
     },
     /// A block that is inserted in the drawing holds entities on the layer of a role; they are not read.
     InBlock {
@@ -97,7 +97,7 @@ pub enum Note {
         /// The layer.
         layer: String,
         /// How many.
-        count: usize,
+        count: u64,
     },
     /// A layer carries the name of a part that is not read (ring lines, posts, …).
     PartNotRead {
@@ -106,7 +106,7 @@ pub enum Note {
         /// The layer.
         layer: String,
         /// How many entities it holds.
-        count: usize,
+        count: u64,
     },
     /// The drawing states no usable unit, and this one was assumed.
     UnitAssumed {

@@ -53,32 +53,13 @@ fn symbol(out: &mut String, c: char) -> usize {
 /// A formatted paragraph (MTEXT) as it is seen, its lines separated by line feeds: `\P` and `\N` break a line, `\~` is
 /// a blank that does not break, `\S1^2;` a stack (`1/2`), `\\`, `\{`, `\}` the characters themselves; fonts, heights,
 /// colours, alignment and grouping braces vanish; `\U+XXXX` is that character, and the codes of [`plain_line`] count
-/// too.
+/// too. Carets are taken for what they are: the format's caret codes are resolved before.
 pub fn plain_paragraph(raw: &str) -> String {
     let mut out = String::with_capacity(raw.len());
     let mut chars = raw.chars().peekable();
     while let Some(c) = chars.next() {
         match c {
             '{' | '}' => {}
-            '^' => match chars.peek() {
-                // The format's way to write control characters in a text.
-                Some('I') => {
-                    chars.next();
-                    out.push('\t');
-                }
-                Some('J') => {
-                    chars.next();
-                    out.push('\n');
-                }
-                Some('M') => {
-                    chars.next();
-                }
-                Some(' ') => {
-                    chars.next();
-                    out.push('^');
-                }
-                _ => out.push('^'),
-            },
             '\\' => escape(&mut chars, &mut out),
             _ => out.push(c),
         }
@@ -111,6 +92,8 @@ fn escape(chars: &mut std::iter::Peekable<std::str::Chars<'_>>, out: &mut String
                 match c {
                     ';' => break,
                     '\\' => stack.extend(chars.next()),
+                    // A caret that stood before a letter was resolved to a control character on the way here.
+                    '\0'..='\x1f' => stack.extend(['/', char::from(c as u8 + b'@')]),
                     '^' | '#' | '/' => {
                         stack.push('/');
                         if chars.peek() == Some(&' ') {
@@ -167,7 +150,8 @@ mod tests {
         );
         assert_eq!(plain_paragraph(r"\A1;3\S1/2; kN \S+0.1^ -0.2;"), "3 1/2 kN +0.1/-0.2");
         assert_eq!(plain_paragraph(r"a\\b \{c\} \U+00B0 \C1;red"), "a\\b {c} ° red");
-        assert_eq!(plain_paragraph("85^Jx%%d"), "85\nx°");
+        assert_eq!(plain_paragraph("85\nx%%d ^J"), "85\nx° ^J");
+        assert_eq!(plain_paragraph("\\SA\x02;"), "A/B");
     }
 
     #[test]

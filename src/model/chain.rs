@@ -4,7 +4,7 @@ use std::collections::BTreeSet;
 
 use super::pieces::{self, Pieces};
 use super::{piers, turn};
-use crate::drawing::{Curve, Source};
+use crate::drawing::{Curve, Source, near_pairs};
 use crate::geometry::{Path, Point, Segment, Vec2};
 use crate::refusal::Refusal;
 use crate::tolerance;
@@ -147,7 +147,7 @@ fn close_gaps(chains: Vec<Vec<Link>>, size: f64, curves: &[Curve]) -> Result<Vec
     let points: Vec<Point> = ends.iter().map(|e| e.at).collect();
     let reach = size * tolerance::GAP;
     let mut partner: Vec<Option<usize>> = vec![None; ends.len()];
-    for (a, b) in pieces::near_pairs(&points, reach) {
+    for (a, b) in near_pairs(&points, reach) {
         if ends[a].chain == ends[b].chain {
             if length_of(&chains[ends[a].chain]) > 2.0 * reach {
                 return Err(closed_loop(&source_at(&chains, &ends[a], curves)));
@@ -204,7 +204,7 @@ fn doubtful_gaps(chains: &[Vec<Link>], curves: &[Curve]) -> Result<(), Refusal> 
     let points: Vec<Point> = ends.iter().map(|e| e.at).collect();
     let lengths: Vec<f64> = chains.iter().map(|c| length_of(c)).collect();
     let longest = lengths.iter().copied().fold(0.0, f64::max);
-    for (a, b) in pieces::near_pairs(&points, longest * tolerance::DOUBTFUL_GAP) {
+    for (a, b) in near_pairs(&points, longest * tolerance::DOUBTFUL_GAP) {
         let (a, b) = (&ends[a], &ends[b]);
         let gap = b.at - a.at;
         let limit = lengths[a.chain].max(lengths[b.chain]) * tolerance::DOUBTFUL_GAP;

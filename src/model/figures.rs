@@ -2,19 +2,8 @@
 
 use std::fmt;
 
+use crate::job::Decimal;
 use crate::units::ForceUnit;
-
-/// How fractions are marked in the figures of a drawing.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
-pub enum Decimal {
-    /// Told from each figure; a figure with two readings is an error.
-    #[default]
-    Auto,
-    /// A comma.
-    Comma,
-    /// A point.
-    Point,
-}
 
 /// A force read from a text.
 #[derive(Debug, Clone, PartialEq)]

@@ -1,10 +1,11 @@
 //! Which text says how large which load is.
 
-use super::figures::{self, Decimal, Figure, NoFigure};
+use super::figures::{self, Figure, NoFigure};
 use super::matching::{self, Row};
 use super::note::Note;
 use crate::drawing::{PointLike, Text};
 use crate::geometry::Point;
+use crate::job::Decimal;
 use crate::tolerance;
 
 /// A text on a load layer that could be a load's label.

@@ -1,18 +1,18 @@
 //! Points on load layers to forces.
 
-use super::figures::{self, Decimal, Figure, NoFigure};
+use super::figures::{self, Figure, NoFigure};
 use super::labels::{self, Label};
 use super::note::Note;
-use super::pieces::clusters;
 use super::{Forces, Load, MagnitudeFrom};
-use crate::drawing::{PointLike, Text};
+use crate::drawing::{PointLike, Text, clusters};
 use crate::geometry::Vec2;
+use crate::job::{Decimal, Settings};
 use crate::refusal::Refusal;
 use crate::tolerance;
 use crate::units::ForceUnit;
 
 /// What the job says of loads.
-#[derive(Debug, Clone, Copy, PartialEq, Default)]
+#[derive(Debug, Clone, Copy, PartialEq)]
 pub struct LoadSettings {
     /// Unit of figures without one; `None`: not stated.
     pub unit: Option<ForceUnit>,
@@ -20,6 +20,22 @@ pub struct LoadSettings {
     pub unlabelled: Option<f64>,
     /// How fractions are marked.
     pub decimal: Decimal,
+}
+
+impl Default for LoadSettings {
+    fn default() -> Self {
+        Self { unit: None, unlabelled: None, decimal: Decimal::Auto }
+    }
+}
+
+impl From<&Settings> for LoadSettings {
+    fn from(settings: &Settings) -> Self {
+        Self {
+            unit: settings.loads.unit,
+            unlabelled: settings.loads.unlabelled_kn(),
+            decimal: settings.loads.decimal,
+        }
+    }
 }
 
 /// Tags of attributes that say "force" in drawings of the trade, compared in upper case.

@@ -16,7 +16,6 @@ use crate::geometry::{Path, Point, Vec2};
 use crate::refusal::Refusal;
 use crate::tolerance;
 
-pub use figures::Decimal;
 pub use loads::LoadSettings;
 pub use note::Note;
 

@@ -1,0 +1,258 @@
+//! One fragment per entity through the `dxf` crate.
+//!
+//! Each record is written out as a small drawing of its own that holds the groups the reader needs and nothing else, so
+//! that one odd entity spoils no other, no embedded object overwrites a text's place, and a fault is told with the line,
+//! handle and layer of the file. Every number is checked before, because the crate names the wrong place for a bad one.
+
+use std::fmt::Write as _;
+
+use dxf::entities::Entity;
+
+use crate::refusal::Refusal;
+use crate::tags::{Decoder, Record, Tag};
+use crate::tolerance;
+
+/// Groups that are read of each kind of entity: texts, numbers, whole numbers with the range that the format gives them;
+/// and the numbers without which it means nothing.
+struct Groups {
+    texts: &'static [i32],
+    reals: &'static [i32],
+    integers: &'static [(i32, i64, i64)],
+    needed: &'static [i32],
+}
+
+const ANY: (i64, i64) = (-32_768, 32_767);
+
+fn groups(kind: &str) -> Option<Groups> {
+    const POINT: [i32; 6] = [10, 20, 30, 210, 220, 230];
+    let reals = |reals| (&[] as &[i32], reals, &[] as &[(i32, i64, i64)]);
+    let (texts, reals, integers, needed): (&[i32], &[i32], &[(i32, i64, i64)], &[i32]) = match kind {
+        "LINE" => {
+            let r = reals(&[10, 20, 30, 11, 21, 31, 210, 220, 230]);
+            (r.0, r.1, r.2, &[10, 20, 11, 21])
+        }
+        "POINT" => {
+            let r = reals(&POINT);
+            (r.0, r.1, r.2, &[10, 20])
+        }
+        "CIRCLE" => {
+            let r = reals(&[10, 20, 30, 40, 210, 220, 230]);
+            (r.0, r.1, r.2, &[10, 20, 40])
+        }
+        "ARC" => {
+            let r = reals(&[10, 20, 30, 40, 50, 51, 210, 220, 230]);
+            (r.0, r.1, r.2, &[10, 20, 40, 50, 51])
+        }
+        "LWPOLYLINE" => (&[], &[10, 20, 38, 42, 210, 220, 230], &[(70, ANY.0, ANY.1)], &[]),
+        "POLYLINE" => (&[], &POINT, &[(70, ANY.0, ANY.1)], &[]),
+        "VERTEX" => (&[], &[10, 20, 30, 42], &[(70, ANY.0, ANY.1)], &[10, 20]),
+        "INSERT" => (
+            &[2],
+            &[10, 20, 30, 41, 42, 43, 44, 45, 50, 210, 220, 230],
+            &[(70, ANY.0, ANY.1), (71, ANY.0, ANY.1)],
+            &[10, 20],
+        ),
+        "ATTRIB" => (&[1, 2], &POINT, &[], &[]),
+        "TEXT" => (
+            &[1],
+            &[10, 20, 30, 11, 21, 31, 40, 41, 50, 210, 220, 230],
+            &[(72, 0, 5), (73, 0, 3)],
+            &[10, 20],
+        ),
+        "MTEXT" => (
+            &[1, 3],
+            &[10, 20, 30, 11, 21, 31, 40, 41, 50, 210, 220, 230],
+            &[(71, 1, 9)],
+            &[10, 20],
+        ),
+        _ => return None,
+    };
+    Some(Groups { texts, reals, integers, needed })
+}
+
+/// Reads one record, with the run of VERTEX or ATTRIB records that belongs to it.
+///
+/// # Errors
+/// When a number of it cannot be read, a needed one is missing, or the crate finds another fault.
+pub fn entity(record: &Record, decoder: &Decoder) -> Result<Entity, Refusal> {
+    let fragment = fragment(record, decoder)?;
+    let fault = |what: String| {
+        record.refuse(Refusal::new(
+            "entity",
+            format!("the {} cannot be read: {what}", record.kind),
+            "Redraw it, or let the CAD program check and repair the drawing",
+        ))
+    };
+    let drawing = dxf::Drawing::load(&mut fragment.as_bytes()).map_err(|e| fault(e.to_string()))?;
+    let mut entities = drawing.entities();
+    match (entities.next(), entities.next()) {
+        (Some(one), None) => Ok(one.clone()),
+        (None, _) => Err(fault("it holds nothing that can be read".into())),
+        (Some(_), Some(_)) => Err(fault("it does not end where it should".into())),
+    }
+}
+
+/// The record as a drawing of its own.
+fn fragment(record: &Record, decoder: &Decoder) -> Result<String, Refusal> {
+    let mut out = String::with_capacity(512);
+    out.push_str("  0\nSECTION\n  2\nHEADER\n  9\n$ACADVER\n  1\nAC1021\n  0\nENDSEC\n  0\nSECTION\n  2\nENTITIES\n");
+    write_record(&mut out, record, decoder)?;
+    let wanted = match record.kind.as_str() {
+        "POLYLINE" => Some("VERTEX"),
+        "INSERT" => Some("ATTRIB"),
+        _ => None,
+    };
+    if let Some(wanted) = wanted {
+        for child in record.children.iter().filter(|c| c.kind == wanted) {
+            write_record(&mut out, child, decoder)?;
+        }
+        out.push_str("  0\nSEQEND\n");
+    }
+    out.push_str("  0\nENDSEC\n  0\nEOF\n");
+    Ok(out)
+}
+
+fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<(), Refusal> {
+    let kind = record.kind.as_str();
+    let Some(groups) = groups(kind) else {
+        return Err(record.refuse(Refusal::new(
+            "entity",
+            format!("entities of type {kind} are not read"),
+            "Draw it with lines, arcs, polylines, points and texts",
+        )));
+    };
+    // Writing to a string cannot fail.
+    let _ = write!(out, "  0\n{kind}\n");
+    // The crate takes attributes only after an INSERT that announces them.
+    if kind == "INSERT" && record.children.iter().any(|c| c.kind == "ATTRIB") {
+        out.push_str(" 66\n1\n");
+    }
+    let turned_last = record
+        .tags
+        .own()
+        .filter(|t| t.code == 11 || t.code == 50)
+        .map(|t| t.code)
+        .last();
+    let mut seen = Vec::new();
+    let mut columns = false;
+    for tag in record.tags.own() {
+        let code = tag.code;
+        match kind {
+            // What follows belongs to the attribute's own record of settings and repeats codes.
+            "ATTRIB" if code == 100 && tag.trimmed().eq_ignore_ascii_case(b"AcDbXrecord") => break,
+            "MTEXT" => {
+                columns |= code == 75;
+                // Columns list their heights under the code of the rotation; of two rotations the last one counts.
+                if (columns && code == 50)
+                    || (turned_last == Some(11) && code == 50)
+                    || (turned_last == Some(50) && matches!(code, 11 | 21 | 31))
+                {
+                    continue;
+                }
+            }
+            // Groups of a vertex mean nothing before the first one, and the crate does not expect them there.
+            "LWPOLYLINE" if matches!(code, 20 | 42) && !seen.contains(&10) => {
+                return Err(misplaced(record, &tag));
+            }
+            _ => {}
+        }
+        if groups.reals.contains(&code) {
+            let value = real(record, &tag)?;
+            let _ = write!(out, "{code:>3}\n{value:?}\n");
+        } else if let Some(&(_, low, high)) = groups.integers.iter().find(|g| g.0 == code) {
+            let value = integer(record, &tag)?;
+            // A setting that the format does not know changes nothing that is read here: its default counts.
+            if (low..=high).contains(&value) {
+                let _ = write!(out, "{code:>3}\n{value}\n");
+            }
+        } else if groups.texts.contains(&code) {
+            let _ = writeln!(out, "{code:>3}");
+            escape(out, &decoder.text(tag.value));
+            out.push('\n');
+        } else {
+            continue;
+        }
+        seen.push(code);
+    }
+    if kind == "LWPOLYLINE" {
+        let count = |code| seen.iter().filter(|&&c| c == code).count();
+        if count(10) != count(20) {
+            return Err(missing(record, 20));
+        }
+    }
+    match groups.needed.iter().find(|code| !seen.contains(code)) {
+        Some(&code) => Err(missing(record, code)),
+        None => Ok(()),
+    }
+}
+
+/// Control characters and carets as the crate takes them out again.
+fn escape(out: &mut String, text: &str) {
+    for c in text.chars() {
+        match c {
+            '^' => out.push_str("^ "),
+            '\0'..='\x1f' => {
+                out.push('^');
+                out.push(char::from(c as u8 + b'@'));
+            }
+            c => out.push(c),
+        }
+    }
+}
+
+fn real(record: &Record, tag: &Tag<'_>) -> Result<f64, Refusal> {
+    match tag.real() {
+        Some(value) if value.abs() <= tolerance::GREATEST_NUMBER => Ok(value),
+        Some(value) => Err(at(
+            record,
+            tag,
+            "entity-number",
+            format!("group {} of the {} is {value:e}, too great to be meant", tag.code, record.kind),
+        )),
+        None => Err(bad(record, tag, "number")),
+    }
+}
+
+fn integer(record: &Record, tag: &Tag<'_>) -> Result<i64, Refusal> {
+    // Some programs write whole numbers with a fraction of nothing.
+    let value = tag.int().or_else(|| {
+        tag.real()
+            .filter(|v| v.fract().abs() < f64::EPSILON && v.abs() < 1e9)
+            .and_then(|v| format!("{v:.0}").parse().ok())
+    });
+    value.ok_or_else(|| bad(record, tag, "whole number"))
+}
+
+fn bad(record: &Record, tag: &Tag<'_>, what: &str) -> Refusal {
+    let shown: String = String::from_utf8_lossy(tag.trimmed()).chars().take(40).collect();
+    at(
+        record,
+        tag,
+        "entity-number",
+        format!("group {} of the {} is \"{}\", which is no {what}", tag.code, record.kind, shown.escape_debug()),
+    )
+}
+
+fn at(record: &Record, tag: &Tag<'_>, check: &str, message: String) -> Refusal {
+    let mut refusal = Refusal::new(check, message, "Mend the value, or redraw the entity");
+    // The value stands on the line below its code.
+    refusal.line = tag.line.map(|line| line + 1);
+    record.refuse(refusal)
+}
+
+fn missing(record: &Record, code: i32) -> Refusal {
+    record.refuse(Refusal::new(
+        "entity-incomplete",
+        format!("the {} has no group {code}, without which its place is unknown", record.kind),
+        "Redraw the entity, or let the CAD program check and repair the drawing",
+    ))
+}
+
+fn misplaced(record: &Record, tag: &Tag<'_>) -> Refusal {
+    at(
+        record,
+        tag,
+        "entity-incomplete",
+        format!("group {} of the {} stands before its first vertex", tag.code, record.kind),
+    )
+}
