@@ -34,6 +34,20 @@ fn significant(value: f64, digits: usize) -> String {
     format!("{number:.decimals$}")
 }
 
+/// A round number with no more decimals than it needs: `2.5`, `100`.
+pub fn round_number(value: f64) -> String {
+    let text = three_digits(value);
+    if text.contains('e') || !text.contains('.') {
+        return text;
+    }
+    text.trim_end_matches('0').trim_end_matches('.').to_owned()
+}
+
+/// The value, or nought when it is rounding beside values of size `scale`.
+pub fn beside(value: f64, scale: f64) -> f64 {
+    if value.abs() <= scale.abs() * crate::tolerance::NO_FORCE { 0.0 } else { value }
+}
+
 /// A length in metres told in millimetres as a bare figure: whole from 10 mm on, two significant digits below, nothing
 /// finer than a hundredth.
 ///
@@ -150,8 +164,7 @@ pub fn wrap(text: &str, width: usize) -> Vec<String> {
     let mut lines = Vec::new();
     let mut line = String::new();
     let mut used = 0;
-    for word in text.split_whitespace() {
-        let mut word = word.to_owned();
+    for mut word in words(text) {
         loop {
             let size = columns(&word);
             let gap = usize::from(used > 0);
@@ -177,6 +190,29 @@ pub fn wrap(text: &str, width: usize) -> Vec<String> {
         lines.push(line);
     }
     lines
+}
+
+/// Words of a text; a figure stays with its unit, and a letter that names a quantity with its figure.
+fn words(text: &str) -> Vec<String> {
+    let is_figure = |w: &str| w.trim_end_matches([',', ';', ':', '.', ')']).parse::<f64>().is_ok();
+    let is_unit = |w: &str| {
+        let w = w.trim_end_matches([',', ';', ':', '.', ')']);
+        ["m", "mm", "kN", "kNm", "deg", "MPa", "unit", "times"].contains(&w)
+    };
+    let mut out: Vec<String> = Vec::new();
+    for word in text.split_whitespace() {
+        if let Some(last) = out.last_mut() {
+            let tail = last.rsplit(' ').next().unwrap_or_default();
+            let names = tail.len() == 1 && tail.chars().all(|c| c.is_ascii_alphabetic()) && tail != "a";
+            if (is_unit(word) && is_figure(tail) && !tail.ends_with(',')) || (names && is_figure(word)) {
+                last.push(' ');
+                last.push_str(word);
+                continue;
+            }
+        }
+        out.push(word.to_owned());
+    }
+    out
 }
 
 /// Cuts a word after at most `width` columns.
@@ -230,6 +266,7 @@ mod tests {
     fn wraps_by_columns() {
         assert_eq!(wrap("one two three", 8), ["one two", "three"]);
         assert_eq!(wrap("", 8), [""]);
+        assert_eq!(wrap("as at x 12.345 m, y 2.5 m", 14), ["as at", "x 12.345 m,", "y 2.5 m"]);
         assert_eq!(wrap(&"x".repeat(20), 8).len(), 3);
         assert!(wrap("桥桥桥桥桥桥 桥", 8).iter().all(|l| columns(l) <= 8));
     }

@@ -3,9 +3,9 @@
 use crate::geometry::{Point, Vec2};
 use crate::outcome::{Check, Run};
 use crate::tags::marks::{Across, Along};
-use crate::write::annotate::elevation::dash_of;
+use crate::write::annotate::elevation;
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
-use crate::write::annotate::shown::{Shown, governing, kind_name};
+use crate::write::annotate::shown::Shown;
 use crate::write::text::{self, in_metres};
 
 /// Height of the larger ordinates, in text heights.
@@ -28,10 +28,14 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, righ
     let reach = drawn_limit.unwrap_or(0.0).max(largest);
     let factor = exaggeration(reach, h, spans.first().map_or(1.0, |s| s.unit));
 
-    let mut title = format!(
-        "OFFSET OF THE LINE OF THRUST FROM THE AXIS, along the joints, drawn {} times as large; + toward the extrados",
-        text::three_digits(factor)
-    );
+    let mut title = if factor > 1.0 {
+        format!(
+            "along the joints, drawn {} times as large, + toward the extrados",
+            text::round_number(factor)
+        )
+    } else {
+        "along the joints, to the scale of the elevation, + toward the extrados".to_owned()
+    };
     match (limit, drawn_limit) {
         (Some(l), Some(_)) => title.push_str(&format!("; limit {} mm dashed", text::millimetres(l))),
         (Some(l), None) => {
@@ -39,8 +43,11 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, righ
         }
         (None, _) => {}
     }
+    let columns = columns_between(corner.x, right, h);
+    let mut lines = text::wrap("OFFSET OF THE LINE OF THRUST FROM THE AXIS", columns);
+    lines.extend(text::wrap(&title, columns));
     let mut y = corner.y;
-    for line in text::wrap(&title, columns_between(corner.x, right, h)) {
+    for line in lines {
         y -= h;
         canvas.text(Layer::OffsetDiagram, "title", &Words::new(line, Point::new(corner.x, y), h));
         y -= (LEADING - 1.0) * h;
@@ -154,18 +161,14 @@ fn one(
         let tick = Vec2::new(0.0, 0.7 * h);
         canvas.line(layer, "base", at(x, 0.0) - tick, at(x, 0.0) + tick);
     }
-    for other in &shown.span.cases {
-        if shown.case.is_some_and(|c| !std::ptr::eq(c, other))
-            && let Some(line) = governing(other)
-        {
-            let points: Vec<Point> = line
-                .stations
-                .iter()
-                .filter_map(|t| t.eccentricity.map(|e| at(t.at[0] * shown.unit, e)))
-                .collect();
-            canvas.chain(Layer::OtherLines, "other-offsets", &points, Some(Dash::Long));
-            canvas.taken.keep_off(&points);
-        }
+    for (_, dash, line) in elevation::other_cases(shown) {
+        let points: Vec<Point> = line
+            .stations
+            .iter()
+            .filter_map(|t| t.eccentricity.map(|e| at(t.at[0] * shown.unit, e)))
+            .collect();
+        canvas.chain(Layer::OtherLines, "other-offsets", &points, Some(dash));
+        canvas.taken.keep_off(&points);
     }
     let points: Vec<Point> = curve.iter().map(|&(x, e)| at(x, e)).collect();
     for &s in &shown.feet {
@@ -189,11 +192,13 @@ fn one(
         for sign in [1.0, -1.0] {
             let places = (0..20).flat_map(|i| {
                 let inset = (right - left) * f64::from(i) / 20.0;
-                [0.9, -0.9].map(|d| {
+                [1.25, -1.25].map(|d| {
                     let p = at(right - inset, sign * limit) + Vec2::new(0.0, sign * d * h);
                     let words = text::signed_millimetres(sign * limit);
                     (
-                        Words::new(format!("limit {words}"), p, h).across(Across::Right).along(Along::Middle),
+                        Words::new(format!("limit {words} mm"), p, h)
+                            .across(Across::Right)
+                            .along(Along::Middle),
                         None,
                     )
                 })
@@ -234,25 +239,6 @@ fn worst_here(shown: &Shown, canvas: &mut Canvas, base: f64, scale: f64) -> Opti
     });
     canvas.place(Layer::Offsets, "worst", places);
     Some(e)
-}
-
-/// Samples of all lines drawn, for the key: name and line type.
-pub fn other_kinds(spans: &[Shown]) -> Vec<(String, Dash)> {
-    let mut out: Vec<(String, Dash)> = Vec::new();
-    for shown in spans {
-        for line in shown.case.iter().flat_map(|c| &c.lines) {
-            let governs = shown.line.is_some_and(|g| std::ptr::eq(g, line));
-            if !governs && line.vertices.len() > 1 {
-                out.push((format!("line {}", kind_name(line.kind)), dash_of(line.kind)));
-            }
-        }
-        if shown.span.cases.len() > 1 {
-            out.push(("lines of other cases".into(), Dash::Long));
-        }
-    }
-    out.sort_by(|a, b| a.0.cmp(&b.0));
-    out.dedup();
-    out
 }
 
 #[cfg(test)]

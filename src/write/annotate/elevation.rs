@@ -3,7 +3,7 @@
 use std::f64::consts::{FRAC_PI_2, PI};
 
 use crate::geometry::{Point, Vec2};
-use crate::outcome::{Case, Check, Finding, FindingVerdict, LineKind, Run, Status};
+use crate::outcome::{Case, Check, Finding, FindingVerdict, Line, LineKind, Run, Status, Xy};
 use crate::tags::marks::{Across, Along};
 use crate::tolerance;
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Leader, Words};
@@ -24,17 +24,16 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
     }
     let arrows: Vec<[Option<Arrow>; 2]> =
         spans.iter().map(|s| [arrow(s, true, canvas), arrow(s, false, canvas)]).collect();
+    rings(run, spans, canvas);
     for shown in spans {
         worst_figure(shown, canvas);
+        letters(shown, canvas);
     }
     flags(run, spans, canvas);
     for (shown, arrows) in spans.iter().zip(&arrows) {
         for arrow in arrows.iter().flatten() {
             reaction(run, shown, arrow, spans.len() > 1, canvas);
         }
-    }
-    for shown in spans {
-        letters(shown, canvas);
     }
     for shown in spans {
         figures(shown, canvas);
@@ -52,23 +51,30 @@ pub fn dash_of(kind: LineKind) -> Dash {
     }
 }
 
+/// The governing lines of the cases that are not drawn heavy, each with its name and line type.
+pub fn other_cases<'a>(shown: &Shown<'a>) -> Vec<(String, Dash, &'a Line)> {
+    const DASHES: [Dash; 4] = [Dash::Long, Dash::Short, Dash::Dot, Dash::TwoDots];
+    shown
+        .span
+        .cases
+        .iter()
+        .filter(|other| shown.case.is_none_or(|c| !std::ptr::eq(c, *other)))
+        .filter_map(|other| governing(other).map(|line| (other, line)))
+        .enumerate()
+        .map(|(i, (case, line))| (format!("case {}", case.name), DASHES[i % DASHES.len()], line))
+        .collect()
+}
+
 /// Lines beside the governing one: others of the same case, and the governing ones of other cases.
-pub fn beside<'a>(shown: &Shown<'a>) -> Vec<(String, Dash, &'a [[f64; 2]])> {
-    let mut out = Vec::new();
-    let Some(case) = shown.case else { return out };
-    for line in &case.lines {
-        let governs = shown.line.is_some_and(|g| std::ptr::eq(g, line));
-        if !governs && line.status == Status::Found && line.vertices.len() > 1 {
-            out.push((kind_name(line.kind).to_owned(), dash_of(line.kind), line.vertices.as_slice()));
-        }
-    }
-    for other in &shown.span.cases {
-        if !std::ptr::eq(other, case)
-            && let Some(line) = governing(other)
-        {
-            out.push((format!("case {}", other.name), Dash::Long, line.vertices.as_slice()));
-        }
-    }
+pub fn beside<'a>(shown: &Shown<'a>) -> Vec<(String, Dash, &'a Line)> {
+    let lines = shown.case.map_or(&[][..], |c| &c.lines);
+    let mut out: Vec<(String, Dash, &Line)> = lines
+        .iter()
+        .filter(|line| shown.line.is_none_or(|g| !std::ptr::eq(g, *line)))
+        .filter(|line| line.status == Status::Found && line.vertices.len() > 1)
+        .map(|line| (kind_name(line.kind).to_owned(), dash_of(line.kind), line))
+        .collect();
+    out.extend(other_cases(shown));
     out
 }
 
@@ -78,8 +84,8 @@ fn line(shown: &Shown, canvas: &mut Canvas) {
 }
 
 fn other_lines(shown: &Shown, canvas: &mut Canvas) {
-    for (_, dash, vertices) in beside(shown) {
-        let points: Vec<Point> = vertices.iter().map(|&v| point(v, shown.unit)).collect();
+    for (_, dash, line) in beside(shown) {
+        let points: Vec<Point> = line.vertices.iter().map(|&v| point(v, shown.unit)).collect();
         canvas.chain(Layer::OtherLines, "other-line", &points, Some(dash));
         canvas.taken.keep_off(&points);
     }
@@ -89,12 +95,14 @@ fn other_lines(shown: &Shown, canvas: &mut Canvas) {
 fn labels(shown: &Shown, canvas: &mut Canvas) {
     let h = canvas.h;
     let out = -shown.inner_side();
-    for (name, _, vertices) in beside(shown) {
+    for (name, _, line) in beside(shown) {
+        let vertices = &line.vertices;
         let n = vertices.len();
         // Begin at the quarter point, then try the pieces from left to right.
         let places = (0..n - 1).map(|i| (n / 4 + i) % (n - 1)).flat_map(|i| {
             let (a, b) = (point(vertices[i], shown.unit), point(vertices[i + 1], shown.unit));
-            let from = a.midpoint(b);
+            // Off the middle, where the letter of the space stands.
+            let from = a.lerp(b, 0.25);
             let words = name.clone();
             (3..14).map(move |k| {
                 let at = from + Vec2::new(0.0, out * f64::from(k) * 1.5 * h);
@@ -197,6 +205,9 @@ fn figure(shown: &Shown, s: f64, e: f64, words: &str, far: u32, canvas: &mut Can
     }
 }
 
+/// No more figures than fit along a long span; looking for room for thousands would only take time.
+const MOST_FIGURES: usize = 300;
+
 /// Figures at the loads, the larger first; one that finds no room near its tick is left out (the offset diagram and the
 /// results hold them all).
 fn figures(shown: &Shown, canvas: &mut Canvas) {
@@ -208,6 +219,7 @@ fn figures(shown: &Shown, canvas: &mut Canvas) {
         .filter_map(|s| shown.eccentricity(s).map(|e| (s, e)))
         .collect();
     list.sort_by(|a, b| b.1.abs().total_cmp(&a.1.abs()));
+    list.truncate(MOST_FIGURES);
     for (s, e) in list {
         figure(shown, s, e, &text::signed_millimetres(e), 6, canvas);
     }
@@ -321,7 +333,8 @@ pub fn springing_moment(shown: &Shown, left: bool) -> Option<f64> {
     let station = if left { line.stations.first()? } else { line.stations.last()? };
     let s = if left { 0.0 } else { shown.span.axis.length };
     let near = shown.span.axis.length * tolerance::SAME_JOINT;
-    ((station.s - s).abs() <= near).then_some(station.moment)
+    let scale = station.thrust * shown.span.axis.span;
+    ((station.s - s).abs() <= near).then(|| text::beside(station.moment, scale))
 }
 
 /// Slope of the thrust against the level, degrees to one decimal.
@@ -329,23 +342,43 @@ pub fn thrust_angle(horizontal: f64, vertical: f64) -> String {
     format!("{:.1}", vertical.atan2(horizontal.abs()).to_degrees())
 }
 
+/// Findings that a flag shows: limits that do not hold, accepted or not, with a place.
+fn flagged(run: &Run) -> impl Iterator<Item = (&Finding, Xy)> {
+    run.findings
+        .iter()
+        .filter(|f| matches!(f.verdict, FindingVerdict::Outside | FindingVerdict::Accepted))
+        .filter_map(|f| f.at.map(|at| (f, at)))
+}
+
+/// Radius of the ring round a flagged place, in text heights.
+const RING: f64 = 0.9;
+
+/// The rings of the flags, one for each place.
+fn rings(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
+    let unit = spans.first().map_or(1.0, |s| s.unit);
+    let mut places: Vec<Xy> = flagged(run).map(|f| f.1).collect();
+    places.sort_by(|a, b| a[0].total_cmp(&b[0]).then(a[1].total_cmp(&b[1])));
+    places.dedup();
+    for at in places {
+        canvas.circle(Layer::Flags, "flag", point(at, unit), RING * canvas.h);
+    }
+}
+
 /// A flag where a limit does not hold: a ring round the place, a staff, and a pennant with the words beside it.
 fn flags(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
     let h = canvas.h;
-    for finding in run
-        .findings
-        .iter()
-        .filter(|f| matches!(f.verdict, FindingVerdict::Outside | FindingVerdict::Accepted))
-    {
-        let Some(at) = finding.at else { continue };
+    for (finding, at) in flagged(run) {
         let shown = spans.iter().find(|s| finding.span.as_ref() == Some(&s.span.name)).or(spans.first());
         let Some(shown) = shown else { continue };
         let at = point(at, shown.unit);
         let out = -shown.inner_side();
         let words = flag_words(finding, shown.case, shown.span.cases.len() > 1);
-        let foot = at + Vec2::new(0.0, out * 0.9 * h);
-        let places = (0..60).flat_map(|k| {
-            let top = at + Vec2::new(0.0, out * (5.0 + 1.2 * f64::from(k)) * h);
+        let foot = at + Vec2::new(0.0, out * RING * h);
+        // Upright staffs first, each side of them; then leaning ones, where a letter stands in the way.
+        let places = (0..120).flat_map(|k| {
+            let lean = [0.0, 2.0, -2.0, 4.5, -4.5, 8.0][k % 6];
+            let rise = 5.0 + 1.2 * ((k / 6) as f64);
+            let top = at + Vec2::new(lean, out * rise) * h;
             [(1.0, Across::Left), (-1.0, Across::Right)].map(|(toward, across)| {
                 let words = Words::new(words.clone(), top + Vec2::new(toward * 2.2 * h, 0.0), h)
                     .across(across)
@@ -358,7 +391,6 @@ fn flags(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
         };
         let up = Vec2::new(0.0, 0.6 * h);
         let peak = top + Vec2::new((words.at.x - top.x).signum() * 1.6 * h, 0.0);
-        canvas.circle(Layer::Flags, "flag", at, 0.9 * h);
         canvas.line(Layer::Flags, "flag", foot, top + up * out);
         canvas.triangle(Layer::Flags, "flag", [top + up, top - up, peak]);
         canvas.taken.keep_off(&[top + up, peak, top - up, top + up]);

@@ -3,7 +3,6 @@
 use crate::geometry::{Point, Vec2};
 use crate::outcome::{Check, Finding, FindingVerdict, MagnitudeFrom, Run, Status, Verdict};
 use crate::tags::marks::{Across, Along};
-use crate::write::annotate::diagram::other_kinds;
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
 use crate::write::annotate::shown::{Shown, governing, kind_name};
 use crate::write::annotate::{Sheet, elevation};
@@ -11,7 +10,7 @@ use crate::write::text;
 
 /// Columns of the names and of what stands beside them.
 const NAMES: usize = 10;
-const VALUES: usize = 52;
+const VALUES: usize = 56;
 
 /// Words that stand at the foot of every sheet and summary.
 pub const CAUTION: &str = "A check for a qualified engineer under the local code; it does not judge the structure. \
@@ -101,11 +100,17 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
     row("Made by", format!("thrustmark {}, {} UTC", sheet.tool_version, sheet.date));
     let several = spans.len() > 1;
     for shown in spans {
-        row(if several { &shown.span.name } else { "Span" }, span_words(run, shown));
-        row("Line", line_words(shown));
-        for (name, value) in case_rows(run, shown) {
-            row(&name, value);
-        }
+        let name = if several { &shown.span.name } else { "Span" };
+        row(name, span_words(run, shown));
+    }
+    // What is the same for all spans is told once.
+    for words in told_once(spans.iter().map(|s| (s, line_words(s)))) {
+        row("Line", words);
+    }
+    for words in
+        told_once(spans.iter().flat_map(|s| case_rows(run, s).into_iter().map(move |words| (s, words))))
+    {
+        row("Case", words);
     }
     row("Loads", loads_words(run, spans));
     row("Left out", omitted(run, spans));
@@ -126,6 +131,28 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
         }
     }
     rows
+}
+
+/// Words of the spans, each once; where spans differ, headed by the first span that they hold for.
+fn told_once<'a, 'b: 'a>(all: impl Iterator<Item = (&'a Shown<'b>, String)>) -> Vec<String> {
+    let all: Vec<(&Shown, String)> = all.collect();
+    let mut out: Vec<(String, Vec<&str>)> = Vec::new();
+    for (shown, words) in &all {
+        let name = shown.span.name.as_str();
+        match out.iter_mut().find(|(known, _)| known == words) {
+            Some((_, spans)) => spans.push(name),
+            None => out.push((words.clone(), vec![name])),
+        }
+    }
+    let mut spans: Vec<&str> = all.iter().map(|(s, _)| s.span.name.as_str()).collect();
+    spans.dedup();
+    out.into_iter()
+        .map(
+            |(words, of)| {
+                if of.len() == spans.len() { words } else { format!("{}: {words}", of.join(", ")) }
+            },
+        )
+        .collect()
 }
 
 /// A hash in two halves, so that it fits.
@@ -159,7 +186,7 @@ fn span_words(run: &Run, shown: &Shown) -> String {
     {
         let pull = if shown.is_cable() { " (a pull)" } else { "" };
         words.push_str(&format!(
-            "; H {}{pull}, V left {}, V right {}",
+            "; H {}{pull}, V {} left, {} right",
             text::force(left.horizontal, &run.units),
             text::three_digits(left.vertical),
             text::three_digits(right.vertical)
@@ -191,7 +218,7 @@ fn line_words(shown: &Shown) -> String {
 }
 
 /// One row for each case: the drawn one first with its factors, then the others with their results.
-fn case_rows(run: &Run, shown: &Shown) -> Vec<(String, String)> {
+fn case_rows(run: &Run, shown: &Shown) -> Vec<String> {
     let mut out = Vec::new();
     for case in &shown.span.cases {
         let drawn = shown.case.is_some_and(|c| std::ptr::eq(c, case));
@@ -202,22 +229,24 @@ fn case_rows(run: &Run, shown: &Shown) -> Vec<(String, String)> {
             }
             words.push_str(if drawn { " (drawn heavy)" } else { "" });
         }
-        out.push(("Case".to_owned(), words));
+        out.push(words);
     }
     out
 }
 
 /// The factors of a case as the job states them.
 fn factors(run: &Run, name: &str) -> String {
-    let stated = run
-        .settings
-        .get("case")
-        .and_then(|c| c.as_array())
+    let cases = run.settings.get("case").and_then(|c| c.as_array());
+    let stated = cases
         .and_then(|cases| cases.iter().find(|c| c.get("name").and_then(|n| n.as_str()) == Some(name)))
         .and_then(|c| c.get("factors"))
         .and_then(|f| f.as_object());
     let Some(stated) = stated else {
-        return "everything drawn and given, all factors 1".into();
+        return if cases.is_none_or(Vec::is_empty) {
+            "everything drawn and given, all factors 1".into()
+        } else {
+            "factors not stated".into()
+        };
     };
     stated
         .iter()
@@ -288,7 +317,7 @@ fn limits(run: &Run) -> Vec<String> {
         .findings
         .iter()
         .filter(|f| f.limit.is_some() || f.check == Check::NotJudged)
-        .map(limit_words)
+        .map(|f| limit_words(run, f))
         .collect();
     if out.is_empty() {
         out.push("none stated".into());
@@ -296,7 +325,7 @@ fn limits(run: &Run) -> Vec<String> {
     out
 }
 
-fn limit_words(finding: &Finding) -> String {
+fn limit_words(run: &Run, finding: &Finding) -> String {
     let Some(figures) = text::against_limit(finding) else {
         return finding.message.clone();
     };
@@ -307,7 +336,15 @@ fn limit_words(finding: &Finding) -> String {
         FindingVerdict::Within => "holds",
         FindingVerdict::Note => "note",
     };
-    let place = [&finding.span, &finding.case].into_iter().flatten().cloned().collect::<Vec<_>>().join(", ");
+    let of_several = |name: &Option<String>, several: bool| name.clone().filter(|_| several);
+    let place = [
+        of_several(&finding.span, run.spans.len() > 1),
+        of_several(&finding.case, run.spans.iter().any(|s| s.cases.len() > 1)),
+    ]
+    .into_iter()
+    .flatten()
+    .collect::<Vec<_>>()
+    .join(", ");
     let mut words = format!("{name} {figures}: {became}");
     if !place.is_empty() {
         words.push_str(&format!(" ({place})"));
@@ -351,6 +388,24 @@ fn worst_words(shown: &Shown, several: bool) -> String {
     )
 }
 
+/// Most kinds of other lines told one by one in the key.
+const MOST_KINDS: usize = 6;
+
+/// Names and line types of the lines beside the governing ones.
+fn other_kinds(spans: &[Shown]) -> Vec<(String, Option<Dash>)> {
+    let mut out: Vec<(String, Option<Dash>)> = Vec::new();
+    for (name, dash, _) in spans.iter().flat_map(elevation::beside) {
+        let entry = (text::plain(&name), Some(dash));
+        if !out.contains(&entry) {
+            out.push(entry);
+        }
+    }
+    if out.len() > MOST_KINDS {
+        return vec![("other lines, named beside them".into(), Some(Dash::Long))];
+    }
+    out
+}
+
 /// Samples of the lines drawn. Gives back the height below the last.
 fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
     let h = canvas.h;
@@ -358,7 +413,7 @@ fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
         (Layer::Line, None, "line of thrust".to_owned()),
         (Layer::Offsets, None, "offset, mm".to_owned()),
     ];
-    samples.extend(other_kinds(spans).into_iter().map(|(name, dash)| (Layer::OtherLines, Some(dash), name)));
+    samples.extend(other_kinds(spans).into_iter().map(|(name, dash)| (Layer::OtherLines, dash, name)));
     if canvas.marks.iter().any(|m| m.layer == Layer::Kern as usize) {
         samples.push((Layer::Kern, Some(Dash::Dots), "middle third".into()));
     }

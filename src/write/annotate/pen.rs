@@ -193,6 +193,7 @@ impl Canvas {
         }
         let r = Vec2::new(radius, radius);
         self.cover(&[centre - r, centre + r]);
+        self.taken.boxes.push(Box2::upright(centre - r, centre + r));
         self.push(layer, role, Shape::Circle(centre, radius), None);
     }
 

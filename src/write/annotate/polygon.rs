@@ -13,8 +13,8 @@ use crate::write::annotate::shown::{Shown, kind_name};
 use crate::write::text;
 
 /// Length of the load line and width of the polygon aimed at, in text heights.
-const TALL: f64 = 30.0;
-const WIDE: f64 = 46.0;
+const TALL: f64 = 40.0;
+const WIDE: f64 = 52.0;
 /// Distance of letters along the load line, in text heights.
 const PITCH: f64 = 1.5;
 
@@ -30,27 +30,27 @@ struct Polygon {
     fitted: Option<Vec2>,
 }
 
-/// Draws the polygons from `corner` to the right, new rows where the width is used up. Gives back the right edge of the
-/// first row.
+/// Draws the polygons from `corner` to the right, new rows where the width is used up. Gives back the right edge of
+/// them all.
 pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, right: f64) -> f64 {
     let h = canvas.h;
     let polygons: Vec<Polygon> = spans.iter().map(polygon).collect();
     let scales = scales(&polygons, h);
     let limit = right.max(corner.x + 2.5 * WIDE * h);
-    let (mut x, mut top, mut first_row) = (corner.x, corner.y, None);
+    let (mut x, mut top, mut edge) = (corner.x, corner.y, corner.x);
     let mut row_low = top;
     for ((shown, polygon), scale) in spans.iter().zip(&polygons).zip(scales) {
         let title = title(run, shown, scale, spans.len() > 1);
         let width = cell_width(polygon, &title, scale, h);
         if x > corner.x && x + width > limit {
-            first_row.get_or_insert(x);
             (x, top) = (corner.x, row_low - 3.0 * h);
         }
         let low = cell(run, shown, polygon, &title, scale, canvas, Point::new(x, top));
         row_low = row_low.min(low);
         x += width + 3.0 * h;
+        edge = edge.max(x);
     }
-    first_row.unwrap_or(x)
+    edge
 }
 
 fn polygon(shown: &Shown) -> Polygon {
@@ -93,6 +93,19 @@ impl Polygon {
         (low, high)
     }
 
+    /// Indices of the lettered corners from the lowest to the highest; of equal ones the later first, as they follow
+    /// each other down a load line.
+    fn letters_upward(&self) -> Vec<usize> {
+        let mut order: Vec<usize> = (0..self.letters.len().min(self.corners.len())).collect();
+        order.sort_by(|&a, &b| self.corners[a].y.total_cmp(&self.corners[b].y).then(b.cmp(&a)));
+        order
+    }
+
+    /// Room on the far side of the pole for its name and that of the fitted pole, in text heights.
+    fn before_pole(&self) -> f64 {
+        if self.shown_fitted().is_some() { 14.0 } else { 3.0 }
+    }
+
     /// The fitted pole, when it lies within half the polygon's size of the pole: a far one would shrink the polygon.
     fn shown_fitted(&self) -> Option<Vec2> {
         let (fitted, pole) = (self.fitted?, self.pole?);
@@ -125,11 +138,11 @@ fn scales(polygons: &[Polygon], h: f64) -> Vec<Option<f64>> {
         .collect()
 }
 
-/// A scale at which one drawn length stands for a round force: 1, 2, 2.5, 5 … force units.
+/// A scale at which one drawn length stands for a round force: 1, 2, 2.5, 4, 5 … force units.
 fn round_scale(scale: f64) -> f64 {
     let per_length = 1.0 / scale;
     let power = 10_f64.powf(per_length.log10().floor());
-    let lead = [1.0, 2.0, 2.5, 5.0, 10.0]
+    let lead = [1.0, 2.0, 2.5, 4.0, 5.0, 10.0]
         .into_iter()
         .find(|l| l * power >= per_length * (1.0 - crate::tolerance::ROUND_FIGURE))
         .unwrap_or(10.0);
@@ -154,7 +167,7 @@ fn title(run: &Run, shown: &Shown, scale: Option<f64>, several: bool) -> Vec<Str
     if let Some(scale) = scale {
         lines.push(format!(
             "force scale: 1 drawing unit = {} {}",
-            text::three_digits(1.0 / scale),
+            text::round_number(1.0 / scale),
             text::force_unit(&run.units)
         ));
     }
@@ -166,7 +179,7 @@ const BESIDE: f64 = 8.0;
 
 fn cell_width(polygon: &Polygon, title: &[String], scale: Option<f64>, h: f64) -> f64 {
     let (low, high) = polygon.bounds();
-    let drawn = (high.x - low.x) * scale.unwrap_or(0.0) + BESIDE * h + 2.0 * h;
+    let drawn = (high.x - low.x) * scale.unwrap_or(0.0) + (BESIDE + polygon.before_pole()) * h;
     #[allow(clippy::cast_precision_loss)] // short lines
     let words = title.iter().map(|l| text::columns(l)).max().unwrap_or(0) as f64 * h;
     drawn.max(words)
@@ -196,8 +209,14 @@ fn cell(
 
     let (low, high) = polygon.bounds();
     let cable = shown.is_cable();
-    let inset = if cable { BESIDE * h } else { h };
-    let origin = Point::new(corner.x + inset - low.x * scale, y - high.y * scale);
+    // Letters that had to be spread reach beyond the load line.
+    let order = polygon.letters_upward();
+    let wanted: Vec<f64> = order.iter().map(|&i| polygon.corners[i].y * scale).collect();
+    let spread = spread(&wanted, PITCH * h);
+    let top = spread.last().map_or(high.y * scale, |l| (high.y * scale).max(l + h / 2.0));
+    let bottom = spread.first().map_or(low.y * scale, |l| (low.y * scale).min(l - h / 2.0));
+    let inset = if cable { BESIDE } else { polygon.before_pole() } * h;
+    let origin = Point::new(corner.x + inset - low.x * scale, y - top);
     let at = |f: Vec2| origin + f * scale;
     let corners: Vec<Point> = polygon.corners.iter().map(|&c| at(c)).collect();
     let out = if cable { -1.0 } else { 1.0 };
@@ -210,7 +229,8 @@ fn cell(
         let tick = Vec2::new(0.4 * h, 0.0);
         canvas.line(layer, "load-tick", *c - tick, *c + tick);
     }
-    letters(polygon, canvas, &corners, out);
+    let letters: Vec<(usize, f64)> = order.iter().zip(&spread).map(|(&i, y)| (i, origin.y + y)).collect();
+    put_letters(polygon, canvas, &corners, &letters, out);
     if let (Some(first), Some(last)) = (corners.first(), corners.last())
         && (*last - *first).hypot() > 4.0 * h
     {
@@ -228,7 +248,7 @@ fn cell(
             ],
         );
     }
-    let mut lowest = y - (high.y - low.y) * scale;
+    let mut lowest = origin.y + bottom;
     if let Some(pole) = polygon.pole {
         let pole = at(pole);
         for c in &corners {
@@ -248,14 +268,17 @@ fn cell(
     lowest
 }
 
-/// Letters beside the load line, spread so that they do not touch, each tied to its corner.
-fn letters(polygon: &Polygon, canvas: &mut Canvas, corners: &[Point], out: f64) {
+/// Letters beside the load line at the given heights, each tied to its corner.
+fn put_letters(
+    polygon: &Polygon,
+    canvas: &mut Canvas,
+    corners: &[Point],
+    letters: &[(usize, f64)],
+    out: f64,
+) {
     let h = canvas.h;
     let edge = corners.iter().map(|c| c.x * out).fold(f64::NEG_INFINITY, f64::max) * out;
-    let mut order: Vec<usize> = (0..polygon.letters.len().min(corners.len())).collect();
-    order.sort_by(|&a, &b| corners[a].y.total_cmp(&corners[b].y).then(b.cmp(&a)));
-    let wanted: Vec<f64> = order.iter().map(|&i| corners[i].y).collect();
-    for (&i, y) in order.iter().zip(spread(&wanted, PITCH * h)) {
+    for &(i, y) in letters {
         let start = corners[i] + Vec2::new(out * 0.4 * h, 0.0);
         let end = Point::new(edge + out * 1.6 * h, y);
         if (y - corners[i].y).abs() > 0.05 * h {
@@ -307,7 +330,7 @@ fn dimensions(
     {
         let (a, b) = (Point::new(x, from), Point::new(x, to));
         dimension(canvas, a, b, Vec2::new(1.0, 0.0));
-        let words = format!("{name} {}", text::force(value, &run.units));
+        let words = format!("{name} {}", text::three_digits(value));
         let middle = f64::midpoint(from, to);
         // Beside its dimension; where that is short, wherever there is room along it.
         let places = (0..60).flat_map(|k| {
@@ -352,19 +375,26 @@ fn cross(canvas: &mut Canvas, at: Point, out: f64) {
         canvas.line(Layer::Forces, "fitted-pole", at - d * h, at + d * h);
     }
     canvas.taken.keep_off(&[at - Vec2::new(0.6 * h, 0.0), at + Vec2::new(0.6 * h, 0.0)]);
-    let across = if out > 0.0 { Across::Left } else { Across::Right };
-    let places = (0..80).flat_map(|k| {
+    // On the far side of the pole, a step down or up; then below and above.
+    let (outer, inner) =
+        if out > 0.0 { (Across::Right, Across::Left) } else { (Across::Left, Across::Right) };
+    let outward = (0..24).map(|k: i32| {
+        let level = if k % 2 == 0 { -1.0 } else { 1.0 };
+        let place = at + Vec2::new(-out * 1.8, level * (1.8 + 0.8 * f64::from(k / 2))) * h;
+        let from = at + Vec2::new(-out * 0.3, level * 0.7) * h;
+        (place, outer, from, place + Vec2::new(out * 0.3 * h, 0.0))
+    });
+    let upright = (0..80).flat_map(|k| {
         let d = (2.5 + 0.8 * f64::from(k)) * h;
-        [d, -d].map(|d| {
+        [-d, d].map(|d| {
             let place = at + Vec2::new(0.0, d);
-            (
-                Words::new("fitted pole", place, h).across(across).along(Along::Middle),
-                Some((
-                    at + Vec2::new(0.0, 0.7 * h * d.signum()),
-                    place - Vec2::new(0.0, 0.8 * h * d.signum()),
-                )),
-            )
+            let toward = Vec2::new(0.0, d.signum() * h);
+            (place, inner, at + toward * 0.7, place - toward * 0.8)
         })
+    });
+    let places = outward.chain(upright).map(|(place, across, a, b)| {
+        let words = Words::new("fitted pole", place, h).across(across).along(Along::Middle);
+        (words, Some((a, b)))
     });
     if let Some((_, Some((a, b)))) = canvas.place(Layer::Forces, "fitted-pole-name", places) {
         canvas.line(Layer::Forces, "fitted-pole-name", a, b);
@@ -382,7 +412,7 @@ fn bar(run: &Run, canvas: &mut Canvas, at: Point, scale: f64) {
         canvas.line(Layer::Forces, "scale", p - tick, p + tick);
     }
     let words = Words::new(
-        format!("{} {}", text::three_digits(force), text::force_unit(&run.units)),
+        format!("{} {}", text::round_number(force), text::force_unit(&run.units)),
         end + Vec2::new(h, 0.0),
         h,
     )
@@ -396,7 +426,7 @@ mod tests {
 
     #[test]
     fn one_length_is_a_round_force() {
-        for (scale, force) in [(0.01, 100.0), (0.009, 200.0), (0.0045, 250.0), (0.3, 5.0)] {
+        for (scale, force) in [(0.01, 100.0), (0.009, 200.0), (0.0045, 250.0), (0.3, 4.0)] {
             assert!((1.0 / round_scale(scale) - force).abs() < 1e-9 * force, "{scale}");
         }
     }

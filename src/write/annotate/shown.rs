@@ -188,12 +188,11 @@ fn chords(path: &Path) -> Vec<Point> {
 
 /// Where the line of action of a force meets the path: the crossing nearest to where it acts, else the nearest point.
 fn foot(path: &Path, at: Point, force: Vec2) -> f64 {
-    let turn = if force.hypot() > 0.0 {
-        // The turn that makes the force upright, about where it acts.
-        std::f64::consts::FRAC_PI_2 - force.atan2()
-    } else {
-        0.0
-    };
+    if force.x == 0.0 {
+        return nearest_crossing(path, at, path.crossings_of_vertical(at.x));
+    }
+    // The turn that makes the force upright, about where it acts.
+    let turn = std::f64::consts::FRAC_PI_2 - force.atan2();
     let (sin, cos) = turn.sin_cos();
     let spin = |v: Vec2| Vec2::new(v.x * cos - v.y * sin, v.x * sin + v.y * cos);
     let about = |p: Point| spin(p - at).to_point();
@@ -203,13 +202,14 @@ fn foot(path: &Path, at: Point, force: Vec2) -> f64 {
             Segment::Arc { centre: about(centre), radius, start_angle: start_angle + turn, sweep }
         }
     }));
-    upright
-        .and_then(|p| {
-            p.crossings_of_vertical(0.0)
-                .into_iter()
-                .min_by(|a, b| (path.point_at(*a) - at).hypot().total_cmp(&(path.point_at(*b) - at).hypot()))
-        })
-        .unwrap_or_else(|| path.nearest(at).0)
+    let crossings = upright.map_or_else(Vec::new, |p| p.crossings_of_vertical(0.0));
+    nearest_crossing(path, at, crossings)
+}
+
+/// The crossing nearest to a point; without one, the nearest point of the path.
+fn nearest_crossing(path: &Path, at: Point, crossings: Vec<f64>) -> f64 {
+    let far = |s: &f64| (path.point_at(*s) - at).hypot();
+    crossings.into_iter().min_by(|a, b| far(a).total_cmp(&far(b))).unwrap_or_else(|| path.nearest(at).0)
 }
 
 #[cfg(test)]
