@@ -1,0 +1,73 @@
+//! A span of the model as the statics take it.
+
+use crate::geometry::Point;
+use crate::job::{Draw, Govern, RibDepth, Settings, Support};
+use crate::model::Span;
+use crate::refusal::Refusal;
+use crate::statics::{self, Depth, Force, LineKind, Problem, Unsolved};
+
+/// The problem of one span under its drawn loads.
+pub fn problem(span: &Span, settings: &Settings) -> Problem {
+    let rib = &settings.rib;
+    let mut draw: Vec<LineKind> = settings.line.draw.iter().map(|d| drawn(*d)).collect();
+    if settings.limits.geometric_factor.is_some() && !draw.contains(&LineKind::Closest) {
+        // The factor is that of the closest line, whichever line governs.
+        draw.push(LineKind::Closest);
+    }
+    Problem {
+        axis: span.axis.clone(),
+        forces: span.loads.iter().map(|load| Force { at: load.at, force: load.force }).collect(),
+        weight_on_axis: 0.0,
+        depth: rib.depth.map(|depth| match depth {
+            RibDepth::Constant(d) => Depth::Constant(d),
+            RibDepth::Linear([springing, crown]) => Depth::Linear { springing, crown },
+        }),
+        tension: rib.tension,
+        support: rib.support.map(|support| match support {
+            Support::Hingeless => statics::Support::Hingeless,
+            Support::TwoHinged => statics::Support::TwoHinged,
+            Support::ThreeHinged => statics::Support::ThreeHinged,
+            Support::None => statics::Support::None,
+        }),
+        hinges: Vec::new(),
+        through: settings.line.through.map(|points| points.map(|[x, y]| Point::new(x, y))),
+        govern: match settings.line.govern {
+            Govern::Auto => None,
+            Govern::Closest => Some(LineKind::Closest),
+            Govern::Through => Some(LineKind::Through),
+            Govern::LeastThrust => Some(LineKind::LeastThrust),
+            Govern::GreatestThrust => Some(LineKind::GreatestThrust),
+            Govern::Elastic => Some(LineKind::Elastic),
+        },
+        draw,
+    }
+}
+
+fn drawn(draw: Draw) -> LineKind {
+    match draw {
+        Draw::Closest => LineKind::Closest,
+        Draw::Through => LineKind::Through,
+        Draw::LeastThrust => LineKind::LeastThrust,
+        Draw::GreatestThrust => LineKind::GreatestThrust,
+        Draw::Elastic => LineKind::Elastic,
+    }
+}
+
+/// A span that could not be analysed, as a refusal that names its axis.
+pub fn refusal(span: &Span, unsolved: &Unsolved) -> Refusal {
+    let (check, remedy) = match unsolved {
+        Unsolved::NoLoad => ("no-load", "Put loads over the span on the load layer."),
+        Unsolved::SelfCrossing(..) => ("axis-crosses", "Draw the axis as one line from springing to springing."),
+        Unsolved::NoRise => ("no-rise", "Draw the axis with its rise, or take it as a beam."),
+        Unsolved::Hinges(_) => ("hinges", "Correct the hinges or [rib] support."),
+        Unsolved::SlackCable(_) => ("slack-cable", "Check the direction of the loads and the shape of the cable."),
+        Unsolved::NotBuilt(_) => ("not-built", "Leave it out of the job file in this version."),
+    };
+    let first = span.sources.first();
+    let mut refusal = Refusal::new(check, format!("{}: {unsolved}", span.name), remedy);
+    if let Some(source) = first {
+        refusal = refusal.at_handle(source.handle.clone()).on_layer(source.layer.clone());
+        refusal.line = source.line;
+    }
+    refusal
+}

@@ -1,0 +1,75 @@
+//! What the marks need to know of the sheet: units, extents, text heights, names.
+
+use std::path::Path;
+
+use super::{Checked, Environment};
+use crate::drawing::Drawing;
+use crate::drawing::viewport::scale_that_shows;
+use crate::geometry::Point;
+use crate::job;
+use crate::outcome::Xy;
+use crate::tags::marks::Plane;
+use crate::write::annotate::{Extents, Sheet, TextHeight};
+
+/// Millimetres in a paper unit where the drawing measures in inches.
+const INCH: f64 = 25.4;
+
+/// The sheet of a checked drawing.
+pub fn sheet(path: &Path, checked: &Checked, environment: Environment) -> Sheet {
+    let drawing = &checked.drawing;
+    let metres = drawing.unit.metres;
+    let curve = checked.run.spans.iter().flat_map(|s| {
+        // Ends, crown and the bulged pieces' own ends bound the axis closely enough for a layout.
+        s.axis.curve.iter().map(|c| [c[0], c[1]]).chain([s.axis.crown])
+    });
+    let loads = checked.run.spans.iter().flat_map(|s| s.loads.iter().map(|l| l.at));
+    let labels: Vec<Extents> = drawing.texts.iter().map(|t| in_metres(t.corners(), metres)).collect();
+    let corners = labels.iter().flat_map(|e| [e.low, e.high]);
+    let elevation = Extents::round(curve.chain(loads).chain(corners));
+    let english = checked.outline.header("$MEASUREMENT", 70) == Some("0");
+    Sheet {
+        metres_per_unit: metres,
+        plane: Plane::XY,
+        elevation,
+        model_space: model_extents(checked, metres),
+        occupied: labels,
+        drawing_text_height: usual_height(drawing),
+        viewport_scale: elevation.and_then(|e| {
+            let corner = |p: Xy| Point::new(p[0] / metres, p[1] / metres);
+            let scale = scale_that_shows(&drawing.viewports, corner(e.low), corner(e.high))?;
+            Some(scale * if english { INCH } else { 1.0 })
+        }),
+        text_height: match checked.settings.mark.text_height {
+            job::TextHeight::Auto => TextHeight::Auto,
+            job::TextHeight::Metres(height) => TextHeight::Units(height / metres),
+        },
+        prefix: checked.settings.mark.prefix.clone(),
+        frozen: checked.settings.mark.frozen,
+        tool_version: env!("CARGO_PKG_VERSION").into(),
+        date: environment.today.to_string(),
+        source_name: path.file_name().unwrap_or_default().to_string_lossy().into_owned(),
+        job_hash: checked.settings.origin.sha256.clone(),
+    }
+}
+
+fn in_metres(corners: [Point; 4], metres: f64) -> Extents {
+    Extents::round(corners.map(|p| [p.x * metres, p.y * metres]))
+        .unwrap_or(Extents { low: [0.0, 0.0], high: [0.0, 0.0] })
+}
+
+/// `$EXTMIN` and `$EXTMAX`, where they make sense. They may be stale; they only keep the marks clear of other parts.
+fn model_extents(checked: &Checked, metres: f64) -> Option<Extents> {
+    let read = |name: &str| -> Option<Xy> {
+        let number = |code| checked.outline.header(name, code)?.parse::<f64>().ok();
+        Some([number(10)? * metres, number(20)? * metres])
+    };
+    let (low, high) = (read("$EXTMIN")?, read("$EXTMAX")?);
+    (low[0] < high[0] && low[1] < high[1]).then_some(Extents { low, high })
+}
+
+/// The median height of the texts that were read.
+fn usual_height(drawing: &Drawing) -> Option<f64> {
+    let mut heights: Vec<f64> = drawing.texts.iter().map(|t| t.height).filter(|h| *h > 0.0).collect();
+    heights.sort_by(f64::total_cmp);
+    heights.get(heights.len() / 2).copied()
+}
