@@ -50,12 +50,7 @@ impl Segment {
         let left = Vec2::new(-chord.y, chord.x) / chord.hypot();
         let centre = start.midpoint(end) + left * apothem;
         let radius = half * (1.0 + bulge * bulge) / (2.0 * bulge.abs());
-        Self::Arc {
-            centre,
-            radius,
-            start_angle: (start - centre).atan2(),
-            sweep,
-        }
+        Self::Arc { centre, radius, start_angle: (start - centre).atan2(), sweep }
     }
 
     /// Where the piece begins.
@@ -84,18 +79,9 @@ impl Segment {
         match *self {
             Self::Line { start, end } => {
                 let length = (end - start).hypot();
-                if length > 0.0 {
-                    start + (end - start) * (s / length)
-                } else {
-                    start
-                }
+                if length > 0.0 { start + (end - start) * (s / length) } else { start }
             }
-            Self::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } => {
+            Self::Arc { centre, radius, start_angle, sweep } => {
                 let angle = start_angle + s / radius * sweep.signum();
                 centre + Vec2::from_angle(angle) * radius
             }
@@ -106,12 +92,7 @@ impl Segment {
     pub fn tangent_at(&self, s: f64) -> Vec2 {
         match *self {
             Self::Line { start, end } => (end - start).normalize(),
-            Self::Arc {
-                radius,
-                start_angle,
-                sweep,
-                ..
-            } => {
+            Self::Arc { radius, start_angle, sweep, .. } => {
                 let angle = start_angle + s / radius * sweep.signum();
                 Vec2::from_angle(angle + std::f64::consts::FRAC_PI_2 * sweep.signum())
             }
@@ -122,21 +103,10 @@ impl Segment {
     #[must_use]
     pub fn reversed(&self) -> Self {
         match *self {
-            Self::Line { start, end } => Self::Line {
-                start: end,
-                end: start,
-            },
-            Self::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } => Self::Arc {
-                centre,
-                radius,
-                start_angle: start_angle + sweep,
-                sweep: -sweep,
-            },
+            Self::Line { start, end } => Self::Line { start: end, end: start },
+            Self::Arc { centre, radius, start_angle, sweep } => {
+                Self::Arc { centre, radius, start_angle: start_angle + sweep, sweep: -sweep }
+            }
         }
     }
 
@@ -145,21 +115,10 @@ impl Segment {
     pub fn shifted_scaled(&self, by: Vec2, factor: f64) -> Self {
         let map = |p: Point| ((p + by).to_vec2() * factor).to_point();
         match *self {
-            Self::Line { start, end } => Self::Line {
-                start: map(start),
-                end: map(end),
-            },
-            Self::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } => Self::Arc {
-                centre: map(centre),
-                radius: radius * factor,
-                start_angle,
-                sweep,
-            },
+            Self::Line { start, end } => Self::Line { start: map(start), end: map(end) },
+            Self::Arc { centre, radius, start_angle, sweep } => {
+                Self::Arc { centre: map(centre), radius: radius * factor, start_angle, sweep }
+            }
         }
     }
 }
@@ -175,10 +134,8 @@ pub struct Path {
 impl Path {
     /// A path from pieces already in order; pieces of no length are left out. `None` when nothing is left.
     pub fn new(segments: impl IntoIterator<Item = Segment>) -> Option<Self> {
-        let segments: Vec<Segment> = segments
-            .into_iter()
-            .filter(|s| s.length() > 0.0 && s.length().is_finite())
-            .collect();
+        let segments: Vec<Segment> =
+            segments.into_iter().filter(|s| s.length() > 0.0 && s.length().is_finite()).collect();
         if segments.is_empty() {
             return None;
         }
@@ -189,10 +146,7 @@ impl Path {
             total += segment.length();
             cumulative.push(total);
         }
-        Some(Self {
-            segments,
-            cumulative,
-        })
+        Some(Self { segments, cumulative })
     }
 
     /// A path of straight pieces through the given points.
@@ -291,19 +245,11 @@ impl Path {
                         found.push(base + t * segment.length());
                     }
                 }
-                Segment::Arc {
-                    centre,
-                    radius,
-                    start_angle,
-                    sweep,
-                } => {
+                Segment::Arc { centre, radius, start_angle, sweep } => {
                     let c = (x - centre.x) / radius;
                     if c.abs() > 1.0 {
                         // An end that lies on the line but for rounding still counts.
-                        for (end, s) in [
-                            (segment.start(), 0.0),
-                            (segment.end(), segment.length()),
-                        ] {
+                        for (end, s) in [(segment.start(), 0.0), (segment.end(), segment.length())] {
                             if (end.x - x).abs() <= 4.0 * f64::EPSILON * x.abs().max(radius) {
                                 found.push(base + s);
                             }
@@ -341,11 +287,7 @@ impl Path {
     /// that height. With `below`, farthest below it (the height is then negative or zero).
     pub fn farthest_from_chord(&self, below: bool) -> (f64, f64) {
         let (a, b) = (self.start(), self.end());
-        let slope = if (b.x - a.x).abs() > 0.0 {
-            (b.y - a.y) / (b.x - a.x)
-        } else {
-            0.0
-        };
+        let slope = if (b.x - a.x).abs() > 0.0 { (b.y - a.y) / (b.x - a.x) } else { 0.0 };
         let sign = if below { -1.0 } else { 1.0 };
         let height = |p: Point| sign * (p.y - a.y - slope * (p.x - a.x));
         let mut best = (0.0, 0.0);
@@ -360,12 +302,7 @@ impl Path {
             let base = self.cumulative[i];
             offer(base, height(segment.start()));
             offer(base + segment.length(), height(segment.end()));
-            if let Segment::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } = *segment
+            if let Segment::Arc { centre, radius, start_angle, sweep } = *segment
                 && let Some(part) = swept_part(up.atan2(), start_angle, sweep)
             {
                 let p = centre + up.normalize() * radius;
@@ -400,26 +337,14 @@ fn nearest_on_segment(segment: &Segment, p: Point) -> (f64, f64) {
             let t = ((p - start).dot(d) / d.hypot2()).clamp(0.0, 1.0);
             (t * d.hypot(), (start + d * t - p).hypot())
         }
-        Segment::Arc {
-            centre,
-            radius,
-            start_angle,
-            sweep,
-        } => {
+        Segment::Arc { centre, radius, start_angle, sweep } => {
             let from_centre = p - centre;
             if let Some(part) = swept_part(from_centre.atan2(), start_angle, sweep) {
-                return (
-                    part * segment.length(),
-                    (from_centre.hypot() - radius).abs(),
-                );
+                return (part * segment.length(), (from_centre.hypot() - radius).abs());
             }
             let to_start = (segment.start() - p).hypot();
             let to_end = (segment.end() - p).hypot();
-            if to_start <= to_end {
-                (0.0, to_start)
-            } else {
-                (segment.length(), to_end)
-            }
+            if to_start <= to_end { (0.0, to_start) } else { (segment.length(), to_end) }
         }
     }
 }
@@ -447,8 +372,7 @@ mod tests {
     #[test]
     fn nearest_on_polyline() {
         let path =
-            Path::polyline(&[Point::new(0.0, 0.0), Point::new(4.0, 0.0), Point::new(4.0, 3.0)])
-                .unwrap();
+            Path::polyline(&[Point::new(0.0, 0.0), Point::new(4.0, 0.0), Point::new(4.0, 3.0)]).unwrap();
         let (s, d) = path.nearest(Point::new(5.0, 2.0));
         assert!((s - 6.0).abs() < 1e-12 && (d - 1.0).abs() < 1e-12);
     }

@@ -52,22 +52,12 @@ pub struct Units {
 impl Units {
     /// Kilonewtons.
     pub fn si() -> Self {
-        Self {
-            length: "m".into(),
-            force: "kN".into(),
-            moment: "kN·m".into(),
-            stress: Some("MPa".into()),
-        }
+        Self { length: "m".into(), force: "kN".into(), moment: "kN·m".into(), stress: Some("MPa".into()) }
     }
 
     /// Multiples of one unknown load.
     pub fn unit_loads() -> Self {
-        Self {
-            length: "m".into(),
-            force: "unit load".into(),
-            moment: "unit load·m".into(),
-            stress: None,
-        }
+        Self { length: "m".into(), force: "unit load".into(), moment: "unit load·m".into(), stress: None }
     }
 }
 

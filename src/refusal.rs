@@ -27,11 +27,7 @@ pub struct Refusal {
 
 impl Refusal {
     /// A refusal with no place yet; add places with the `at_…` methods.
-    pub fn new(
-        check: impl Into<String>,
-        message: impl Into<String>,
-        remedy: impl Into<String>,
-    ) -> Self {
+    pub fn new(check: impl Into<String>, message: impl Into<String>, remedy: impl Into<String>) -> Self {
         Self {
             check: check.into(),
             message: message.into(),

@@ -18,11 +18,7 @@ pub struct Plane {
 
 impl Plane {
     /// The ordinary elevation: x to the right, y upward, at z = 0.
-    pub const XY: Self = Self {
-        right: [1.0, 0.0, 0.0],
-        up: [0.0, 1.0, 0.0],
-        origin: [0.0, 0.0, 0.0],
-    };
+    pub const XY: Self = Self { right: [1.0, 0.0, 0.0], up: [0.0, 1.0, 0.0], origin: [0.0, 0.0, 0.0] };
 }
 
 /// A line type of dashes, gaps and dots.
