@@ -113,8 +113,6 @@ fn round_trip(source: &Source, marks: &Marks) -> Result<(Outline, Source), Refus
     assert_eq!(outline.sha256, Some(source.sha256().unwrap()));
     let edits = mark(source, &outline, marks)?;
     let marked = source.spliced(&edits)?;
-        std::fs::write(d, bytes(&marked)).unwrap();
-    }
     let again = scan(&marked, &Options::default()).expect("a marked drawing can be read");
     let found = again.marks.as_ref().expect("the marks are found");
     assert_eq!(found.version, Some(1), "{found:?}");
