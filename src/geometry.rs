@@ -3,6 +3,9 @@
 //! Points are in the elevation plane: `x` to the right, `y` upward. Lengths are in whatever unit the caller uses; the
 //! statics use metres. Arcs stay arcs: nothing here replaces one by chords or by cubics.
 
+mod crossing;
+
+pub use crossing::{Boxes, Crossing};
 pub use kurbo::{Point, Vec2};
 
 use crate::tolerance;
@@ -50,12 +53,7 @@ impl Segment {
         let left = Vec2::new(-chord.y, chord.x) / chord.hypot();
         let centre = start.midpoint(end) + left * apothem;
         let radius = half * (1.0 + bulge * bulge) / (2.0 * bulge.abs());
-        Self::Arc {
-            centre,
-            radius,
-            start_angle: (start - centre).atan2(),
-            sweep,
-        }
+        Self::Arc { centre, radius, start_angle: (start - centre).atan2(), sweep }
     }
 
     /// Where the piece begins.
@@ -84,18 +82,9 @@ impl Segment {
         match *self {
             Self::Line { start, end } => {
                 let length = (end - start).hypot();
-                if length > 0.0 {
-                    start + (end - start) * (s / length)
-                } else {
-                    start
-                }
+                if length > 0.0 { start + (end - start) * (s / length) } else { start }
             }
-            Self::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } => {
+            Self::Arc { centre, radius, start_angle, sweep } => {
                 let angle = start_angle + s / radius * sweep.signum();
                 centre + Vec2::from_angle(angle) * radius
             }
@@ -106,12 +95,7 @@ impl Segment {
     pub fn tangent_at(&self, s: f64) -> Vec2 {
         match *self {
             Self::Line { start, end } => (end - start).normalize(),
-            Self::Arc {
-                radius,
-                start_angle,
-                sweep,
-                ..
-            } => {
+            Self::Arc { radius, start_angle, sweep, .. } => {
                 let angle = start_angle + s / radius * sweep.signum();
                 Vec2::from_angle(angle + std::f64::consts::FRAC_PI_2 * sweep.signum())
             }
@@ -122,21 +106,10 @@ impl Segment {
     #[must_use]
     pub fn reversed(&self) -> Self {
         match *self {
-            Self::Line { start, end } => Self::Line {
-                start: end,
-                end: start,
-            },
-            Self::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } => Self::Arc {
-                centre,
-                radius,
-                start_angle: start_angle + sweep,
-                sweep: -sweep,
-            },
+            Self::Line { start, end } => Self::Line { start: end, end: start },
+            Self::Arc { centre, radius, start_angle, sweep } => {
+                Self::Arc { centre, radius, start_angle: start_angle + sweep, sweep: -sweep }
+            }
         }
     }
 
@@ -145,21 +118,10 @@ impl Segment {
     pub fn shifted_scaled(&self, by: Vec2, factor: f64) -> Self {
         let map = |p: Point| ((p + by).to_vec2() * factor).to_point();
         match *self {
-            Self::Line { start, end } => Self::Line {
-                start: map(start),
-                end: map(end),
-            },
-            Self::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } => Self::Arc {
-                centre: map(centre),
-                radius: radius * factor,
-                start_angle,
-                sweep,
-            },
+            Self::Line { start, end } => Self::Line { start: map(start), end: map(end) },
+            Self::Arc { centre, radius, start_angle, sweep } => {
+                Self::Arc { centre: map(centre), radius: radius * factor, start_angle, sweep }
+            }
         }
     }
 }
@@ -175,10 +137,8 @@ pub struct Path {
 impl Path {
     /// A path from pieces already in order; pieces of no length are left out. `None` when nothing is left.
     pub fn new(segments: impl IntoIterator<Item = Segment>) -> Option<Self> {
-        let segments: Vec<Segment> = segments
-            .into_iter()
-            .filter(|s| s.length() > 0.0 && s.length().is_finite())
-            .collect();
+        let segments: Vec<Segment> =
+            segments.into_iter().filter(|s| s.length() > 0.0 && s.length().is_finite()).collect();
         if segments.is_empty() {
             return None;
         }
@@ -189,10 +149,7 @@ impl Path {
             total += segment.length();
             cumulative.push(total);
         }
-        Some(Self {
-            segments,
-            cumulative,
-        })
+        Some(Self { segments, cumulative })
     }
 
     /// A path of straight pieces through the given points.
@@ -291,19 +248,11 @@ impl Path {
                         found.push(base + t * segment.length());
                     }
                 }
-                Segment::Arc {
-                    centre,
-                    radius,
-                    start_angle,
-                    sweep,
-                } => {
+                Segment::Arc { centre, radius, start_angle, sweep } => {
                     let c = (x - centre.x) / radius;
                     if c.abs() > 1.0 {
                         // An end that lies on the line but for rounding still counts.
-                        for (end, s) in [
-                            (segment.start(), 0.0),
-                            (segment.end(), segment.length()),
-                        ] {
+                        for (end, s) in [(segment.start(), 0.0), (segment.end(), segment.length())] {
                             if (end.x - x).abs() <= 4.0 * f64::EPSILON * x.abs().max(radius) {
                                 found.push(base + s);
                             }
@@ -338,41 +287,35 @@ impl Path {
     }
 
     /// The point farthest above the straight line from start to end, measured vertically: its length from the start and
-    /// that height. With `below`, farthest below it (the height is then negative or zero).
+    /// that height. With `below`, farthest below it (the height is then negative or zero). Of a level stretch it is the
+    /// middle, so that a mirrored path gives the mirrored point.
     pub fn farthest_from_chord(&self, below: bool) -> (f64, f64) {
         let (a, b) = (self.start(), self.end());
-        let slope = if (b.x - a.x).abs() > 0.0 {
-            (b.y - a.y) / (b.x - a.x)
-        } else {
-            0.0
-        };
+        let slope = if (b.x - a.x).abs() > 0.0 { (b.y - a.y) / (b.x - a.x) } else { 0.0 };
         let sign = if below { -1.0 } else { 1.0 };
         let height = |p: Point| sign * (p.y - a.y - slope * (p.x - a.x));
-        let mut best = (0.0, 0.0);
-        let mut offer = |s: f64, h: f64| {
-            if h > best.1 {
-                best = (s, h);
-            }
-        };
+        let mut places: Vec<(f64, f64)> = Vec::with_capacity(self.segments.len() + 1);
         // The normal of the chord, scaled for heights measured vertically; on an arc the extreme lies in its direction.
         let up = Vec2::new(-slope, 1.0) * sign;
         for (i, segment) in self.segments.iter().enumerate() {
             let base = self.cumulative[i];
-            offer(base, height(segment.start()));
-            offer(base + segment.length(), height(segment.end()));
-            if let Segment::Arc {
-                centre,
-                radius,
-                start_angle,
-                sweep,
-            } = *segment
+            places.push((base, height(segment.start())));
+            if let Segment::Arc { centre, radius, start_angle, sweep } = *segment
                 && let Some(part) = swept_part(up.atan2(), start_angle, sweep)
             {
                 let p = centre + up.normalize() * radius;
-                offer(base + part * segment.length(), height(p));
+                places.push((base + part * segment.length(), height(p)));
             }
         }
-        (best.0, sign * best.1)
+        places.push((self.length(), height(b)));
+        let top = places.iter().fold(0.0, |m, p| f64::max(m, p.1));
+        let level = |p: &(f64, f64)| top - p.1 <= self.length() * tolerance::SAME_PLACE;
+        let Some(first) = places.iter().position(level) else {
+            return (0.0, 0.0);
+        };
+        let stretch = places[first..].iter().take_while(|p| level(p)).count();
+        let s = f64::midpoint(places[first].0, places[first + stretch - 1].0);
+        (s, sign * top)
     }
 }
 
@@ -400,26 +343,14 @@ fn nearest_on_segment(segment: &Segment, p: Point) -> (f64, f64) {
             let t = ((p - start).dot(d) / d.hypot2()).clamp(0.0, 1.0);
             (t * d.hypot(), (start + d * t - p).hypot())
         }
-        Segment::Arc {
-            centre,
-            radius,
-            start_angle,
-            sweep,
-        } => {
+        Segment::Arc { centre, radius, start_angle, sweep } => {
             let from_centre = p - centre;
             if let Some(part) = swept_part(from_centre.atan2(), start_angle, sweep) {
-                return (
-                    part * segment.length(),
-                    (from_centre.hypot() - radius).abs(),
-                );
+                return (part * segment.length(), (from_centre.hypot() - radius).abs());
             }
             let to_start = (segment.start() - p).hypot();
             let to_end = (segment.end() - p).hypot();
-            if to_start <= to_end {
-                (0.0, to_start)
-            } else {
-                (segment.length(), to_end)
-            }
+            if to_start <= to_end { (0.0, to_start) } else { (segment.length(), to_end) }
         }
     }
 }
@@ -447,8 +378,7 @@ mod tests {
     #[test]
     fn nearest_on_polyline() {
         let path =
-            Path::polyline(&[Point::new(0.0, 0.0), Point::new(4.0, 0.0), Point::new(4.0, 3.0)])
-                .unwrap();
+            Path::polyline(&[Point::new(0.0, 0.0), Point::new(4.0, 0.0), Point::new(4.0, 3.0)]).unwrap();
         let (s, d) = path.nearest(Point::new(5.0, 2.0));
         assert!((s - 6.0).abs() < 1e-12 && (d - 1.0).abs() < 1e-12);
     }
