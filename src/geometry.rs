@@ -3,6 +3,9 @@
 //! Points are in the elevation plane: `x` to the right, `y` upward. Lengths are in whatever unit the caller uses; the
 //! statics use metres. Arcs stay arcs: nothing here replaces one by chords or by cubics.
 
+mod crossing;
+
+pub use crossing::{Boxes, Crossing};
 pub use kurbo::{Point, Vec2};
 
 use crate::tolerance;
@@ -284,32 +287,35 @@ impl Path {
     }
 
     /// The point farthest above the straight line from start to end, measured vertically: its length from the start and
-    /// that height. With `below`, farthest below it (the height is then negative or zero).
+    /// that height. With `below`, farthest below it (the height is then negative or zero). Of a level stretch it is the
+    /// middle, so that a mirrored path gives the mirrored point.
     pub fn farthest_from_chord(&self, below: bool) -> (f64, f64) {
         let (a, b) = (self.start(), self.end());
         let slope = if (b.x - a.x).abs() > 0.0 { (b.y - a.y) / (b.x - a.x) } else { 0.0 };
         let sign = if below { -1.0 } else { 1.0 };
         let height = |p: Point| sign * (p.y - a.y - slope * (p.x - a.x));
-        let mut best = (0.0, 0.0);
-        let mut offer = |s: f64, h: f64| {
-            if h > best.1 {
-                best = (s, h);
-            }
-        };
+        let mut places: Vec<(f64, f64)> = Vec::with_capacity(self.segments.len() + 1);
         // The normal of the chord, scaled for heights measured vertically; on an arc the extreme lies in its direction.
         let up = Vec2::new(-slope, 1.0) * sign;
         for (i, segment) in self.segments.iter().enumerate() {
             let base = self.cumulative[i];
-            offer(base, height(segment.start()));
-            offer(base + segment.length(), height(segment.end()));
+            places.push((base, height(segment.start())));
             if let Segment::Arc { centre, radius, start_angle, sweep } = *segment
                 && let Some(part) = swept_part(up.atan2(), start_angle, sweep)
             {
                 let p = centre + up.normalize() * radius;
-                offer(base + part * segment.length(), height(p));
+                places.push((base + part * segment.length(), height(p)));
             }
         }
-        (best.0, sign * best.1)
+        places.push((self.length(), height(b)));
+        let top = places.iter().fold(0.0, |m, p| f64::max(m, p.1));
+        let level = |p: &(f64, f64)| top - p.1 <= self.length() * tolerance::SAME_PLACE;
+        let Some(first) = places.iter().position(level) else {
+            return (0.0, 0.0);
+        };
+        let stretch = places[first..].iter().take_while(|p| level(p)).count();
+        let s = f64::midpoint(places[first].0, places[first + stretch - 1].0);
+        (s, sign * top)
     }
 }
 

@@ -159,3 +159,67 @@ pub const ONE_STRAIGHT_LINE: f64 = 1e-9;
 /// By how much the length of a direction of the mark plane may miss 1, and the product of two of them 0. No unit.
 /// Larger: marks come out stretched or skewed; smaller: directions computed from drawn points are refused.
 pub const UNIT_VECTOR: f64 = 1e-9;
+/// Places on the axis closer than this part of its length are one joint, and a line this close to an end meets it. No
+/// unit. Larger: loads near a springing are drawn onto it; smaller: a load over a springing of a drawing in national
+/// grid coordinates (1e-10 m of rounding on a few metres) counts as off the span.
+pub const SAME_JOINT: f64 = 1e-9;
+
+/// Distance from a smooth joint, as a part of the radius, within which two pieces of a path may seem to cross. The
+/// root of the rounding error, with a margin. Larger: true crossings hide there; smaller: smooth joints count as crossings.
+pub const TANGENT_JOINT: f64 = 1e-7;
+
+/// Height of the axis over its chord, as a part of the span, below which it has no rise. Larger: flat arches are
+/// refused; smaller: the rounding of a straight axis in national grid coordinates passes for a rise.
+pub const NO_RISE: f64 = 1e-9;
+
+/// Violation of a row of unit length, relative to the size of the vertex, that the simplex takes for rounding. No unit.
+/// Larger: optima lose digits; smaller: it chases rounding errors.
+pub const SIMPLEX_TIGHT: f64 = 4e-15;
+
+/// The same once thousands of steps have not brought an end. Larger: optima lose digits; smaller: no end.
+pub const SIMPLEX_LOOSE: f64 = 1e-12;
+
+/// Smallest weight in a ratio test of the simplex that is not rounding. Larger: a blocking row is passed over;
+/// smaller: the basis becomes singular.
+pub const SIMPLEX_PIVOT: f64 = 1e-13;
+
+/// Smallest pivot of a basis of unit rows that is not singular. Larger: thin but true corners are given up; smaller:
+/// vertices without a correct digit.
+pub const SIMPLEX_SINGULAR: f64 = 1e-15;
+
+/// Gain of another round of the exchange on the continuous axis, relative to the optimum, at which it ends. Larger:
+/// digits of the optimum are lost; smaller: rounds that only see rounding errors.
+pub const EXCHANGE_GAIN: f64 = 1e-13;
+
+/// The same at which it may end when the rounds bring no more, and the largest gap between an optimum and its proof.
+/// This is the accuracy that the tool owes for linear programs.
+pub const PROOF_GAP: f64 = 1e-9;
+
+/// Length of axis, as a part of the whole, to which the place of a peak is found. The height of a smooth peak is then
+/// exact to the square of it. Larger: peaks too low; smaller: steps that change nothing.
+pub const PEAK_PLACE: f64 = 1e-11;
+
+/// Size of the unknowns, in units of the load and of the push of a line of the rise, beyond which a line counts as
+/// running to infinity. Larger: rounding; smaller: true lines of very flat arches are called unbounded.
+pub const UNBOUNDED: f64 = 1e6;
+
+/// Multiplier, relative to the largest, below which a joint does not hold the optimum in place. Larger: joints that
+/// hold it are let go in the tie-break; smaller: rounding errors hold it.
+pub const MULTIPLIER: f64 = 1e-9;
+
+/// Part of a unit row that must be independent of the others to count in the rank. Larger: an optimum that is unique
+/// counts as free, which the tie-break then leaves in place; smaller: neighbouring cuts at one peak count twice.
+pub const RANK: f64 = 1e-5;
+
+/// Relative leave that the tie-break has over the optimum it must keep. Larger: the optimum is given away; smaller:
+/// rounding leaves no room.
+pub const TIE_LEAVE: f64 = 1e-11;
+
+/// Part of the resultant below which its horizontal part vanishes, so that a height above the axis means nothing.
+pub const VERTICAL_THRUST: f64 = 1e-12;
+
+/// Part of the load below which a thrust vanishes, so that an eccentricity means nothing.
+pub const NO_THRUST: f64 = 1e-13;
+
+/// Deviation, as a part of the span, of the polygon that stands for a curved line of thrust. A visible corner is larger.
+pub const LINE_POLYGON: f64 = 1e-5;

@@ -4,6 +4,22 @@
 //! metres and unit loads). Compression is positive, eccentricity is positive toward the extrados (the side of the
 //! normal, upward for an axis that runs from left to right), loads down are negative in `y`.
 
+mod analyse;
+mod check;
+mod closest;
+mod line;
+mod peaks;
+mod pole;
+mod quadratic;
+mod rule;
+mod simplex;
+mod span;
+mod string;
+mod subspace;
+mod through;
+
+pub use analyse::analyse;
+
 use crate::geometry::{Path, Point, Vec2};
 
 /// A force that acts on the span.
@@ -302,6 +318,9 @@ pub enum Unsolved {
     /// A cable that would have to push.
     #[error("{0}")]
     SlackCable(String),
+    /// Numbers that describe no span.
+    #[error("{0}")]
+    Input(String),
     /// Something asked that is not built for this span.
     #[error("{0}")]
     NotBuilt(String),

@@ -1,0 +1,165 @@
+//! From a problem to its lines of thrust.
+
+use super::closest::{Closest, Search};
+use super::line::{Sheet, missing};
+use super::peaks::Sampling;
+use super::rule::{Choice, choose, through_points};
+use super::span::{Joint, Span, Unknowns};
+use super::subspace::Subspace;
+use super::through::{slack, through};
+use super::{Analysis, Line, LineKind, Placed, Problem, SpanKind, Status, Unsolved};
+
+/// Computes the governing line of thrust of a span and those wanted beside it.
+///
+/// Lengths in m, forces in kN (or unit loads), moments in kN·m; signs and unknowns as in the module's head.
+///
+/// # Errors
+///
+/// [`Unsolved`] says why: no load, an axis without rise or one that crosses itself, hinges that contradict each other, a
+/// cable that would have to push, numbers that are not finite, a line that is not built. An optimum that does not exist
+/// is no error but a [`Status`] of its line.
+pub fn analyse(problem: &Problem) -> Result<Analysis, Unsolved> {
+    let span = Span::new(problem)?;
+    let choice = choose(problem, &span)?;
+    let sense = if choice.kind == SpanKind::Cable { -1.0 } else { 1.0 };
+    let sampling = Sampling::new(&span, sense);
+    let shallow = span.with_unit_depth();
+    let bare = Sampling::new(&shallow, sense);
+    let work = Work {
+        problem,
+        span: &span,
+        choice: &choice,
+        sense,
+        sheet: Sheet { span: &span, sampling: &sampling, bare: &bare },
+    };
+
+    let mut kinds = vec![choice.governs];
+    for &kind in &problem.draw {
+        if !kinds.contains(&kind) {
+            kinds.push(kind);
+        }
+    }
+    let mut lines = Vec::with_capacity(kinds.len());
+    let mut residual = 0.0_f64;
+    for kind in kinds {
+        let (line, r) = work.line(kind)?;
+        if let Some(r) = r {
+            let found = super::check::residual(problem, &span, &sampling, &r, &line.vertices);
+            residual = residual.max(found);
+        }
+        lines.push(line);
+    }
+
+    let crown = span.joint_at(span.crown.0, true).at;
+    Ok(Analysis {
+        kind: choice.kind,
+        crown: span.drawn(crown),
+        span: span.path.end().x * span.length,
+        rise: span.crown.1 * span.length,
+        order: span.entered.iter().map(|e| Placed { force: e.index, foot: e.foot * span.length }).collect(),
+        off_span: span.missed.clone(),
+        total: span.total() * span.load,
+        pole: super::pole::pole(&span),
+        governs: 0,
+        rule: choice.rule,
+        lines,
+        residual,
+    })
+}
+
+/// One problem with all that its lines share.
+struct Work<'a> {
+    problem: &'a Problem,
+    span: &'a Span,
+    choice: &'a Choice,
+    sense: f64,
+    sheet: Sheet<'a>,
+}
+
+impl Work<'_> {
+    fn line(&self, kind: LineKind) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        match kind {
+            LineKind::Through => self.through(),
+            LineKind::Closest => self.closest(),
+            LineKind::LeastThrust => not_built("least-thrust"),
+            LineKind::GreatestThrust => not_built("greatest-thrust"),
+            LineKind::Elastic => not_built("elastic"),
+        }
+    }
+
+    fn through(&self) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let kind = LineKind::Through;
+        let points = through_points(self.problem, self.span, self.choice)?;
+        let Some(r) = through(self.span, &points) else {
+            return Err(Unsolved::Hinges(
+                "the three points that the line of thrust should pass through lie on one straight line"
+                    .into(),
+            ));
+        };
+        match slack(self.sheet.sampling.least_thrust(&r)) {
+            Some(joint) => self.no_line(kind, "the line through its three points", &joint),
+            None => Ok((self.sheet.found(kind, self.choice.support, &r, None), Some(r))),
+        }
+    }
+
+    fn closest(&self) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let kind = LineKind::Closest;
+        let rows: Vec<_> = self.choice.hinges.iter().map(|&p| self.span.hinge_row(p)).collect();
+        let Some(space) = Subspace::new(self.span, &rows) else {
+            return Err(Unsolved::Hinges(
+                "the drawn hinges lie on one straight line or in one place: no single line of thrust passes through them"
+                    .into(),
+            ));
+        };
+        let start = through_points(self.problem, self.span, self.choice)
+            .ok()
+            .and_then(|points| through(self.span, &points))
+            .filter(|_| self.problem.through.is_none());
+        let search = Search::new(self.span, self.sheet.sampling, &space, self.sense);
+        let support = self.choice.support;
+        match search.run(start) {
+            Closest::Found { r, proof } => Ok((self.sheet.found(kind, support, &r, Some(proof)), Some(r))),
+            Closest::None(joint) => self.no_line(kind, "every line", &joint),
+            Closest::Unbounded => {
+                let reason = "the line comes closer to the axis the greater the push is, without end: the loads do not \
+                              act as a load on an arch of this shape";
+                Ok((missing(kind, support, Status::Unbounded, reason.into()), None))
+            }
+            Closest::Stalled => {
+                let reason = "the search for the closest line did not end within its accuracy";
+                Ok((missing(kind, support, Status::Refused, reason.into()), None))
+            }
+        }
+    }
+
+    /// A line that would have to pull in an arch, or push in a cable.
+    fn no_line(
+        &self,
+        kind: LineKind,
+        which: &str,
+        joint: &Joint,
+    ) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let at = self.span.drawn(joint.at);
+        let place = format!("near ({:.3}, {:.3}) m", at.x, at.y);
+        let load = self
+            .span
+            .entered
+            .iter()
+            .min_by(|a, b| (a.foot - joint.s).abs().total_cmp(&(b.foot - joint.s).abs()))
+            .map_or_else(String::new, |e| {
+                let f = self.problem.forces[e.index].at;
+                format!("; the nearest load acts at ({:.3}, {:.3}) m", f.x, f.y)
+            });
+        if self.choice.kind == SpanKind::Cable {
+            return Err(Unsolved::SlackCable(format!(
+                "{which} would have to push {place}: a cable cannot{load}"
+            )));
+        }
+        let reason = format!("{which} has no compression left {place}{load}");
+        Ok((missing(kind, self.choice.support, Status::None, reason), None))
+    }
+}
+
+fn not_built<T>(name: &str) -> Result<T, Unsolved> {
+    Err(Unsolved::NotBuilt(format!("the line `{name}` is not built yet")))
+}

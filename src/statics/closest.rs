@@ -1,0 +1,398 @@
+//! The line of thrust closest to the axis: least possible largest `|e| / d`, exact on the continuous axis.
+//!
+//! `|M_j| ≤ τ d_j N_j` is linear in the unknowns for a given `τ`. On a finite set of joints the least `τ` follows from
+//! linear programs `min z, ±M_j − τ d_j N_j ≤ z ω_j` with `ω_j = d_j N_j` of the line before, each giving a smaller `τ`
+//! [Dinkelbach 1967; with these weights Crouzeix, Ferland and Schaible 1985]. Then the joint where `|M| / (d N)` is worst
+//! on the whole axis comes in [exchange: Remez 1934], until it brings nothing.
+
+#![allow(clippy::needless_range_loop, reason = "small dense matrices read best by index")]
+
+use super::Proof;
+use super::peaks::{Peak, Sampling};
+use super::quadratic::{Bound, Quadratic};
+use super::simplex::{MOST, Outcome, Program, Row, Vertex};
+use super::span::{Joint, Span, Unknowns};
+use super::subspace::Subspace;
+use crate::tolerance;
+
+/// Joints that the exchange starts with.
+const START: usize = 24;
+/// Joints that one round of the exchange may add.
+const ROUND: usize = 8;
+/// Rounds after which the exchange must have ended.
+const ROUNDS: usize = 80;
+/// Linear programs for one set of joints.
+const STEPS: usize = 40;
+
+/// The closest line, or why there is none.
+#[derive(Debug, Clone)]
+pub(super) enum Closest {
+    /// The unknowns, the largest `|e| / d` and its proof, in local units.
+    Found { r: Unknowns, proof: Proof },
+    /// No line pushes throughout: the joint that is always pulled.
+    None(Joint),
+    /// The best value is only reached with the push growing without end.
+    Unbounded,
+    /// Rounding kept the exchange from ending.
+    Stalled,
+}
+
+/// A joint of the program with its rows in the free unknowns.
+#[derive(Debug, Clone, Copy)]
+struct Cut {
+    joint: Joint,
+    moment: ([f64; 3], f64),
+    /// Depth times thrust in its own sense.
+    room: ([f64; 3], f64),
+}
+
+/// One problem on its way.
+pub(super) struct Search<'a> {
+    span: &'a Span,
+    sampling: &'a Sampling<'a>,
+    space: &'a Subspace,
+    sense: f64,
+    cuts: Vec<Cut>,
+    program: Program,
+    /// Values below this are rounding.
+    floor: f64,
+}
+
+/// The best line for the joints so far.
+struct Step {
+    r: Unknowns,
+    tau: f64,
+    /// The `τ` of the last program, its bound, and its multipliers.
+    asked: f64,
+    bound: f64,
+    multipliers: Vec<Multiplier>,
+}
+
+/// The multiplier of one row of the last program.
+#[derive(Debug, Clone, Copy)]
+struct Multiplier {
+    /// Index of the cut.
+    cut: usize,
+    /// Whether of `M ≤ τ d N` or of `−M ≤ τ d N`.
+    upper: bool,
+    value: f64,
+}
+
+impl<'a> Search<'a> {
+    pub fn new(span: &'a Span, sampling: &'a Sampling<'a>, space: &'a Subspace, sense: f64) -> Self {
+        let mut cost = vec![0.0; space.free];
+        cost.push(1.0);
+        let deepest = sampling.joints().iter().fold(0.0, |m, j| f64::max(m, j.depth));
+        let mut search = Self {
+            span,
+            sampling,
+            space,
+            sense,
+            cuts: Vec::new(),
+            program: Program::new(&cost, tolerance::UNBOUNDED),
+            floor: 0.1 * span.crown.1.abs() / deepest,
+        };
+        for joint in sampling.spread(START) {
+            search.add(joint);
+        }
+        search
+    }
+
+    fn add(&mut self, joint: Joint) {
+        let moment = self.space.row(&joint.moment_row());
+        let thrust = self.space.row(&joint.thrust_row());
+        let factor = self.sense * joint.depth;
+        let room = (thrust.0.map(|v| v * factor), thrust.1 * factor);
+        self.cuts.push(Cut { joint, moment, room });
+    }
+
+    /// Finds the closest line, starting from `first` if that pushes throughout.
+    pub fn run(mut self, first: Option<Unknowns>) -> Closest {
+        let start = first.filter(|r| self.worst_finite(r).is_some());
+        let mut r = match start.map_or_else(|| self.pushing(), Ok) {
+            Ok(r) => r,
+            Err(joint) => return Closest::None(joint),
+        };
+        let Some(mut upper) = self.worst_finite(&r) else {
+            return Closest::Stalled;
+        };
+        let mut best: Option<(f64, Step)> = None;
+        for _ in 0..ROUNDS {
+            let Some(step) = self.least(&r, upper) else {
+                break;
+            };
+            let peaks = self.sampling.peaks(&step.r, step.tau);
+            let worst = peaks.first().map_or(step.tau, |p| p.value);
+            let gain = worst - step.tau;
+            let ends = gain <= tolerance::EXCHANGE_GAIN * step.tau.max(self.floor);
+            let fresh = self.take(&peaks, step.tau);
+            if worst.is_finite() && worst <= upper {
+                (r, upper) = (step.r, worst);
+            }
+            if best.as_ref().is_none_or(|b| gain < b.0) {
+                best = Some((gain, step));
+            }
+            if ends || fresh == 0 {
+                break;
+            }
+        }
+        let Some((gain, step)) = best else {
+            return Closest::Stalled;
+        };
+        if gain > tolerance::PROOF_GAP * step.tau.max(self.floor) {
+            return Closest::Stalled;
+        }
+        self.finish(step)
+    }
+
+    /// Adds the highest peaks above `tau`; gives how many.
+    fn take(&mut self, peaks: &[Peak], tau: f64) -> usize {
+        let mut count = 0;
+        for peak in peaks.iter().take(ROUND) {
+            let known = self.cuts.iter().any(|c| {
+                c.joint.piece == peak.joint.piece && (c.joint.s - peak.joint.s).abs() <= tolerance::PEAK_PLACE
+            });
+            if peak.value > tau && !known {
+                self.add(peak.joint);
+                count += 1;
+            }
+        }
+        count
+    }
+
+    fn worst_finite(&self, r: &Unknowns) -> Option<f64> {
+        self.sampling.worst(r).map(|p| p.value).filter(|v| v.is_finite())
+    }
+
+    /// Some line that pushes throughout, by `max z, N_j ≥ z`; the joint that cannot be pushed when there is none.
+    fn pushing(&self) -> Result<Unknowns, Joint> {
+        let mut cost = vec![0.0; self.space.free];
+        cost.push(1.0);
+        let mut program = Program::new(&cost, 1e3);
+        for joint in self.sampling.joints() {
+            let (a, c) = self.space.row(&joint.thrust_row());
+            let mut row = Row { a: [0.0; MOST], b: c * self.sense };
+            for (to, v) in row.a.iter_mut().zip(a).take(self.space.free) {
+                *to = -v * self.sense;
+            }
+            row.a[self.space.free] = -1.0;
+            program.push(row);
+        }
+        if let Outcome::Best(v) = program.solve() {
+            let r = self.space.unknowns(&v.x[..self.space.free]);
+            let (least, joint) = self.sampling.least_thrust(&r);
+            return if least > tolerance::NO_THRUST { Ok(r) } else { Err(joint) };
+        }
+        Err(self.span.first())
+    }
+
+    /// Largest `|M| / (d N)` over the cuts; `None` where one does not push.
+    fn ratio(&self, y: &[f64; 3]) -> Option<f64> {
+        let mut most = 0.0_f64;
+        for cut in &self.cuts {
+            let (m, d) = (value(&cut.moment, y), value(&cut.room, y));
+            if d <= 0.0 {
+                if m.abs() > 0.0 || d < 0.0 {
+                    return None;
+                }
+                continue;
+            }
+            most = most.max(m.abs() / d);
+        }
+        Some(most)
+    }
+
+    /// The best line for the cuts, from the line `r` whose ratio is at most `upper`.
+    fn least(&mut self, r: &Unknowns, upper: f64) -> Option<Step> {
+        let n = self.space.free;
+        let mut weights: Vec<f64> =
+            self.cuts.iter().map(|c| c.joint.thrust(r) * self.sense * c.joint.depth).collect();
+        let mut tau = upper;
+        let mut last: Option<Step> = None;
+        for _ in 0..STEPS {
+            let rows = self.cuts.iter().zip(&weights).flat_map(|(cut, w)| {
+                [1.0, -1.0].map(|side| {
+                    let mut a = [0.0; MOST];
+                    for i in 0..n {
+                        a[i] = side * cut.moment.0[i] - tau * cut.room.0[i];
+                    }
+                    a[n] = -w.max(f64::MIN_POSITIVE);
+                    Row { a, b: tau * cut.room.1 - side * cut.moment.1 }
+                })
+            });
+            self.program.replace(rows);
+            let Outcome::Best(vertex) = self.program.solve() else {
+                return last;
+            };
+            let mut y = [0.0; 3];
+            y[..n].copy_from_slice(&vertex.x[..n]);
+            let Some(reached) = self.ratio(&y) else {
+                return last;
+            };
+            let gain = tau - reached;
+            let step = Step {
+                r: self.space.unknowns(&y),
+                tau: reached,
+                asked: tau,
+                bound: vertex.dual,
+                multipliers: self.multipliers(&vertex),
+            };
+            let done = gain <= 4.0 * f64::EPSILON * tau.max(self.floor);
+            if !done {
+                tau = reached;
+                for (w, cut) in weights.iter_mut().zip(&self.cuts) {
+                    *w = value(&cut.room, &y);
+                }
+            }
+            if last.as_ref().is_none_or(|l| reached <= l.tau || !done) {
+                last = Some(step);
+            }
+            if done {
+                break;
+            }
+        }
+        last
+    }
+
+    /// Chooses among equally close lines, measures the line on the whole axis, and draws up the proof.
+    fn finish(mut self, step: Step) -> Closest {
+        let holds = self.holding(&step);
+        let mut r = step.r;
+        if holds.len() < self.space.free
+            && let Some(chosen) = self.least_bending(&step, &holds)
+        {
+            r = chosen;
+        }
+        let far = tolerance::UNBOUNDED * 0.5;
+        let sized = (r[0] * (8.0 * self.span.crown.1.abs()).min(1.0)).abs().max(r[1].abs());
+        if sized > far {
+            return Closest::Unbounded;
+        }
+        let Some(primal) = self.worst_finite(&r) else {
+            return Closest::Stalled;
+        };
+        let dual = self.dual(&step, &r);
+        let gap = (primal - dual).abs() / primal.abs().max(dual.abs()).max(1.0);
+        Closest::Found { r, proof: Proof { primal, dual, gap } }
+    }
+
+    /// The bound of the multipliers: with `Σ λ (±M − τ d N) = φ` for every line, no line has a ratio below
+    /// `τ + φ / Σ λ d N`, to first order in the tiny `φ`.
+    fn dual(&self, step: &Step, r: &Unknowns) -> f64 {
+        let room: f64 = step
+            .multipliers
+            .iter()
+            .map(|m| {
+                let joint = &self.cuts[m.cut].joint;
+                m.value * joint.thrust(r) * self.sense * joint.depth
+            })
+            .sum();
+        if room > 0.0 { step.asked + step.bound / room } else { 0.0 }
+    }
+
+    fn multipliers(&self, vertex: &Vertex) -> Vec<Multiplier> {
+        let first = self.program.box_rows();
+        let cuts = vertex.active.iter().filter(|a| a.0 >= first);
+        cuts.map(|&(i, value)| Multiplier {
+            cut: (i - first) / 2,
+            upper: (i - first).is_multiple_of(2),
+            value,
+        })
+        .collect()
+    }
+
+    /// The equations that hold the optimum in place: independent rows with multipliers.
+    fn holding(&self, step: &Step) -> Vec<Bound> {
+        let n = self.space.free;
+        let most = step.multipliers.iter().fold(0.0, |m, a| f64::max(m, a.value));
+        let mut active = step.multipliers.clone();
+        active.retain(|m| m.value > tolerance::MULTIPLIER * most);
+        active.sort_by(|a, b| b.value.total_cmp(&a.value).then(a.cut.cmp(&b.cut)));
+        let mut held: Vec<Bound> = Vec::new();
+        let mut units: Vec<[f64; 3]> = Vec::new();
+        for m in &active {
+            let (a, b) = self.bound(&self.cuts[m.cut], m.upper, step.tau);
+            let size = a.iter().map(|v| v * v).sum::<f64>().sqrt();
+            let mut rest = a.map(|v| v / size);
+            for u in &units {
+                let along: f64 = (0..n).map(|j| rest[j] * u[j]).sum();
+                for j in 0..n {
+                    rest[j] -= along * u[j];
+                }
+            }
+            let left = rest.iter().map(|v| v * v).sum::<f64>().sqrt();
+            if size > 0.0 && left > tolerance::RANK {
+                units.push(rest.map(|v| v / left));
+                held.push((a, b));
+            }
+        }
+        held
+    }
+
+    /// `±M − τ d N ≤ 0` as a row of the free unknowns.
+    fn bound(&self, cut: &Cut, upper: bool, tau: f64) -> Bound {
+        let side = if upper { 1.0 } else { -1.0 };
+        let mut a = [0.0; 3];
+        for (i, v) in a.iter_mut().enumerate().take(self.space.free) {
+            *v = side * cut.moment.0[i] - tau * cut.room.0[i];
+        }
+        (a, tau * cut.room.1 - side * cut.moment.1)
+    }
+
+    /// Of all lines as close as the best, the one of least `∫ M² ds`.
+    fn least_bending(&mut self, step: &Step, holds: &[Bound]) -> Option<Unknowns> {
+        let aim = self.bending();
+        let leave = step.tau + tolerance::TIE_LEAVE * step.tau.max(self.floor);
+        let known = self.cuts.len();
+        let mut chosen = None;
+        for _ in 0..ROUNDS {
+            let rows: Vec<Bound> = self
+                .cuts
+                .iter()
+                .flat_map(|c| [self.bound(c, true, leave), self.bound(c, false, leave)])
+                .collect();
+            let y = aim.least(holds, &rows)?;
+            let r = self.space.unknowns(&y);
+            let peaks = self.sampling.peaks(&r, leave);
+            let worst = peaks.first().map_or(0.0, |p| p.value);
+            if worst <= leave + tolerance::TIE_LEAVE * leave.max(self.floor) {
+                chosen = Some(r);
+                break;
+            }
+            if self.take(&peaks, leave) == 0 {
+                break;
+            }
+        }
+        // The multipliers of the proof count the cuts that the program knew.
+        self.cuts.truncate(known);
+        chosen
+    }
+
+    /// `½ ∫ M² ds` in the free unknowns, by Gauss with three points between neighbouring samples.
+    fn bending(&self) -> Quadratic {
+        let mut q = Quadratic { n: self.space.free, matrix: [[0.0; 3]; 3], linear: [0.0; 3] };
+        for pair in self.sampling.joints().windows(2) {
+            if pair[0].piece != pair[1].piece {
+                continue;
+            }
+            let piece = &self.span.pieces[pair[0].piece];
+            let (half, middle) = ((pair[1].s - pair[0].s) / 2.0, f64::midpoint(pair[0].s, pair[1].s));
+            let far = 0.6_f64.sqrt();
+            for (x, w) in [(-far, 5.0 / 9.0), (0.0, 8.0 / 9.0), (far, 5.0 / 9.0)] {
+                let joint = piece.joint(middle + half * x, pair[0].piece);
+                let (m, c) = self.space.row(&joint.moment_row());
+                for i in 0..q.n {
+                    for j in 0..q.n {
+                        q.matrix[i][j] += w * half * m[i] * m[j];
+                    }
+                    q.linear[i] += w * half * m[i] * c;
+                }
+            }
+        }
+        q
+    }
+}
+
+fn value(row: &([f64; 3], f64), y: &[f64; 3]) -> f64 {
+    row.0[0] * y[0] + row.0[1] * y[1] + row.0[2] * y[2] + row.1
+}

@@ -1,0 +1,198 @@
+//! Where a constraint's own function is worst on the continuous axis.
+//!
+//! The function is `|M| / (d N)` for a line of thrust: eccentricity over depth. Between loads, kinks and joints of
+//! pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of its slope is
+//! followed to the peak.
+
+use super::span::{Joint, Piece, Span, Unknowns};
+use crate::tolerance;
+
+/// Turning of the axis between two samples, degrees.
+const SAMPLE_TURN: f64 = 3.0;
+/// Samples of a straight piece under its own weight.
+const SAMPLES_STRAIGHT: usize = 4;
+
+/// A joint where the function has a peak or an end.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Peak {
+    pub joint: Joint,
+    /// `|M| / (d N)`; infinite where the thrust vanishes or has the wrong sense.
+    pub value: f64,
+    /// Thrust in its own sense over the load: orders the peaks that are infinite.
+    thrust: f64,
+}
+
+/// The samples of a span, made once.
+pub(super) struct Sampling<'a> {
+    span: &'a Span,
+    /// 1 for compression, −1 for a cable.
+    sense: f64,
+    joints: Vec<Joint>,
+}
+
+impl<'a> Sampling<'a> {
+    pub fn new(span: &'a Span, sense: f64) -> Self {
+        let mut joints = Vec::with_capacity(3 * span.pieces.len());
+        for (i, piece) in span.pieces.iter().enumerate() {
+            let length = piece.s1 - piece.s0;
+            let parts = parts(piece);
+            joints.push(piece.joint(piece.s0, i));
+            for k in 1..parts {
+                joints.push(piece.joint(piece.s0 + length * k as f64 / parts as f64, i));
+            }
+            if length > 0.0 {
+                joints.push(piece.joint(piece.s1, i));
+            }
+        }
+        Self { span, sense, joints }
+    }
+
+    pub fn joints(&self) -> &[Joint] {
+        &self.joints
+    }
+
+    /// About `count` joints spread evenly, with both ends: a start for the exchange.
+    pub fn spread(&self, count: usize) -> Vec<Joint> {
+        let last = self.joints.len() - 1;
+        let count = count.min(last).max(1);
+        (0..=count).map(|k| self.joints[last * k / count]).collect()
+    }
+
+    /// Least thrust, in its own sense, over all samples.
+    pub fn least_thrust(&self, r: &Unknowns) -> (f64, Joint) {
+        let mut least = (f64::INFINITY, self.joints[0]);
+        for joint in &self.joints {
+            let n = joint.thrust(r) * self.sense;
+            if n < least.0 {
+                least = (n, *joint);
+            }
+        }
+        least
+    }
+
+    fn peak(&self, joint: &Joint, r: &Unknowns) -> Peak {
+        let (moment, thrust) = (joint.moment(r), joint.thrust(r) * self.sense);
+        let value = if thrust > tolerance::NO_THRUST {
+            moment.abs() / (joint.depth * thrust)
+        } else if moment.abs() <= tolerance::NO_THRUST && thrust > -tolerance::NO_THRUST {
+            // Neither thrust nor moment: nothing passes through this joint.
+            0.0
+        } else {
+            f64::INFINITY
+        };
+        Peak { joint: *joint, value, thrust }
+    }
+
+    /// All ends and peaks at least as high as `floor`, highest first.
+    pub fn peaks(&self, r: &Unknowns, floor: f64) -> Vec<Peak> {
+        let mut found: Vec<Peak> = Vec::new();
+        let mut best = floor;
+        let mut k = 0;
+        while k < self.joints.len() {
+            let piece = self.joints[k].piece;
+            let end = k + self.joints[k..].iter().take_while(|j| j.piece == piece).count();
+            for i in [k, end - 1] {
+                let peak = self.peak(&self.joints[i], r);
+                if peak.value >= floor {
+                    best = best.max(if peak.value.is_finite() { peak.value } else { best });
+                    found.push(peak);
+                }
+            }
+            k = end;
+        }
+        let mut before: Option<(&Joint, f64)> = None;
+        for joint in &self.joints {
+            let piece = &self.span.pieces[joint.piece];
+            if piece.is_plain() {
+                before = None;
+                continue;
+            }
+            if joint.thrust(r) * self.sense <= tolerance::NO_THRUST {
+                let peak = self.peak(joint, r);
+                if peak.value.is_infinite() {
+                    found.push(peak);
+                }
+                before = None;
+                continue;
+            }
+            let slope = self.slope(piece, joint, r);
+            if let Some((from, earlier)) = before
+                && from.piece == joint.piece
+                && earlier * slope < 0.0
+            {
+                // No peak between two samples is higher than this.
+                let reach = |j: &Joint, slope: f64| {
+                    let d = j.depth * j.thrust(r);
+                    (j.moment(r) / d).abs() + (slope / (d * d)).abs() * (joint.s - from.s)
+                };
+                if reach(from, earlier).max(reach(joint, slope)) >= floor.max(0.5 * best) {
+                    let top = self.summit(piece, (from.s, earlier), (joint.s, slope), joint.piece, r);
+                    let peak = self.peak(&top, r);
+                    if peak.value >= floor {
+                        found.push(peak);
+                    }
+                }
+            }
+            before = Some((joint, slope));
+        }
+        found.sort_by(|a, b| {
+            b.value
+                .total_cmp(&a.value)
+                .then(a.thrust.total_cmp(&b.thrust))
+                .then(a.joint.s.total_cmp(&b.joint.s))
+        });
+        found
+    }
+
+    /// The highest peak of all.
+    pub fn worst(&self, r: &Unknowns) -> Option<Peak> {
+        self.peaks(r, 0.0).first().copied()
+    }
+
+    /// `M' D − M D'` with `D = d N`: the slope of `M / D` but for a positive factor. `M' = S`.
+    fn slope(&self, piece: &Piece, joint: &Joint, r: &Unknowns) -> f64 {
+        let (m, n, s) = (joint.moment(r), joint.thrust(r), joint.shear(r));
+        s * joint.depth * n - m * (piece.depth_slope * n + joint.depth * piece.thrust_slope(joint, r))
+    }
+
+    /// Where the slope vanishes between two joints at which it has opposite signs: regula falsi, halving the weight of
+    /// an end that stays [Dowell and Jarratt 1971, the Illinois rule].
+    fn summit(&self, piece: &Piece, from: (f64, f64), to: (f64, f64), index: usize, r: &Unknowns) -> Joint {
+        let ((mut a, mut fa), (mut b, mut fb)) = (from, to);
+        let mut joint = piece.joint(f64::midpoint(a, b), index);
+        let mut moved = 0.0;
+        for _ in 0..80 {
+            let c = (a * fb - b * fa) / (fb - fa);
+            let c = if c > a && c < b { c } else { f64::midpoint(a, b) };
+            let step = (c - joint.s).abs();
+            joint = piece.joint(c, index);
+            let fc = self.slope(piece, &joint, r);
+            if step <= tolerance::PEAK_PLACE || fc.abs() <= f64::MIN_POSITIVE {
+                break;
+            }
+            let side = (fc * fa).signum();
+            if side < 0.0 {
+                (b, fb) = (c, fc);
+                if moved < 0.0 {
+                    fa *= 0.5;
+                }
+            } else {
+                (a, fa) = (c, fc);
+                if moved > 0.0 {
+                    fb *= 0.5;
+                }
+            }
+            moved = side;
+        }
+        joint
+    }
+}
+
+fn parts(piece: &Piece) -> usize {
+    if piece.is_plain() || piece.s1 <= piece.s0 {
+        return 1;
+    }
+    let turn = (piece.curvature * (piece.s1 - piece.s0)).abs().to_degrees();
+    let least = if piece.curvature.abs() > 0.0 { 2 } else { SAMPLES_STRAIGHT };
+    (least..10_000).find(|&n| n as f64 * SAMPLE_TURN >= turn).unwrap_or(10_000)
+}
