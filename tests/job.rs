@@ -534,6 +534,10 @@ fn settings_in_force_are_a_job_again() {
         assert_eq!(again, settings, "{written}");
         assert_eq!(again.to_toml(), written);
     }
+    // A layer that is stated stays stated, one that is not does not become so.
+    let stated = "[layers]\naxis = \"ARCH-AXIS\"\n";
+    let again = settings(&settings(stated).to_toml());
+    assert!(again.states("layers.axis") && !again.states("layers.loads"));
     let json = settings(BUILT).to_json();
     assert_eq!(json["rib"]["depth"], serde_json::json!([0.45, 0.3]));
     assert_eq!(json["drawing"]["unit"], "mm");
