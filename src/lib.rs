@@ -7,6 +7,7 @@
 //! [`refusal`] beneath.
 
 pub mod drawing;
+pub mod cli;
 pub mod geometry;
 pub mod job;
 pub mod model;
