@@ -34,7 +34,7 @@ pub enum Layer {
 /// the colours by name.
 const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 10] = [
     (Layer::Line, "LINE", 142, None, 50),
-    (Layer::OtherLines, "OTHER-LINES", 252, Some(Dash::Long), 25),
+    (Layer::OtherLines, "OTHER-LINES", 252, None, 25),
     (Layer::Kern, "KERN", 8, Some(Dash::Dots), 13),
     (Layer::Offsets, "OFFSETS", 213, None, 13),
     (Layer::OffsetDiagram, "OFFSET-DIAGRAM", 142, None, 25),
@@ -272,9 +272,7 @@ impl Canvas {
         let room = 0.4 * self.h;
         for (corner, across) in places {
             let words = block(lines, corner, across, self.h);
-            let Some(first) = words.first() else {
-                return None;
-            };
+            let first = words.first()?;
             let (mut low, mut high) = (first.at, first.at);
             for corner in words.iter().flat_map(|w| w.covered().corners()) {
                 low = Point::new(low.x.min(corner.x), low.y.min(corner.y));
