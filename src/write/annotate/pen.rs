@@ -249,7 +249,7 @@ impl Canvas {
     ) -> Option<(Words, Leader)> {
         let room = 0.3 * self.h;
         for (words, leader) in places {
-            let clear = leader.is_none_or(|(a, b)| !self.taken.boxes.iter().any(|t| t.meets(a, b)));
+            let clear = leader.is_none_or(|(a, b)| self.is_clear(a, b));
             if clear && self.taken.is_free(&words.covered(), room) {
                 self.text(layer, role, &words);
                 if let Some((a, b)) = leader {
@@ -259,6 +259,14 @@ impl Canvas {
             }
         }
         None
+    }
+
+    /// Whether a leader keeps a little off all texts, but for its very beginning, where its own symbol stands.
+    fn is_clear(&self, a: Point, b: Point) -> bool {
+        let length = (b - a).hypot();
+        let start = (0.5 * self.h).min(length);
+        let from = if length > 0.0 { a + (b - a) * (start / length) } else { a };
+        !self.taken.boxes.iter().any(|t| t.grown(0.25 * self.h).meets(from, b))
     }
 
     /// Puts a block of lines, left-aligned or right-aligned, at the first free place of its upper corner.
