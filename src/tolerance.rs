@@ -32,3 +32,6 @@ pub const ROUND_FIGURE: f64 = 1e-9;
 /// A component of the total load smaller than this part of the other is not told. No unit. Larger: a real push sideways
 /// goes unsaid; smaller: rounding of upright loads reads as a push.
 pub const NO_FORCE: f64 = 1e-9;
+/// By how much the length of a direction of the mark plane may miss 1, and the product of two of them 0. No unit.
+/// Larger: marks come out stretched or skewed; smaller: directions computed from drawn points are refused.
+pub const UNIT_VECTOR: f64 = 1e-9;
