@@ -220,6 +220,9 @@ pub struct Case {
     pub name: String,
     /// Sum of its loads.
     pub total_load: Xy,
+    /// Components of each of the span's loads as this case factors them, in the order of `loads`; empty: as drawn.
+    #[serde(default)]
+    pub forces: Vec<Xy>,
     /// The graphic method's pole.
     pub pole: Option<Pole>,
     /// Kind of the governing line.

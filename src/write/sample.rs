@@ -215,11 +215,17 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                     ..note(Check::Offset, "The line strays from the axis")
                 });
             }
-            let (left, total) =
-                (lines[0].left.clone().unwrap(), sample.loads.iter().map(|q| q.1).sum::<f64>());
+            let left = lines[0].left.clone().unwrap();
+            let forces: Vec<Xy> = sample
+                .loads
+                .iter()
+                .map(|&(t, p)| [0.0, if t > 0.5 { -p * (1.0 + tilt) } else { -p }])
+                .collect();
+            let total: f64 = -forces.iter().map(|f| f[1]).sum::<f64>();
             cases.push(Case {
                 name: case.clone(),
                 total_load: [0.0, -total],
+                forces,
                 pole: Some(Pole {
                     horizontal: left.horizontal * 0.96,
                     vertical: left.vertical * 1.01,

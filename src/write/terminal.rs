@@ -104,7 +104,7 @@ fn several(runs: &[Run], out: &mut Page) {
         let mut words = plain(&run.drawing.file);
         let detail = match &run.error {
             Some(error) => error.to_string(),
-            None => worst(run).map(worst_words).unwrap_or_default(),
+            None => worst(run).map(|f| worst_words(run, f)).unwrap_or_default(),
         };
         if !detail.is_empty() {
             words.push_str(": ");
@@ -134,7 +134,7 @@ fn one(run: &Run, verbose: bool, out: &mut Page) {
     }
     out.heading(heading(run), r.code(), &run.drawing.file);
     if let Some(finding) = worst(run) {
-        out.entry(worst_name(finding), Some(r.code()), &worst_words(finding));
+        out.entry(worst_name(finding), Some(r.code()), &worst_words(run, finding));
         out.optional("to mend", finding.remedy.as_deref().unwrap_or(""));
     }
     let more = run.findings.iter().filter(|f| f.verdict == FindingVerdict::Outside).count().saturating_sub(1);
@@ -167,7 +167,7 @@ fn one(run: &Run, verbose: bool, out: &mut Page) {
             loads(run, span, out);
         }
         for finding in &run.findings {
-            out.entry(verdict_word(finding), None, &in_full(finding));
+            out.entry(verdict_word(finding), None, &in_full(run, finding));
         }
     }
     if let Some(output) = &run.output {
@@ -209,7 +209,7 @@ fn worst_name(finding: &Finding) -> &'static str {
 }
 
 /// What, where, how far outside.
-fn worst_words(finding: &Finding) -> String {
+fn worst_words(run: &Run, finding: &Finding) -> String {
     let Some(figures) = against_limit(finding) else {
         return said(finding);
     };
@@ -221,17 +221,25 @@ fn worst_words(finding: &Finding) -> String {
         let side = if value < limit { "short of" } else { "beyond" };
         words.push_str(&format!(": {by} {side} it"));
     }
-    words.push_str(&place(finding));
+    words.push_str(&place(run, finding));
     words
 }
 
-fn place(finding: &Finding) -> String {
+/// Where a finding lies; span and case only where there are several.
+fn place(run: &Run, finding: &Finding) -> String {
     let mut words = String::new();
     if let Some(at) = finding.at {
         words.push_str(&format!(", at x {} m, y {} m", metres(at[0]), metres(at[1])));
     }
-    for name in [&finding.span, &finding.case].into_iter().flatten() {
-        words.push_str(&format!(", {name}"));
+    if run.spans.len() > 1
+        && let Some(span) = &finding.span
+    {
+        words.push_str(&format!(", {span}"));
+    }
+    if run.spans.iter().any(|s| s.cases.len() > 1)
+        && let Some(case) = &finding.case
+    {
+        words.push_str(&format!(", case {case}"));
     }
     words
 }
@@ -265,12 +273,12 @@ fn verdict_word(finding: &Finding) -> &'static str {
     }
 }
 
-fn in_full(finding: &Finding) -> String {
+fn in_full(run: &Run, finding: &Finding) -> String {
     let mut words = format!("{}: {}", check_name(finding.check), said(finding));
     if let Some(figures) = against_limit(finding) {
         words.push_str(&format!(" [{figures}]"));
     }
-    words.push_str(&place(finding));
+    words.push_str(&place(run, finding));
     if let Some(basis) = &finding.basis {
         words.push_str(&format!("; basis {basis}"));
     }

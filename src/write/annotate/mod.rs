@@ -11,7 +11,7 @@
 //! | layer (after the prefix) | shows | colour | line type | weight, mm |
 //! | --- | --- | --- | --- | --- |
 //! | `LINE` | governing line of thrust | 142 blue | continuous | 0.50 |
-//! | `OTHER-LINES` | other lines and cases, each kind with its own line type | 252 grey | broken | 0.25 |
+//! | `OTHER-LINES` | other lines and cases, each with its own line type | 252 grey | by line: long or short dashes, dash and dots | 0.25 |
 //! | `KERN` | middle third of the rib | 8 grey | dots | 0.13 |
 //! | `OFFSETS` | ticks from the axis to the line along the joint, figures in mm | 213 purple | continuous | 0.13 |
 //! | `OFFSET-DIAGRAM` | offset along the span, exaggerated, limits dashed | 142 blue | continuous, limits short dashes | 0.25 |

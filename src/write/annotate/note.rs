@@ -264,10 +264,18 @@ fn loads_words(run: &Run, spans: &[Shown]) -> String {
     sets.sort_unstable();
     sets.dedup();
     let (x, y) = loads.iter().fold((0.0, 0.0), |(x, y), l| (x + l.force[0], y + l.force[1]));
+    let pieces = |what: MagnitudeFrom| loads.iter().filter(|l| l.magnitude_from == what).count();
+    let (own, strips) = (pieces(MagnitudeFrom::SelfWeight), pieces(MagnitudeFrom::Area));
+    let drawn = loads.len() - own - strips;
+    let mut counts = vec![format!("{drawn} load{} as drawn", if drawn == 1 { "" } else { "s" })];
+    for (n, of) in [(own, "self weight"), (strips, "areas")] {
+        if n > 0 {
+            counts.push(format!("{n} pieces of {of}"));
+        }
+    }
     let mut words = format!(
-        "{} load{} as drawn, {} {}",
-        loads.len(),
-        if loads.len() == 1 { "" } else { "s" },
+        "{}, {} {}",
+        counts.join(", "),
         text::force(y.abs(), &run.units),
         if y > 0.0 { "upward" } else { "downward" }
     );

@@ -34,7 +34,7 @@ pub enum Layer {
 /// the colours by name.
 const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 10] = [
     (Layer::Line, "LINE", 142, None, 50),
-    (Layer::OtherLines, "OTHER-LINES", 252, Some(Dash::Long), 25),
+    (Layer::OtherLines, "OTHER-LINES", 252, None, 25),
     (Layer::Kern, "KERN", 8, Some(Dash::Dots), 13),
     (Layer::Offsets, "OFFSETS", 213, None, 13),
     (Layer::OffsetDiagram, "OFFSET-DIAGRAM", 142, None, 25),
@@ -249,7 +249,7 @@ impl Canvas {
     ) -> Option<(Words, Leader)> {
         let room = 0.3 * self.h;
         for (words, leader) in places {
-            let clear = leader.is_none_or(|(a, b)| !self.taken.boxes.iter().any(|t| t.meets(a, b)));
+            let clear = leader.is_none_or(|(a, b)| self.is_clear(a, b));
             if clear && self.taken.is_free(&words.covered(), room) {
                 self.text(layer, role, &words);
                 if let Some((a, b)) = leader {
@@ -259,6 +259,14 @@ impl Canvas {
             }
         }
         None
+    }
+
+    /// Whether a leader keeps a little off all texts, but for its very beginning, where its own symbol stands.
+    fn is_clear(&self, a: Point, b: Point) -> bool {
+        let length = (b - a).hypot();
+        let start = (0.5 * self.h).min(length);
+        let from = if length > 0.0 { a + (b - a) * (start / length) } else { a };
+        !self.taken.boxes.iter().any(|t| t.grown(0.25 * self.h).meets(from, b))
     }
 
     /// Puts a block of lines, left-aligned or right-aligned, at the first free place of its upper corner.
@@ -272,9 +280,7 @@ impl Canvas {
         let room = 0.4 * self.h;
         for (corner, across) in places {
             let words = block(lines, corner, across, self.h);
-            let Some(first) = words.first() else {
-                return None;
-            };
+            let first = words.first()?;
             let (mut low, mut high) = (first.at, first.at);
             for corner in words.iter().flat_map(|w| w.covered().corners()) {
                 low = Point::new(low.x.min(corner.x), low.y.min(corner.y));

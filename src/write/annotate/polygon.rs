@@ -18,6 +18,16 @@ const WIDE: f64 = 52.0;
 /// Distance of letters along the load line, in text heights.
 const PITCH: f64 = 1.5;
 
+/// Whether the loads add up to the case's total. A case with weight on the axis that is no load of its own would get rays
+/// that are not parallel to its line.
+fn adds_up(shown: &Shown) -> bool {
+    let Some(case) = shown.case else { return true };
+    let sum = shown.forces.iter().fold(Vec2::ZERO, |sum, f| sum + *f);
+    let size: f64 = shown.forces.iter().map(|f| f.hypot()).sum();
+    let miss = Vec2::new(case.total_load[0], case.total_load[1]) - sum;
+    miss.hypot() <= size * crate::tolerance::NO_FORCE
+}
+
 /// The polygon of a span in force units, load line from the origin.
 struct Polygon {
     /// Corners of the load line.
@@ -54,6 +64,9 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, righ
 }
 
 fn polygon(shown: &Shown) -> Polygon {
+    if !adds_up(shown) {
+        return Polygon { corners: vec![Vec2::ZERO], letters: Vec::new(), pole: None, fitted: None };
+    }
     let mut corners = vec![Vec2::ZERO];
     let mut letters = Vec::new();
     let mut sum = Vec2::ZERO;
@@ -161,6 +174,9 @@ fn title(run: &Run, shown: &Shown, scale: Option<f64>, several: bool) -> Vec<Str
     }
     let mut lines = text::wrap(&head, 44);
     match shown.line {
+        _ if !adds_up(shown) => {
+            lines.push("left out: the loads told do not add up to the case".into());
+        }
         Some(line) => lines.extend(text::wrap(&format!("pole of the line {}", kind_name(line.kind)), 44)),
         None => lines.push("no line of thrust: load line only".into()),
     }

@@ -24,7 +24,7 @@ pub struct Shown<'a> {
     pub groups: Vec<Group>,
     /// Where each load's line of action meets the axis, as length along the axis in drawing units.
     pub feet: Vec<f64>,
-    /// Loads that take part: a load of no force is not drawn in the polygon.
+    /// The loads as the case factors them.
     pub forces: Vec<Vec2>,
     /// Drawing units per metre.
     pub unit: f64,
@@ -56,7 +56,13 @@ impl<'a> Shown<'a> {
             vertices,
             groups: bow::groups(&span.loads),
             feet,
-            forces: span.loads.iter().map(|l| Vec2::new(l.force[0], l.force[1])).collect(),
+            forces: (0..span.loads.len())
+                .map(|i| {
+                    let factored = case.and_then(|c| c.forces.get(i));
+                    let [x, y] = *factored.unwrap_or(&span.loads[i].force);
+                    Vec2::new(x, y)
+                })
+                .collect(),
             unit,
         }
     }

@@ -159,7 +159,9 @@ fn tall_text_and_forty_loads_stay_apart() {
 
 #[test]
 fn polygon_is_parallel_to_the_line() {
-    let run = arch(5, 30.0, 6.0).limited(0.05).run();
+    let mut sample = arch(5, 30.0, 6.0).limited(0.05);
+    sample.case = vec![("even".into(), 0.0), ("one side".into(), 0.6)];
+    let run = sample.run();
     let marks = annotate(&run, &sheet());
     let rays: Vec<_> = marks
         .marks
@@ -170,7 +172,8 @@ fn polygon_is_parallel_to_the_line() {
             _ => panic!(),
         })
         .collect();
-    let line = &run.spans[0].cases[0].lines[0];
+    let case = worst_case(&run, &run.spans[0]).unwrap();
+    let line = &case.lines[0];
     let pieces: Vec<_> = line
         .vertices
         .windows(2)
@@ -181,6 +184,15 @@ fn polygon_is_parallel_to_the_line() {
         assert!((ray.normalize().cross(piece.normalize())).abs() < 1e-12);
         assert!(ray.x > 0.0, "the pole of an arch is left of the load line");
     }
+}
+
+#[test]
+fn loads_that_do_not_add_up_get_no_false_polygon() {
+    let mut run = arch(5, 30.0, 6.0).run();
+    run.spans[0].cases[0].total_load[1] *= 1.35;
+    let marks = assert_calm(&run, &sheet());
+    assert_eq!(has(&marks, "ray") + has(&marks, "load"), 0);
+    assert!(texts(&marks).iter().any(|t| t.0.contains("do not add up")));
 }
 
 #[test]
@@ -351,6 +363,7 @@ fn worst_case_is_drawn_heavy() {
     let marks = assert_calm(&run, &sheet());
     assert_eq!(has(&marks, "line"), 1);
     assert_eq!(has(&marks, "other-line"), 1);
+    assert_eq!(has(&marks, "ray"), 6, "the polygon of the factored loads");
     assert!(texts(&marks).iter().any(|t| t.0 == "case even"));
 }
 
