@@ -8,6 +8,7 @@
 
 pub mod drawing;
 pub mod cli;
+pub mod flow;
 pub mod geometry;
 pub mod job;
 pub mod model;
