@@ -3,8 +3,8 @@
 
 pub mod drawing;
 pub mod geometry;
-pub mod model;
 pub mod job;
+pub mod model;
 pub mod outcome;
 pub mod refusal;
 pub mod statics;
