@@ -117,3 +117,6 @@ pub const BESIDE_AXIS: f64 = 0.02;
 /// Three points are in one straight line when the height of their triangle is below this part of its longest side. No
 /// unit. Larger: flat but real `through` lines are refused; smaller: the push through the points is mostly rounding.
 pub const ONE_STRAIGHT_LINE: f64 = 1e-9;
+/// By how much the length of a direction of the mark plane may miss 1, and the product of two of them 0. No unit.
+/// Larger: marks come out stretched or skewed; smaller: directions computed from drawn points are refused.
+pub const UNIT_VECTOR: f64 = 1e-9;

@@ -1,0 +1,739 @@
+//! One pass over a drawing: its structure is noted, the records of interest are kept, all others are passed over.
+
+use crate::refusal::Refusal;
+use crate::tags::APPLICATION;
+use crate::tags::census::{Census, Entry};
+use crate::tags::codes::{is_reference, parse_handle};
+use crate::tags::finish;
+use crate::tags::outline::{
+    Anchor, Block, HandleState, HeaderValue, HeaderVariable, Note, Outline, Section, Table,
+};
+use crate::tags::record::{Record, Tags};
+use crate::tags::source::Source;
+use crate::tags::text::{Decoder, Doubt};
+use crate::tags::tokens::{Form, Place, Sink, Stream, tokenize};
+
+/// A record that may be kept.
+#[derive(Debug, Clone, Copy)]
+pub struct Candidate<'a> {
+    /// The block it stands in, decoded; none in the ENTITIES section.
+    pub block: Option<&'a str>,
+    /// Its type in capitals.
+    pub kind: &'a str,
+    /// Its layer, decoded, as spelled.
+    pub layer: &'a str,
+}
+
+/// Says whether a record is kept. Asked once for each block, type and layer, not for each record.
+pub type Keep<'a> = dyn Fn(&Candidate<'_>) -> bool + 'a;
+
+/// What a scan does beside noting the structure.
+#[derive(Clone, Copy)]
+pub struct Options<'a> {
+    /// Which records are kept; none when absent.
+    pub keep: Option<&'a Keep<'a>>,
+    /// Whether the SHA-256 of the file is computed.
+    pub hash: bool,
+}
+
+impl Default for Options<'_> {
+    fn default() -> Self {
+        Self { keep: None, hash: true }
+    }
+}
+
+/// Reads a drawing from its first byte to its last.
+///
+/// # Errors
+/// When the file is no DXF drawing, is damaged, or cannot be read; the refusal names the line.
+pub fn scan(source: &Source, options: &Options<'_>) -> Result<Outline, Refusal> {
+    let mut machine = Machine::new(options.keep);
+    let stream = tokenize(source, &mut machine, options.hash)?;
+    machine.finish(stream)
+}
+
+/// Bytes of a record that are held before its layer is known; the layer is among the first tags of every entity.
+const BEFORE_LAYER: usize = 1 << 20;
+
+/// The section that is being read.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Part {
+    /// None, or one that refers to nothing by handle (the classes, the preview).
+    Ignored,
+    /// One in which only references count.
+    Other,
+    /// Its name has not come yet.
+    Unnamed,
+    Header,
+    Tables,
+    Blocks,
+    Entities,
+    Objects,
+}
+
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Collect {
+    No,
+    /// Until the layer is known.
+    Pending,
+    Yes,
+}
+
+/// The record that is being read.
+#[derive(Debug)]
+struct Current {
+    open: bool,
+    kind: Vec<u8>,
+    start: u64,
+    line: Option<u64>,
+    collect: Collect,
+    /// Its first handle.
+    handle: Option<u64>,
+    /// Type and layer, once the layer is known.
+    entry: Option<usize>,
+    paper: bool,
+    ours: bool,
+    /// It belongs to the POLYLINE or INSERT before it.
+    child: bool,
+    dimstyle: bool,
+    dictionary: bool,
+    depth: u32,
+    owner: bool,
+}
+
+/// Codes whose values matter in a record that is not kept.
+const WANTED: [bool; 1072] = {
+    let mut wanted = [false; 1072];
+    let mut code = 0;
+    while code < wanted.len() {
+        wanted[code] = matches!(
+            code,
+            0 | 5 | 8 | 67 | 102 | 105 | 320..=369 | 390..=399 | 480 | 481 | 1001 | 1005
+        );
+        code += 1;
+    }
+    wanted
+};
+
+pub(super) struct Machine<'a> {
+    keep: Option<&'a Keep<'a>>,
+    utf8_mark: bool,
+    part: Part,
+    /// Every tag is wanted.
+    all: bool,
+    current: Current,
+    tags: Tags,
+    section_open: bool,
+    table_open: bool,
+    block: Option<usize>,
+    /// The last POLYLINE or INSERT was kept, or is ours, and its run may follow.
+    parent_kept: bool,
+    parent_ours: bool,
+    decoder: Option<Decoder>,
+    /// The entry of the dictionary that is being read has a name that matters.
+    dictionary_name: Option<&'static str>,
+    pub(super) sections: Vec<Section>,
+    pub(super) tables: Vec<Table>,
+    pub(super) blocks: Vec<Block>,
+    pub(super) header: Vec<HeaderVariable>,
+    pub(super) records: Vec<Record>,
+    pub(super) census: Census,
+    pub(super) handles: HandleState,
+    pub(super) doubts: Vec<Note>,
+    /// Byte ranges of our entities, joined where they touch.
+    pub(super) our_ranges: Vec<(u64, u64)>,
+    pub(super) our_entities: u64,
+    pub(super) our_highest: u64,
+    pub(super) model_owner: Option<String>,
+    /// Handle of the dictionary of plot styles, and for each dictionary with a default its handle and that of `Normal`.
+    pub(super) plot_styles: Option<u64>,
+    pub(super) normals: Vec<(u64, String)>,
+}
+
+impl Sink for Machine<'_> {
+    fn begin(&mut self, _: Form, utf8_mark: bool) {
+        self.utf8_mark = utf8_mark;
+    }
+
+    #[inline(always)]
+    fn wants(&self, code: i32) -> bool {
+        self.all || usize::try_from(code).is_ok_and(|i| WANTED.get(i) == Some(&true))
+    }
+
+    #[inline]
+    fn tag(&mut self, code: i32, value: &[u8], place: &Place) -> Result<(), Refusal> {
+        if code == 0 {
+            return self.open(value, place);
+        }
+        match self.part {
+            Part::Ignored => Ok(()),
+            Part::Other => {
+                if is_reference(code) {
+                    self.refer(value);
+                }
+                Ok(())
+            }
+            Part::Unnamed => {
+                if code == 2 {
+                    self.name_section(value);
+                }
+                Ok(())
+            }
+            Part::Header => {
+                self.header_tag(code, value, place);
+                Ok(())
+            }
+            _ if self.current.open => self.record_tag(code, value, place),
+            _ => Ok(()),
+        }
+    }
+}
+
+impl<'a> Machine<'a> {
+    fn new(keep: Option<&'a Keep<'a>>) -> Self {
+        Self {
+            keep,
+            utf8_mark: false,
+            part: Part::Ignored,
+            all: false,
+            current: Current {
+                open: false,
+                kind: Vec::new(),
+                start: 0,
+                line: None,
+                collect: Collect::No,
+                handle: None,
+                entry: None,
+                paper: false,
+                ours: false,
+                child: false,
+                dimstyle: false,
+                dictionary: false,
+                depth: 0,
+                owner: false,
+            },
+            tags: Tags::default(),
+            section_open: false,
+            table_open: false,
+            block: None,
+            parent_kept: false,
+            parent_ours: false,
+            decoder: None,
+            dictionary_name: None,
+            sections: Vec::new(),
+            tables: Vec::new(),
+            blocks: Vec::new(),
+            header: Vec::new(),
+            records: Vec::new(),
+            census: Census::default(),
+            handles: HandleState::default(),
+            doubts: Vec::new(),
+            our_ranges: Vec::new(),
+            our_entities: 0,
+            our_highest: 0,
+            model_owner: None,
+            plot_styles: None,
+            normals: Vec::new(),
+        }
+    }
+
+    /// A group 0: the record before it ends, and whatever it names begins.
+    fn open(&mut self, value: &[u8], place: &Place) -> Result<(), Refusal> {
+        let kind = value.trim_ascii();
+        self.close_record(place.start)?;
+        let anchor = Anchor { at: place.start, crlf: place.after_crlf };
+        let is = |word: &[u8]| kind.eq_ignore_ascii_case(word);
+        if is(b"SECTION") {
+            self.end_section(anchor, None);
+            self.sections.push(Section {
+                name: "?".to_owned(),
+                start: anchor,
+                end: anchor,
+                stop: place.end,
+                closed: false,
+                records: 0,
+                ours: 0,
+                tables: self.tables.len()..self.tables.len(),
+            });
+            self.section_open = true;
+            self.part = Part::Unnamed;
+            self.all = true;
+        } else if is(b"ENDSEC") {
+            self.end_section(anchor, Some(place.end));
+        } else if is(b"EOF") {
+            self.end_section(anchor, None);
+        } else if self.part == Part::Tables && is(b"TABLE") {
+            self.end_table(anchor, None);
+            self.tables.push(Table {
+                name: String::new(),
+                start: anchor,
+                end: anchor,
+                stop: place.end,
+                closed: false,
+                handle: None,
+                count: 0,
+                records: Vec::new(),
+            });
+            self.table_open = true;
+            self.begin_record(kind, place);
+        } else if self.part == Part::Tables && is(b"ENDTAB") {
+            self.end_table(anchor, Some(place.end));
+        } else {
+            match self.part {
+                Part::Ignored | Part::Other | Part::Header => {}
+                Part::Unnamed => self.name_section(b"?"),
+                _ => self.begin_record(kind, place),
+            }
+        }
+        Ok(())
+    }
+
+    fn name_section(&mut self, value: &[u8]) {
+        let name = String::from_utf8_lossy(value.trim_ascii()).to_ascii_uppercase();
+        self.part = match name.as_str() {
+            "HEADER" => Part::Header,
+            "TABLES" => Part::Tables,
+            "BLOCKS" => Part::Blocks,
+            "ENTITIES" => Part::Entities,
+            "OBJECTS" => Part::Objects,
+            "CLASSES" | "THUMBNAILIMAGE" => Part::Ignored,
+            _ => Part::Other,
+        };
+        self.all = self.part == Part::Header;
+        if let Some(section) = self.sections.last_mut() {
+            section.name = name;
+        }
+    }
+
+    /// Ends the open section before the anchor; `stop` is the end of its ENDSEC tag, if it has one.
+    fn end_section(&mut self, anchor: Anchor, stop: Option<u64>) {
+        // A stray ENDSEC belongs to no section.
+        if !std::mem::take(&mut self.section_open) {
+            return;
+        }
+        self.end_table(anchor, None);
+        let tables = self.tables.len();
+        let named = self.part;
+        if let Some(section) = self.sections.last_mut() {
+            section.end = anchor;
+            section.stop = stop.unwrap_or(anchor.at);
+            section.closed = stop.is_some();
+            section.tables.end = tables;
+        }
+        self.block = None;
+        self.parent_kept = false;
+        self.parent_ours = false;
+        self.part = Part::Ignored;
+        self.all = false;
+        if named == Part::Header {
+            self.decoder = None;
+        }
+    }
+
+    fn end_table(&mut self, anchor: Anchor, stop: Option<u64>) {
+        if !self.table_open {
+            return;
+        }
+        self.table_open = false;
+        if let Some(table) = self.tables.last_mut() {
+            table.end = anchor;
+            table.stop = stop.unwrap_or(anchor.at);
+            table.closed = stop.is_some();
+        }
+    }
+
+    fn header_tag(&mut self, code: i32, value: &[u8], place: &Place) {
+        if code == 9 {
+            self.header.push(HeaderVariable {
+                name: String::from_utf8_lossy(value.trim_ascii()).to_ascii_uppercase(),
+                values: Vec::new(),
+                line: place.line,
+            });
+        } else if code != 999
+            && let Some(variable) = self.header.last_mut()
+        {
+            variable.values.push(HeaderValue {
+                code,
+                value: value.to_vec(),
+                range: place.value..place.value_end,
+            });
+        }
+    }
+
+    fn begin_record(&mut self, kind: &[u8], place: &Place) {
+        let current = &mut self.current;
+        current.open = true;
+        current.kind.clear();
+        current.kind.extend_from_slice(kind);
+        current.start = place.start;
+        current.line = place.line;
+        current.handle = None;
+        current.entry = None;
+        current.paper = false;
+        current.ours = false;
+        current.child = false;
+        current.dimstyle = false;
+        current.dictionary = false;
+        current.depth = 0;
+        current.owner = false;
+        current.collect = Collect::No;
+        match self.part {
+            Part::Tables => {
+                current.dimstyle = kind.eq_ignore_ascii_case(b"DIMSTYLE");
+                let table = self.tables.last().map_or("", |table| table.name.as_str());
+                let head = kind.eq_ignore_ascii_case(b"TABLE");
+                let wanted = ["LAYER", "LTYPE", "STYLE", "APPID", "BLOCK_RECORD"];
+                if self.table_open && (head || wanted.contains(&table)) {
+                    current.collect = Collect::Yes;
+                }
+            }
+            Part::Objects => {
+                current.dictionary = kind.eq_ignore_ascii_case(b"DICTIONARY")
+                    || kind.eq_ignore_ascii_case(b"ACDBDICTIONARYWDFLT");
+                self.dictionary_name = None;
+            }
+            Part::Blocks if kind.eq_ignore_ascii_case(b"BLOCK") => current.collect = Collect::Yes,
+            Part::Blocks if kind.eq_ignore_ascii_case(b"ENDBLK") => {}
+            _ => {
+                current.child = [&b"VERTEX"[..], b"ATTRIB", b"SEQEND"]
+                    .iter()
+                    .any(|child| kind.eq_ignore_ascii_case(child));
+                if current.child {
+                    current.ours = self.parent_ours;
+                    if self.parent_kept {
+                        current.collect = Collect::Yes;
+                    }
+                } else if self.keep.is_some() {
+                    current.collect = Collect::Pending;
+                }
+            }
+        }
+        self.all = current.collect != Collect::No || current.dictionary;
+        if self.all {
+            self.tags.restart(place.line);
+        }
+    }
+
+    #[inline]
+    fn record_tag(&mut self, code: i32, value: &[u8], place: &Place) -> Result<(), Refusal> {
+        match code {
+            5 if !self.current.dimstyle => self.own_handle(value),
+            105 if self.current.dimstyle => self.own_handle(value),
+            8 if self.current.entry.is_none() && matches!(self.part, Part::Entities | Part::Blocks) => {
+                self.layer(value.trim_ascii(), place.line);
+            }
+            67 => self.current.paper = value.trim_ascii() == b"1",
+            102 if self.model_owner.is_none() => {
+                if value.trim_ascii_start().starts_with(b"{") {
+                    self.current.depth += 1;
+                } else {
+                    self.current.depth = self.current.depth.saturating_sub(1);
+                }
+            }
+            1001 => {
+                self.current.ours |= value.trim_ascii().eq_ignore_ascii_case(APPLICATION.as_bytes());
+            }
+            3 if self.current.dictionary => {
+                self.dictionary_name = match value.trim_ascii() {
+                    b"ACAD_PLOTSTYLENAME" => Some("ACAD_PLOTSTYLENAME"),
+                    b"Normal" => Some("Normal"),
+                    _ => None,
+                };
+            }
+            _ if is_reference(code) => self.reference(code, value),
+            _ => {}
+        }
+        // Previews (310) of block records and the like are of no use.
+        if self.current.collect != Collect::No && code != 999 && !(code == 310 && self.part == Part::Tables) {
+            if !self.tags.push(code, value, place.line) {
+                return Err(self.too_long("four thousand million bytes"));
+            }
+            if self.current.collect == Collect::Pending && self.tags.size() > BEFORE_LAYER {
+                return Err(self.too_long("a million bytes with no layer"));
+            }
+        }
+        Ok(())
+    }
+
+    fn too_long(&self, what: &str) -> Refusal {
+        let message = format!(
+            "the {} that begins at byte {} has more than {what}",
+            String::from_utf8_lossy(&self.current.kind),
+            self.current.start
+        );
+        let mut refusal = Refusal::new(
+            "record-length",
+            message,
+            "The drawing is damaged near here: audit it in the CAD program and save it again",
+        );
+        refusal.line = self.current.line;
+        refusal
+    }
+
+    #[inline]
+    fn own_handle(&mut self, value: &[u8]) {
+        if let Some(handle) = parse_handle(value) {
+            self.handles.used += 1;
+            self.handles.highest = self.handles.highest.max(handle);
+            self.current.handle.get_or_insert(handle);
+        }
+    }
+
+    #[inline]
+    fn refer(&mut self, value: &[u8]) {
+        if let Some(handle) = parse_handle(value) {
+            self.handles.highest_reference = self.handles.highest_reference.max(handle);
+        }
+    }
+
+    fn reference(&mut self, code: i32, value: &[u8]) {
+        self.refer(value);
+        let text = || String::from_utf8_lossy(value.trim_ascii()).into_owned();
+        if code == 330
+            && self.part == Part::Entities
+            && self.model_owner.is_none()
+            && self.current.depth == 0
+            && !self.current.child
+        {
+            // Group 67 follows the owner, so paper space is told apart when the record ends.
+            self.model_owner = Some(text());
+            self.current.owner = true;
+        }
+        if self.current.dictionary && matches!(code, 350 | 360) {
+            match self.dictionary_name.take() {
+                Some("ACAD_PLOTSTYLENAME") if self.plot_styles.is_none() => {
+                    self.plot_styles = parse_handle(value);
+                }
+                Some("Normal") => {
+                    if let Some(handle) = self.current.handle {
+                        self.normals.push((handle, text()));
+                    }
+                }
+                _ => {}
+            }
+        }
+    }
+
+    /// The layer of the current entity is known: whether it is kept is decided here.
+    fn layer(&mut self, layer: &[u8], line: Option<u64>) {
+        let index = match self.census.find(&self.current.kind, layer) {
+            Some(index) => index,
+            None => {
+                let name = self.name(layer, line);
+                self.census.add(&self.current.kind, layer, name)
+            }
+        };
+        self.current.entry = Some(index);
+        if self.current.collect != Collect::Pending {
+            return;
+        }
+        let keep = self.keep.is_some_and(|keep| {
+            let block = self.block.map(|i| self.blocks[i].name.as_str());
+            let Entry { kind, layer, decision, .. } = self.census.entry(index);
+            match decision {
+                Some((place, keep)) if *place == self.block => *keep,
+                _ => {
+                    let kept = keep(&Candidate { block, kind, layer });
+                    *decision = Some((self.block, kept));
+                    kept
+                }
+            }
+        });
+        if keep {
+            self.current.collect = Collect::Yes;
+        } else {
+            self.current.collect = Collect::No;
+            self.all = false;
+        }
+    }
+
+    /// A name, decoded; a doubt about it is noted.
+    pub(super) fn name(&mut self, bytes: &[u8], line: Option<u64>) -> String {
+        if self.decoder.is_none() {
+            self.decoder = Some(finish::decoder(&self.header, self.utf8_mark));
+        }
+        let Some(decoder) = &self.decoder else {
+            return String::new();
+        };
+        let (name, doubt) = decoder.decode(bytes.trim_ascii());
+        if let Some(doubt) = doubt {
+            self.doubt(doubt, &name, line);
+        }
+        name
+    }
+
+    fn doubt(&mut self, doubt: Doubt, name: &str, at: Option<u64>) {
+        for note in &mut self.doubts {
+            if let Note::Text { doubt: d, count, .. } = note
+                && *d == doubt
+            {
+                *count += 1;
+                return;
+            }
+        }
+        self.doubts.push(Note::Text { doubt, count: 1, first: name.to_owned(), line: at });
+    }
+
+    /// The current record ends where the next group 0 begins.
+    fn close_record(&mut self, end: u64) -> Result<(), Refusal> {
+        if !std::mem::take(&mut self.current.open) {
+            return Ok(());
+        }
+        let is = |machine: &Self, word: &[u8]| machine.current.kind.eq_ignore_ascii_case(word);
+        match self.part {
+            Part::Tables if is(self, b"TABLE") => self.close_table_head(),
+            Part::Tables => self.close_table_record(end),
+            Part::Blocks if is(self, b"BLOCK") => self.close_block_head(),
+            Part::Blocks if is(self, b"ENDBLK") => {
+                self.block = None;
+                self.count(false);
+            }
+            Part::Blocks | Part::Entities => self.close_entity(end),
+            _ => self.count(false),
+        }
+        self.all = false;
+        Ok(())
+    }
+
+    fn count(&mut self, ours: bool) {
+        if let Some(section) = self.sections.last_mut() {
+            section.records += 1;
+            section.ours += u64::from(ours);
+        }
+    }
+
+    fn close_table_head(&mut self) {
+        let name = self.tags.word(2).unwrap_or_default().to_ascii_uppercase();
+        let handle = self.tags.word(5).map(str::to_owned);
+        if let Some(table) = self.tables.last_mut() {
+            table.name = name;
+            table.handle = handle;
+        }
+    }
+
+    fn close_table_record(&mut self, end: u64) {
+        self.count(self.current.ours);
+        if self.current.ours {
+            self.note_our_handle();
+        }
+        if !self.table_open {
+            return;
+        }
+        let record = (self.current.collect == Collect::Yes).then(|| {
+            let name = self.tags.first(2).map(|tag| tag.trimmed().to_vec());
+            let name = self.name(&name.unwrap_or_default(), self.current.line);
+            self.record(name, end)
+        });
+        if let Some(table) = self.tables.last_mut() {
+            table.count += 1;
+            table.records.extend(record);
+        }
+    }
+
+    fn close_block_head(&mut self) {
+        self.count(false);
+        let value = |code: i32| self.tags.first(code).map(|tag| tag.trimmed().to_vec());
+        let real = |code: i32| self.tags.first(code).and_then(|tag| tag.real()).unwrap_or(0.0);
+        let base = [real(10), real(20), real(30)];
+        let flags = self.tags.first(70).and_then(|tag| tag.int()).unwrap_or(0);
+        let (name, layer, path) = (value(2), value(8), value(1));
+        let handle = self.tags.word(5).map(str::to_owned);
+        let owner = self.tags.word(330).map(str::to_owned);
+        let line = self.current.line;
+        let block = Block {
+            name: self.name(&name.unwrap_or_default(), line),
+            handle,
+            owner,
+            flags,
+            base,
+            path: path.filter(|path| !path.is_empty()).map(|path| self.name(&path, line)),
+            layer: self.name(&layer.unwrap_or_else(|| b"0".to_vec()), line),
+            line,
+        };
+        self.block = Some(self.blocks.len());
+        self.blocks.push(block);
+    }
+
+    fn close_entity(&mut self, end: u64) {
+        if self.current.entry.is_none() {
+            self.layer(b"0", self.current.line);
+        }
+        self.count(self.current.ours);
+        if self.current.ours {
+            self.our_entities += u64::from(!self.current.child);
+            self.note_our_handle();
+            match self.our_ranges.last_mut() {
+                Some(last) if last.1 == self.current.start => last.1 = end,
+                _ => self.our_ranges.push((self.current.start, end)),
+            }
+        }
+        if std::mem::take(&mut self.current.owner) && self.current.paper {
+            self.model_owner = None;
+        }
+        let kept = self.current.collect == Collect::Yes;
+        if self.current.child {
+            if kept {
+                let record = self.entity(end);
+                if let Some(parent) = self.records.last_mut() {
+                    parent.children.push(record);
+                }
+            }
+            if self.current.kind.eq_ignore_ascii_case(b"SEQEND") {
+                self.parent_kept = false;
+                self.parent_ours = false;
+            }
+            return;
+        }
+        let in_block = self.part == Part::Blocks;
+        if let Some(index) = self.current.entry {
+            self.census.count(index, in_block, self.current.paper);
+        }
+        let parent = self.current.kind.eq_ignore_ascii_case(b"POLYLINE")
+            || self.current.kind.eq_ignore_ascii_case(b"INSERT");
+        self.parent_ours = parent && self.current.ours;
+        self.parent_kept = parent && kept;
+        if kept {
+            let record = self.entity(end);
+            self.records.push(record);
+        }
+    }
+
+    fn note_our_handle(&mut self) {
+        self.our_highest = self.our_highest.max(self.current.handle.unwrap_or(0));
+    }
+
+    fn entity(&mut self, end: u64) -> Record {
+        let layer =
+            self.current.entry.map_or_else(String::new, |index| self.census.entry(index).layer.clone());
+        self.record(layer, end)
+    }
+
+    fn record(&self, layer: String, end: u64) -> Record {
+        let own = if self.current.dimstyle { 105 } else { 5 };
+        Record {
+            kind: String::from_utf8_lossy(&self.current.kind).to_ascii_uppercase(),
+            layer,
+            handle: self.tags.word(own).map(str::to_owned),
+            line: self.current.line,
+            start: self.current.start,
+            end,
+            block: self.block,
+            ours: self.current.ours,
+            tags: self.tags.clone(),
+            children: Vec::new(),
+        }
+    }
+
+    fn finish(mut self, stream: Stream) -> Result<Outline, Refusal> {
+        if stream.eof.is_none() {
+            self.close_record(stream.tags_end)?;
+            let anchor = Anchor { at: stream.tags_end, crlf: stream.last_crlf };
+            self.end_section(anchor, None);
+        }
+        finish::outline(self, stream)
+    }
+
+    pub(super) fn utf8_mark(&self) -> bool {
+        self.utf8_mark
+    }
+}

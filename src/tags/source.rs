@@ -1,0 +1,394 @@
+//! Where a drawing's bytes come from: a file, memory, or either of them with pieces cut out and put in.
+//!
+//! A *spliced* source is a view: it keeps only the ranges and the inserted bytes, so that a drawing of any size can be
+//! changed, scanned again and written without a copy of it in memory. Files are read, never mapped: a file that shrinks
+//! while it is read gives an error here, where a map would end the process.
+
+use std::fs::File;
+use std::io::{self, Read, Write};
+use std::path::{Path, PathBuf};
+use std::sync::Arc;
+
+use sha2::{Digest, Sha256};
+
+use crate::refusal::Refusal;
+
+/// Bytes read at a time.
+pub(crate) const CHUNK: usize = 1 << 20;
+
+/// One change to a source: `remove` bytes at `at` make room for `insert`.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Edit {
+    /// Byte offset in the source before any edit.
+    pub at: u64,
+    /// Number of bytes taken out there.
+    pub remove: u64,
+    /// Bytes put in their place.
+    pub insert: Vec<u8>,
+}
+
+#[derive(Debug)]
+enum Origin {
+    File { file: File, path: PathBuf },
+    Bytes(Vec<u8>),
+}
+
+/// One piece of a source, in order.
+#[derive(Debug, Clone)]
+pub(crate) enum Piece {
+    /// Bytes of the origin.
+    Kept {
+        /// Offset in the origin.
+        from: u64,
+        /// Number of bytes.
+        len: u64,
+    },
+    /// Bytes that the origin does not hold.
+    Made(Arc<[u8]>),
+}
+
+impl Piece {
+    fn len(&self) -> u64 {
+        match self {
+            Self::Kept { len, .. } => *len,
+            Self::Made(bytes) => bytes.len() as u64,
+        }
+    }
+}
+
+/// The bytes of a drawing. Cheap to clone.
+#[derive(Debug, Clone)]
+pub struct Source {
+    origin: Arc<Origin>,
+    /// Where each piece begins in this source, and the piece.
+    pieces: Arc<[(u64, Piece)]>,
+    len: u64,
+}
+
+impl Source {
+    /// A file on disk, opened once.
+    ///
+    /// # Errors
+    /// When the file cannot be opened or is no regular file.
+    pub fn open(path: &Path) -> Result<Self, Refusal> {
+        let refuse = |error: io::Error| {
+            Refusal::new(
+                "read",
+                format!("{} cannot be opened: {error}", path.display()),
+                "Check the name and the permissions of the file",
+            )
+        };
+        let file = File::open(path).map_err(refuse)?;
+        let metadata = file.metadata().map_err(refuse)?;
+        if !metadata.is_file() {
+            return Err(Refusal::new(
+                "read",
+                format!("{} is not a regular file", path.display()),
+                "Name a drawing file",
+            ));
+        }
+        let origin = Origin::File { file, path: path.to_owned() };
+        Ok(Self::whole(origin, metadata.len()))
+    }
+
+    /// Bytes in memory.
+    pub fn from_bytes(bytes: impl Into<Vec<u8>>) -> Self {
+        let bytes = bytes.into();
+        let len = bytes.len() as u64;
+        Self::whole(Origin::Bytes(bytes), len)
+    }
+
+    fn whole(origin: Origin, len: u64) -> Self {
+        Self { origin: Arc::new(origin), pieces: Arc::from([(0, Piece::Kept { from: 0, len })]), len }
+    }
+
+    /// Number of bytes.
+    pub fn len(&self) -> u64 {
+        self.len
+    }
+
+    /// Whether there are no bytes at all.
+    pub fn is_empty(&self) -> bool {
+        self.len == 0
+    }
+
+    /// The file behind it, if there is one: for comparing devices and inodes.
+    pub fn file(&self) -> Option<&File> {
+        match &*self.origin {
+            Origin::File { file, .. } => Some(file),
+            Origin::Bytes(_) => None,
+        }
+    }
+
+    /// The path of the file behind it, as it was named.
+    pub fn path(&self) -> Option<&Path> {
+        match &*self.origin {
+            Origin::File { path, .. } => Some(path),
+            Origin::Bytes(_) => None,
+        }
+    }
+
+    /// Reads bytes at an offset; the number read is zero only at the end.
+    ///
+    /// # Errors
+    /// Those of the file, and an unexpected end when it has shrunk since it was opened.
+    pub fn read_at(&self, at: u64, buf: &mut [u8]) -> io::Result<usize> {
+        if at >= self.len || buf.is_empty() {
+            return Ok(0);
+        }
+        let index = self.pieces.partition_point(|(start, _)| *start <= at) - 1;
+        let (start, piece) = &self.pieces[index];
+        let inside = at - start;
+        let left = usize::try_from(piece.len() - inside).unwrap_or(usize::MAX);
+        let count = left.min(buf.len());
+        let buf = &mut buf[..count];
+        match piece {
+            Piece::Made(bytes) => {
+                let from = index_of(inside)?;
+                buf.copy_from_slice(&bytes[from..from + count]);
+                Ok(count)
+            }
+            Piece::Kept { from, .. } => match &*self.origin {
+                Origin::Bytes(bytes) => {
+                    let from = index_of(from + inside)?;
+                    buf.copy_from_slice(&bytes[from..from + count]);
+                    Ok(count)
+                }
+                Origin::File { file, .. } => match read_file_at(file, from + inside, buf)? {
+                    0 => Err(io::Error::new(
+                        io::ErrorKind::UnexpectedEof,
+                        "the file has become shorter while it was read",
+                    )),
+                    count => Ok(count),
+                },
+            },
+        }
+    }
+
+    /// The bytes of a range.
+    ///
+    /// # Errors
+    /// As [`Source::read_at`], and when the range reaches past the end.
+    pub fn range(&self, start: u64, end: u64) -> Result<Vec<u8>, Refusal> {
+        let read = || -> io::Result<Vec<u8>> {
+            let mut bytes = vec![0; index_of(end.saturating_sub(start))?];
+            let mut done = 0;
+            while done < bytes.len() {
+                match self.read_at(start + done as u64, &mut bytes[done..])? {
+                    0 => return Err(io::ErrorKind::UnexpectedEof.into()),
+                    count => done += count,
+                }
+            }
+            Ok(bytes)
+        };
+        read().map_err(|error| self.unreadable(&error))
+    }
+
+    /// Reads all bytes in order.
+    pub fn reader(&self) -> Reader {
+        Reader { source: self.clone(), at: 0 }
+    }
+
+    /// Lower-case hexadecimal SHA-256 of all bytes.
+    ///
+    /// # Errors
+    /// When the file cannot be read.
+    pub fn sha256(&self) -> Result<String, Refusal> {
+        let mut hasher = Sha256::new();
+        self.each_chunk(|chunk| {
+            hasher.update(chunk);
+            Ok(())
+        })
+        .map_err(|error| self.unreadable(&error))?;
+        Ok(hex(&hasher.finalize()))
+    }
+
+    /// Writes all bytes; gives their number. Does not flush.
+    ///
+    /// # Errors
+    /// Those of reading and of writing.
+    pub fn write_to(&self, out: &mut (impl Write + ?Sized)) -> io::Result<u64> {
+        self.each_chunk(|chunk| out.write_all(chunk))?;
+        Ok(self.len)
+    }
+
+    fn each_chunk(&self, mut take: impl FnMut(&[u8]) -> io::Result<()>) -> io::Result<()> {
+        let mut buf = vec![0; CHUNK.min(index_of(self.len)?.max(1))];
+        let mut at = 0;
+        while at < self.len {
+            let count = self.read_at(at, &mut buf)?;
+            take(&buf[..count])?;
+            at += count as u64;
+        }
+        Ok(())
+    }
+
+    /// A view of this source with the edits made.
+    ///
+    /// # Errors
+    /// When the edits are not in order, overlap, or reach past the end.
+    pub fn spliced(&self, edits: &[Edit]) -> Result<Self, Refusal> {
+        let mut pieces = Vec::with_capacity(self.pieces.len() + 2 * edits.len());
+        let mut done = 0;
+        for edit in edits {
+            let end = edit.at.checked_add(edit.remove);
+            let Some(end) = end.filter(|end| edit.at >= done && *end <= self.len) else {
+                return Err(Refusal::new(
+                    "splice",
+                    format!("a change at byte {} does not fit the drawing", edit.at),
+                    "Read the drawing again, it may have changed",
+                ));
+            };
+            self.cut(done, edit.at, &mut pieces);
+            if !edit.insert.is_empty() {
+                pieces.push(Piece::Made(Arc::from(edit.insert.as_slice())));
+            }
+            done = end;
+        }
+        self.cut(done, self.len, &mut pieces);
+        let mut len = 0;
+        let placed: Vec<(u64, Piece)> = pieces
+            .into_iter()
+            .map(|piece| {
+                let start = len;
+                len += piece.len();
+                (start, piece)
+            })
+            .collect();
+        Ok(Self { origin: Arc::clone(&self.origin), pieces: Arc::from(placed), len })
+    }
+
+    /// Appends the pieces that make up a range of this source.
+    fn cut(&self, start: u64, end: u64, into: &mut Vec<Piece>) {
+        for (at, piece) in self.pieces.iter() {
+            let low = start.max(*at);
+            let high = end.min(at + piece.len());
+            if low >= high {
+                continue;
+            }
+            into.push(match piece {
+                Piece::Kept { from, .. } => Piece::Kept { from: from + (low - at), len: high - low },
+                Piece::Made(bytes) => {
+                    let whole = low == *at && high == at + piece.len();
+                    let part = |x: u64| usize::try_from(x - at).unwrap_or(usize::MAX);
+                    if whole {
+                        Piece::Made(Arc::clone(bytes))
+                    } else {
+                        Piece::Made(Arc::from(&bytes[part(low)..part(high)]))
+                    }
+                }
+            });
+        }
+    }
+
+    /// The refusal for a file that cannot be read to its end.
+    pub(crate) fn unreadable(&self, error: &io::Error) -> Refusal {
+        let name = match self.path() {
+            Some(path) => path.display().to_string(),
+            None => "the drawing".to_owned(),
+        };
+        Refusal::new(
+            "read",
+            format!("{name} cannot be read: {error}"),
+            "Check the disk or network drive, and that no other program is writing the file",
+        )
+    }
+}
+
+/// Reads a [`Source`] from its start to its end.
+#[derive(Debug, Clone)]
+pub struct Reader {
+    source: Source,
+    at: u64,
+}
+
+impl Read for Reader {
+    fn read(&mut self, buf: &mut [u8]) -> io::Result<usize> {
+        let count = self.source.read_at(self.at, buf)?;
+        self.at += count as u64;
+        Ok(count)
+    }
+}
+
+fn index_of(at: u64) -> io::Result<usize> {
+    usize::try_from(at).map_err(|_| io::ErrorKind::OutOfMemory.into())
+}
+
+#[cfg(unix)]
+fn read_file_at(file: &File, at: u64, buf: &mut [u8]) -> io::Result<usize> {
+    loop {
+        match std::os::unix::fs::FileExt::read_at(file, buf, at) {
+            Err(error) if error.kind() == io::ErrorKind::Interrupted => {}
+            other => return other,
+        }
+    }
+}
+
+#[cfg(windows)]
+fn read_file_at(file: &File, at: u64, buf: &mut [u8]) -> io::Result<usize> {
+    std::os::windows::fs::FileExt::seek_read(file, buf, at)
+}
+
+/// Lower-case hexadecimal digits.
+pub(crate) fn hex(bytes: &[u8]) -> String {
+    use std::fmt::Write;
+    bytes.iter().fold(String::new(), |mut text, byte| {
+        // Writing to a string cannot fail.
+        let _ = write!(text, "{byte:02x}");
+        text
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn edit(at: u64, remove: u64, insert: &str) -> Edit {
+        Edit { at, remove, insert: insert.as_bytes().to_vec() }
+    }
+
+    fn all(source: &Source) -> String {
+        let mut out = Vec::new();
+        source.write_to(&mut out).unwrap();
+        assert_eq!(out.len() as u64, source.len());
+        let mut again = Vec::new();
+        source.reader().read_to_end(&mut again).unwrap();
+        assert_eq!(out, again);
+        String::from_utf8(out).unwrap()
+    }
+
+    #[test]
+    fn a_view_of_a_view_is_one_view() {
+        let source = Source::from_bytes("0123456789");
+        let once = source.spliced(&[edit(2, 3, "abc"), edit(5, 0, "X"), edit(10, 0, "end")]).unwrap();
+        assert_eq!(all(&once), "01abcX56789end");
+        let twice = once.spliced(&[edit(1, 2, "-"), edit(4, 2, "")]).unwrap();
+        assert_eq!(all(&twice), "0-b56789end");
+        assert_eq!(twice.range(2, 6).unwrap(), b"b567");
+        assert_eq!(all(&source), "0123456789");
+    }
+
+    #[test]
+    fn bad_edits_are_refused() {
+        let source = Source::from_bytes("0123456789");
+        assert!(source.spliced(&[edit(11, 0, "x")]).is_err());
+        assert!(source.spliced(&[edit(9, 2, "x")]).is_err());
+        assert!(source.spliced(&[edit(3, 2, ""), edit(4, 0, "x")]).is_err());
+        assert!(source.spliced(&[edit(u64::MAX, 2, "")]).is_err());
+    }
+
+    #[test]
+    fn file_and_memory_give_the_published_hash() {
+        // FIPS 180-2, appendix B.1.
+        let abc = "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad";
+        assert_eq!(Source::from_bytes("abc").sha256().unwrap(), abc);
+        let mut file = tempfile::NamedTempFile::new().unwrap();
+        file.write_all(b"abc").unwrap();
+        let source = Source::open(file.path()).unwrap();
+        assert_eq!(source.sha256().unwrap(), abc);
+        file.as_file().set_len(1).unwrap();
+        let error = source.sha256().unwrap_err();
+        assert!(error.message.contains("shorter"), "{error}");
+        assert!(Source::open(&std::env::temp_dir()).is_err());
+    }
+}
