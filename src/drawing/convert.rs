@@ -1,7 +1,9 @@
 //! Typed entities of the `dxf` crate to curves, points and texts in the plane of the drawing.
 
 use dxf::entities::{Entity, EntityType};
-use dxf::enums::{AttachmentPoint, HorizontalTextJustification as Across, VerticalTextJustification as Upright};
+use dxf::enums::{
+    AttachmentPoint, HorizontalTextJustification as Across, VerticalTextJustification as Upright,
+};
 
 use super::entity::{Attribute, Curve, PointLike, Source, Text};
 use super::ocs::Frame;
@@ -60,12 +62,8 @@ pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusa
                 return Ok(None);
             }
             // Control points of a fitted spline are only its frame.
-            let vertices: Vec<_> = poly
-                .vertices()
-                .filter(|v| !v.is_spline_frame_control_point())
-                .collect();
-            let places: Vec<(Point, f64)> =
-                vertices.iter().map(|v| (flat(&v.location), v.bulge)).collect();
+            let vertices: Vec<_> = poly.vertices().filter(|v| !v.is_spline_frame_control_point()).collect();
+            let places: Vec<(Point, f64)> = vertices.iter().map(|v| (flat(&v.location), v.bulge)).collect();
             if poly.is_3d_polyline() {
                 let mut z = vertices.first().map_or(0.0, |v| v.location.z);
                 for pair in vertices.windows(2) {
@@ -200,7 +198,8 @@ fn paragraph(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
     // Place and direction of a paragraph are given in drawing coordinates, unlike those of a text.
     frame(&source, &t.extrusion_direction)?;
     let direction = Vec2::new(t.x_axis_direction.x, t.x_axis_direction.y);
-    let along = if record.tags.first(11).is_some() && direction.hypot() > 0.0 && t.rotation_angle.abs() <= 0.0 {
+    let along = if record.tags.first(11).is_some() && direction.hypot() > 0.0 && t.rotation_angle.abs() <= 0.0
+    {
         direction.normalize()
     } else {
         Vec2::from_angle(t.rotation_angle.to_radians())
@@ -298,16 +297,9 @@ fn bulged(vertices: &[(Point, f64)], closed: bool) -> Vec<Segment> {
 }
 
 fn bend(start: Point, end: Point, bulge: f64) -> Segment {
-    if (end - start).hypot() > 0.0 {
-        Segment::bulge(start, end, bulge)
-    } else {
-        Segment::line(start, end)
-    }
+    if (end - start).hypot() > 0.0 { Segment::bulge(start, end, bulge) } else { Segment::line(start, end) }
 }
 
 fn lay(source: &Source, frame: &Frame, pieces: &[Segment]) -> Result<Vec<Segment>, Refusal> {
-    pieces
-        .iter()
-        .map(|p| frame.flat_segment(p).ok_or_else(|| not_flat(source)))
-        .collect()
+    pieces.iter().map(|p| frame.flat_segment(p).ok_or_else(|| not_flat(source))).collect()
 }

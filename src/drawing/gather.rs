@@ -45,7 +45,11 @@ pub fn scan(bytes: &tags::Source, settings: &Settings) -> Result<Outline, Refusa
 ///
 /// # Errors
 /// When no axis is found, a layer that the job names is missing or unusable, or an entity on it cannot be read.
-pub fn read_outlined(bytes: &tags::Source, outline: &Outline, settings: &Settings) -> Result<Drawing, Refusal> {
+pub fn read_outlined(
+    bytes: &tags::Source,
+    outline: &Outline,
+    settings: &Settings,
+) -> Result<Drawing, Refusal> {
     let mut reader = Reader { bytes, outline, settings, notes: Vec::new() };
     let (axis_layers, axis) = reader.axis()?;
     let (load_layers, points, texts) = reader.loads(&axis_layers, &axis)?;
@@ -97,7 +101,9 @@ impl Reader<'_> {
             }
             match &fitting[..] {
                 [] => {}
-                [(layer, word)] => return self.guessed_axis(layer, Reason::Word(word), &self.outline.records),
+                [(layer, word)] => {
+                    return self.guessed_axis(layer, Reason::Word(word), &self.outline.records);
+                }
                 several => {
                     let names: Vec<String> = several.iter().map(|s| s.0.clone()).collect();
                     return Err(roles::no_axis(self.outline, &names));
@@ -239,16 +245,14 @@ impl Reader<'_> {
     }
 
     /// The points and texts on some layers.
-    fn points(
-        &self,
-        layers: &[String],
-        records: &[Record],
-    ) -> Result<(Vec<PointLike>, Vec<Text>), Refusal> {
+    fn points(&self, layers: &[String], records: &[Record]) -> Result<(Vec<PointLike>, Vec<Text>), Refusal> {
         let mut points = Vec::new();
         let mut texts = Vec::new();
         for record in in_model(records, layers) {
             match record.kind.as_str() {
-                kind if POINTS.contains(&kind) => points.extend(convert::point(record, &self.outline.decoder)?),
+                kind if POINTS.contains(&kind) => {
+                    points.extend(convert::point(record, &self.outline.decoder)?)
+                }
                 "TEXT" | "MTEXT" => texts.extend(convert::text(record, &self.outline.decoder)?),
                 _ => {}
             }
@@ -340,7 +344,8 @@ impl Reader<'_> {
     fn inserted_blocks(&self) -> Result<Vec<String>, Refusal> {
         let keep = |c: &Candidate<'_>| c.kind == "INSERT";
         let outline = tags::scan(self.bytes, &Options { keep: Some(&keep), hash: false })?;
-        let name_of = |r: &Record| r.tags.first(2).map(|t| fold(self.outline.decoder.text(t.trimmed()).trim()));
+        let name_of =
+            |r: &Record| r.tags.first(2).map(|t| fold(self.outline.decoder.text(t.trimmed()).trim()));
         let mut inside: BTreeMap<String, Vec<String>> = BTreeMap::new();
         let mut open = Vec::new();
         for record in &outline.records {
@@ -370,7 +375,8 @@ impl Reader<'_> {
             };
             for (kind, &count) in census.model.iter().filter(|(k, _)| !read_kinds.contains(&k.as_str())) {
                 let could_be_load = role == Role::Loads
-                    && (CURVES.contains(&kind.as_str()) || matches!(kind.as_str(), "LEADER" | "MULTILEADER" | "SPLINE"));
+                    && (CURVES.contains(&kind.as_str())
+                        || matches!(kind.as_str(), "LEADER" | "MULTILEADER" | "SPLINE"));
                 let first = self
                     .outline
                     .records

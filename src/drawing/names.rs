@@ -5,28 +5,92 @@
 
 /// Words for the load-bearing line itself.
 const ARCH: [&str; 25] = [
-    "arch", "arches", "arc", "bogen", "boegen", "bögen", "arco", "arcos", "archi", "boog", "bue", "łuk", "oblouk",
-    "kemer", "rib", "ribs", "rippe", "vault", "gewölbe", "gewoelbe", "voûte", "voute", "bóveda", "cable", "kabel",
+    "arch", "arches", "arc", "bogen", "boegen", "bögen", "arco", "arcos", "archi", "boog", "bue", "łuk",
+    "oblouk", "kemer", "rib", "ribs", "rippe", "vault", "gewölbe", "gewoelbe", "voûte", "voute", "bóveda",
+    "cable", "kabel",
 ];
 
 /// Words for an axis or a centre line.
 const AXIS: [&str; 17] = [
-    "axis", "axe", "achse", "eje", "asse", "eixo", "centreline", "centerline", "centre", "center", "systemlinie",
-    "mittellinie", "schwerlinie", "hartlijn", "oś", "osa", "tengely",
+    "axis",
+    "axe",
+    "achse",
+    "eje",
+    "asse",
+    "eixo",
+    "centreline",
+    "centerline",
+    "centre",
+    "center",
+    "systemlinie",
+    "mittellinie",
+    "schwerlinie",
+    "hartlijn",
+    "oś",
+    "osa",
+    "tengely",
 ];
 
 /// Words for loads and forces.
 const LOADS: [&str; 24] = [
-    "load", "loads", "last", "lasten", "charge", "charges", "carga", "cargas", "carico", "carichi", "belasting", "force",
-    "forces", "kraft", "kräfte", "kraefte", "fuerza", "fuerzas", "forza", "forze", "força", "forcas", "zatížení",
+    "load",
+    "loads",
+    "last",
+    "lasten",
+    "charge",
+    "charges",
+    "carga",
+    "cargas",
+    "carico",
+    "carichi",
+    "belasting",
+    "force",
+    "forces",
+    "kraft",
+    "kräfte",
+    "kraefte",
+    "fuerza",
+    "fuerzas",
+    "forza",
+    "forze",
+    "força",
+    "forcas",
+    "zatížení",
     "obciążenie",
 ];
 
 /// Words for other parts of an arch drawing: a layer with one of them is no axis.
 const OTHER: [&str; 30] = [
-    "intrados", "extrados", "soffit", "ring", "fill", "road", "deck", "post", "posts", "joint", "joints", "hinge",
-    "hinges", "hatch", "dim", "dims", "text", "grid", "raster", "ground", "level", "levels", "section", "reinf", "rebar",
-    "bewehrung", "fuge", "fugen", "leibung", "rücken",
+    "intrados",
+    "extrados",
+    "soffit",
+    "ring",
+    "fill",
+    "road",
+    "deck",
+    "post",
+    "posts",
+    "joint",
+    "joints",
+    "hinge",
+    "hinges",
+    "hatch",
+    "dim",
+    "dims",
+    "text",
+    "grid",
+    "raster",
+    "ground",
+    "level",
+    "levels",
+    "section",
+    "reinf",
+    "rebar",
+    "bewehrung",
+    "fuge",
+    "fugen",
+    "leibung",
+    "rücken",
 ];
 
 /// Letters from which a word also counts inside a compound.
@@ -37,11 +101,7 @@ fn word_in(name: &str, words: &[&'static str]) -> Option<&'static str> {
     let parts: Vec<&str> = name.split(|c: char| !c.is_alphabetic()).filter(|p| !p.is_empty()).collect();
     words
         .iter()
-        .find(|w| {
-            parts
-                .iter()
-                .any(|p| p == *w || (w.chars().count() >= COMPOUND && p.contains(**w)))
-        })
+        .find(|w| parts.iter().any(|p| p == *w || (w.chars().count() >= COMPOUND && p.contains(**w))))
         .copied()
 }
 

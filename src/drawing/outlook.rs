@@ -24,11 +24,7 @@ pub fn one_line(curves: &[Curve]) -> Option<Line> {
     if curves.is_empty() || curves.iter().any(|c| c.closed) {
         return None;
     }
-    let pieces: Vec<&Segment> = curves
-        .iter()
-        .flat_map(|c| &c.pieces)
-        .filter(|s| s.length() > 0.0)
-        .collect();
+    let pieces: Vec<&Segment> = curves.iter().flat_map(|c| &c.pieces).filter(|s| s.length() > 0.0).collect();
     let ends: Vec<Point> = pieces.iter().flat_map(|s| [s.start(), s.end()]).collect();
     let low = ends.iter().map(|p| p.x).fold(f64::INFINITY, f64::min);
     let high = ends.iter().map(|p| p.x).fold(f64::NEG_INFINITY, f64::max);
@@ -50,13 +46,15 @@ pub fn one_line(curves: &[Curve]) -> Option<Line> {
     for name in names {
         let mine: Vec<&Segment> =
             links.iter().zip(&pieces).filter(|(l, _)| part[l.0] == name).map(|(_, s)| *s).collect();
-        let free: Vec<Point> = (0..ends.len()).filter(|&i| degree[i] == 1 && part[i] == name).map(|i| ends[i]).collect();
+        let free: Vec<Point> =
+            (0..ends.len()).filter(|&i| degree[i] == 1 && part[i] == name).map(|i| ends[i]).collect();
         let one = arch(&mine, &free)?;
         line = Some(match line {
             None => one,
             // Spans side by side are one line of spans; lines over one another are not.
-            Some(before) if one.left > before.right - tolerance::GAP * before.span
-                || one.right < before.left + tolerance::GAP * before.span =>
+            Some(before)
+                if one.left > before.right - tolerance::GAP * before.span
+                    || one.right < before.left + tolerance::GAP * before.span =>
             {
                 Line {
                     span: before.span + one.span,
@@ -90,9 +88,12 @@ fn arch(pieces: &[&Segment], free: &[Point]) -> Option<Line> {
         }
     }
     let ratio = rise.abs() / span;
-    (tolerance::OWN_RISE..=tolerance::STEEPEST_GUESS)
-        .contains(&ratio)
-        .then_some(Line { span, rise, left: left.x, right: right.x })
+    (tolerance::OWN_RISE..=tolerance::STEEPEST_GUESS).contains(&ratio).then_some(Line {
+        span,
+        rise,
+        left: left.x,
+        right: right.x,
+    })
 }
 
 /// For each end the lowest end of its connected part.

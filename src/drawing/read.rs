@@ -24,50 +24,32 @@ struct Groups {
 const ANY: (i64, i64) = (-32_768, 32_767);
 
 fn groups(kind: &str) -> Option<Groups> {
-    const POINT: [i32; 6] = [10, 20, 30, 210, 220, 230];
-    let reals = |reals| (&[] as &[i32], reals, &[] as &[(i32, i64, i64)]);
-    let (texts, reals, integers, needed): (&[i32], &[i32], &[(i32, i64, i64)], &[i32]) = match kind {
-        "LINE" => {
-            let r = reals(&[10, 20, 30, 11, 21, 31, 210, 220, 230]);
-            (r.0, r.1, r.2, &[10, 20, 11, 21])
+    const POINT: &[i32] = &[10, 20, 30, 210, 220, 230];
+    let groups = |reals, needed| Groups { texts: &[], reals, integers: &[], needed };
+    Some(match kind {
+        "LINE" => groups(&[10, 20, 30, 11, 21, 31, 210, 220, 230], &[10, 20, 11, 21]),
+        "POINT" => groups(POINT, &[10, 20]),
+        "CIRCLE" => groups(&[10, 20, 30, 40, 210, 220, 230], &[10, 20, 40]),
+        "ARC" => groups(&[10, 20, 30, 40, 50, 51, 210, 220, 230], &[10, 20, 40, 50, 51]),
+        "LWPOLYLINE" => {
+            Groups { integers: &[(70, ANY.0, ANY.1)], ..groups(&[10, 20, 38, 42, 210, 220, 230], &[]) }
         }
-        "POINT" => {
-            let r = reals(&POINT);
-            (r.0, r.1, r.2, &[10, 20])
-        }
-        "CIRCLE" => {
-            let r = reals(&[10, 20, 30, 40, 210, 220, 230]);
-            (r.0, r.1, r.2, &[10, 20, 40])
-        }
-        "ARC" => {
-            let r = reals(&[10, 20, 30, 40, 50, 51, 210, 220, 230]);
-            (r.0, r.1, r.2, &[10, 20, 40, 50, 51])
-        }
-        "LWPOLYLINE" => (&[], &[10, 20, 38, 42, 210, 220, 230], &[(70, ANY.0, ANY.1)], &[]),
-        "POLYLINE" => (&[], &POINT, &[(70, ANY.0, ANY.1)], &[]),
-        "VERTEX" => (&[], &[10, 20, 30, 42], &[(70, ANY.0, ANY.1)], &[10, 20]),
-        "INSERT" => (
-            &[2],
-            &[10, 20, 30, 41, 42, 43, 44, 45, 50, 210, 220, 230],
-            &[(70, ANY.0, ANY.1), (71, ANY.0, ANY.1)],
-            &[10, 20],
-        ),
-        "ATTRIB" => (&[1, 2], &POINT, &[], &[]),
-        "TEXT" => (
-            &[1],
-            &[10, 20, 30, 11, 21, 31, 40, 41, 50, 210, 220, 230],
-            &[(72, 0, 5), (73, 0, 3)],
-            &[10, 20],
-        ),
-        "MTEXT" => (
-            &[1, 3],
-            &[10, 20, 30, 11, 21, 31, 40, 41, 50, 210, 220, 230],
-            &[(71, 1, 9)],
-            &[10, 20],
-        ),
+        "POLYLINE" => Groups { integers: &[(70, ANY.0, ANY.1)], ..groups(POINT, &[]) },
+        "VERTEX" => Groups { integers: &[(70, ANY.0, ANY.1)], ..groups(&[10, 20, 30, 42], &[10, 20]) },
+        "INSERT" => Groups { texts: &[2], ..groups(POINT, &[10, 20]) },
+        "ATTRIB" => Groups { texts: &[1, 2], ..groups(POINT, &[]) },
+        "TEXT" => Groups {
+            texts: &[1],
+            integers: &[(72, 0, 5), (73, 0, 3)],
+            ..groups(&[10, 20, 30, 11, 21, 31, 40, 41, 50, 210, 220, 230], &[10, 20])
+        },
+        "MTEXT" => Groups {
+            texts: &[1, 3],
+            integers: &[(71, 1, 9)],
+            ..groups(&[10, 20, 30, 11, 21, 31, 40, 41, 50, 210, 220, 230], &[10, 20])
+        },
         _ => return None,
-    };
-    Some(Groups { texts, reals, integers, needed })
+    })
 }
 
 /// Reads one record, with the run of VERTEX or ATTRIB records that belongs to it.
@@ -95,7 +77,9 @@ pub fn entity(record: &Record, decoder: &Decoder) -> Result<Entity, Refusal> {
 /// The record as a drawing of its own.
 fn fragment(record: &Record, decoder: &Decoder) -> Result<String, Refusal> {
     let mut out = String::with_capacity(512);
-    out.push_str("  0\nSECTION\n  2\nHEADER\n  9\n$ACADVER\n  1\nAC1021\n  0\nENDSEC\n  0\nSECTION\n  2\nENTITIES\n");
+    out.push_str(
+        "  0\nSECTION\n  2\nHEADER\n  9\n$ACADVER\n  1\nAC1021\n  0\nENDSEC\n  0\nSECTION\n  2\nENTITIES\n",
+    );
     write_record(&mut out, record, decoder)?;
     let wanted = match record.kind.as_str() {
         "POLYLINE" => Some("VERTEX"),
@@ -127,12 +111,7 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
     if kind == "INSERT" && record.children.iter().any(|c| c.kind == "ATTRIB") {
         out.push_str(" 66\n1\n");
     }
-    let turned_last = record
-        .tags
-        .own()
-        .filter(|t| t.code == 11 || t.code == 50)
-        .map(|t| t.code)
-        .last();
+    let turned_last = record.tags.own().filter(|t| t.code == 11 || t.code == 50).map(|t| t.code).last();
     let mut seen = Vec::new();
     let mut columns = false;
     for tag in record.tags.own() {
@@ -229,7 +208,12 @@ fn bad(record: &Record, tag: &Tag<'_>, what: &str) -> Refusal {
         record,
         tag,
         "entity-number",
-        format!("group {} of the {} is \"{}\", which is no {what}", tag.code, record.kind, shown.escape_debug()),
+        format!(
+            "group {} of the {} is \"{}\", which is no {what}",
+            tag.code,
+            record.kind,
+            shown.escape_debug()
+        ),
     )
 }
 

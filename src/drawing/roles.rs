@@ -19,17 +19,19 @@ pub fn count(counts: &std::collections::BTreeMap<String, u64>, kinds: &[&str]) -
 
 /// Layers that may be read: not ours, and with something in model space.
 fn usable<'a>(outline: &'a Outline) -> impl Iterator<Item = &'a LayerCensus> + Clone {
-    outline
-        .census
-        .iter()
-        .filter(|c| !c.model.is_empty() && !outline.layer(&c.name).is_some_and(|l| l.ours))
+    outline.census.iter().filter(|c| !c.model.is_empty() && !outline.layer(&c.name).is_some_and(|l| l.ours))
 }
 
 /// The layers that the patterns of a role match and that hold something of the kinds.
 ///
 /// # Errors
 /// When two roles claim a layer; when the job names the role and nothing usable is there.
-pub fn named(outline: &Outline, settings: &Settings, role: Role, kinds: &[&str]) -> Result<Vec<String>, Refusal> {
+pub fn named(
+    outline: &Outline,
+    settings: &Settings,
+    role: Role,
+    kinds: &[&str],
+) -> Result<Vec<String>, Refusal> {
     let wanted = match role {
         Role::Axis => JobRole::Axis,
         Role::Loads => JobRole::Loads,
@@ -124,21 +126,15 @@ fn nearest(outline: &Outline, patterns: &[&str]) -> String {
     let mut names: Vec<(f64, String)> = all_names(outline)
         .into_iter()
         .map(|name| {
-            let best = patterns
-                .iter()
-                .map(|p| strsim::jaro_winkler(&fold(&name), &fold(p)))
-                .fold(0.0, f64::max);
+            let best =
+                patterns.iter().map(|p| strsim::jaro_winkler(&fold(&name), &fold(p))).fold(0.0, f64::max);
             (best, name)
         })
         .filter(|n| n.0 > 0.6)
         .collect();
     names.sort_by(|a, b| b.0.total_cmp(&a.0).then_with(|| a.1.cmp(&b.1)));
     let shown: Vec<String> = names.into_iter().take(3).map(|n| n.1).collect();
-    if shown.is_empty() {
-        String::new()
-    } else {
-        format!("; the nearest names are {}", shown.join(", "))
-    }
+    if shown.is_empty() { String::new() } else { format!("; the nearest names are {}", shown.join(", ")) }
 }
 
 fn all_names(outline: &Outline) -> Vec<String> {
@@ -179,10 +175,8 @@ pub fn holding(outline: &Outline, kinds: &[&str], most: u64, but_not: &[String])
 
 /// The refusal when no axis was found; `candidates` are layers that could all be it.
 pub fn no_axis(outline: &Outline, candidates: &[String]) -> Refusal {
-    let mut holding: Vec<(u64, &str)> = usable(outline)
-        .map(|l| (count(&l.model, &CURVES), l.name.as_str()))
-        .filter(|l| l.0 > 0)
-        .collect();
+    let mut holding: Vec<(u64, &str)> =
+        usable(outline).map(|l| (count(&l.model, &CURVES), l.name.as_str())).filter(|l| l.0 > 0).collect();
     holding.sort_by(|a, b| b.0.cmp(&a.0).then(a.1.cmp(b.1)));
     let what = if candidates.is_empty() {
         "no layer could be told to hold the axis".to_owned()
