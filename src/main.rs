@@ -1,1 +1,7 @@
-fn main() {}
+//! The thrustmark program; everything is in the library.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    thrustmark::cli::run()
+}

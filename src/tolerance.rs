@@ -162,7 +162,7 @@ pub const UNIT_VECTOR: f64 = 1e-9;
 /// Places on the axis closer than this part of its length are one joint, and a line this close to an end meets it. No
 /// unit. Larger: loads near a springing are drawn onto it; smaller: a load over a springing of a drawing in national
 /// grid coordinates (1e-10 m of rounding on a few metres) counts as off the span.
-pub const SAME_JOINT: f64 = 1e-9;
+pub const ONE_JOINT: f64 = 1e-9;
 
 /// Distance from a smooth joint, as a part of the radius, within which two pieces of a path may seem to cross. The
 /// root of the rounding error, with a margin. Larger: true crossings hide there; smaller: smooth joints count as crossings.

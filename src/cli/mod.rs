@@ -1,3 +1,195 @@
-//! The command line.
+//! The command line: parses, runs, prints, and gives the exit status. The only place that prints.
 
 pub mod args;
+mod listing;
+mod paths;
+
+use std::io::{self, IsTerminal, Write};
+use std::path::{Path, PathBuf};
+use std::process::ExitCode;
+
+use clap::Parser;
+
+use crate::flow::{self, Environment, Target};
+use crate::job::Job;
+use crate::outcome::{CONTRACT, Document, Run, Tool, Verdict};
+use crate::refusal::Refusal;
+use crate::write::file::{self, Replace};
+use crate::write::text::plain;
+use crate::write::{json, terminal};
+use args::{Args, CheckArgs, Command, JsonTarget, ListArgs, UnmarkArgs};
+
+/// Status of a run that could not be done.
+const REFUSED: u8 = 2;
+
+/// Runs the program with the arguments of the process.
+pub fn run() -> ExitCode {
+    let args = match Args::try_parse() {
+        Ok(args) => args,
+        Err(error) => error.exit(),
+    };
+    let done = match &args.command {
+        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref())),
+        Command::Check(args) => check(args, None),
+        Command::Unmark(args) => unmark(args),
+        Command::List(args) => list(args),
+        Command::Schema => json::schema().map(|schema| {
+            say(&schema);
+            0
+        }),
+    };
+    ExitCode::from(done.unwrap_or_else(|refusal| {
+        tell(&format!("thrustmark: {}\n", plain(&refusal.to_string())));
+        REFUSED
+    }))
+}
+
+/// `check`, and `mark` when a place for the copies is given (which may be "beside each drawing").
+fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
+    let environment = Environment::of_process()?;
+    let named = args.job.as_deref().map(Job::load).transpose()?;
+    let drawings = paths::drawings(&args.drawings)?;
+    let targets = match mark {
+        Some(output) => Some(paths::targets(&args.drawings, &drawings, output)?),
+        None => None,
+    };
+    if let Some(JsonTarget::File(target)) = &args.json {
+        file::may_write(target, &borrowed(&drawings), &json_may_replace(args.force))?;
+    }
+    let runs: Vec<Run> = drawings
+        .iter()
+        .enumerate()
+        .map(|(i, drawing)| match &targets {
+            Some(targets) => {
+                let target = Target { output: targets[i].clone(), force: args.force };
+                flow::mark(drawing, named.as_ref(), &target, environment)
+            }
+            None => flow::check(drawing, named.as_ref(), environment),
+        })
+        .collect();
+    let document = Document {
+        contract: CONTRACT,
+        tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
+        runs,
+    };
+    let on_stdout = args.json != Some(JsonTarget::Stdout);
+    let style = terminal::Style {
+        width: width(on_stdout),
+        colour: colour(on_stdout),
+        verbose: args.verbose,
+    };
+    let summary = terminal::summary(&document, &style);
+    match &args.json {
+        None => say_results(&document, &summary),
+        Some(JsonTarget::Stdout) => {
+            say(&json::to_json(&document)?);
+            tell(&summary);
+        }
+        Some(JsonTarget::File(target)) => {
+            let text = json::to_json(&document)?;
+            file::write_whole(target, &borrowed(&drawings), &json_may_replace(args.force), |out| {
+                out.write_all(text.as_bytes()).map_err(|error| {
+                    Refusal::new("write", format!("{}: {error}", target.display()), "Look at the space left.")
+                })
+            })?;
+            say_results(&document, &summary);
+        }
+    }
+    Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
+}
+
+/// Results go to stdout; a run that was refused is told on stderr.
+fn say_results(document: &Document, summary: &str) {
+    if document.runs.iter().all(|run| run.verdict.is_none()) {
+        tell(summary);
+    } else {
+        say(summary);
+        for run in document.runs.iter().filter(|run| run.verdict.is_none()) {
+            if let Some(error) = &run.error {
+                tell(&format!("{}: {}\n", plain(&run.drawing.file), plain(&error.to_string())));
+            }
+        }
+    }
+}
+
+fn unmark(args: &UnmarkArgs) -> Result<u8, Refusal> {
+    let done = flow::unmark(&args.drawing, args.output.as_deref(), args.force)?;
+    let name = plain(&done.output.display().to_string());
+    if done.exact {
+        say(&format!("{name}: the source, byte for byte (SHA-256 {})\n", done.sha256));
+    } else {
+        tell(&format!("{name}: not byte-exact: the marked copy was changed since it was written\n"));
+    }
+    Ok(0)
+}
+
+fn list(args: &ListArgs) -> Result<u8, Refusal> {
+    let named = args.job.as_deref().map(Job::load).transpose()?;
+    let listing = flow::list(&args.drawing, named.as_ref())?;
+    say(&listing::text(&listing));
+    Ok(0)
+}
+
+/// Exit status of one run.
+fn status(run: &Run) -> u8 {
+    match run.verdict {
+        Some(Verdict::Within) => 0,
+        Some(Verdict::Outside) => 1,
+        Some(Verdict::Unchecked) => 3,
+        None => REFUSED,
+    }
+}
+
+/// Over several drawings the worst counts: 2, then 1, then 3, then 0.
+fn severity(status: u8) -> u8 {
+    match status {
+        0 => 0,
+        3 => 1,
+        1 => 2,
+        _ => 3,
+    }
+}
+
+/// A results file may replace another JSON document of this tool, and anything with `--force`.
+fn json_may_replace(force: bool) -> Replace<'static> {
+    if force { Replace::Any } else { Replace::Ours(&is_results) }
+}
+
+fn is_results(path: &Path) -> io::Result<bool> {
+    let text = std::fs::read(path)?;
+    let Ok(value) = serde_json::from_slice::<serde_json::Value>(&text) else {
+        return Ok(false);
+    };
+    Ok(value["contract"].is_u64() && value["tool"]["name"] == env!("CARGO_PKG_NAME"))
+}
+
+fn borrowed(paths: &[PathBuf]) -> Vec<&Path> {
+    paths.iter().map(PathBuf::as_path).collect()
+}
+
+/// Columns of the terminal that is written to; a fixed number elsewhere, so that files and pipes repeat.
+fn width(stdout: bool) -> usize {
+    const ELSEWHERE: usize = 100;
+    let terminal = if stdout { io::stdout().is_terminal() } else { io::stderr().is_terminal() };
+    if !terminal {
+        return ELSEWHERE;
+    }
+    terminal_size::terminal_size().map_or(ELSEWHERE, |(width, _)| usize::from(width.0))
+}
+
+/// Colours only on terminals, and not where `NO_COLOR` asks for none.
+fn colour(stdout: bool) -> bool {
+    let terminal = if stdout { io::stdout().is_terminal() } else { io::stderr().is_terminal() };
+    let refused = std::env::var_os("NO_COLOR").is_some_and(|v| !v.is_empty());
+    terminal && !refused && std::env::var_os("TERM").is_none_or(|t| t != "dumb")
+}
+
+/// Writes results to stdout. A reader that has gone away (a closed pipe) is no error.
+fn say(text: &str) {
+    let _ = io::stdout().lock().write_all(text.as_bytes());
+}
+
+/// Writes talk to stderr.
+fn tell(text: &str) {
+    let _ = io::stderr().lock().write_all(text.as_bytes());
+}

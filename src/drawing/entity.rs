@@ -96,6 +96,14 @@ pub struct Text {
 }
 
 impl Text {
+    /// The corners of the rectangle that the text covers (estimated).
+    pub fn corners(&self) -> [Point; 4] {
+        let up = Vec2::new(-self.along.y, self.along.x);
+        let corner = |along: f64, upward: f64| self.anchor + self.along * along + up * upward;
+        let ((left, right), (down, top)) = (self.across, self.upright);
+        [corner(-left, -down), corner(right, -down), corner(right, top), corner(-left, top)]
+    }
+
     /// Distance from the rectangle that the text covers (estimated) to a point; zero inside.
     pub fn distance(&self, p: Point) -> f64 {
         let d = p - self.anchor;

@@ -6,7 +6,7 @@ use super::entity::{Curve, PointLike, Source, Text};
 use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
 use super::roles::{self, CURVES, POINTS};
-use super::{Drawing, convert, names, unit};
+use super::{Drawing, convert, names, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
 use crate::refusal::Refusal;
@@ -20,6 +20,9 @@ const UNREAD: [&str; 5] = ["SPLINE", "ELLIPSE", "HELIX", "MLINE", "CIRCLE"];
 /// the job names none, by words in their names.
 pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     let stated = |role: Role| settings.states(&format!("layers.{}", role.key()));
+    if candidate.kind == "VIEWPORT" {
+        return true;
+    }
     match settings.layers.role_of(candidate.layer) {
         Ok(Some(JobRole::Axis | JobRole::Loads)) | Err(_) => true,
         Ok(_) => {
@@ -67,7 +70,8 @@ pub fn read_outlined(
         right - left,
         &mut reader.notes,
     );
-    Ok(Drawing { unit, axis_layers, load_layers, axis, points, texts, notes: reader.notes })
+    let viewports = outline.records.iter().filter_map(viewport::viewport).collect();
+    Ok(Drawing { unit, axis_layers, load_layers, axis, points, texts, viewports, notes: reader.notes })
 }
 
 struct Reader<'a> {
@@ -216,13 +220,8 @@ impl Reader<'_> {
         Ok((layers, points, texts))
     }
 
-    /// Records of these kinds on these layers, in model space.
     fn rescan(&self, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
-        let wanted: Vec<String> = layers.iter().map(|l| fold(l)).collect();
-        let keep = |c: &Candidate<'_>| {
-            c.block.is_none() && kinds.contains(&c.kind) && wanted.contains(&fold(c.layer))
-        };
-        Ok(tags::scan(self.bytes, &Options { keep: Some(&keep), hash: false })?.records)
+        rescan(self.bytes, layers, kinds)
     }
 
     /// The curves on some layers.
@@ -400,8 +399,16 @@ impl Reader<'_> {
     }
 }
 
+/// Records of these kinds on these layers, in model space.
+pub(super) fn rescan(bytes: &tags::Source, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
+    let wanted: Vec<String> = layers.iter().map(|l| fold(l)).collect();
+    let keep =
+        |c: &Candidate<'_>| c.block.is_none() && kinds.contains(&c.kind) && wanted.contains(&fold(c.layer));
+    Ok(tags::scan(bytes, &Options { keep: Some(&keep), hash: false })?.records)
+}
+
 /// Records in model space on these layers that are not our marks.
-fn in_model<'r>(records: &'r [Record], layers: &[String]) -> impl Iterator<Item = &'r Record> {
+pub(super) fn in_model<'r>(records: &'r [Record], layers: &[String]) -> impl Iterator<Item = &'r Record> {
     let layers: Vec<String> = layers.iter().map(|l| fold(l)).collect();
     records.iter().filter(move |r| {
         r.block.is_none() && !r.ours && layers.contains(&fold(&r.layer)) && !r.in_paper_space()
@@ -436,7 +443,7 @@ fn extent(curves: &[Curve]) -> (f64, f64) {
 }
 
 /// Whether a point stands over an arch (hangs under a cable), or on it.
-fn stands_over(p: Point, axis: &[Curve], line: &Line) -> bool {
+pub(super) fn stands_over(p: Point, axis: &[Curve], line: &Line) -> bool {
     let slack = tolerance::BESIDE_AXIS * line.span;
     if p.x < line.left - slack || p.x > line.right + slack {
         return false;

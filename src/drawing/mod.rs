@@ -13,11 +13,14 @@ mod outlook;
 pub mod read;
 mod roles;
 pub mod text;
+mod suggest;
 pub mod unit;
+pub mod viewport;
 
 pub use ends::{clusters, near_pairs};
 pub use entity::{Attribute, Curve, PointLike, Source, Text};
 pub use gather::{keeps, read_outlined, scan};
+pub use suggest::{Suggestion, suggest};
 pub use note::{Note, Reason, Role};
 pub use unit::{NoUnit, Unit, UnitSource};
 
@@ -36,6 +39,8 @@ pub struct Drawing {
     pub points: Vec<PointLike>,
     /// Texts on the load layers, in the order of the file.
     pub texts: Vec<Text>,
+    /// Viewports of the layouts.
+    pub viewports: Vec<viewport::Viewport>,
     /// What was noticed.
     pub notes: Vec<Note>,
 }

@@ -1,7 +1,7 @@
 //! Viewports of the layouts: which part of model space each shows, and at what scale.
 
 use crate::geometry::Point;
-use crate::tags::record::Record;
+use crate::tags::Record;
 
 /// A window of a layout into model space, seen square onto the x-y plane.
 #[derive(Debug, Clone, Copy, PartialEq)]

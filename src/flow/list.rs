@@ -4,10 +4,10 @@ use std::collections::BTreeMap;
 use std::path::Path;
 
 use super::{job_for, without_marks};
-use crate::drawing::{self, Candidate, Role};
+use crate::drawing::{self, Suggestion, viewport};
 use crate::job::{Job, Settings};
 use crate::refusal::Refusal;
-use crate::tags::{self, Source};
+use crate::tags::{Outline, Source, fold};
 
 /// A drawing at a glance.
 #[derive(Debug, Clone, PartialEq)]
@@ -30,10 +30,10 @@ pub struct Listing {
     pub layers: Vec<LayerLine>,
     /// Layouts' viewports: paper units per drawing unit.
     pub viewports: Vec<f64>,
-    /// Layers that could serve, with the reason, the likeliest first.
-    pub candidates: Vec<(Role, String, String)>,
-    /// Why no axis could be told, when none could.
-    pub no_axis: Option<Refusal>,
+    /// Layers that could serve as axis or loads.
+    pub suggestions: Vec<Suggestion>,
+    /// What a check would take: the axis layers and the load layers; or why it would refuse.
+    pub taken: Result<(Vec<String>, Vec<String>), Refusal>,
 }
 
 /// One layer.
@@ -74,10 +74,7 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
             spelled("$EXTMAX", 20)?,
         ])
     })();
-    let (candidates, no_axis) = match drawing::read_outlined(&source, &outline, &settings) {
-        Ok(read) => (candidates(&read), None),
-        Err(refusal) => (Vec::new(), Some(refusal)),
-    };
+    let taken = drawing::read_outlined(&source, &outline, &settings).map(|d| (d.axis_layers, d.load_layers));
     Ok(Listing {
         file: path.display().to_string(),
         version: outline.version.clone(),
@@ -87,8 +84,29 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
         extents,
         marked,
         layers: layers(&outline),
-        viewports: drawing::viewport::viewports(&source)?.iter().map(|v| v.scale).collect(),
-        candidates,
-        no_axis,
+        viewports: outline.records.iter().filter_map(viewport::viewport).map(|v| v.scale).collect(),
+        suggestions: drawing::suggest(&source, &outline, &settings)?,
+        taken,
     })
+}
+
+/// The layers of the table in its order, then those that only entities name.
+fn layers(outline: &Outline) -> Vec<LayerLine> {
+    let census = |name: &str| outline.census.iter().find(|c| fold(&c.name) == fold(name));
+    let line = |name: &str, state: Vec<&'static str>| {
+        let counts = census(name).cloned().unwrap_or_default();
+        LayerLine { name: name.into(), state, model: counts.model, paper: counts.paper, blocks: counts.blocks }
+    };
+    let mut out: Vec<LayerLine> = outline
+        .layers
+        .iter()
+        .map(|layer| {
+            let states = [(layer.frozen, "frozen"), (layer.off, "off"), (layer.locked, "locked")];
+            line(&layer.name, states.into_iter().filter(|s| s.0).map(|s| s.1).collect())
+        })
+        .collect();
+    for counts in outline.census.iter().filter(|c| outline.layer(&c.name).is_none()) {
+        out.push(line(&counts.name, vec!["not in the table"]));
+    }
+    out
 }

@@ -222,7 +222,7 @@ fn write_copy(
 }
 
 /// Whether a file is a drawing that carries marks of ours; false also when it cannot be read as a drawing.
-fn carries_marks(path: &Path) -> bool {
+pub fn carries_marks(path: &Path) -> bool {
     let look = || -> Result<bool, Refusal> {
         let source = Source::open(path)?;
         Ok(tags::scan(&source, &tags::Options { keep: None, hash: false })?.marks.is_some())

@@ -61,6 +61,7 @@ pub fn refusal(span: &Span, unsolved: &Unsolved) -> Refusal {
         Unsolved::NoRise => ("no-rise", "Draw the axis with its rise, or take it as a beam."),
         Unsolved::Hinges(_) => ("hinges", "Correct the hinges or [rib] support."),
         Unsolved::SlackCable(_) => ("slack-cable", "Check the direction of the loads and the shape of the cable."),
+        Unsolved::Input(_) => ("span", "Look at the axis and the loads of this span."),
         Unsolved::NotBuilt(_) => ("not-built", "Leave it out of the job file in this version."),
     };
     let first = span.sources.first();

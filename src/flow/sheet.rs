@@ -47,6 +47,7 @@ pub fn sheet(path: &Path, checked: &Checked, environment: Environment) -> Sheet 
         frozen: checked.settings.mark.frozen,
         tool_version: env!("CARGO_PKG_VERSION").into(),
         date: environment.today.to_string(),
+        sha256: checked.run.drawing.sha256.clone().unwrap_or_default(),
         source_name: path.file_name().unwrap_or_default().to_string_lossy().into_owned(),
         job_hash: checked.settings.origin.sha256.clone(),
     }

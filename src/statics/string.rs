@@ -57,7 +57,7 @@ pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
             corners.push((corner, before));
         }
     }
-    corners.dedup_by(|b, a| (b.0 - a.0).hypot() <= tolerance::SAME_JOINT);
+    corners.dedup_by(|b, a| (b.0 - a.0).hypot() <= tolerance::ONE_JOINT);
     cut_off(span, r, &corners, &loads).into_iter().map(|p| span.drawn(p)).collect()
 }
 
@@ -77,7 +77,7 @@ fn corner(at: Point, force: Vec2, before: &Loads, r: &Unknowns) -> Option<Point>
 /// Where the ray of a joint touches the string of the distributed weight.
 fn touch(joint: &Joint, r: &Unknowns) -> Option<Point> {
     let ray = joint.resultant(r);
-    (ray.x.abs() > tolerance::SAME_JOINT * ray.hypot())
+    (ray.x.abs() > tolerance::ONE_JOINT * ray.hypot())
         .then(|| joint.at + Vec2::new(0.0, joint.moment(r) / ray.x))
 }
 
@@ -106,7 +106,7 @@ fn refine(
 /// ends in it.
 fn cut_off(span: &Span, r: &Unknowns, corners: &[(Point, Loads)], all: &Loads) -> Vec<Point> {
     let (first, last) = (span.first(), span.last());
-    let slack = tolerance::SAME_JOINT;
+    let slack = tolerance::ONE_JOINT;
     let behind = |c: &(Point, Loads)| (c.0 - first.at).dot(first.tangent) < slack;
     let beyond = |c: &(Point, Loads)| (c.0 - last.at).dot(last.tangent) > -slack;
     let from = corners.iter().take_while(|c| behind(c)).count();

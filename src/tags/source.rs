@@ -6,6 +6,7 @@
 
 use std::fs::File;
 use std::io::{self, Read, Write};
+use std::time::SystemTime;
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
@@ -29,7 +30,12 @@ pub struct Edit {
 
 #[derive(Debug)]
 enum Origin {
-    File { file: File, path: PathBuf },
+    File {
+        file: File,
+        path: PathBuf,
+        /// Size and time of the last change when it was opened.
+        seen: (u64, Option<SystemTime>),
+    },
     Bytes(Vec<u8>),
 }
 
@@ -87,8 +93,28 @@ impl Source {
                 "Name a drawing file",
             ));
         }
-        let origin = Origin::File { file, path: path.to_owned() };
+        let seen = (metadata.len(), metadata.modified().ok());
+        let origin = Origin::File { file, path: path.to_owned(), seen };
         Ok(Self::whole(origin, metadata.len()))
+    }
+
+    /// Looks whether the file behind this source is still as it was when it was opened.
+    ///
+    /// # Errors
+    /// When its size or the time of its last change differs: another program writes to it.
+    pub fn unchanged(&self) -> Result<(), Refusal> {
+        let Origin::File { file, path, seen } = &*self.origin else {
+            return Ok(());
+        };
+        let now = file.metadata().map_err(|error| self.unreadable(&error))?;
+        if (now.len(), now.modified().ok()) == *seen {
+            return Ok(());
+        }
+        Err(Refusal::new(
+            "source-changed",
+            format!("{} was changed by another program while it was read", path.display()),
+            "Run again when the other program has finished",
+        ))
     }
 
     /// Bytes in memory.

@@ -28,6 +28,16 @@ pub enum Form {
     },
 }
 
+impl Form {
+    /// As the results name it: `ascii` or `binary`.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Ascii => "ascii",
+            Self::Binary { .. } => "binary",
+        }
+    }
+}
+
 /// Where a tag stands.
 #[derive(Debug, Clone, Copy)]
 pub(crate) struct Place {

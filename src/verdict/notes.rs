@@ -34,9 +34,12 @@ fn drawing_note(n: &drawing::Note) -> Finding {
         Note::PassedOver { role, layer, kind, count, could_be_load, first } => {
             let finding = note(
                 Check::PassedOver,
-                format!("{count} {kind} on layer {layer} ({}) passed over: not read as {}", role_name(*role), role_name(*role)),
-            )
-            .entity(first);
+                format!("{count} {kind} on layer {layer} passed over: not read as {}", role_name(*role)),
+            );
+            let finding = match first {
+                Some(first) => finding.entity(first),
+                None => finding,
+            };
             if *could_be_load {
                 finding.uncheck().remedy("draw these loads as POINT, CIRCLE or INSERT with a label, or move them to another layer")
             } else {

@@ -100,6 +100,7 @@ fn case(analysis: &Analysis, _forces: Forces) -> Case {
     Case {
         name: DRAWN.into(),
         total_load: [analysis.total.x, analysis.total.y],
+        forces: Vec::new(),
         pole: analysis.pole.map(|p| Pole {
             horizontal: p.horizontal,
             vertical: p.vertical,
