@@ -431,10 +431,12 @@ fn the_tag_layer_takes_the_marks_and_gives_the_drawing_back() {
     }
 }
 
-/// Writes the marks of several sheets to the folder named by `THRUSTMARK_LOOK`, as JSON for drawing them.
+/// Writes the marks of several sheets to the folder named by `THRUSTMARK_LOOK`, as JSON for drawing them, and as marked copies
+/// of the drawings `NAME.*.base.dxf` that lie there.
 #[test]
+#[ignore = "writes files to be looked at"]
 fn dump_for_looking() {
-    let Some(folder) = std::env::var_os("THRUSTMARK_LOOK") else { return };
+    let folder = std::env::var_os("THRUSTMARK_LOOK").expect("THRUSTMARK_LOOK names a folder");
     let folder = std::path::PathBuf::from(folder);
     for (name, run) in looks() {
         let marks = annotate(&run, &sheet());
