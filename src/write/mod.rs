@@ -7,7 +7,7 @@ pub mod annotate;
 pub mod file;
 pub mod json;
 #[cfg(test)]
-#[allow(clippy::unwrap_used, clippy::cast_precision_loss, missing_docs)]
+#[allow(clippy::unwrap_used, missing_docs)]
 mod sample;
 pub mod terminal;
 pub mod text;

@@ -316,7 +316,6 @@ fn reaction(run: &Run, shown: &Shown, arrow: &Arrow, several: bool, canvas: &mut
     lines.push(format!("angle {} deg", thrust_angle(end.horizontal, end.vertical)));
     let (outward, across) = if arrow.left { (-1.0, Across::Right) } else { (1.0, Across::Left) };
     let inside = if arrow.left { Across::Left } else { Across::Right };
-    #[allow(clippy::cast_precision_loss)] // five lines at most
     let tall = lines.len() as f64 * LEADING * h;
     let places = (0..40).flat_map(|k| {
         let down = f64::from(k) * h;

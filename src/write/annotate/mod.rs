@@ -39,13 +39,11 @@ pub use shown::{governing, kind_name, worst_case};
 
 use crate::geometry::Point;
 use crate::outcome::{Run, Verdict, Xy};
+use crate::tags::APPLICATION;
 use crate::tags::marks::{Marks, Plane};
 use pen::Canvas;
 use place::Box2;
 use shown::Shown;
-
-/// Name of the registered application under which all marks are kept.
-pub const APPLICATION: &str = "THRUSTMARK";
 
 /// Height of text on the plotted sheet, mm.
 pub const PLOTTED_TEXT: f64 = 2.5;

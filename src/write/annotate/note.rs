@@ -28,7 +28,6 @@ pub fn draw(
     right: f64,
 ) {
     let h = canvas.h;
-    #[allow(clippy::cast_precision_loss)] // a hundred columns
     let width = (NAMES + VALUES + 3) as f64 * h;
     let x = (right - width).max(polygons_right + h);
     let pad = 1.5 * h;
@@ -47,7 +46,6 @@ pub fn draw(
     canvas.line(layer, "rule", Point::new(x, y), Point::new(x + width, y));
     y -= 0.9 * h;
 
-    #[allow(clippy::cast_precision_loss)] // a dozen columns
     let values_at = x + pad + (NAMES + 1) as f64 * h;
     for (name, value) in rows(run, sheet, spans) {
         for (i, line) in value.iter().enumerate() {

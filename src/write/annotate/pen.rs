@@ -60,13 +60,14 @@ pub enum Dash {
     Dots,
 }
 
-/// Name after the prefix, description, and pattern in text heights.
+/// Name after the prefix, description, and pattern in text heights. Dots are short dashes: viewers differ on dots of no
+/// length.
 const DASHES: [(Dash, &str, &str, &[f64]); 5] = [
     (Dash::Long, "LONG", "Long dashes", &[2.4, -0.8]),
     (Dash::Short, "SHORT", "Short dashes", &[0.9, -0.6]),
-    (Dash::Dot, "DOT", "Dash and dot", &[2.0, -0.5, 0.0, -0.5]),
-    (Dash::TwoDots, "TWODOTS", "Dash and two dots", &[2.0, -0.5, 0.0, -0.5, 0.0, -0.5]),
-    (Dash::Dots, "DOTS", "Dots", &[0.0, -0.5]),
+    (Dash::Dot, "DOT", "Dash and dot", &[2.0, -0.5, 0.2, -0.5]),
+    (Dash::TwoDots, "TWODOTS", "Dash and two dots", &[2.0, -0.5, 0.2, -0.5, 0.2, -0.5]),
+    (Dash::Dots, "DOTS", "Dots", &[0.2, -0.5]),
 ];
 
 /// The layers to be made.

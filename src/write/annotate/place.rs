@@ -10,7 +10,6 @@ pub const CHARACTER: f64 = 1.0;
 
 /// Width of a line of text.
 pub fn width(text: &str, height: f64) -> f64 {
-    #[allow(clippy::cast_precision_loss)] // texts are far shorter than 2^52 characters
     let n = columns(text) as f64;
     n * CHARACTER * height
 }
@@ -167,7 +166,6 @@ pub fn spread(wanted: &[f64], pitch: f64) -> Vec<f64> {
             && a > b
         {
             pools.truncate(pools.len() - 2);
-            #[allow(clippy::cast_precision_loss)] // a few dozen labels
             let mean = (a * n as f64 + b * m as f64) / (n + m) as f64;
             pools.push((mean, n + m));
         }

@@ -135,7 +135,6 @@ fn scales(polygons: &[Polygon], h: f64) -> Vec<Option<f64>> {
         .map(|p| {
             let (low, high) = p.bounds();
             let size = high - low;
-            #[allow(clippy::cast_precision_loss)] // a few dozen letters
             let tall = TALL.max(PITCH * p.letters.len() as f64) * h;
             let scale = (tall / size.y).min(WIDE * h / size.x);
             scale.is_finite().then_some(scale)
@@ -196,7 +195,6 @@ const BESIDE: f64 = 8.0;
 fn cell_width(polygon: &Polygon, title: &[String], scale: Option<f64>, h: f64) -> f64 {
     let (low, high) = polygon.bounds();
     let drawn = (high.x - low.x) * scale.unwrap_or(0.0) + (BESIDE + polygon.before_pole()) * h;
-    #[allow(clippy::cast_precision_loss)] // short lines
     let words = title.iter().map(|l| text::columns(l)).max().unwrap_or(0) as f64 * h;
     drawn.max(words)
 }

@@ -1,5 +1,5 @@
 //! Layout: nothing overlaps, nothing lies on the axis, and what is written is what was computed.
-#![allow(clippy::unwrap_used, clippy::cast_precision_loss)]
+#![allow(clippy::unwrap_used)]
 
 use proptest::prelude::*;
 
@@ -376,6 +376,20 @@ fn control_characters_of_names_do_not_reach_the_drawing() {
 }
 
 #[test]
+fn empty_runs_are_drawn_too() {
+    let mut run = arch(1, 10.0, 2.0).run();
+    run.spans[0].loads.clear();
+    run.spans[0].cases[0].lines.clear();
+    assert_calm(&run, &sheet());
+    run.spans[0].cases.clear();
+    run.spans[0].axis.curve.clear();
+    assert_calm(&run, &sheet());
+    run.spans.clear();
+    let marks = assert_calm(&run, &sheet());
+    assert_eq!(has(&marks, "frame"), 1);
+}
+
+#[test]
 fn thousands_of_loads_take_no_time() {
     let run = arch(3000, 200.0, 40.0).run();
     let start = std::time::Instant::now();
@@ -399,10 +413,30 @@ fn kinds_have_names() {
     assert!(FindingVerdict::Outside < FindingVerdict::Within);
 }
 
-/// Writes the marks of several sheets to the folder named by `THRUSTMARK_LOOK`, as JSON for drawing them.
 #[test]
+fn the_tag_layer_takes_the_marks_and_gives_the_drawing_back() {
+    use crate::tags::{Options, Source, mark, scan, unmark};
+    let drawing = "  0\nSECTION\n  2\nHEADER\n  9\n$ACADVER\n  1\nAC1009\n  0\nENDSEC\n  0\nSECTION\n  2\nENTITIES\n  0\nPOINT\n  8\n0\n 10\n0.0\n 20\n0.0\n  0\nENDSEC\n  0\nEOF\n";
+    for (_, run) in looks() {
+        let marks = annotate(&run, &sheet());
+        let source = Source::from_bytes(drawing.as_bytes());
+        let outline = scan(&source, &Options::default()).unwrap();
+        let marked = source.spliced(&mark(&source, &outline, &marks).unwrap()).unwrap();
+        let again = scan(&marked, &Options::default()).unwrap();
+        assert_eq!(again.marks.as_ref().unwrap().entities, marks.marks.len() as u64);
+        let restored = marked.spliced(&unmark(&marked, &again).unwrap()).unwrap();
+        let mut bytes = Vec::new();
+        restored.write_to(&mut bytes).unwrap();
+        assert_eq!(bytes, drawing.as_bytes());
+    }
+}
+
+/// Writes the marks of several sheets to the folder named by `THRUSTMARK_LOOK`, as JSON for drawing them, and as marked copies
+/// of the drawings `NAME.*.base.dxf` that lie there.
+#[test]
+#[ignore = "writes files to be looked at"]
 fn dump_for_looking() {
-    let Some(folder) = std::env::var_os("THRUSTMARK_LOOK") else { return };
+    let folder = std::env::var_os("THRUSTMARK_LOOK").expect("THRUSTMARK_LOOK names a folder");
     let folder = std::path::PathBuf::from(folder);
     for (name, run) in looks() {
         let marks = annotate(&run, &sheet());
@@ -429,6 +463,17 @@ fn dump_for_looking() {
         let loads: Vec<_> = run.spans.iter().flat_map(|s| s.loads.iter().map(|l| l.at)).collect();
         let all = serde_json::json!({"marks": list, "axis": axis, "loads": loads});
         std::fs::write(folder.join(format!("{name}.json")), all.to_string()).unwrap();
+        for base in std::fs::read_dir(&folder).unwrap().map(|e| e.unwrap().path()) {
+            let file = base.file_name().unwrap().to_string_lossy().into_owned();
+            if file.starts_with(&format!("{name}.")) && file.ends_with(".base.dxf") {
+                use crate::tags::{Options, Source, mark, scan};
+                let source = Source::open(&base).unwrap();
+                let outline = scan(&source, &Options::default()).unwrap();
+                let marked = source.spliced(&mark(&source, &outline, &marks).unwrap()).unwrap();
+                let mut out = std::fs::File::create(folder.join(file.replace(".base.", ".thrust."))).unwrap();
+                marked.write_to(&mut out).unwrap();
+            }
+        }
         let text = crate::write::terminal::summary(
             &sample::document(vec![run]),
             &crate::write::terminal::Style::default(),
