@@ -75,7 +75,7 @@ impl Known {
             rank: outline.rank,
             seed: outline.handles.seed,
             handles: HashSet::new(),
-            numbered: outline.handles.used > 0,
+            numbered: outline.numbered(),
             applications: HashSet::new(),
             layers: HashSet::new(),
             line_types: HashSet::new(),
