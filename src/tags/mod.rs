@@ -10,6 +10,7 @@ mod codes;
 mod emit;
 mod finish;
 mod handles;
+mod items;
 mod mark;
 pub mod marks;
 mod outline;
@@ -22,6 +23,7 @@ mod source;
 mod text;
 mod tokens;
 mod unmark;
+pub mod validate;
 
 pub use mark::mark;
 pub use outline::{

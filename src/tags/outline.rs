@@ -256,6 +256,16 @@ impl Outline {
         variable.values.iter().find(|v| v.code == code)
     }
 
+    /// Whether records of this drawing have handles: some do, or the header promises it.
+    pub fn numbered(&self) -> bool {
+        let promised = if self.rank < 1012 {
+            self.header("$HANDLING", 70) == Some("1")
+        } else {
+            self.header_value("$HANDSEED", 5).is_some()
+        };
+        self.handles.used > 0 || promised
+    }
+
     /// The first section of this name.
     pub fn section(&self, name: &str) -> Option<&Section> {
         self.sections.iter().find(|section| section.name == name)
