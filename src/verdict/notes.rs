@@ -246,12 +246,16 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
     }
 }
 
-/// Least and greatest gap between neighbouring loads, when they differ.
+/// Least and greatest horizontal gap between neighbouring loads, when the gaps differ both measured horizontally (posts)
+/// and measured along the axis (voussoirs).
 fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
-    let xs: Vec<f64> = span.loads.iter().map(|l| l.at[0]).collect();
-    let gaps = xs.windows(2).map(|w| w[1] - w[0]).filter(|g| *g > a.span * tolerance::SAME_ABSCISSA);
-    let (low, high) = gaps.fold((f64::INFINITY, 0.0_f64), |(low, high), g| (low.min(g), high.max(g)));
-    (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
+    let uneven = |places: Vec<f64>| {
+        let gaps = places.windows(2).map(|w| w[1] - w[0]).filter(|g| *g > a.span * tolerance::SAME_ABSCISSA);
+        let (low, high) = gaps.fold((f64::INFINITY, 0.0_f64), |(low, high), g| (low.min(g), high.max(g)));
+        (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
+    };
+    uneven(a.order.iter().map(|p| p.foot).collect())?;
+    uneven(span.loads.iter().map(|l| l.at[0]).collect())
 }
 
 /// What the computation leaves out.
