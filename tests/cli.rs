@@ -250,6 +250,9 @@ fn hand_calculations_of_the_demo_drawings_hold() {
     close(&span["axis"]["rise"], 3.25, 1e-9);
     close(&line["left"]["horizontal"], 107.200_894_094_698, 1e-9);
     close(&line["left"]["vertical"], 138.0, 1e-9);
+    for station in span["cases"][0]["lines"][0]["stations"].as_array().unwrap() {
+        close(&station["depth"], 0.6, 1e-12);
+    }
     let offset = span["cases"][0]["lines"][0]["offset"]["max_abs"].as_f64().unwrap();
     assert!((offset - 0.074_257).abs() < 0.0076, "{offset}");
     // fixtures/good/unsymmetric-rib.md
