@@ -39,3 +39,6 @@ pub struct Drawing {
     /// What was noticed.
     pub notes: Vec<Note>,
 }
+
+#[cfg(test)]
+mod tests;
