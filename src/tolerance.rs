@@ -93,6 +93,11 @@ pub const LABEL_HEIGHTS: f64 = 12.0;
 /// neighbours that have no load of their own are taken; smaller: labels in tiny letters are not.
 pub const LABEL_SPACING: f64 = 0.6;
 
+/// What a way upright counts beside one across when labels are paired with loads: a row of labels over the deck belongs to
+/// the posts straight below. No unit. Larger: labels of tall arches are not taken; smaller: of two loads over one another
+/// the nearer one to a label cannot be told.
+pub const LABEL_UPRIGHT: f64 = 0.1;
+
 /// Part of the distance to the point by which a text was placed that counts beside the distance to the text itself. No
 /// unit. Larger: long labels written to the left of their loads go astray; smaller: loads under one long label cannot be
 /// told apart.

@@ -104,13 +104,18 @@ impl Text {
         [corner(-left, -down), corner(right, -down), corner(right, top), corner(-left, top)]
     }
 
-    /// Distance from the rectangle that the text covers (estimated) to a point; zero inside.
-    pub fn distance(&self, p: Point) -> f64 {
+    /// The way from the rectangle that the text covers (estimated) to a point; nothing inside.
+    pub fn way_to(&self, p: Point) -> Vec2 {
+        let up = Vec2::new(-self.along.y, self.along.x);
         let d = p - self.anchor;
-        let along = d.dot(self.along);
-        let up = d.dot(Vec2::new(-self.along.y, self.along.x));
-        let outside = |value: f64, (below, above): (f64, f64)| (value - above).max(-below - value).max(0.0);
-        outside(along, self.across).hypot(outside(up, self.upright))
+        let outside =
+            |value: f64, (below, above): (f64, f64)| (value - above).max(0.0) + (value + below).min(0.0);
+        self.along * outside(d.dot(self.along), self.across) + up * outside(d.dot(up), self.upright)
+    }
+
+    /// Length of [`Text::way_to`].
+    pub fn distance(&self, p: Point) -> f64 {
+        self.way_to(p).hypot()
     }
 }
 

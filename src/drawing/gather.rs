@@ -55,7 +55,7 @@ pub fn read_outlined(
 ) -> Result<Drawing, Refusal> {
     let mut reader = Reader { bytes, outline, settings, notes: Vec::new() };
     let (axis_layers, axis) = reader.axis()?;
-    let (load_layers, points, texts) = reader.loads(&axis_layers, &axis)?;
+    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, &axis)?;
     reader.one_plane(&axis, &points)?;
     reader.hidden(axis_layers.iter().chain(&load_layers));
     reader.parts_not_read()?;
@@ -72,6 +72,14 @@ pub fn read_outlined(
     );
     let viewports = outline.records.iter().filter_map(viewport::viewport).collect();
     Ok(Drawing { unit, axis_layers, load_layers, axis, points, texts, viewports, notes: reader.notes })
+}
+
+/// The layers of the loads with what they hold.
+#[derive(Default)]
+struct LoadLayers {
+    layers: Vec<String>,
+    points: Vec<PointLike>,
+    texts: Vec<Text>,
 }
 
 struct Reader<'a> {
@@ -158,15 +166,11 @@ impl Reader<'_> {
     }
 
     /// The loads: by the patterns, else guessed by name, else by points that stand over the axis.
-    fn loads(
-        &mut self,
-        axis_layers: &[String],
-        axis: &[Curve],
-    ) -> Result<(Vec<String>, Vec<PointLike>, Vec<Text>), Refusal> {
+    fn loads(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
         let layers = roles::named(self.outline, self.settings, Role::Loads, &POINTS)?;
         if !layers.is_empty() {
             let (points, texts) = self.points(&layers, &self.outline.records)?;
-            return Ok((layers, points, texts));
+            return Ok(LoadLayers { layers, points, texts });
         }
         let by_name = roles::loads_by_name(self.outline, axis_layers);
         if !by_name.is_empty() {
@@ -179,21 +183,17 @@ impl Reader<'_> {
             }
             let layers: Vec<String> = by_name.into_iter().map(|n| n.0).collect();
             let (points, texts) = self.points(&layers, &self.outline.records)?;
-            return Ok((layers, points, texts));
+            return Ok(LoadLayers { layers, points, texts });
         }
         self.loads_by_content(axis_layers, axis)
     }
 
-    fn loads_by_content(
-        &mut self,
-        axis_layers: &[String],
-        axis: &[Curve],
-    ) -> Result<(Vec<String>, Vec<PointLike>, Vec<Text>), Refusal> {
+    fn loads_by_content(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
         let layers = roles::holding(self.outline, &POINTS, tolerance::GUESS_ENTITIES, axis_layers);
         let records = self.rescan(&layers, &[&POINTS[..], &["TEXT", "MTEXT"]].concat())?;
         let Some(line) = outlook::one_line(axis) else {
             self.notes.push(Note::NoLoadLayer);
-            return Ok(Default::default());
+            return Ok(LoadLayers::default());
         };
         let mut best: Option<(usize, usize, String)> = None;
         for layer in layers {
@@ -208,7 +208,7 @@ impl Reader<'_> {
         }
         let Some((over, of, layer)) = best else {
             self.notes.push(Note::NoLoadLayer);
-            return Ok(Default::default());
+            return Ok(LoadLayers::default());
         };
         let layers = vec![layer.clone()];
         let (points, texts) = self.points(&layers, &records)?;
@@ -217,7 +217,7 @@ impl Reader<'_> {
             layer,
             reason: Reason::PointsOver { over, of },
         });
-        Ok((layers, points, texts))
+        Ok(LoadLayers { layers, points, texts })
     }
 
     fn rescan(&self, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {

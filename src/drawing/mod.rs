@@ -44,3 +44,6 @@ pub struct Drawing {
     /// What was noticed.
     pub notes: Vec<Note>,
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,7 +1,7 @@
 //! Words in layer names that tell what a layer holds, in languages of the trade.
 //!
-//! A name is split at everything that is no letter. Short words count only alone (`arc` is no part of `ARCHIVE`), long
-//! ones also inside a compound (`BOGENACHSE`).
+//! A name is split at everything that is no letter. Words count only whole (`arc` is no part of `ARCHIVE`), except those of
+//! languages that write compounds as one (`BOGENACHSE`).
 
 /// Words for the load-bearing line itself.
 const ARCH: [&str; 25] = [
@@ -93,16 +93,33 @@ const OTHER: [&str; 30] = [
     "rücken",
 ];
 
-/// Letters from which a word also counts inside a compound.
-const COMPOUND: usize = 5;
+/// Words that also count inside a longer one.
+const COMPOUND: [&str; 19] = [
+    "bogen",
+    "boegen",
+    "bögen",
+    "rippe",
+    "gewölbe",
+    "gewoelbe",
+    "kabel",
+    "achse",
+    "systemlinie",
+    "mittellinie",
+    "schwerlinie",
+    "hartlijn",
+    "lasten",
+    "kraft",
+    "kräfte",
+    "kraefte",
+    "belasting",
+    "bewehrung",
+    "leibung",
+];
 
 fn word_in(name: &str, words: &[&'static str]) -> Option<&'static str> {
     let name = name.to_lowercase();
     let parts: Vec<&str> = name.split(|c: char| !c.is_alphabetic()).filter(|p| !p.is_empty()).collect();
-    words
-        .iter()
-        .find(|w| parts.iter().any(|p| p == *w || (w.chars().count() >= COMPOUND && p.contains(**w))))
-        .copied()
+    words.iter().find(|w| parts.iter().any(|p| p == *w || (COMPOUND.contains(w) && p.contains(**w)))).copied()
 }
 
 /// How well a name says "axis of the arch": 3 an arch and an axis, 2 an arch, 1 an axis; and the word that says so.
@@ -137,8 +154,8 @@ mod tests {
             assert_eq!(axis_word(name), None, "{name}");
         }
         assert_eq!(loads_word("B_Lasten"), Some("lasten"));
-        assert_eq!(loads_word("CARGAS MUERTAS"), Some("carga"));
-        for name in ["BLAST", "LASTING", "PLASTER", "0", "UPLOAD"] {
+        assert_eq!(loads_word("CARGAS MUERTAS"), Some("cargas"));
+        for name in ["BLAST", "LASTING", "PLASTER", "0", "UPLOAD", "REINFORCEMENT"] {
             assert_eq!(loads_word(name), None, "{name}");
         }
     }

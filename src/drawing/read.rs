@@ -81,15 +81,15 @@ fn fragment(record: &Record, decoder: &Decoder) -> Result<String, Refusal> {
         "  0\nSECTION\n  2\nHEADER\n  9\n$ACADVER\n  1\nAC1021\n  0\nENDSEC\n  0\nSECTION\n  2\nENTITIES\n",
     );
     write_record(&mut out, record, decoder)?;
-    let wanted = match record.kind.as_str() {
-        "POLYLINE" => Some("VERTEX"),
-        "INSERT" => Some("ATTRIB"),
-        _ => None,
+    let run: Vec<&Record> = match record.kind.as_str() {
+        "POLYLINE" => record.children.iter().filter(|c| c.kind == "VERTEX").collect(),
+        "INSERT" => record.children.iter().filter(|c| c.kind == "ATTRIB").collect(),
+        _ => Vec::new(),
     };
-    if let Some(wanted) = wanted {
-        for child in record.children.iter().filter(|c| c.kind == wanted) {
-            write_record(&mut out, child, decoder)?;
-        }
+    for child in &run {
+        write_record(&mut out, child, decoder)?;
+    }
+    if !run.is_empty() {
         out.push_str("  0\nSEQEND\n");
     }
     out.push_str("  0\nENDSEC\n  0\nEOF\n");
@@ -122,8 +122,7 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
             "MTEXT" => {
                 columns |= code == 75;
                 // Columns list their heights under the code of the rotation; of two rotations the last one counts.
-                if (columns && code == 50)
-                    || (turned_last == Some(11) && code == 50)
+                if (code == 50 && (columns || turned_last == Some(11)))
                     || (turned_last == Some(50) && matches!(code, 11 | 21 | 31))
                 {
                     continue;

@@ -18,7 +18,7 @@ pub fn count(counts: &std::collections::BTreeMap<String, u64>, kinds: &[&str]) -
 }
 
 /// Layers that may be read: not ours, and with something in model space.
-fn usable<'a>(outline: &'a Outline) -> impl Iterator<Item = &'a LayerCensus> + Clone {
+fn usable(outline: &Outline) -> impl Iterator<Item = &LayerCensus> {
     outline.census.iter().filter(|c| !c.model.is_empty() && !outline.layer(&c.name).is_some_and(|l| l.ours))
 }
 
@@ -153,7 +153,7 @@ pub fn axis_by_name(outline: &Outline) -> Vec<(u8, String, &'static str)> {
         .filter(|l| count(&l.model, &CURVES) > 0)
         .filter_map(|l| names::axis_word(&l.name).map(|(rank, word)| (rank, l.name.clone(), word)))
         .collect();
-    found.sort_by(|a, b| b.0.cmp(&a.0));
+    found.sort_by_key(|f| std::cmp::Reverse(f.0));
     found
 }
 

@@ -57,10 +57,10 @@ pub struct LayerLine {
 /// When it cannot be read as a drawing, or the job file is wrong.
 pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
     let settings = match job_for(path, job)? {
-        Some(job) => job.for_sheet(path)?,
+        Some(job) => job.for_sheet(&super::source_name(path))?,
         None => Settings::default(),
     };
-    let (source, outline, marked) = without_marks(Source::open(path)?, &settings)?;
+    let (source, outline, marks) = without_marks(Source::open(path)?, &settings)?;
     let spelled = |name: &str, code| outline.header(name, code).map(str::to_string);
     let units = ["$INSUNITS", "$MEASUREMENT"]
         .into_iter()
@@ -82,7 +82,7 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
         encoding: outline.encoding().into(),
         units,
         extents,
-        marked,
+        marked: marks.is_some(),
         layers: layers(&outline),
         viewports: outline.records.iter().filter_map(viewport::viewport).map(|v| v.scale).collect(),
         suggestions: drawing::suggest(&source, &outline, &settings)?,

@@ -15,7 +15,7 @@ use crate::model::{self, Model};
 use crate::outcome::{DrawingFacts, Run, Units};
 use crate::refusal::Refusal;
 use crate::statics::{self, Analysis};
-use crate::tags::{self, Outline, Source};
+use crate::tags::{self, FoundMarks, Outline, Source};
 use crate::verdict;
 use crate::write::annotate;
 use crate::write::file::{self, Replace};
@@ -59,8 +59,8 @@ pub struct Checked {
     outline: Outline,
     drawing: Drawing,
     settings: Settings,
-    /// Whether the file as it stands carries marks of ours.
-    was_marked: bool,
+    /// The marks that the file as it stands carries.
+    marks: Option<FoundMarks>,
 }
 
 /// Where the marked copy goes.
@@ -88,7 +88,7 @@ pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Enviro
     };
     let facts = checked.run.drawing.clone();
     let settings = checked.run.settings.clone();
-    let output = match (&target.output, checked.was_marked) {
+    let output = match (&target.output, checked.marks.is_some()) {
         (Some(output), _) => output.clone(),
         (None, false) => beside(path),
         (None, true) => {
@@ -143,12 +143,12 @@ fn stages(
     in_force: &mut serde_json::Value,
 ) -> Result<Checked, Refusal> {
     let settings = match job_for(path, job)? {
-        Some(job) => job.for_sheet(path)?,
+        Some(job) => job.for_sheet(&source_name(path))?,
         None => Settings::default(),
     };
     *in_force = settings.to_json();
     let file = Source::open(path)?;
-    let (source, outline, was_marked) = without_marks(file, &settings)?;
+    let (source, outline, marks) = without_marks(file, &settings)?;
     facts.sha256.clone_from(&outline.sha256);
     facts.dxf_version.clone_from(&outline.version);
     facts.form = Some(outline.form.name().into());
@@ -169,18 +169,34 @@ fn stages(
         output: None,
         error: None,
     };
-    Ok(Checked { run, source, outline, drawing, settings, was_marked })
+    Ok(Checked { run, source, outline, drawing, settings, marks })
 }
 
-/// The drawing as it was before it was marked, with its outline.
-fn without_marks(file: Source, settings: &Settings) -> Result<(Source, Outline, bool), Refusal> {
-    let outline = drawing::scan(&file, settings)?;
-    if outline.marks.is_none() {
-        return Ok((file, outline, false));
-    }
+/// The drawing as it was before it was marked, with its outline, and the marks it carried.
+fn without_marks(
+    file: Source,
+    settings: &Settings,
+) -> Result<(Source, Outline, Option<FoundMarks>), Refusal> {
+    let mut outline = drawing::scan(&file, settings)?;
+    let Some(marks) = outline.marks.take() else {
+        return Ok((file, outline, None));
+    };
+    outline.marks = Some(marks.clone());
     let plain = file.spliced(&tags::unmark(&file, &outline)?)?;
     let outline = drawing::scan(&plain, settings)?;
-    Ok((plain, outline, true))
+    Ok((plain, outline, Some(marks)))
+}
+
+/// The name that the source of a marked copy has when nobody renamed it: `NAME.dxf` for `NAME.thrust.dxf`; any other
+/// name is itself. The job's sheets match this name, so that a marked copy is judged as its source.
+fn source_name(path: &Path) -> PathBuf {
+    let stem = Path::new(path.file_stem().unwrap_or_default());
+    match (stem.extension(), path.extension()) {
+        (Some(mark), Some(end)) if mark.eq_ignore_ascii_case("thrust") => {
+            path.with_file_name(stem.file_stem().unwrap_or_default()).with_extension(end)
+        }
+        _ => path.to_path_buf(),
+    }
 }
 
 fn analyse(model: &Model, settings: &Settings) -> Result<Vec<Analysis>, Refusal> {

@@ -48,7 +48,7 @@ pub fn sheet(path: &Path, checked: &Checked, environment: Environment) -> Sheet 
         tool_version: env!("CARGO_PKG_VERSION").into(),
         date: environment.today.to_string(),
         sha256: checked.run.drawing.sha256.clone().unwrap_or_default(),
-        source_name: path.file_name().unwrap_or_default().to_string_lossy().into_owned(),
+        source_name: source_name(path, checked),
         job_hash: checked.settings.origin.sha256.clone(),
     }
 }
@@ -73,4 +73,13 @@ fn usual_height(drawing: &Drawing) -> Option<f64> {
     let mut heights: Vec<f64> = drawing.texts.iter().map(|t| t.height).filter(|h| *h > 0.0).collect();
     heights.sort_by(f64::total_cmp);
     heights.get(heights.len() / 2).copied()
+}
+
+/// The name of the source: of a marked copy, the one that its marks recorded.
+fn source_name(path: &Path, checked: &Checked) -> String {
+    let recorded = checked.marks.as_ref().and_then(|m| m.fact("source")).filter(|name| !name.is_empty());
+    match recorded {
+        Some(name) => name.to_string(),
+        None => path.file_name().unwrap_or_default().to_string_lossy().into_owned(),
+    }
 }

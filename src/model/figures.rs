@@ -279,10 +279,10 @@ fn plain_digits(body: &str, decimal: Decimal) -> Result<String, NoFigure> {
     if !fraction.chars().all(|c| c.is_ascii_digit()) {
         return Err(NoFigure::NotAForce);
     }
-    if let Some(sign) = group {
-        if blanks || !grouped(whole, sign) {
-            return Err(NoFigure::NotAForce);
-        }
+    if let Some(sign) = group
+        && (blanks || !grouped(whole, sign))
+    {
+        return Err(NoFigure::NotAForce);
     }
     let whole: String = whole.chars().filter(char::is_ascii_digit).collect();
     Ok(format!("{whole}.{fraction}"))
@@ -301,6 +301,9 @@ fn grouped(digits: &str, sign: char) -> bool {
 
 #[cfg(test)]
 mod tests {
+    // What is read from decimal digits is the double nearest to them, to the last bit.
+    #![allow(clippy::float_cmp)]
+
     use super::*;
 
     fn value(text: &str) -> f64 {

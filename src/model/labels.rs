@@ -4,7 +4,7 @@ use super::figures::{self, Figure, NoFigure};
 use super::matching::{self, Row};
 use super::note::Note;
 use crate::drawing::{PointLike, Text};
-use crate::geometry::Point;
+use crate::geometry::{Point, Vec2};
 use crate::job::Decimal;
 use crate::tolerance;
 
@@ -113,10 +113,12 @@ fn doubt(
     }
 }
 
-/// What a pairing costs: distance from the rectangle of the text, and a little for that from the point by which it was
-/// placed, which tells loads under one long text apart.
+/// What a pairing costs: the way from the rectangle of the text, and a little for that from the point by which it was
+/// placed, which tells loads under one long text apart. Loads act up and down, and their labels often stand in a row over
+/// the deck: a way along the line of action counts for less than one across it.
 fn cost(text: &Text, p: Point) -> f64 {
-    text.distance(p) + tolerance::LABEL_ANCHOR * (p - text.anchor).hypot()
+    let felt = |way: Vec2| way.x.hypot(tolerance::LABEL_UPRIGHT * way.y);
+    felt(text.way_to(p)) + tolerance::LABEL_ANCHOR * felt(p - text.anchor)
 }
 
 /// The cheapest loads of a text.
@@ -127,9 +129,6 @@ fn nearest(text: &Text, by_x: &[(Point, usize)], reach: f64, count: usize) -> Ve
     let from = by_x.partition_point(|p| p.0.x < text.anchor.x - radius);
     let mut best: Vec<(f64, usize)> = Vec::new();
     for &(p, column) in by_x[from..].iter().take_while(|p| p.0.x <= text.anchor.x + radius) {
-        if (p.y - text.anchor.y).abs() > radius {
-            continue;
-        }
         let cost = cost(text, p);
         if cost >= reach || (best.len() == count && cost >= best[count - 1].0) {
             continue;

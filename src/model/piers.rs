@@ -40,9 +40,7 @@ fn trimmed(mut links: &[Link]) -> &[Link] {
 /// At the joint before link `i`: 1 when the line comes down to it and goes up again, −1 the other way round.
 fn kink(links: &[Link], i: usize) -> Option<f64> {
     // A piece that closes a gap has no direction of its own: look at what it joins.
-    if links[i].curve.is_none() {
-        return None;
-    }
+    links[i].curve?;
     let before = links[..i].iter().rev().find(|l| l.curve.is_some())?;
     let came = before.segment.tangent_at(before.segment.length());
     let goes = links[i].segment.tangent_at(0.0);

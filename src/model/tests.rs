@@ -233,7 +233,7 @@ fn labels_go_to_their_loads() {
         .collect();
     texts.reverse();
     texts.push(text(40, 2.0, 20.0, "SECTION A-A"));
-    texts.push(text(41, 39.0, 30.0, "99"));
+    texts.push(text(41, 55.0, 30.0, "99"));
     let model = built(&drawing(axis, loads, texts));
     assert_eq!(model.forces, Forces::Kilonewtons);
     for (i, load) in model.spans[0].loads.iter().enumerate() {
@@ -249,6 +249,18 @@ fn labels_go_to_their_loads() {
         "{:?}",
         model.notes
     );
+}
+
+#[test]
+fn a_row_of_labels_over_the_deck() {
+    let axis = vec![curve(1, polyline(&parabola(0.0)))];
+    let loads = (1..8).map(|i| point(10 + i, 5.0 * i as f64, parabola(0.0)[4 * i].1)).collect();
+    let texts =
+        (1..8).map(|i| text(20 + i, 5.0 * i as f64, 12.0, &format!("P{i} = {} kN", 100 + i))).collect();
+    let model = built(&drawing(axis, loads, texts));
+    let labels: Vec<&str> = model.spans[0].loads.iter().map(|l| l.label.as_str()).collect();
+    assert_eq!(labels, ["P1", "P2", "P3", "P4", "P5", "P6", "P7"]);
+    assert_eq!(model.notes, []);
 }
 
 #[test]
@@ -270,7 +282,7 @@ fn magnitudes_without_labels() {
     assert!((filled.spans[0].loads[1].force.y + 7.0).abs() < 1e-12);
     assert_eq!(filled.spans[0].loads[1].magnitude_from, MagnitudeFrom::Job);
     // Forces clearly written, but far away: not all equal in silence.
-    let far = drawing(axis(), loads(), vec![text(5, 10.0, 30.0, "80 kN"), text(6, 30.0, 30.0, "80 kN")]);
+    let far = drawing(axis(), loads(), vec![text(5, -20.0, 7.0, "80 kN"), text(6, 70.0, 7.0, "80 kN")]);
     assert_eq!(build(&far, &LoadSettings::default()).unwrap_err().check, "labels-far");
     let doubtful = drawing(axis(), loads(), vec![text(5, 10.1, 7.2, "1.200 N"), text(6, 30.1, 7.2, "80 kN")]);
     let refusal = build(&doubtful, &LoadSettings::default()).unwrap_err();

@@ -160,6 +160,7 @@ fn facts(run: &Run, sheet: &Sheet) -> Vec<(String, String)> {
     };
     let mut facts = vec![
         ("sha256".to_owned(), sheet.sha256.clone()),
+        ("source".to_owned(), sheet.source_name.clone()),
         ("tool".to_owned(), format!("thrustmark {}", sheet.tool_version)),
         ("verdict".to_owned(), verdict.to_owned()),
         ("date".to_owned(), sheet.date.clone()),
