@@ -1,5 +1,7 @@
 //! How fast a large drawing is read, marked and restored. Run by hand:
 //! `cargo test --release --test speed -- --ignored --nocapture`, with `THRUSTMARK_MEGABYTES` for other sizes.
+// Helpers of tests stand outside of the test functions that the lints exempt.
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 use std::fmt::Write as _;
 use std::io::{BufWriter, Write as _};
