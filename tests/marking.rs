@@ -1,4 +1,6 @@
 //! The rules of marking, one by one, on small drawings.
+// Helpers of tests stand outside of the test functions that the lints exempt.
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 use proptest::prelude::*;
 

@@ -1,4 +1,6 @@
 //! Every outside drawing is marked and unmarked: the bytes that come back are those that went in.
+// Helpers of tests stand outside of the test functions that the lints exempt.
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};

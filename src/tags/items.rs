@@ -172,11 +172,7 @@ impl Sink for Items<'_> {
         }
         let own = if item.kind == "DIMSTYLE" { 105 } else { 5 };
         match code {
-            _ if code == own => {
-                if item.handle.is_none() {
-                    item.handle = parse_handle(value);
-                }
-            }
+            _ if code == own && item.handle.is_none() => item.handle = parse_handle(value),
             330 if item.owner.is_none() && item.markers == 0 => item.owner = parse_handle(value),
             2 if item.place == Where::Tables && item.name.is_none() => item.name = Some(text()),
             6 if item.line_type.is_none() && (item.place != Where::Tables || item.kind == "LAYER") => {

@@ -3,10 +3,10 @@
 use std::collections::BTreeMap;
 use std::ops::Range;
 
+use crate::tags::facts::FoundMarks;
 use crate::tags::record::Record;
 use crate::tags::text::{Decoder, Doubt};
 use crate::tags::tokens::Form;
-use crate::tags::unmark::FoundMarks;
 
 /// How lines end.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]

@@ -9,9 +9,10 @@ use std::collections::{HashMap, HashSet};
 use crate::refusal::Refusal;
 use crate::tags::codes::parse_handle;
 use crate::tags::items::{Item, Items, Where};
+use crate::tags::machine::Options;
 use crate::tags::outline::{Outline, fold};
 use crate::tags::place;
-use crate::tags::scan::{Options, scan};
+use crate::tags::scan::scan;
 use crate::tags::source::{Edit, Source};
 use crate::tags::tokens::{Form, SENTINEL, tokenize};
 
