@@ -6,8 +6,8 @@
 //! with [`job`] (settings), [`outcome`] (the results as one tree), and [`geometry`], [`units`], [`tolerance`] and
 //! [`refusal`] beneath.
 
-pub mod drawing;
 pub mod cli;
+pub mod drawing;
 pub mod flow;
 pub mod geometry;
 pub mod job;

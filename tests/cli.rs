@@ -113,7 +113,10 @@ fn marking_repeats_to_the_byte() {
     let one = fs::read(office.path().join("one.dxf")).unwrap();
     assert_eq!(one, fs::read(office.path().join("two.dxf")).unwrap());
     // Marking the marked copy replaces the first mark.
-    let third = run(office.path(), &["mark", "one.dxf", "--output", "masonry-ring.dxf.again", "--job", "thrustmark.toml"]);
+    let third = run(
+        office.path(),
+        &["mark", "one.dxf", "--output", "masonry-ring.dxf.again", "--job", "thrustmark.toml"],
+    );
     assert!(status(&third) != 2, "{}", err(&third));
 }
 
@@ -199,7 +202,13 @@ fn json_holds_to_its_schema() {
     let schema: Value = serde_json::from_slice(&run(office.path(), &["schema"]).stdout).unwrap();
     let validator = jsonschema::validator_for(&schema).unwrap();
     for arguments in [
-        vec!["check", "open-spandrel-rib.dxf", "masonry-ring.dxf", "unsymmetric-rib.dxf", "hanging-cable.dxf"],
+        vec![
+            "check",
+            "open-spandrel-rib.dxf",
+            "masonry-ring.dxf",
+            "unsymmetric-rib.dxf",
+            "hanging-cable.dxf",
+        ],
         vec!["check", "thrustmark.toml"],
         vec!["check", "absent.dxf"],
     ] {
@@ -219,8 +228,11 @@ fn hand_calculations_of_the_demo_drawings_hold() {
     };
     let through = |name: &str| {
         let job = fs::read_to_string(office.path().join("thrustmark.toml")).unwrap();
-        fs::write(office.path().join("through.toml"), job.replace("[limits]", "[line]\ndraw = [\"through\"]\n\n[limits]"))
-            .unwrap();
+        fs::write(
+            office.path().join("through.toml"),
+            job.replace("[limits]", "[line]\ndraw = [\"through\"]\n\n[limits]"),
+        )
+        .unwrap();
         let (code, document) = results(office.path(), &["check", name, "--job", "through.toml"]);
         assert_eq!(code, 0, "{document:#}");
         let span = document["runs"][0]["spans"][0].clone();
@@ -286,12 +298,23 @@ fn mistakes_are_told_with_the_way_to_mend_them() {
         }
         assert!(!office.path().join("masonry-ring.thrust.dxf").exists());
     }
-    for arguments in [&["mark", "absent.dxf"][..], &["mark", "thrustmark.toml"], &["mark"], &[], &["merk", "x"], &["check", "."]] {
+    for arguments in [
+        &["mark", "absent.dxf"][..],
+        &["mark", "thrustmark.toml"],
+        &["mark"],
+        &[],
+        &["merk", "x"],
+        &["check", "."],
+    ] {
         let folder = tempfile::tempdir().unwrap();
         fs::copy(office.path().join("thrustmark.toml"), folder.path().join("thrustmark.toml")).unwrap();
         let output = run(folder.path(), arguments);
         assert_eq!(status(&output), 2, "{arguments:?}");
-        assert!(!err(&output).is_empty() && !err(&output).contains("panicked"), "{arguments:?}: {}", err(&output));
+        assert!(
+            !err(&output).is_empty() && !err(&output).contains("panicked"),
+            "{arguments:?}: {}",
+            err(&output)
+        );
     }
 }
 
@@ -307,7 +330,8 @@ fn unmark_refuses_a_drawing_without_marks_and_a_changed_copy() {
     let output = run(office.path(), &["unmark", "masonry-ring.thrust.dxf", "--output", "back.dxf"]);
     assert_eq!(status(&output), 2, "{}", out(&output));
     assert!(!office.path().join("back.dxf").exists());
-    let output = run(office.path(), &["unmark", "masonry-ring.thrust.dxf", "--output", "back.dxf", "--force"]);
+    let output =
+        run(office.path(), &["unmark", "masonry-ring.thrust.dxf", "--output", "back.dxf", "--force"]);
     assert_eq!(status(&output), 0, "{}", err(&output));
     let said = out(&output) + &err(&output);
     assert!(said.contains("not byte-exact"), "{said}");

@@ -47,7 +47,9 @@ pub fn text(listing: &Listing) -> String {
     line("layers:".into());
     for layer in &listing.layers {
         let mut parts = Vec::new();
-        for (counts, place) in [(&layer.model, ""), (&layer.blocks, " in blocks"), (&layer.paper, " in paper space")] {
+        for (counts, place) in
+            [(&layer.model, ""), (&layer.blocks, " in blocks"), (&layer.paper, " in paper space")]
+        {
             if !counts.is_empty() {
                 parts.push(format!("{}{place}", kinds(counts)));
             }
@@ -68,7 +70,9 @@ pub fn text(listing: &Listing) -> String {
             None => "its name is the one that is looked for".into(),
             Some(Reason::Word(word)) => format!("its name holds the word {word}"),
             Some(Reason::OneLine { span, rise }) => {
-                format!("one line from springing to springing, {span:.6} wide and {rise:.6} high in drawing units")
+                format!(
+                    "one line from springing to springing, {span:.6} wide and {rise:.6} high in drawing units"
+                )
             }
             Some(Reason::PointsOver { over, of }) => format!("{over} of its {of} points stand over an axis"),
         };

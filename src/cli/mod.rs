@@ -73,11 +73,7 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
         runs,
     };
     let on_stdout = args.json != Some(JsonTarget::Stdout);
-    let style = terminal::Style {
-        width: width(on_stdout),
-        colour: colour(on_stdout),
-        verbose: args.verbose,
-    };
+    let style = terminal::Style { width: width(on_stdout), colour: colour(on_stdout), verbose: args.verbose };
     let summary = terminal::summary(&document, &style);
     match &args.json {
         None => say_results(&document, &summary),

@@ -88,7 +88,12 @@ pub fn targets(
         if let Some(other) = taken.insert(place, drawing) {
             return Err(Refusal::new(
                 "same-output",
-                format!("{} and {} would have one output, {}", other.display(), drawing.display(), target.display()),
+                format!(
+                    "{} and {} would have one output, {}",
+                    other.display(),
+                    drawing.display(),
+                    target.display()
+                ),
                 "Mark them in two runs, with an --output of their own.",
             ));
         }

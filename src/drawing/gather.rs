@@ -400,7 +400,11 @@ impl Reader<'_> {
 }
 
 /// Records of these kinds on these layers, in model space.
-pub(super) fn rescan(bytes: &tags::Source, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
+pub(super) fn rescan(
+    bytes: &tags::Source,
+    layers: &[String],
+    kinds: &[&str],
+) -> Result<Vec<Record>, Refusal> {
     let wanted: Vec<String> = layers.iter().map(|l| fold(l)).collect();
     let keep =
         |c: &Candidate<'_>| c.block.is_none() && kinds.contains(&c.kind) && wanted.contains(&fold(c.layer));

@@ -12,16 +12,16 @@ pub mod ocs;
 mod outlook;
 pub mod read;
 mod roles;
-pub mod text;
 mod suggest;
+pub mod text;
 pub mod unit;
 pub mod viewport;
 
 pub use ends::{clusters, near_pairs};
 pub use entity::{Attribute, Curve, PointLike, Source, Text};
 pub use gather::{keeps, read_outlined, scan};
-pub use suggest::{Suggestion, suggest};
 pub use note::{Note, Reason, Role};
+pub use suggest::{Suggestion, suggest};
 pub use unit::{NoUnit, Unit, UnitSource};
 
 /// What was read from a drawing. Coordinates are drawing units.

@@ -25,7 +25,11 @@ pub struct Suggestion {
 ///
 /// # Errors
 /// When the drawing cannot be read a second time, or the job gives one layer to two roles.
-pub fn suggest(bytes: &tags::Source, outline: &Outline, settings: &Settings) -> Result<Vec<Suggestion>, Refusal> {
+pub fn suggest(
+    bytes: &tags::Source,
+    outline: &Outline,
+    settings: &Settings,
+) -> Result<Vec<Suggestion>, Refusal> {
     let mut found = Vec::new();
     let kinds = [&CURVES[..], &POINTS[..]].concat();
     let layers = roles::holding(outline, &kinds, tolerance::GUESS_ENTITIES, &[]);

@@ -95,7 +95,13 @@ fn layers(outline: &Outline) -> Vec<LayerLine> {
     let census = |name: &str| outline.census.iter().find(|c| fold(&c.name) == fold(name));
     let line = |name: &str, state: Vec<&'static str>| {
         let counts = census(name).cloned().unwrap_or_default();
-        LayerLine { name: name.into(), state, model: counts.model, paper: counts.paper, blocks: counts.blocks }
+        LayerLine {
+            name: name.into(),
+            state,
+            model: counts.model,
+            paper: counts.paper,
+            blocks: counts.blocks,
+        }
     };
     let mut out: Vec<LayerLine> = outline
         .layers

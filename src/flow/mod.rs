@@ -37,13 +37,17 @@ impl Environment {
     /// When the variable is no number of seconds.
     pub fn of_process() -> Result<Self, Refusal> {
         let stamp = match std::env::var("SOURCE_DATE_EPOCH") {
-            Ok(text) => text.trim().parse().ok().and_then(|s| jiff::Timestamp::from_second(s).ok()).ok_or_else(|| {
-                Refusal::new(
-                    "source-date-epoch",
-                    format!("SOURCE_DATE_EPOCH is no number of seconds: {text}"),
-                    "Set it to seconds since 1970-01-01 UTC, or unset it.",
-                )
-            })?,
+            Ok(text) => {
+                text.trim().parse().ok().and_then(|s| jiff::Timestamp::from_second(s).ok()).ok_or_else(
+                    || {
+                        Refusal::new(
+                            "source-date-epoch",
+                            format!("SOURCE_DATE_EPOCH is no number of seconds: {text}"),
+                            "Set it to seconds since 1970-01-01 UTC, or unset it.",
+                        )
+                    },
+                )?
+            }
             Err(_) => jiff::Timestamp::now(),
         };
         Ok(Self { today: jiff::tz::Offset::UTC.to_datetime(stamp).date() })
@@ -131,7 +135,8 @@ pub fn job_for(path: &Path, named: Option<&Job>) -> Result<Option<Job>, Refusal>
 fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Run> {
     let mut facts = no_facts(path);
     let mut in_force = serde_json::Value::Null;
-    stages(path, job, environment, &mut facts, &mut in_force).map_err(|refusal| refused(facts, in_force, refusal))
+    stages(path, job, environment, &mut facts, &mut in_force)
+        .map_err(|refusal| refused(facts, in_force, refusal))
 }
 
 /// The stages in order; what is known so far is left in `facts` and `in_force` for a refusal.

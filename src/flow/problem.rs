@@ -57,10 +57,14 @@ fn drawn(draw: Draw) -> LineKind {
 pub fn refusal(span: &Span, unsolved: &Unsolved) -> Refusal {
     let (check, remedy) = match unsolved {
         Unsolved::NoLoad => ("no-load", "Put loads over the span on the load layer."),
-        Unsolved::SelfCrossing(..) => ("axis-crosses", "Draw the axis as one line from springing to springing."),
+        Unsolved::SelfCrossing(..) => {
+            ("axis-crosses", "Draw the axis as one line from springing to springing.")
+        }
         Unsolved::NoRise => ("no-rise", "Draw the axis with its rise, or take it as a beam."),
         Unsolved::Hinges(_) => ("hinges", "Correct the hinges or [rib] support."),
-        Unsolved::SlackCable(_) => ("slack-cable", "Check the direction of the loads and the shape of the cable."),
+        Unsolved::SlackCable(_) => {
+            ("slack-cable", "Check the direction of the loads and the shape of the cable.")
+        }
         Unsolved::Input(_) => ("span", "Look at the axis and the loads of this span."),
         Unsolved::NotBuilt(_) => ("not-built", "Leave it out of the job file in this version."),
     };

@@ -63,9 +63,10 @@ pub fn unmark(path: &Path, output: Option<&Path>, force: bool) -> Result<Unmarke
 fn beside(path: &Path) -> PathBuf {
     let name = path.file_name().unwrap_or_default().to_string_lossy().into_owned();
     let lower = name.to_lowercase();
-    let stem = [".thrust.dxf", ".dxf"].iter().find(|end| lower.ends_with(**end)).map_or(name.as_str(), |end| {
-        let cut = name.len() - end.len();
-        name.get(..cut).unwrap_or(name.as_str())
-    });
+    let stem =
+        [".thrust.dxf", ".dxf"].iter().find(|end| lower.ends_with(**end)).map_or(name.as_str(), |end| {
+            let cut = name.len() - end.len();
+            name.get(..cut).unwrap_or(name.as_str())
+        });
     path.with_file_name(format!("{stem}.unmarked.dxf"))
 }

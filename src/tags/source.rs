@@ -6,9 +6,9 @@
 
 use std::fs::File;
 use std::io::{self, Read, Write};
-use std::time::SystemTime;
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
+use std::time::SystemTime;
 
 use sha2::{Digest, Sha256};
 

@@ -34,7 +34,8 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
         }
     }
     if let Some(limit) = limits.geometric_factor {
-        let closest = analysis.lines.iter().find(|l| l.kind == LineKind::Closest && l.status == Status::Found);
+        let closest =
+            analysis.lines.iter().find(|l| l.kind == LineKind::Closest && l.status == Status::Found);
         match closest.and_then(|l| l.depth_use).filter(|_| ring_applies) {
             Some(used) => judge.geometric_factor(used.ratio, spans::xy(used.at), limit),
             None => judge.not_judged("geometric_factor", no_depth(analysis)),
@@ -77,7 +78,9 @@ impl Judge<'_> {
     }
 
     fn not_judged(&mut self, limit: &str, why: &str) {
-        self.add(note(Check::NotJudged, format!("the stated limit `{limit}` was not judged: {why}")).uncheck());
+        self.add(
+            note(Check::NotJudged, format!("the stated limit `{limit}` was not judged: {why}")).uncheck(),
+        );
     }
 
     fn offset(&mut self, line: &Line, limit: f64) {
@@ -99,7 +102,8 @@ impl Judge<'_> {
                 length(limit)
             )
         };
-        let mut finding = self.limit(Check::Offset, "[limits] offset", offset.max_abs, limit, "m", at, holds, message);
+        let mut finding =
+            self.limit(Check::Offset, "[limits] offset", offset.max_abs, limit, "m", at, holds, message);
         if !holds {
             finding = finding.remedy(format!(
                 "move the axis {} by at least {} {}, or change the loads there",
@@ -114,13 +118,26 @@ impl Judge<'_> {
     fn ring(&mut self, used: f64, at: Xy, stated: Option<f64>) {
         let limit = stated.unwrap_or(1.0);
         let holds = used <= limit * (1.0 + tolerance::LIMIT_MET);
-        let basis = if stated.is_some() { "[limits] ring" } else { "built in: no tension, so inside the ring" };
+        let basis =
+            if stated.is_some() { "[limits] ring" } else { "built in: no tension, so inside the ring" };
         let message = if holds {
-            format!("the line of thrust uses {:.0} % of the half depth at most; limit {:.0} %", used * 100.0, limit * 100.0)
+            format!(
+                "the line of thrust uses {:.0} % of the half depth at most; limit {:.0} %",
+                used * 100.0,
+                limit * 100.0
+            )
         } else if used > 1.0 {
-            format!("the line of thrust leaves the ring: {:.0} % of the half depth; limit {:.0} %", used * 100.0, limit * 100.0)
+            format!(
+                "the line of thrust leaves the ring: {:.0} % of the half depth; limit {:.0} %",
+                used * 100.0,
+                limit * 100.0
+            )
         } else {
-            format!("the line of thrust uses {:.0} % of the half depth; limit {:.0} %", used * 100.0, limit * 100.0)
+            format!(
+                "the line of thrust uses {:.0} % of the half depth; limit {:.0} %",
+                used * 100.0,
+                limit * 100.0
+            )
         };
         let mut finding = self.limit(Check::Ring, basis, used, limit, "of half depth", at, holds, message);
         if holds && stated.is_none() {
@@ -177,7 +194,9 @@ impl Judge<'_> {
         if ratio <= tolerance::FUNICULAR_USE {
             let mut finding = note(
                 Check::GeometricFactor,
-                format!("the axis is a funicular of the loads: the geometric factor has no bound; limit {limit:.2}"),
+                format!(
+                    "the axis is a funicular of the loads: the geometric factor has no bound; limit {limit:.2}"
+                ),
             );
             finding.verdict = FindingVerdict::Within;
             finding.limit = Some(limit);

@@ -109,9 +109,9 @@ fn verdict(findings: &mut Vec<Finding>) -> Verdict {
             "no limit was stated, so there is nothing that could hold"
         };
         findings.push(
-            note(Check::NoLimit, message)
-                .uncheck()
-                .remedy("state what must hold under [limits] in the job file, such as `offset = 0.05` (metres)"),
+            note(Check::NoLimit, message).uncheck().remedy(
+                "state what must hold under [limits] in the job file, such as `offset = 0.05` (metres)",
+            ),
         );
     }
     if findings.iter().any(|f| f.unchecks) { Verdict::Unchecked } else { Verdict::Within }

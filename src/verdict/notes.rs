@@ -82,7 +82,9 @@ fn reason_words(reason: &Reason) -> String {
     match reason {
         Reason::Word(word) => format!("its name holds the word {word}"),
         Reason::OneLine { span, rise } => {
-            format!("it holds one line from springing to springing, {span:.6} wide and {rise:.6} high in drawing units")
+            format!(
+                "it holds one line from springing to springing, {span:.6} wide and {rise:.6} high in drawing units"
+            )
         }
         Reason::PointsOver { over, of } => format!("{over} of its {of} points stand over the axis"),
     }
@@ -211,12 +213,19 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
         add(residual);
     }
     if a.kind == SpanKind::Arch && settings.rib.support.is_none() {
-        add(note(Check::Support, "no support was declared; a ring without tension on rigid abutments was taken")
-            .uncheck()
-            .remedy("declare it: [rib] support = \"none\" (no tension), or the support there is"));
+        add(note(
+            Check::Support,
+            "no support was declared; a ring without tension on rigid abutments was taken",
+        )
+        .uncheck()
+        .remedy("declare it: [rib] support = \"none\" (no tension), or the support there is"));
     }
-    if a.kind == SpanKind::Arch && matches!(settings.rib.support, Some(Support::None)) && settings.rib.tension {
-        add(note(Check::Support, "support \"none\" with a section that takes tension: only the axis is judged"));
+    if a.kind == SpanKind::Arch && matches!(settings.rib.support, Some(Support::None)) && settings.rib.tension
+    {
+        add(note(
+            Check::Support,
+            "support \"none\" with a section that takes tension: only the axis is judged",
+        ));
     }
     if let Some(uneven) = uneven_spacing(a, span) {
         add(note(
@@ -236,7 +245,10 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
         .uncheck());
     }
     if let Some(pole) = a.pole {
-        let mut text = format!("the rays of the graphic method scatter by {:.4} {} about their pole", pole.scatter, units.force);
+        let mut text = format!(
+            "the rays of the graphic method scatter by {:.4} {} about their pole",
+            pole.scatter, units.force
+        );
         if let Some(ratio) = pole.scatter_ratio {
             text.push_str(&format!(" ({:.2} % of the push)", ratio * 100.0));
         }
@@ -260,7 +272,8 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
 
 /// What the computation leaves out.
 pub fn left_out(settings: &Settings, forces: Forces, findings: &mut Vec<Finding>) {
-    let mut parts = vec!["the rib's own weight", "fill", "traffic", "everything out of the plane of the elevation"];
+    let mut parts =
+        vec!["the rib's own weight", "fill", "traffic", "everything out of the plane of the elevation"];
     if forces == Forces::UnitLoads {
         parts.push("stresses");
     }

@@ -3,7 +3,9 @@
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
 use crate::model::{self, Forces};
-use crate::outcome::{self, Axis, Case, End, Line, LineKind, Load, Offset, Pole, Proof, Ring, Span, Station, Status, Xy};
+use crate::outcome::{
+    self, Axis, Case, End, Line, LineKind, Load, Offset, Pole, Proof, Ring, Span, Station, Status, Xy,
+};
 use crate::statics::{self, Analysis, Rule, SpanKind, Support};
 
 /// The name of the one case that a job without cases has.
@@ -125,7 +127,9 @@ pub fn why(rule: Rule) -> &'static str {
         Rule::RingWithoutTension => {
             "a ring without tension and no elastic support declared: the most favourable line, the best case"
         }
-        Rule::AxisOnly => "only the axis counts, with no support declared: the most favourable line, the best case",
+        Rule::AxisOnly => {
+            "only the axis counts, with no support declared: the most favourable line, the best case"
+        }
         Rule::Cable => "a cable through its supports and its lowest point",
     }
 }
@@ -165,7 +169,12 @@ fn line(line: &statics::Line) -> Line {
         },
         reason: line.reason.clone(),
         vertices: line.vertices.iter().copied().map(xy).collect(),
-        offset: line.offset.map(|o| Offset { max_abs: o.max_abs, signed: o.signed, at: xy(o.at), rms: o.rms }),
+        offset: line.offset.map(|o| Offset {
+            max_abs: o.max_abs,
+            signed: o.signed,
+            at: xy(o.at),
+            rms: o.rms,
+        }),
         stations: line.stations.iter().map(station).collect(),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
     }

@@ -1,9 +1,9 @@
 //! What of a run is shown on the sheet: of each span the governing line of its worst case, in drawing units.
 
 use crate::geometry::{Path, Point, Segment, Vec2};
+use crate::outcome::bow::{self, Group};
 use crate::outcome::{Case, FindingVerdict, Line, LineKind, Run, Span, Status, Xy};
 use crate::tolerance;
-use crate::outcome::bow::{self, Group};
 
 /// A span as it is drawn.
 #[derive(Debug)]
