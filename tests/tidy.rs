@@ -49,7 +49,7 @@ fn sources() -> Vec<PathBuf> {
         for path in entries {
             if path.is_dir() {
                 walk(&path, into);
-            } else if path.extension().is_some_and(|e| e == "rs") {
+            } else if path.extension().is_some_and(|e| e == "rs") && !is_test_module(&path) {
                 into.push(path);
             }
         }
@@ -57,6 +57,19 @@ fn sources() -> Vec<PathBuf> {
     let mut found = Vec::new();
     walk(&Path::new(env!("CARGO_MANIFEST_DIR")).join("src"), &mut found);
     found
+}
+
+/// A file that its parent takes in under `#[cfg(test)]` only.
+fn is_test_module(path: &Path) -> bool {
+    let name = path.file_stem().unwrap().to_str().unwrap();
+    let parent = path.parent().unwrap().join("mod.rs");
+    fs::read_to_string(parent).is_ok_and(|text| {
+        text.lines()
+            .collect::<Vec<_>>()
+            .windows(4)
+            .any(|w| w[0] == "#[cfg(test)]" && w[1..].iter().any(|l| *l == format!("mod {name};")))
+            || text.trim_end().ends_with(&format!("#[cfg(test)]\nmod {name};"))
+    })
 }
 
 /// The code of a file without comments and without its inline test module.

@@ -51,6 +51,7 @@ fn text(handle: usize, x: f64, y: f64, says: &str) -> Text {
 
 fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawing {
     Drawing {
+        viewports: Vec::new(),
         unit: Unit { name: "m", metres: 1.0, source: UnitSource::Job },
         axis_layers: vec!["A".into()],
         load_layers: vec!["L".into()],
