@@ -80,7 +80,7 @@ pub struct Target {
 pub fn check(path: &Path, job: Option<&Job>, environment: Environment) -> Run {
     match checked(path, job, environment) {
         Ok(checked) => checked.run,
-        Err(refused) => refused,
+        Err(refused) => *refused,
     }
 }
 
@@ -88,7 +88,7 @@ pub fn check(path: &Path, job: Option<&Job>, environment: Environment) -> Run {
 pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Environment) -> Run {
     let checked = match checked(path, job, environment) {
         Ok(checked) => checked,
-        Err(refused) => return refused,
+        Err(refused) => return *refused,
     };
     let facts = checked.run.drawing.clone();
     let settings = checked.run.settings.clone();
@@ -132,11 +132,11 @@ pub fn job_for(path: &Path, named: Option<&Job>) -> Result<Option<Job>, Refusal>
     }
 }
 
-fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Run> {
+fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Box<Run>> {
     let mut facts = no_facts(path);
     let mut in_force = serde_json::Value::Null;
     stages(path, job, environment, &mut facts, &mut in_force)
-        .map_err(|refusal| refused(facts, in_force, refusal))
+        .map_err(|refusal| Box::new(refused(facts, in_force, refusal)))
 }
 
 /// The stages in order; what is known so far is left in `facts` and `in_force` for a refusal.

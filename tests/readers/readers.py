@@ -15,6 +15,7 @@ shared folder is missing that part is skipped, and said so.
 
 import argparse
 import collections
+import logging
 import concurrent.futures
 import hashlib
 import importlib.util
@@ -69,6 +70,7 @@ def without_marks(data):
     return head, kept
 
 
+HANDLES = re.compile(rb"\n\s*(?:5|105)\s*?\n\s*[0-9A-Fa-f]+\s*?\n")
 SEED = re.compile(rb"(\$HANDSEED\s*?\n\s*5\s*?\n)[^\n]*")
 
 
@@ -76,27 +78,40 @@ def plain(data):
     return SEED.sub(rb"\1?", data)
 
 
-def made_empty(kept, source_kinds):
-    """Drops empty TABLE..ENDTAB and SECTION..ENDSEC pairs that the source does not have as often."""
-    surplus = collections.Counter(k for k, _ in kept) - source_kinds
+def table_name(raw):
+    tags = lines_of(raw)
+    return next((v for c, v in zip(tags[0::2], tags[1::2]) if c == b"2"), b"")
+
+
+def made_empty(kept, source):
+    """Drops empty tables and sections that stand in the copy and not in the source."""
     out = list(kept)
     for open_, close in ((b"TABLE", b"ENDTAB"), (b"SECTION", b"ENDSEC")):
-        while surplus[open_] > 0:
-            for i in range(len(out) - 1):
-                if out[i][0] == open_ and out[i + 1][0] == close:
+        there = collections.Counter(table_name(r) for k, r in source if k == open_)
+        i = 0
+        seen = collections.Counter()
+        while i < len(out) - 1:
+            name = table_name(out[i][1])
+            if out[i][0] == open_:
+                seen[name] += 1
+                if out[i + 1][0] == close and seen[name] > there[name]:
                     del out[i : i + 2]
-                    surplus[open_] -= 1
-                    surplus[close] -= 1
-                    break
-            else:
-                return out
+                    continue
+            i += 1
     return out
+
+
+def inserted(marked):
+    """Entities among the records that carry our extended data."""
+    _, recs = records(marked)
+    tables = {b"LAYER", b"LTYPE", b"APPID", b"STYLE", b"VERTEX", b"SEQEND"}
+    return sum(1 for k, r in recs if k not in tables and is_ours(k, r))
 
 
 def check_bytes(source, marked):
     head_s, recs_s = records(source)
     head_m, kept = without_marks(marked)
-    kept = made_empty(kept, collections.Counter(k for k, _ in recs_s))
+    kept = made_empty(kept, recs_s)
     a = plain(head_s + b"".join(r for _, r in recs_s))
     b = plain(head_m + b"".join(r for _, r in kept))
     if a != b and a + b"\n" != b and a + b"\r\n" != b:
@@ -183,29 +198,42 @@ def one(task):
         problems.append("marking twice: " + twice.stderr.decode(errors="replace")[:300])
     elif again.read_bytes() != out and b"drawing.thrust.dxf" not in again.read_bytes():
         problems.append("marking twice is not marking once")
+    ours = inserted(out) if ascii_form else None
+    if ours == 0:
+        problems.append("nothing was put in")
     before, how_before = audit(source)
     after, how_after = audit(marked)
-    counts = {"ezdxf": how_before}
+    counts = {"ezdxf": how_before, "ours": ours or 0}
     if before is not None:
         if after is None or how_after != how_before:
             problems.append(f"ezdxf read the source by {how_before}, the copy: {how_after}")
         else:
             new = after[0] - before[0]
+            if not HANDLES.search(data):
+                # A drawing without a single handle: every one of its tables is complained of, and one that we made too.
+                counts["no handles"] = 1
+                for code in list(new):
+                    if before[0][code] and code.name == "INVALID_TABLE_HANDLE":
+                        del new[code]
             if new:
                 problems.append(f"ezdxf's audit finds new: {dict(new)}")
             if after[1] != before[1]:
                 problems.append(f"ezdxf saw {before[1]} entities, now {after[1]} beside ours")
-            if after[2] == 0:
+            if ascii_form and before[1] == 0 and after[2] == 0:
+                # A section without an end: ezdxf takes nothing from it, not even what the source has there.
+                counts["nothing seen before or after"] = 1
+            elif ascii_form and after[2] != ours:
+                problems.append(f"ezdxf sees {after[2]} of our {ours} entities")
+            elif after[2] == 0:
                 problems.append("ezdxf sees none of our entities")
-            counts["ours"] = after[2]
     ogr_before = features(source) if ascii_form else None
     if ogr_before is not None:
         ogr_after = features(marked)
         counts["ogr"] = True
         if ogr_after is None:
             problems.append("OGR reads the source and not the copy")
-        elif "ours" in counts and ogr_after - ogr_before != counts["ours"]:
-            problems.append(f"OGR sees {ogr_after - ogr_before} entities more, ezdxf {counts['ours']}")
+        elif ogr_after - ogr_before != ours:
+            problems.append(f"OGR sees {ogr_after - ogr_before} entities more, and {ours} were put in")
     return name, "marked", "", problems, counts
 
 
@@ -240,6 +268,7 @@ def corpus_tasks(shared):
 
 
 def main():
+    logging.disable(logging.CRITICAL)
     p = argparse.ArgumentParser()
     p.add_argument("binary")
     p.add_argument("--shared", type=pathlib.Path)
