@@ -53,7 +53,8 @@ pub fn read_outlined(
     outline: &Outline,
     settings: &Settings,
 ) -> Result<Drawing, Refusal> {
-    let mut reader = Reader { bytes, outline, settings, notes: Vec::new() };
+    let notes = outline.notes.iter().cloned().map(Note::File).collect();
+    let mut reader = Reader { bytes, outline, settings, notes };
     let (axis_layers, axis) = reader.axis()?;
     let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, &axis)?;
     reader.one_plane(&axis, &points)?;

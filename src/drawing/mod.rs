@@ -17,6 +17,7 @@ pub mod text;
 pub mod unit;
 pub mod viewport;
 
+pub use crate::tags::{Doubt, Note as FileNote};
 pub use ends::{clusters, near_pairs};
 pub use entity::{Attribute, Curve, PointLike, Source, Text};
 pub use gather::{keeps, read_outlined, scan};

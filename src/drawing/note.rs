@@ -2,6 +2,7 @@
 
 use super::entity::Source;
 use super::unit::{NoUnit, UnitSource};
+use crate::tags;
 use crate::units::LengthUnit;
 
 /// What a layer serves as.
@@ -48,6 +49,8 @@ pub enum Reason {
 /// One thing noticed.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Note {
+    /// Something about the file as such: its encoding, its end.
+    File(tags::Note),
     /// A layer was guessed, because the job names none.
     LayerGuessed {
         /// What it serves as.

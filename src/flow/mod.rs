@@ -229,6 +229,19 @@ fn write_copy(
     let sheet = sheet::sheet(path, checked, environment);
     let marks = annotate::annotate(&checked.run, &sheet);
     let edits = tags::mark(&checked.source, &checked.outline, &marks)?;
+    let broken = tags::validate::check_inserted(&checked.source, &checked.outline, &edits)?;
+    if let Some(first) = broken.first() {
+        return Err(Refusal::new(
+            "marks-invalid",
+            format!(
+                "The marks made for this drawing break {} rules of the format, first {:?}: {}",
+                broken.len(),
+                first.rule,
+                first.detail
+            ),
+            "Report this drawing; nothing was written.",
+        ));
+    }
     let marked = checked.source.spliced(&edits)?;
     file::write_whole(output, &sources, &replace, |target| {
         marked.write_to(target).map_err(|error| {

@@ -2,7 +2,7 @@
 
 use super::{With, length, note, spans};
 use crate::drawing;
-use crate::drawing::{Reason, Role};
+use crate::drawing::{Doubt, FileNote, Reason, Role};
 use crate::job::Settings;
 use crate::job::Support;
 use crate::model;
@@ -20,6 +20,7 @@ pub fn drawing(notes: &[drawing::Note], findings: &mut Vec<Finding>) {
 fn drawing_note(n: &drawing::Note) -> Finding {
     use drawing::Note;
     match n {
+        Note::File(file) => file_note(file),
         Note::LayerGuessed { role, layer, reason } => note(
             Check::Layers,
             format!("layer {layer} was taken as the {}: {}", role_name(*role), reason_words(reason)),
@@ -68,6 +69,64 @@ fn drawing_note(n: &drawing::Note) -> Finding {
         )
         .uncheck()
         .remedy(format!("state it in the job file: [drawing] unit = \"{}\"", unit.name())),
+    }
+}
+
+/// What the byte layer noticed. A name or label that was read against the drawing's own encoding is an assumption.
+fn file_note(n: &FileNote) -> Finding {
+    match n {
+        FileNote::Text { doubt, count, first, line } => {
+            let place = line.map_or(String::new(), |l| format!(" (line {l})"));
+            let finding = note(
+                Check::Encoding,
+                format!(
+                    "{count} names do not fit the drawing's encoding, first {first:?}{place}: {}",
+                    doubt_words(doubt)
+                ),
+            );
+            if *doubt == Doubt::LooksLikeUtf8 {
+                // By the format it was read rightly; only the eye can tell.
+                return finding;
+            }
+            finding.uncheck().remedy(
+                "save the drawing with the right code page, or allow it: [accept] assumed = [\"encoding\"]",
+            )
+        }
+        FileNote::UnknownCodePage(page) => note(
+            Check::Encoding,
+            format!("$DWGCODEPAGE names {page}, which is not known; ANSI_1252 was taken"),
+        )
+        .uncheck()
+        .remedy("correct $DWGCODEPAGE, or allow it: [accept] assumed = [\"encoding\"]"),
+        FileNote::LaterVersion(version) => note(
+            Check::PassedOver,
+            format!("version {version} is later than any known here; read as the latest known"),
+        ),
+        FileNote::NoVersion => note(Check::PassedOver, "the drawing states no version; read as R12"),
+        FileNote::NoEndOfFile => note(
+            Check::PassedOver,
+            "the drawing has no EOF: it may be cut off, and what was cut off is not read",
+        )
+        .uncheck()
+        .remedy("export the drawing again"),
+        FileNote::BehindEndOfFile(bytes) => {
+            note(Check::PassedOver, format!("{bytes} bytes behind EOF are kept and not read"))
+        }
+        FileNote::SectionNotClosed(name) => {
+            note(Check::PassedOver, format!("section {name} has no end: the drawing may be cut off"))
+                .uncheck()
+                .remedy("export the drawing again")
+        }
+        FileNote::TableNotClosed(name) => note(Check::PassedOver, format!("table {name} has no end")),
+    }
+}
+
+fn doubt_words(doubt: &Doubt) -> &'static str {
+    match doubt {
+        Doubt::ReadAsUtf8 => "read as UTF-8",
+        Doubt::ReadByPage => "read by the code page",
+        Doubt::Unreadable => "some letters could not be read",
+        Doubt::LooksLikeUtf8 => "read by the code page, though it would be good UTF-8 too",
     }
 }
 
