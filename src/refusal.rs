@@ -1,6 +1,6 @@
 //! Why a drawing or a job was not read: what, where and how to mend it.
 
-use std::path::PathBuf;
+use std::path::Path;
 
 use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
@@ -13,8 +13,8 @@ pub struct Refusal {
     /// What is wrong, as a sentence.
     pub message: String,
     /// The file that is wrong, when it is not the drawing itself (a job file).
-    #[serde(skip)]
-    pub file: Option<PathBuf>,
+    #[serde(default)]
+    pub file: Option<String>,
     /// Line of the file, counted from 1 (ASCII files); byte offset for binary ones is told in the message.
     pub line: Option<u64>,
     /// Handle of the entity concerned, as it is spelled in the drawing.
@@ -62,8 +62,8 @@ impl Refusal {
 
     /// Adds the file, when it is another one than the drawing.
     #[must_use]
-    pub fn in_file(mut self, file: impl Into<PathBuf>) -> Self {
-        self.file = Some(file.into());
+    pub fn in_file(mut self, file: impl AsRef<Path>) -> Self {
+        self.file = Some(file.as_ref().display().to_string());
         self
     }
 }
@@ -71,7 +71,7 @@ impl Refusal {
 impl std::fmt::Display for Refusal {
     fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
         if let Some(file) = &self.file {
-            write!(f, "{}: ", file.display())?;
+            write!(f, "{file}: ")?;
         }
         if let Some(line) = self.line {
             write!(f, "line {line}: ")?;

@@ -119,6 +119,9 @@ fn one(run: &Run, verbose: bool, out: &mut Page) {
     if let Some(error) = &run.error {
         out.heading("NOT READ", r.code(), &run.drawing.file);
         let mut place = String::new();
+        if let Some(file) = &error.file {
+            place.push_str(&format!("{file}: "));
+        }
         if let Some(line) = error.line {
             place.push_str(&format!("line {line}: "));
         }
