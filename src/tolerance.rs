@@ -125,3 +125,15 @@ pub const ONE_STRAIGHT_LINE: f64 = 1e-9;
 /// By how much the length of a direction of the mark plane may miss 1, and the product of two of them 0. No unit.
 /// Larger: marks come out stretched or skewed; smaller: directions computed from drawn points are refused.
 pub const UNIT_VECTOR: f64 = 1e-9;
+
+/// Separate lines on the axis layers above which they are refused at once. A count. Larger: comparing all with all takes
+/// long; smaller: long viaducts are refused.
+pub const MOST_SPANS: usize = 500;
+
+/// Nearest loads that are looked at for one label. A count. Larger: thousands of labels on one spot take minutes; smaller:
+/// crowded but clear drawings are refused.
+pub const LABEL_CHOICES: usize = 256;
+
+/// Steps that pairing labels with loads may take (some seconds). A count. Larger: a hostile drawing keeps the program busy;
+/// smaller: crowded but clear drawings are refused.
+pub const PAIRING_STEPS: u64 = 100_000_000;
