@@ -2,6 +2,7 @@
 //! which every other byte is as it was.
 
 pub mod drawing;
+pub mod cli;
 pub mod geometry;
 pub mod job;
 pub mod model;

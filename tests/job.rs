@@ -1,5 +1,8 @@
 //! The job file: every key, every refusal, sheets, and what a round trip keeps.
 
+// Helpers of tests are not recognised as tests themselves.
+#![allow(clippy::unwrap_used)]
+
 use std::path::Path;
 
 use proptest::prelude::*;
@@ -371,7 +374,7 @@ fn bad_values_are_refused_at_their_line() {
 fn bad_values_of_unbuilt_tables() {
     let area = "[[area]]\nname = \"fill\"\nunit_weight = 20\n";
     for (text, words) in [
-        (format!("{area}"), "exactly one"),
+        (area.to_owned(), "exactly one"),
         (format!("{area}layer = \"F\"\nlevel = 3"), "exactly one"),
         (format!("{area}level = 3\npassive = -1"), "0 or greater"),
         ("[[area]]\nname = \"rib\"\nlevel = 1\nunit_weight = 1".into(), "the rib itself"),
@@ -534,6 +537,10 @@ fn settings_in_force_are_a_job_again() {
         assert_eq!(again, settings, "{written}");
         assert_eq!(again.to_toml(), written);
     }
+    // A layer that is stated stays stated, one that is not does not become so.
+    let stated = "[layers]\naxis = \"ARCH-AXIS\"\n";
+    let again = settings(&settings(stated).to_toml());
+    assert!(again.states("layers.axis") && !again.states("layers.loads"));
     let json = settings(BUILT).to_json();
     assert_eq!(json["rib"]["depth"], serde_json::json!([0.45, 0.3]));
     assert_eq!(json["drawing"]["unit"], "mm");

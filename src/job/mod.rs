@@ -297,3 +297,78 @@ fn sha256(bytes: &[u8]) -> String {
     }
     text
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Tables that are not built yet are refused by [`Job::parse`], so what is read from them is only seen from here.
+    #[test]
+    fn every_key_arrives_and_survives_a_round_trip() {
+        let text = include_str!("../../tests/data/every-key.toml");
+        let read = |text: &str| {
+            let mut base = tree::parse(text).unwrap();
+            let sheets = take_sheets(&mut base, &mut Vec::new());
+            for sheet in &sheets {
+                tree::merge(&mut base, &sheet.table);
+            }
+            let notes = Notes::default();
+            let mut settings = read::settings(&base, &[], &notes);
+            settings.origin.lines = notes.finish().1;
+            let notes = Notes::default();
+            cross::check(&settings, &notes);
+            assert_eq!(notes.finish().0, []);
+            settings
+        };
+        let mut settings = read(text);
+        assert_eq!(settings.rib.depth, Some(RibDepth::Constant(0.45)));
+        assert_eq!(settings.rib.voussoirs, Some(40));
+        assert_eq!(settings.rib.backing, Some(3.2));
+        assert_eq!(settings.rib.support, Some(Support::Hingeless));
+        assert_eq!(settings.area[0].earth_pressure, Some(0.33));
+        assert_eq!(settings.case[0].factors["self"].to_bits(), 1.0_f64.to_bits());
+        let traffic = &settings.traffic[0];
+        assert_eq!(traffic.axles, [[0.0, 100.0], [1.2, 100.0]]);
+        assert_eq!(traffic.through, Some(Through::Fill));
+        assert_eq!(traffic.step, Step::Auto);
+        assert_eq!(traffic.case.as_deref(), Some("dead"));
+        assert_eq!(traffic.influence, [0.25, 0.5]);
+        assert_eq!(settings.range[0].what, "fill.unit_weight");
+        assert_eq!(settings.title.revision.as_deref(), Some("REV"));
+        let written = settings.to_toml();
+        let mut again = read(&written);
+        assert_eq!(again.to_toml(), written);
+        settings.origin = Origin::default();
+        again.origin = Origin::default();
+        assert_eq!(again, settings);
+    }
+
+    /// Names that point to a table which is not there.
+    #[test]
+    fn names_that_point_nowhere() {
+        for (text, words) in [
+            ("[[traffic]]\nname = \"t\"\ncase = \"dead\"", "no [[case]] named \"dead\""),
+            ("[[traffic]]\nname = \"t\"\nwith = { u = 1 }", "no [[traffic]] named \"u\""),
+            ("[[traffic]]\nname = \"t\"\nwith = { T = 1 }", "no [[traffic]] named \"T\""),
+            ("[[range]]\nwhat = \"fill.level\"\nlow = 1\nhigh = 2", "no [[area]] named \"fill\""),
+            (
+                "[[area]]\nname = \"fill\"\nlayer = \"F\"\nunit_weight = 20\n\
+                 [[range]]\nwhat = \"FILL.level\"\nlow = 1\nhigh = 2",
+                "has no `level`",
+            ),
+            ("[loads]\narrow_scale = 0.01", "does not say which"),
+        ] {
+            let notes = Notes::default();
+            let mut settings = read::settings(&tree::parse(text).unwrap(), &[], &notes);
+            let (problems, lines) = notes.finish();
+            assert_eq!(problems, [], "{text}");
+            settings.origin.lines = lines;
+            let notes = Notes::default();
+            cross::check(&settings, &notes);
+            let problems = notes.finish().0;
+            assert_eq!(problems.len(), 1, "{text}");
+            assert!(problems[0].message.contains(words), "{problems:?}");
+            assert!(problems[0].line > 1, "{problems:?}");
+        }
+    }
+}

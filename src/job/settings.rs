@@ -1,7 +1,7 @@
 //! The settings in force for one drawing, table by table, as the job file states them.
 //!
 //! Lengths in m, forces in kN, stresses in MPa, unit weights in kN/m³ unless said otherwise. `None` means *not given*.
-//! Serialised, the settings are a job file again: what was not given is absent.
+//! Serialised, what was not given is absent.
 
 use std::collections::BTreeMap;
 use std::path::PathBuf;
@@ -9,8 +9,8 @@ use std::path::PathBuf;
 use serde::{Serialize, Serializer};
 
 use super::actions::{Area, Case, Range, Traffic};
-use super::choice::choice;
-use super::layers::Layers;
+use super::choice::{Choice, choice};
+use super::layers::{Layers, Patterns, Role};
 use super::limits::{Accept, Limits};
 use super::rib::Rib;
 use crate::units::{ForceUnit, LengthUnit};
@@ -86,11 +86,60 @@ impl Settings {
         serde_json::to_value(self).unwrap_or_default()
     }
 
-    /// The settings in force as a job file that states every key; reading it gives equal settings.
+    /// The settings in force as a job file; reading it gives equal settings. Every key is stated but the layers that
+    /// nobody stated: a stated layer must be in the drawing, a default one need not, and the written job has to give
+    /// the same run again.
     pub fn to_toml(&self) -> String {
+        let default = Layers::default();
+        let layers = Role::NAMES
+            .iter()
+            .filter(|&&(name, role)| {
+                self.states(&format!("layers.{name}")) || self.layers.of(role) != default.of(role)
+            })
+            .map(|&(name, role)| (name, self.layers.of(role)))
+            .collect();
+        let written = Written {
+            drawing: &self.drawing,
+            layers,
+            rib: &self.rib,
+            loads: &self.loads,
+            area: &self.area,
+            case: &self.case,
+            traffic: &self.traffic,
+            range: &self.range,
+            line: &self.line,
+            limits: &self.limits,
+            accept: &self.accept,
+            mark: &self.mark,
+            title: &self.title,
+            report: &self.report,
+        };
         // Cannot fail, for the same reasons as above.
-        toml::to_string(self).unwrap_or_default()
+        toml::to_string(&written).unwrap_or_default()
     }
+}
+
+/// [`Settings`] with only some of the layers.
+#[derive(Serialize)]
+struct Written<'a> {
+    drawing: &'a Drawing,
+    layers: BTreeMap<&'static str, &'a Patterns>,
+    rib: &'a Rib,
+    loads: &'a Loads,
+    #[serde(skip_serializing_if = "<[_]>::is_empty")]
+    area: &'a [Area],
+    #[serde(skip_serializing_if = "<[_]>::is_empty")]
+    case: &'a [Case],
+    #[serde(skip_serializing_if = "<[_]>::is_empty")]
+    traffic: &'a [Traffic],
+    #[serde(skip_serializing_if = "<[_]>::is_empty")]
+    range: &'a [Range],
+    line: &'a Line,
+    limits: &'a Limits,
+    accept: &'a Accept,
+    mark: &'a Mark,
+    title: &'a Title,
+    report: &'a Report,
 }
 
 choice! {

@@ -1,0 +1,237 @@
+//! What may be written on the command line, and the help that is printed about it.
+//!
+//! Only commands that are built stand here; for any other name the usage error is the answer, with status 2. Whatever
+//! changes a number, a verdict or the mark is a key of the job file and never an option.
+
+use std::ffi::OsString;
+use std::path::PathBuf;
+
+use clap::builder::{OsStringValueParser, TypedValueParser};
+use clap::{Args as ClapArgs, Parser, Subcommand};
+
+/// The whole command line.
+///
+/// Parsing ends the program by itself for `--help` and `--version` (on stdout, status 0), for no arguments (help on
+/// stderr, status 2) and for wrong usage (status 2).
+#[derive(Debug, Clone, PartialEq, Eq, Parser)]
+#[command(
+    name = "thrustmark",
+    version,
+    about = "Line of thrust of an arch, computed from a DXF drawing and marked in a copy of it",
+    long_about = "Reads the axis of an arch or cable and its loads from a DXF drawing, computes the line of thrust and \
+                  how far it strays from the axis, and writes both into a copy of the drawing, in which every other \
+                  byte is as it was. The drawing itself is never written.",
+    arg_required_else_help = true,
+    max_term_width = 100,
+    after_help = MAIN_HELP
+)]
+pub struct Args {
+    /// The command.
+    #[command(subcommand)]
+    pub command: Command,
+}
+
+/// The commands.
+#[derive(Debug, Clone, PartialEq, Eq, Subcommand)]
+pub enum Command {
+    /// Check drawings and write a marked copy beside each
+    #[command(arg_required_else_help = true, after_help = MARK_HELP)]
+    Mark(MarkArgs),
+    /// Check drawings and print the findings; write no drawing
+    #[command(arg_required_else_help = true, after_help = CHECK_HELP)]
+    Check(CheckArgs),
+    /// Take the marks out of a marked copy again, byte for byte
+    #[command(arg_required_else_help = true, after_help = UNMARK_HELP)]
+    Unmark(UnmarkArgs),
+    /// Show what a drawing holds, and which layer could be the axis or the loads
+    #[command(arg_required_else_help = true, after_help = LIST_HELP)]
+    List(ListArgs),
+    /// Print the JSON Schema of the results
+    #[command(after_help = SCHEMA_HELP)]
+    Schema,
+}
+
+/// `thrustmark mark`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct MarkArgs {
+    /// What is shared with `check`.
+    #[command(flatten)]
+    pub check: CheckArgs,
+
+    /// Marked copy; with several drawings the folder for the copies [default: NAME.thrust.dxf beside each drawing]
+    #[arg(short, long, value_name = "FILE|FOLDER")]
+    pub output: Option<PathBuf>,
+}
+
+/// `thrustmark check`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct CheckArgs {
+    /// DXF drawings, and folders of them
+    #[arg(required = true, value_name = "DRAWING")]
+    pub drawings: Vec<PathBuf>,
+
+    /// Job file [default: the first thrustmark.toml on the way up from each drawing's folder]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+
+    /// Results as JSON into FILE; with - on stdout, and the summary on stderr
+    #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
+    pub json: Option<JsonTarget>,
+
+    /// Replace existing files, even those that thrustmark did not write
+    #[arg(short, long)]
+    pub force: bool,
+
+    /// Print every figure with the entity it was read from
+    #[arg(short, long)]
+    pub verbose: bool,
+}
+
+/// `thrustmark unmark`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct UnmarkArgs {
+    /// Marked copy; it stays as it is
+    #[arg(value_name = "MARKED")]
+    pub drawing: PathBuf,
+
+    /// Drawing without the marks [default: NAME.unmarked.dxf beside it, for NAME.thrust.dxf]
+    #[arg(short, long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
+
+    /// Replace an existing file, and write even when the result does not have the recorded hash
+    #[arg(short, long)]
+    pub force: bool,
+}
+
+/// `thrustmark list`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct ListArgs {
+    /// DXF drawing
+    #[arg(value_name = "DRAWING")]
+    pub drawing: PathBuf,
+
+    /// Job file [default: the first thrustmark.toml on the way up from the drawing's folder]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+}
+
+/// Where the JSON results go.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub enum JsonTarget {
+    /// Standard output; the summary then goes to standard error.
+    Stdout,
+    /// A file.
+    File(PathBuf),
+}
+
+impl From<OsString> for JsonTarget {
+    fn from(text: OsString) -> Self {
+        if text == "-" { Self::Stdout } else { Self::File(text.into()) }
+    }
+}
+
+/// Exit status, told with every command that checks.
+macro_rules! status {
+    () => {
+        "\
+Exit status:
+  0  within     every stated limit holds, and at least one was stated
+  1  outside    a stated limit does not hold
+  2             a drawing could not be read, checked or written, or wrong usage
+  3  unchecked  computed, but not judged: no limit applies, a stated limit could
+                not be judged, or something was assumed that the job does not allow
+  Over several drawings the worst counts: 2, then 1, then 3, then 0."
+    };
+}
+
+/// Exit status of the commands that judge nothing.
+macro_rules! plain_status {
+    () => {
+        "Exit status: 0, or 2 when it could not be done."
+    };
+}
+
+/// What the results are and are not.
+macro_rules! caution {
+    () => {
+        "\
+Caution: the results are a check by calculation, under the assumptions that they
+state, for a qualified engineer to judge. The codes of the place and licensed
+practice govern; no result says that a structure may be built or used."
+    };
+}
+
+const MAIN_HELP: &str = concat!(
+    "\
+Examples:
+  thrustmark list bridge.dxf           see layers, units and what could be the axis
+  thrustmark mark bridge.dxf           write bridge.thrust.dxf
+  thrustmark check drawings/           check every drawing of a folder
+  thrustmark unmark bridge.thrust.dxf  get the drawing back, byte for byte
+
+Limits, layers and the rib are stated in a job file, thrustmark.toml, beside the
+drawing or in a folder above it.
+
+",
+    status!(),
+    "\n  list, unmark and schema end in 0 or 2.\n\n",
+    caution!()
+);
+
+const MARK_HELP: &str = concat!(
+    "\
+Examples:
+  thrustmark mark bridge.dxf
+  thrustmark mark bridge.dxf --output issue/bridge.dxf --json bridge.json
+  thrustmark mark set-1/ set-2/ --output marked/ --job office.toml
+
+A drawing that is marked already needs --output; its old marks are replaced.
+
+",
+    status!(),
+    "\n\n",
+    caution!()
+);
+
+const CHECK_HELP: &str = concat!(
+    "\
+Examples:
+  thrustmark check bridge.dxf
+  thrustmark check drawings/ --json - > results.json
+
+",
+    status!(),
+    "\n\n",
+    caution!()
+);
+
+const UNMARK_HELP: &str = concat!(
+    "\
+Examples:
+  thrustmark unmark bridge.thrust.dxf
+  thrustmark unmark bridge.thrust.dxf --output bridge.dxf
+
+The result is held against the SHA-256 that the marks carry. Without marks, or
+when the two differ, nothing is written (with --force the latter is).
+
+",
+    plain_status!()
+);
+
+const LIST_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark list bridge.dxf
+
+",
+    plain_status!()
+);
+
+const SCHEMA_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark schema > thrustmark.schema.json
+
+",
+    plain_status!()
+);
