@@ -2,8 +2,8 @@
 
 use crate::refusal::Refusal;
 use crate::tags::codes::parse_handle;
+use crate::tags::machine::Machine;
 use crate::tags::outline::{Anchor, HeaderVariable, Layer, Newline, Note, Outline, Table};
-use crate::tags::scan::Machine;
 use crate::tags::text::Decoder;
 use crate::tags::tokens::{Form, Stream};
 use crate::tags::unmark;
@@ -38,7 +38,7 @@ pub(super) fn outline(mut machine: Machine<'_>, stream: Stream) -> Result<Outlin
             "Name a whole DXF drawing",
         ));
     }
-    let decoder = decoder(&machine.header, machine.utf8_mark());
+    let decoder = decoder(&machine.header, machine.utf8_mark);
     let version = variable(&machine.header, "$ACADVER").map(str::to_owned);
     let rank = rank(version.as_deref());
     let notes = notes(&machine, &stream, version.as_deref(), rank, &decoder);

@@ -18,11 +18,8 @@ impl Handles {
     /// Prepares to hand out at most `need` handles.
     pub fn new(source: &Source, outline: &Outline, need: u64) -> Result<Self, Refusal> {
         let state = &outline.handles;
-        let handling = outline.header("$HANDLING", 70) == Some("1");
-        let has_seed = outline.header_value("$HANDSEED", 5).is_some();
-        let wanted = state.used > 0 || outline.rank < 1012 && handling || outline.rank >= 1012 && has_seed;
         let mut handles = Self { next: None, taken: Vec::new() };
-        if !wanted {
+        if !outline.numbered() {
             return Ok(handles);
         }
         let above = |highest: u64| highest.checked_add(1);

@@ -6,10 +6,14 @@
 //! that take them out; [`Source::spliced`] is the drawing with the edits made.
 
 mod census;
+mod close;
 mod codes;
 mod emit;
+mod facts;
 mod finish;
 mod handles;
+mod items;
+mod machine;
 mod mark;
 pub mod marks;
 mod outline;
@@ -18,22 +22,26 @@ mod plane;
 mod record;
 mod scan;
 mod shapes;
+mod sound;
 mod source;
 mod text;
 mod tokens;
 mod unmark;
+pub mod validate;
 
+pub use facts::FoundMarks;
+pub use machine::{Candidate, Keep, Options};
 pub use mark::mark;
 pub use outline::{
     Anchor, Block, HandleState, HeaderValue, HeaderVariable, Layer, LayerCensus, Newline, Note, Outline,
     Section, Table, fold,
 };
 pub use record::{Record, Tag, Tags};
-pub use scan::{Candidate, Keep, Options, scan};
+pub use scan::scan;
 pub use source::{Edit, Reader, Source};
 pub use text::{Decoder, Doubt, carets, unescape};
 pub use tokens::Form;
-pub use unmark::{FoundMarks, unmark};
+pub use unmark::unmark;
 
 /// Name of the registered application under which everything that is added is known as ours.
 pub const APPLICATION: &str = "THRUSTMARK";

@@ -3,10 +3,10 @@
 use std::collections::BTreeMap;
 use std::ops::Range;
 
+use crate::tags::facts::FoundMarks;
 use crate::tags::record::Record;
 use crate::tags::text::{Decoder, Doubt};
 use crate::tags::tokens::Form;
-use crate::tags::unmark::FoundMarks;
 
 /// How lines end.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -254,6 +254,16 @@ impl Outline {
     pub(crate) fn header_value(&self, name: &str, code: i32) -> Option<&HeaderValue> {
         let variable = self.header.iter().find(|v| v.name == name)?;
         variable.values.iter().find(|v| v.code == code)
+    }
+
+    /// Whether records of this drawing have handles: some do, or the header promises it.
+    pub fn numbered(&self) -> bool {
+        let promised = if self.rank < 1012 {
+            self.header("$HANDLING", 70) == Some("1")
+        } else {
+            self.header_value("$HANDSEED", 5).is_some()
+        };
+        self.handles.used > 0 || promised
     }
 
     /// The first section of this name.

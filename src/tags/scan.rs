@@ -2,104 +2,27 @@
 
 use crate::refusal::Refusal;
 use crate::tags::APPLICATION;
-use crate::tags::census::{Census, Entry};
+use crate::tags::census::Entry;
 use crate::tags::codes::{is_reference, parse_handle};
 use crate::tags::finish;
-use crate::tags::outline::{
-    Anchor, Block, HandleState, HeaderValue, HeaderVariable, Note, Outline, Section, Table,
-};
-use crate::tags::record::{Record, Tags};
+use crate::tags::machine::{Candidate, Collect, Machine, Options, Part};
+use crate::tags::outline::{Anchor, HeaderValue, HeaderVariable, Note, Outline, Section, Table};
 use crate::tags::source::Source;
-use crate::tags::text::{Decoder, Doubt};
+use crate::tags::text::Doubt;
 use crate::tags::tokens::{Form, Place, Sink, Stream, tokenize};
-
-/// A record that may be kept.
-#[derive(Debug, Clone, Copy)]
-pub struct Candidate<'a> {
-    /// The block it stands in, decoded; none in the ENTITIES section.
-    pub block: Option<&'a str>,
-    /// Its type in capitals.
-    pub kind: &'a str,
-    /// Its layer, decoded, as spelled.
-    pub layer: &'a str,
-}
-
-/// Says whether a record is kept. Asked once for each block, type and layer, not for each record.
-pub type Keep<'a> = dyn Fn(&Candidate<'_>) -> bool + 'a;
-
-/// What a scan does beside noting the structure.
-#[derive(Clone, Copy)]
-pub struct Options<'a> {
-    /// Which records are kept; none when absent.
-    pub keep: Option<&'a Keep<'a>>,
-    /// Whether the SHA-256 of the file is computed.
-    pub hash: bool,
-}
-
-impl Default for Options<'_> {
-    fn default() -> Self {
-        Self { keep: None, hash: true }
-    }
-}
 
 /// Reads a drawing from its first byte to its last.
 ///
 /// # Errors
 /// When the file is no DXF drawing, is damaged, or cannot be read; the refusal names the line.
 pub fn scan(source: &Source, options: &Options<'_>) -> Result<Outline, Refusal> {
-    let mut machine = Machine::new(options.keep);
+    let mut machine = Machine { keep: options.keep, ..Machine::default() };
     let stream = tokenize(source, &mut machine, options.hash)?;
     machine.finish(stream)
 }
 
 /// Bytes of a record that are held before its layer is known; the layer is among the first tags of every entity.
 const BEFORE_LAYER: usize = 1 << 20;
-
-/// The section that is being read.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-enum Part {
-    /// None, or one that refers to nothing by handle (the classes, the preview).
-    Ignored,
-    /// One in which only references count.
-    Other,
-    /// Its name has not come yet.
-    Unnamed,
-    Header,
-    Tables,
-    Blocks,
-    Entities,
-    Objects,
-}
-
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-enum Collect {
-    No,
-    /// Until the layer is known.
-    Pending,
-    Yes,
-}
-
-/// The record that is being read.
-#[derive(Debug)]
-struct Current {
-    open: bool,
-    kind: Vec<u8>,
-    start: u64,
-    line: Option<u64>,
-    collect: Collect,
-    /// Its first handle.
-    handle: Option<u64>,
-    /// Type and layer, once the layer is known.
-    entry: Option<usize>,
-    paper: bool,
-    ours: bool,
-    /// It belongs to the POLYLINE or INSERT before it.
-    child: bool,
-    dimstyle: bool,
-    dictionary: bool,
-    depth: u32,
-    owner: bool,
-}
 
 /// Codes whose values matter in a record that is not kept.
 const WANTED: [bool; 1072] = {
@@ -114,41 +37,6 @@ const WANTED: [bool; 1072] = {
     }
     wanted
 };
-
-pub(super) struct Machine<'a> {
-    keep: Option<&'a Keep<'a>>,
-    utf8_mark: bool,
-    part: Part,
-    /// Every tag is wanted.
-    all: bool,
-    current: Current,
-    tags: Tags,
-    section_open: bool,
-    table_open: bool,
-    block: Option<usize>,
-    /// The last POLYLINE or INSERT was kept, or is ours, and its run may follow.
-    parent_kept: bool,
-    parent_ours: bool,
-    decoder: Option<Decoder>,
-    /// The entry of the dictionary that is being read has a name that matters.
-    dictionary_name: Option<&'static str>,
-    pub(super) sections: Vec<Section>,
-    pub(super) tables: Vec<Table>,
-    pub(super) blocks: Vec<Block>,
-    pub(super) header: Vec<HeaderVariable>,
-    pub(super) records: Vec<Record>,
-    pub(super) census: Census,
-    pub(super) handles: HandleState,
-    pub(super) doubts: Vec<Note>,
-    /// Byte ranges of our entities, joined where they touch.
-    pub(super) our_ranges: Vec<(u64, u64)>,
-    pub(super) our_entities: u64,
-    pub(super) our_highest: u64,
-    pub(super) model_owner: Option<String>,
-    /// Handle of the dictionary of plot styles, and for each dictionary with a default its handle and that of `Normal`.
-    pub(super) plot_styles: Option<u64>,
-    pub(super) normals: Vec<(u64, String)>,
-}
 
 impl Sink for Machine<'_> {
     fn begin(&mut self, _: Form, utf8_mark: bool) {
@@ -189,54 +77,7 @@ impl Sink for Machine<'_> {
     }
 }
 
-impl<'a> Machine<'a> {
-    fn new(keep: Option<&'a Keep<'a>>) -> Self {
-        Self {
-            keep,
-            utf8_mark: false,
-            part: Part::Ignored,
-            all: false,
-            current: Current {
-                open: false,
-                kind: Vec::new(),
-                start: 0,
-                line: None,
-                collect: Collect::No,
-                handle: None,
-                entry: None,
-                paper: false,
-                ours: false,
-                child: false,
-                dimstyle: false,
-                dictionary: false,
-                depth: 0,
-                owner: false,
-            },
-            tags: Tags::default(),
-            section_open: false,
-            table_open: false,
-            block: None,
-            parent_kept: false,
-            parent_ours: false,
-            decoder: None,
-            dictionary_name: None,
-            sections: Vec::new(),
-            tables: Vec::new(),
-            blocks: Vec::new(),
-            header: Vec::new(),
-            records: Vec::new(),
-            census: Census::default(),
-            handles: HandleState::default(),
-            doubts: Vec::new(),
-            our_ranges: Vec::new(),
-            our_entities: 0,
-            our_highest: 0,
-            model_owner: None,
-            plot_styles: None,
-            normals: Vec::new(),
-        }
-    }
-
+impl Machine<'_> {
     /// A group 0: the record before it ends, and whatever it names begins.
     fn open(&mut self, value: &[u8], place: &Place) -> Result<(), Refusal> {
         let kind = value.trim_ascii();
@@ -515,7 +356,7 @@ impl<'a> Machine<'a> {
     }
 
     /// The layer of the current entity is known: whether it is kept is decided here.
-    fn layer(&mut self, layer: &[u8], line: Option<u64>) {
+    pub(super) fn layer(&mut self, layer: &[u8], line: Option<u64>) {
         let index = match self.census.find(&self.current.kind, layer) {
             Some(index) => index,
             None => {
@@ -574,156 +415,6 @@ impl<'a> Machine<'a> {
         self.doubts.push(Note::Text { doubt, count: 1, first: name.to_owned(), line: at });
     }
 
-    /// The current record ends where the next group 0 begins.
-    fn close_record(&mut self, end: u64) -> Result<(), Refusal> {
-        if !std::mem::take(&mut self.current.open) {
-            return Ok(());
-        }
-        let is = |machine: &Self, word: &[u8]| machine.current.kind.eq_ignore_ascii_case(word);
-        match self.part {
-            Part::Tables if is(self, b"TABLE") => self.close_table_head(),
-            Part::Tables => self.close_table_record(end),
-            Part::Blocks if is(self, b"BLOCK") => self.close_block_head(),
-            Part::Blocks if is(self, b"ENDBLK") => {
-                self.block = None;
-                self.count(false);
-            }
-            Part::Blocks | Part::Entities => self.close_entity(end),
-            _ => self.count(false),
-        }
-        self.all = false;
-        Ok(())
-    }
-
-    fn count(&mut self, ours: bool) {
-        if let Some(section) = self.sections.last_mut() {
-            section.records += 1;
-            section.ours += u64::from(ours);
-        }
-    }
-
-    fn close_table_head(&mut self) {
-        let name = self.tags.word(2).unwrap_or_default().to_ascii_uppercase();
-        let handle = self.tags.word(5).map(str::to_owned);
-        if let Some(table) = self.tables.last_mut() {
-            table.name = name;
-            table.handle = handle;
-        }
-    }
-
-    fn close_table_record(&mut self, end: u64) {
-        self.count(self.current.ours);
-        if self.current.ours {
-            self.note_our_handle();
-        }
-        if !self.table_open {
-            return;
-        }
-        let record = (self.current.collect == Collect::Yes).then(|| {
-            let name = self.tags.first(2).map(|tag| tag.trimmed().to_vec());
-            let name = self.name(&name.unwrap_or_default(), self.current.line);
-            self.record(name, end)
-        });
-        if let Some(table) = self.tables.last_mut() {
-            table.count += 1;
-            table.records.extend(record);
-        }
-    }
-
-    fn close_block_head(&mut self) {
-        self.count(false);
-        let value = |code: i32| self.tags.first(code).map(|tag| tag.trimmed().to_vec());
-        let real = |code: i32| self.tags.first(code).and_then(|tag| tag.real()).unwrap_or(0.0);
-        let base = [real(10), real(20), real(30)];
-        let flags = self.tags.first(70).and_then(|tag| tag.int()).unwrap_or(0);
-        let (name, layer, path) = (value(2), value(8), value(1));
-        let handle = self.tags.word(5).map(str::to_owned);
-        let owner = self.tags.word(330).map(str::to_owned);
-        let line = self.current.line;
-        let block = Block {
-            name: self.name(&name.unwrap_or_default(), line),
-            handle,
-            owner,
-            flags,
-            base,
-            path: path.filter(|path| !path.is_empty()).map(|path| self.name(&path, line)),
-            layer: self.name(&layer.unwrap_or_else(|| b"0".to_vec()), line),
-            line,
-        };
-        self.block = Some(self.blocks.len());
-        self.blocks.push(block);
-    }
-
-    fn close_entity(&mut self, end: u64) {
-        if self.current.entry.is_none() {
-            self.layer(b"0", self.current.line);
-        }
-        self.count(self.current.ours);
-        if self.current.ours {
-            self.our_entities += u64::from(!self.current.child);
-            self.note_our_handle();
-            match self.our_ranges.last_mut() {
-                Some(last) if last.1 == self.current.start => last.1 = end,
-                _ => self.our_ranges.push((self.current.start, end)),
-            }
-        }
-        if std::mem::take(&mut self.current.owner) && self.current.paper {
-            self.model_owner = None;
-        }
-        let kept = self.current.collect == Collect::Yes;
-        if self.current.child {
-            if kept {
-                let record = self.entity(end);
-                if let Some(parent) = self.records.last_mut() {
-                    parent.children.push(record);
-                }
-            }
-            if self.current.kind.eq_ignore_ascii_case(b"SEQEND") {
-                self.parent_kept = false;
-                self.parent_ours = false;
-            }
-            return;
-        }
-        let in_block = self.part == Part::Blocks;
-        if let Some(index) = self.current.entry {
-            self.census.count(index, in_block, self.current.paper);
-        }
-        let parent = self.current.kind.eq_ignore_ascii_case(b"POLYLINE")
-            || self.current.kind.eq_ignore_ascii_case(b"INSERT");
-        self.parent_ours = parent && self.current.ours;
-        self.parent_kept = parent && kept;
-        if kept {
-            let record = self.entity(end);
-            self.records.push(record);
-        }
-    }
-
-    fn note_our_handle(&mut self) {
-        self.our_highest = self.our_highest.max(self.current.handle.unwrap_or(0));
-    }
-
-    fn entity(&mut self, end: u64) -> Record {
-        let layer =
-            self.current.entry.map_or_else(String::new, |index| self.census.entry(index).layer.clone());
-        self.record(layer, end)
-    }
-
-    fn record(&self, layer: String, end: u64) -> Record {
-        let own = if self.current.dimstyle { 105 } else { 5 };
-        Record {
-            kind: String::from_utf8_lossy(&self.current.kind).to_ascii_uppercase(),
-            layer,
-            handle: self.tags.word(own).map(str::to_owned),
-            line: self.current.line,
-            start: self.current.start,
-            end,
-            block: self.block,
-            ours: self.current.ours,
-            tags: self.tags.clone(),
-            children: Vec::new(),
-        }
-    }
-
     fn finish(mut self, stream: Stream) -> Result<Outline, Refusal> {
         if stream.eof.is_none() {
             self.close_record(stream.tags_end)?;
@@ -731,9 +422,5 @@ impl<'a> Machine<'a> {
             self.end_section(anchor, None);
         }
         finish::outline(self, stream)
-    }
-
-    pub(super) fn utf8_mark(&self) -> bool {
-        self.utf8_mark
     }
 }

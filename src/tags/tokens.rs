@@ -184,6 +184,11 @@ fn refuse_other_files(head: &[u8]) -> Result<(), Refusal> {
             "the file is a DWG drawing, not a DXF drawing",
             "Save or export the drawing as DXF from your CAD program",
         )
+    } else if head.starts_with(b"AutoCAD Binary DXF") {
+        (
+            "the first bytes of the binary drawing are damaged, as when it is sent as text",
+            "Fetch the file again in binary mode, or save it again as DXF",
+        )
     } else if head.starts_with(b"PK\x03\x04") || head.starts_with(b"\x1f\x8b") {
         ("the file is a compressed archive, not a DXF drawing", "Unpack it first")
     } else if head.starts_with(b"\xff\xfe") || head.starts_with(b"\xfe\xff") {
