@@ -1,8 +1,8 @@
 //! Reads an arch from a DXF drawing, computes the line of thrust of the drawn loads, and writes an annotated copy in
 //! which every other byte is as it was.
 
-pub mod drawing;
 pub mod cli;
+pub mod drawing;
 pub mod geometry;
 pub mod job;
 pub mod model;
