@@ -228,3 +228,15 @@ pub const NO_THRUST: f64 = 1e-13;
 
 /// Deviation, as a part of the span, of the polygon that stands for a curved line of thrust. A visible corner is larger.
 pub const LINE_POLYGON: f64 = 1e-5;
+
+/// Separate lines on the axis layers above which they are refused at once. A count. Larger: comparing all with all takes
+/// long; smaller: long viaducts are refused.
+pub const MOST_SPANS: usize = 500;
+
+/// Nearest loads that are looked at for one label. A count. Larger: thousands of labels on one spot take minutes; smaller:
+/// crowded but clear drawings are refused.
+pub const LABEL_CHOICES: usize = 256;
+
+/// Steps that pairing labels with loads may take (some seconds). A count. Larger: a hostile drawing keeps the program busy;
+/// smaller: crowded but clear drawings are refused.
+pub const PAIRING_STEPS: u64 = 100_000_000;

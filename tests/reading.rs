@@ -1,5 +1,8 @@
 //! Reading of whole drawings: every fixture by two readers, and outside drawings with an arch put into them.
 
+// Helpers of tests fail by panic, like the tests.
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
+
 use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
 use std::process::Command;

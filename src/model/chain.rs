@@ -1,6 +1,7 @@
 //! Curves to chains: pieces in any order and direction, joined end to end.
 
 use std::collections::BTreeSet;
+use std::ops::ControlFlow;
 
 use super::pieces::{self, Pieces};
 use super::{piers, turn};
@@ -147,21 +148,25 @@ fn close_gaps(chains: Vec<Vec<Link>>, size: f64, curves: &[Curve]) -> Result<Vec
     let points: Vec<Point> = ends.iter().map(|e| e.at).collect();
     let reach = size * tolerance::GAP;
     let mut partner: Vec<Option<usize>> = vec![None; ends.len()];
-    for (a, b) in near_pairs(&points, reach) {
+    let fault = near_pairs(&points, reach, |a, b| {
         if ends[a].chain == ends[b].chain {
-            if length_of(&chains[ends[a].chain]) > 2.0 * reach {
-                return Err(closed_loop(&source_at(&chains, &ends[a], curves)));
-            }
-            continue;
+            return if length_of(&chains[ends[a].chain]) > 2.0 * reach {
+                ControlFlow::Break(closed_loop(&source_at(&chains, &ends[a], curves)))
+            } else {
+                ControlFlow::Continue(())
+            };
         }
-        if partner[a].is_some() || partner[b].is_some() {
-            let third = partner[a].or(partner[b]).unwrap_or(a);
+        if let Some(third) = partner[a].or(partner[b]) {
             let meeting: Vec<usize> =
                 [a, b, third].iter().filter_map(|&e| curve_at(&chains, &ends[e])).collect();
-            return Err(branch(points[a], &meeting, curves));
+            return ControlFlow::Break(branch(points[a], &meeting, curves));
         }
         partner[a] = Some(b);
         partner[b] = Some(a);
+        ControlFlow::Continue(())
+    });
+    if let ControlFlow::Break(refusal) = fault {
+        return Err(refusal);
     }
     let mut used = vec![false; chains.len()];
     let mut joined = Vec::new();
@@ -201,35 +206,42 @@ fn close_gaps(chains: Vec<Vec<Link>>, size: f64, curves: &[Curve]) -> Result<Vec
 /// missing piece than two spans.
 fn doubtful_gaps(chains: &[Vec<Link>], curves: &[Curve]) -> Result<(), Refusal> {
     let ends = ends_of(chains);
+    if chains.len() > tolerance::MOST_SPANS {
+        return Err(source_at(chains, &ends[0], curves).refuse(
+            "axis-pieces",
+            format!("the axis layers hold {} separate lines: more than any bridge has spans", chains.len()),
+            "Keep only the axis on the axis layer, or name another layer with `[layers] axis`",
+        ));
+    }
     let points: Vec<Point> = ends.iter().map(|e| e.at).collect();
     let lengths: Vec<f64> = chains.iter().map(|c| length_of(c)).collect();
     let longest = lengths.iter().copied().fold(0.0, f64::max);
-    for (a, b) in near_pairs(&points, longest * tolerance::DOUBTFUL_GAP) {
+    let fault = near_pairs(&points, longest * tolerance::DOUBTFUL_GAP, |a, b| {
         let (a, b) = (&ends[a], &ends[b]);
-        let gap = b.at - a.at;
+        let gap = (b.at - a.at).hypot();
         let limit = lengths[a.chain].max(lengths[b.chain]) * tolerance::DOUBTFUL_GAP;
-        if a.chain == b.chain || gap.hypot() > limit {
-            continue;
+        let straight_on = turn(a.outward, -b.outward).abs() < tolerance::DOUBTFUL_TURN;
+        if a.chain == b.chain || gap > limit || !straight_on {
+            return ControlFlow::Continue(());
         }
-        if turn(a.outward, -b.outward).abs() < tolerance::DOUBTFUL_TURN {
-            let other = source_at(chains, b, curves);
-            return Err(source_at(chains, a, curves).refuse(
-                "axis-gap",
-                format!(
-                    "the axis has a gap of {:.6} drawing units between ({:.6}, {:.6}) and ({:.6}, {:.6}), before {}; \
-                     too wide to be closed without asking",
-                    gap.hypot(),
-                    a.at.x,
-                    a.at.y,
-                    b.at.x,
-                    b.at.y,
-                    other.named()
-                ),
-                "Draw the missing piece, or let the two ends meet",
-            ));
-        }
+        ControlFlow::Break(source_at(chains, a, curves).refuse(
+            "axis-gap",
+            format!(
+                "the axis has a gap of {gap:.6} drawing units between ({:.6}, {:.6}) and ({:.6}, {:.6}), before {}; too \
+                 wide to be closed without asking",
+                a.at.x,
+                a.at.y,
+                b.at.x,
+                b.at.y,
+                source_at(chains, b, curves).named()
+            ),
+            "Draw the missing piece, or let the two ends meet",
+        ))
+    });
+    match fault {
+        ControlFlow::Break(refusal) => Err(refusal),
+        ControlFlow::Continue(()) => Ok(()),
     }
-    Ok(())
 }
 
 fn reversed(links: &[Link]) -> Vec<Link> {

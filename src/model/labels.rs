@@ -1,7 +1,7 @@
 //! Which text says how large which load is.
 
 use super::figures::{self, Figure, NoFigure};
-use super::matching::{self, Row};
+use super::matching::{self, Crowded, Row};
 use super::note::Note;
 use crate::drawing::{PointLike, Text};
 use crate::geometry::{Point, Vec2};
@@ -25,13 +25,16 @@ pub struct Label {
 
 /// Reads all texts, and pairs those that give a figure with the points for which `open` holds. Texts that are no labels
 /// are told.
+///
+/// # Errors
+/// [`Crowded`] when they stand too close to be told apart.
 pub fn pair(
     texts: &[Text],
     points: &[PointLike],
     open: &[bool],
     decimal: Decimal,
     notes: &mut Vec<Note>,
-) -> Vec<Label> {
+) -> Result<Vec<Label>, Crowded> {
     let mut labels = Vec::new();
     for (index, text) in texts.iter().enumerate() {
         let figure = figures::read(&text.text, decimal);
@@ -58,7 +61,7 @@ pub fn pair(
         .collect();
     let pairing = matching::pair(&rows, columns.len(), |row, count| {
         nearest(&texts[labels[row].text], &by_x, rows[row].reach, count)
-    });
+    })?;
     for (label, column) in labels.iter_mut().zip(&pairing.column_of) {
         label.load = column.map(|c| columns[c]);
         if label.load.is_none() {
@@ -69,7 +72,7 @@ pub fn pair(
     for alternative in &pairing.alternatives {
         doubt(alternative, &labels, &columns, texts, points, notes);
     }
-    labels
+    Ok(labels)
 }
 
 /// Tells an alternative pairing that is nearly as good and would give some place another load.

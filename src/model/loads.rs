@@ -88,7 +88,7 @@ pub fn loads(
         found.push(from_attributes(point, settings.decimal, notes)?);
     }
     let open: Vec<bool> = found.iter().map(Option::is_none).collect();
-    let labels = labels::pair(texts, points, &open, settings.decimal, notes);
+    let labels = labels::pair(texts, points, &open, settings.decimal, notes).map_err(|_| crowded(texts))?;
     for label in &labels {
         let text = &texts[label.text];
         match label.load {
@@ -289,6 +289,15 @@ fn none_out_of_reach(labels: &[Label], texts: &[Text]) -> Result<(), Refusal> {
         ),
         "Move the labels to their loads, or say what a load without a figure is with `[loads] unlabelled`",
     ))
+}
+
+fn crowded(texts: &[Text]) -> Refusal {
+    let source = texts.first().map(|t| t.source.clone()).unwrap_or_default();
+    source.refuse(
+        "labels-crowded",
+        "hundreds of labels and loads stand within reach of one another: which belongs to which cannot be told",
+        "Write the labels smaller and beside their loads, or give the figures as attributes of blocks",
+    )
 }
 
 fn some_without(bare: &[usize], figures: usize, points: &[PointLike]) -> Refusal {

@@ -1,6 +1,6 @@
 //! The pieces of all axis curves, tidied: none of no length, none twice, ends that nearly meet made to meet.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use crate::drawing::{Curve, Source, clusters};
 use crate::geometry::{Point, Segment};
@@ -74,49 +74,30 @@ fn extent<'a>(segments: impl Iterator<Item = &'a Segment>) -> f64 {
     if low.x <= high.x { (high - low).hypot() } else { 0.0 }
 }
 
-/// Ends in an order that does not depend on the direction drawn.
-fn ends(segment: &Segment) -> [Point; 2] {
-    let (a, b) = (segment.start(), segment.end());
-    if (a.x, a.y) <= (b.x, b.y) { [a, b] } else { [b, a] }
-}
-
 /// Takes out pieces that cover another one, and gives the curves of each such pair, every pair of curves once.
 fn drop_doubles(kept: &mut Vec<(Segment, usize)>, reach: f64) -> Vec<(usize, usize)> {
-    // Middles are the same whichever way a piece is drawn, which the order of nearly equal ends is not.
-    let middle = |s: &Segment| s.point_at(s.length() / 2.0);
-    let mut order: Vec<usize> = (0..kept.len()).collect();
-    order.sort_by(|&a, &b| middle(&kept[a].0).x.total_cmp(&middle(&kept[b].0).x).then(a.cmp(&b)));
-    let mut dropped = vec![false; kept.len()];
+    // Same ends in either order, and the same middle: an arc and its chord are two pieces.
+    let ends: Vec<Point> = kept.iter().flat_map(|(s, _)| [s.start(), s.end()]).collect();
+    let middles: Vec<Point> = kept.iter().map(|(s, _)| s.point_at(s.length() / 2.0)).collect();
+    let (ends, middles) = (clusters(&ends, reach), clusters(&middles, reach));
+    let mut first: BTreeMap<[usize; 3], usize> = BTreeMap::new();
     let mut doubles = BTreeSet::new();
-    for (i, &a) in order.iter().enumerate() {
-        if dropped[a] {
-            continue;
-        }
-        let (mid_a, ends_a) = (middle(&kept[a].0), ends(&kept[a].0));
-        for &b in &order[i + 1..] {
-            let mid_b = middle(&kept[b].0);
-            if mid_b.x - mid_a.x > reach {
-                break;
+    let mut place = 0;
+    kept.retain(|&(_, curve)| {
+        let (a, b) = (ends[2 * place], ends[2 * place + 1]);
+        let key = [a.min(b), a.max(b), middles[place]];
+        place += 1;
+        match first.get(&key) {
+            Some(&kept) => {
+                doubles.insert((curve, kept));
+                false
             }
-            if dropped[b] || (mid_b - mid_a).hypot() > reach {
-                continue;
-            }
-            let ends_b = ends(&kept[b].0);
-            let near = |p: Point, q: Point| (p - q).hypot() <= reach;
-            if (near(ends_a[0], ends_b[0]) && near(ends_a[1], ends_b[1]))
-                || (near(ends_a[0], ends_b[1]) && near(ends_a[1], ends_b[0]))
-            {
-                let (first, second) = (a.min(b), a.max(b));
-                dropped[second] = true;
-                doubles.insert((kept[second].1, kept[first].1));
-                if second == a {
-                    break;
-                }
+            None => {
+                first.insert(key, curve);
+                true
             }
         }
-    }
-    let mut flags = dropped.into_iter();
-    kept.retain(|_| !flags.next().unwrap_or(false));
+    });
     doubles.into_iter().collect()
 }
 

@@ -161,6 +161,14 @@ fn what_is_no_axis_is_refused() {
 }
 
 #[test]
+fn a_layer_full_of_lines_is_no_axis() {
+    let lines = (0..600)
+        .map(|i| curve(i, vec![line((i as f64 * 10.0, 0.0), (i as f64 * 10.0 + 2.0, 1.0))]))
+        .collect();
+    assert_eq!(refused(lines).check, "axis-pieces");
+}
+
+#[test]
 fn drawn_twice_counts_once() {
     let p = parabola(0.0);
     let lines: Vec<Curve> = p.windows(2).enumerate().map(|(i, w)| curve(i, vec![line(w[1], w[0])])).collect();
@@ -433,5 +441,60 @@ proptest! {
             let model = built(&drawing(axis, vec![], vec![]));
             prop_assert!(same(&model.spans[0].axis, &whole.spans[0].axis, 1e-9));
         }
+    }
+}
+
+/// Layouts of loads and labels that defeat every short cut: all on one spot, on a grid with far labels, in one column.
+#[test]
+fn odd_layouts_end_soon() {
+    let count = 3000;
+    type Place = fn(usize) -> (f64, f64);
+    let layouts: [(&str, Place, Place); 4] = [
+        ("one spot", |_| (20.0, 9.0), |_| (20.0, 9.0)),
+        ("far cluster", |i| (20.0 + 1e-4 * i as f64, 9.0), |i| (20.0, 9.0 + 1e-4 * i as f64)),
+        ("column", |i| (20.0, 9.0 + 0.01 * i as f64), |i| (20.1, 9.0 + 0.01 * i as f64)),
+        (
+            "scatter",
+            |i| ((i * 7919 % 4001) as f64 * 0.01, (i * 104_729 % 997) as f64 * 0.01),
+            |i| ((i * 6007 % 4001) as f64 * 0.01, (i * 75_029 % 997) as f64 * 0.01),
+        ),
+    ];
+    for (name, load, label) in layouts {
+        let points = (0..count).map(|i| point(i, load(i).0, load(i).1)).collect();
+        let texts = (0..count).map(|i| text(i, label(i).0, label(i).1, &format!("{i} N"))).collect();
+        let d = drawing(vec![curve(1, polyline(&parabola(0.0)))], points, texts);
+        let begin = std::time::Instant::now();
+        let model = build(&d, &LoadSettings { unlabelled: Some(1.0), ..Default::default() });
+        println!("{name}: {:?}, {} notes", begin.elapsed(), model.map_or(0, |m| m.notes.len()));
+        assert!(begin.elapsed().as_secs() < 30, "{name}: {:?}", begin.elapsed());
+    }
+}
+
+#[test]
+fn many_pieces_end_soon() {
+    let count = 100_000;
+    let arch = |i: usize| {
+        let x = 40.0 * i as f64 / count as f64;
+        (x, 0.02 * x * (40.0 - x))
+    };
+    let axis: Vec<Curve> = (0..count).map(|i| curve(i, vec![line(arch(i), arch(i + 1))])).collect();
+    let begin = std::time::Instant::now();
+    let model = build(&drawing(axis, vec![], vec![]), &LoadSettings::default());
+    println!("{count} pieces in {:?}", begin.elapsed());
+    assert_eq!(model.map(|m| m.spans.len()), Ok(1));
+    // In one column, from one spot, and scattered.
+    type Draw = fn(f64) -> Segment;
+    let hostile: [(Draw, &str); 3] = [
+        (|i| line((1.0, i), (1.0, i + 0.5)), "axis-branch"),
+        (|i| line((0.0, 0.0), (1e5, i)), "axis-branch"),
+        (|i| line((i * 2.0, i * i % 7001.0), (i * 2.0 + 1.0, i * i % 7001.0)), "axis-branch"),
+    ];
+    for (draw, check) in hostile {
+        let axis = (0..count).map(|i| curve(i, vec![draw(i as f64)])).collect();
+        let begin = std::time::Instant::now();
+        let refusal = refused(axis);
+        println!("{} in {:?}", refusal.check, begin.elapsed());
+        assert!(begin.elapsed().as_secs() < 20);
+        assert_eq!(refusal.check, check);
     }
 }
