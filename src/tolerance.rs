@@ -15,7 +15,7 @@ pub const SAME_ANGLE: f64 = 1e-12;
 /// Places on the axis closer than this part of its length are one joint, and a line this close to an end meets it. No
 /// unit. Larger: loads near a springing are drawn onto it; smaller: a load over a springing of a drawing in national
 /// grid coordinates (1e-10 m of rounding on a few metres) counts as off the span.
-pub const SAME_JOINT: f64 = 1e-9;
+pub const ONE_JOINT: f64 = 1e-9;
 
 /// Distance from a smooth joint, as a part of the radius, within which two pieces of a path may seem to cross. The
 /// root of the rounding error, with a margin. Larger: true crossings hide there; smaller: smooth joints count as crossings.
@@ -58,7 +58,7 @@ pub const UNBOUNDED: f64 = 1e6;
 
 /// Multiplier, relative to the largest, below which a joint does not hold the optimum in place. Larger: joints that
 /// hold it are let go in the tie-break; smaller: rounding errors hold it.
-pub const MULTIPLIER: f64 = 1e-9;
+pub const MULTIPLIER: f64 = 1e-7;
 
 /// Part of a unit row that must be independent of the others to count in the rank. Larger: an optimum that is unique
 /// counts as free, which the tie-break then leaves in place; smaller: neighbouring cuts at one peak count twice.
@@ -66,7 +66,7 @@ pub const RANK: f64 = 1e-5;
 
 /// Relative leave that the tie-break has over the optimum it must keep. Larger: the optimum is given away; smaller:
 /// rounding leaves no room.
-pub const TIE_LEAVE: f64 = 1e-11;
+pub const TIE_LEAVE: f64 = 1e-10;
 
 /// Part of the resultant below which its horizontal part vanishes, so that a height above the axis means nothing.
 pub const VERTICAL_THRUST: f64 = 1e-12;
@@ -76,3 +76,7 @@ pub const NO_THRUST: f64 = 1e-13;
 
 /// Deviation, as a part of the span, of the polygon that stands for a curved line of thrust. A visible corner is larger.
 pub const LINE_POLYGON: f64 = 1e-5;
+
+/// Least thrust of the closest line in any joint, as a part of all loads. Larger: it keeps lines from parts of the arch
+/// that hardly carry; smaller: in a part that carries nothing the eccentricity is rounding over rounding.
+pub const LEAST_THRUST: f64 = 1e-4;

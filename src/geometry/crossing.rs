@@ -137,7 +137,7 @@ impl Path {
 
     /// A point where the path crosses, touches or retraces itself, if there is one.
     pub fn self_crossing(&self, boxes: &Boxes) -> Option<Point> {
-        let slack = self.length() * tolerance::SAME_JOINT;
+        let slack = self.length() * tolerance::ONE_JOINT;
         let mut stack = vec![(1_usize, 1_usize)];
         while let Some((a, b)) = stack.pop() {
             if !boxes.nodes[a].meets(boxes.nodes[b]) {

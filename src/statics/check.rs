@@ -106,9 +106,8 @@ fn moment_summed(problem: &Problem, span: &Span, reaction: &Reaction, s: f64, pi
 /// edge over the point is the ray of its joint. Not at a corner, where two rays meet.
 fn height(span: &Span, vertices: &[Point], at: Point) -> Option<f64> {
     let x = at.x;
-    let near = |e: &super::span::Entered| {
-        e.force.x.abs() > 0.0 || (e.at.x - x).abs() <= crate::tolerance::SAME_JOINT
-    };
+    let near =
+        |e: &super::span::Entered| e.force.x.abs() > 0.0 || (e.at.x - x).abs() <= crate::tolerance::ONE_JOINT;
     if span.weight > 0.0 || span.entered.iter().any(near) {
         return None;
     }

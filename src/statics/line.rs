@@ -109,13 +109,14 @@ impl Sheet<'_> {
             joints.push(span.joint_at(e.foot, false));
         }
         joints.extend((1..EVEN).map(|k| span.joint_at(f64::from(k) / f64::from(EVEN), true)));
-        joints.extend(worst.map(|p| p.joint));
+        // The place alone: the joint may be one without depth.
+        joints.extend(worst.map(|p| span.pieces[p.joint.piece].joint(p.joint.s, p.joint.piece)));
         joints.sort_by(|a, b| a.s.total_cmp(&b.s).then(a.piece.cmp(&b.piece)));
         // A joint at the end of one piece and at the start of the next is one, unless a load or a kink is between.
         joints.dedup_by(|b, a| {
-            b.s - a.s <= tolerance::SAME_JOINT
+            b.s - a.s <= tolerance::ONE_JOINT
                 && (b.piece == a.piece
-                    || (b.loads == a.loads && (b.tangent - a.tangent).hypot() <= tolerance::SAME_JOINT))
+                    || (b.loads == a.loads && (b.tangent - a.tangent).hypot() <= tolerance::ONE_JOINT))
         });
         joints.iter().map(|j| self.station(j, r)).collect()
     }

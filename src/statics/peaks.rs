@@ -72,14 +72,8 @@ impl<'a> Sampling<'a> {
 
     fn peak(&self, joint: &Joint, r: &Unknowns) -> Peak {
         let (moment, thrust) = (joint.moment(r), joint.thrust(r) * self.sense);
-        let value = if thrust > tolerance::NO_THRUST {
-            moment.abs() / (joint.depth * thrust)
-        } else if moment.abs() <= tolerance::NO_THRUST && thrust > -tolerance::NO_THRUST {
-            // Neither thrust nor moment: nothing passes through this joint.
-            0.0
-        } else {
-            f64::INFINITY
-        };
+        let value =
+            if thrust > tolerance::NO_THRUST { moment.abs() / (joint.depth * thrust) } else { f64::INFINITY };
         Peak { joint: *joint, value, thrust }
     }
 
@@ -116,6 +110,10 @@ impl<'a> Sampling<'a> {
                 continue;
             }
             let slope = self.slope(piece, joint, r);
+            if slope.abs() <= 0.0 {
+                // The sample is the peak itself.
+                found.push(self.peak(joint, r));
+            }
             if let Some((from, earlier)) = before
                 && from.piece == joint.piece
                 && earlier * slope < 0.0
@@ -135,6 +133,7 @@ impl<'a> Sampling<'a> {
             }
             before = Some((joint, slope));
         }
+        found.retain(|p| p.value >= floor);
         found.sort_by(|a, b| {
             b.value
                 .total_cmp(&a.value)
@@ -161,10 +160,12 @@ impl<'a> Sampling<'a> {
         let ((mut a, mut fa), (mut b, mut fb)) = (from, to);
         let mut joint = piece.joint(f64::midpoint(a, b), index);
         let mut moved = 0.0;
+        let mut last = f64::INFINITY;
         for _ in 0..80 {
             let c = (a * fb - b * fa) / (fb - fa);
             let c = if c > a && c < b { c } else { f64::midpoint(a, b) };
-            let step = (c - joint.s).abs();
+            let step = (c - last).abs();
+            last = c;
             joint = piece.joint(c, index);
             let fc = self.slope(piece, &joint, r);
             if step <= tolerance::PEAK_PLACE || fc.abs() <= f64::MIN_POSITIVE {

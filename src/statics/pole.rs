@@ -78,7 +78,7 @@ fn chords(span: &Span) -> Option<Vec<Ray>> {
     let mut feet = 0;
     let mut last = f64::NEG_INFINITY;
     for e in span.entered.iter().filter(|e| e.force.hypot() > 0.0) {
-        if e.foot - last > tolerance::SAME_JOINT {
+        if e.foot - last > tolerance::ONE_JOINT {
             feet += 1;
             let at = span.joint_at(e.foot, true).at;
             push(&mut rays, corner, from, at);
@@ -93,7 +93,7 @@ fn chords(span: &Span) -> Option<Vec<Ray>> {
 
 fn push(rays: &mut Vec<Ray>, corner: Vec2, from: Point, to: Point) {
     let chord = to - from;
-    if chord.hypot() > tolerance::SAME_JOINT {
+    if chord.hypot() > tolerance::ONE_JOINT {
         rays.push((corner, chord.normalize(), chord.hypot()));
     }
 }

@@ -71,7 +71,7 @@ pub(super) fn through_points(
 ) -> Result<[Point; 3], Unsolved> {
     if let Some(points) = problem.through {
         let points = points.map(|p| span.local(p));
-        let near = |h: &Point| points.iter().any(|p| (*p - *h).hypot() <= crate::tolerance::SAME_JOINT);
+        let near = |h: &Point| points.iter().any(|p| (*p - *h).hypot() <= crate::tolerance::ONE_JOINT);
         if !choice.hinges.iter().all(near) {
             return Err(Unsolved::Hinges(
                 "the three points stated for the line leave out a hinge, but every line passes through all hinges"

@@ -258,7 +258,7 @@ impl Span {
         let total: f64 = entered.iter().map(|e| e.force.hypot()).sum();
         let load = total + problem.weight_on_axis * length;
         let inside = |e: &&Entered| {
-            e.force.hypot() > 0.0 && e.foot > tolerance::SAME_JOINT && e.foot < 1.0 - tolerance::SAME_JOINT
+            e.force.hypot() > 0.0 && e.foot > tolerance::ONE_JOINT && e.foot < 1.0 - tolerance::ONE_JOINT
         };
         if problem.weight_on_axis <= 0.0 && entered.iter().find(inside).is_none() {
             return Err(Unsolved::NoLoad);
@@ -280,6 +280,14 @@ impl Span {
             e.force /= load;
         }
         span.cut(&depth_table(problem.depth.as_ref(), length, crown.0));
+        // Measured again on the pieces, which keep the digits of hardly curved arcs.
+        let (top, end) = (span.joint_at(crown.0, true).at, span.last().at);
+        if span.crown.1.abs() > 0.0 {
+            span.crown.1 = top.y - end.y / end.x * top.x;
+        }
+        if span.crown.1.abs() <= flat {
+            return Err(Unsolved::NoRise);
+        }
         Ok(span)
     }
 
@@ -518,7 +526,7 @@ fn place(
         let at = ((force.at - origin) / length).to_point();
         // A load whose factor is zero still has a place: below or above its point.
         let direction = if force.force.hypot() > 0.0 { force.force } else { Vec2::new(0.0, -1.0) };
-        let crossings = path.crossings_of_line(boxes, at, direction, tolerance::SAME_JOINT);
+        let crossings = path.crossings_of_line(boxes, at, direction, tolerance::ONE_JOINT);
         let first = crossings.iter().min_by(|a, b| {
             // Of two at one distance the one ahead of the force.
             a.along.abs().total_cmp(&b.along.abs()).then(b.along.total_cmp(&a.along))
@@ -529,7 +537,7 @@ fn place(
         };
         let mut foot = first.s;
         for end in [0.0, 1.0] {
-            if (foot - end).abs() <= tolerance::SAME_JOINT {
+            if (foot - end).abs() <= tolerance::ONE_JOINT {
                 foot = end;
             }
         }
