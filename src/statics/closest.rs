@@ -179,23 +179,30 @@ impl<'a> Search<'a> {
                 let piece = &self.span.pieces[j.piece];
                 j.s > piece.s0 && j.s < piece.s1
             };
+            let (inside, ends): (Vec<_>, Vec<_>) =
+                peaks.iter().take(MOST_CONTACTS).map(|p| p.joint).partition(|j| inner(j));
             let mut moved = 0.0_f64;
-            for peak in peaks.iter().take(MOST_CONTACTS).filter(|p| inner(&p.joint)) {
-                let off = |c: &Cut| (c.joint.s - peak.joint.s).abs();
-                let near =
-                    |c: &&Cut| c.joint.piece == peak.joint.piece && inner(&c.joint) && off(c) < NEIGHBOUR;
-                let nearest = known.iter().filter(near).map(off).fold(f64::INFINITY, f64::min);
+            for joint in &inside {
+                let near = known.iter().filter(|c| c.joint.piece == joint.piece && inner(&c.joint));
+                let nearest = near.map(|c| (c.joint.s - joint.s).abs()).fold(f64::INFINITY, f64::min);
                 moved = moved.max(nearest.min(NEIGHBOUR));
-                self.cuts.retain(|c| !near(&c) || !known.iter().any(|k| k.joint.s == c.joint.s));
-                self.add(peak.joint);
             }
             if moved <= tolerance::PEAK_PLACE {
-                self.cuts = known;
                 break;
             }
-            for peak in peaks.iter().filter(|p| !inner(&p.joint)).take(MOST_CONTACTS) {
-                if !self.cuts.iter().any(|c| c.joint.piece == peak.joint.piece && c.joint.s == peak.joint.s) {
-                    self.add(peak.joint);
+            self.cuts.retain(|c| {
+                let near = |j: &Joint| c.joint.piece == j.piece && (c.joint.s - j.s).abs() < NEIGHBOUR;
+                !(inner(&c.joint) && inside.iter().any(near))
+            });
+            for joint in inside {
+                self.add(joint);
+            }
+            for joint in ends {
+                let same = |c: &Cut| {
+                    c.joint.piece == joint.piece && (c.joint.s - joint.s).abs() <= tolerance::PEAK_PLACE
+                };
+                if !self.cuts.iter().any(same) {
+                    self.add(joint);
                 }
             }
             let next = self.least(&step.r, before);
