@@ -59,8 +59,8 @@ fn span(kind: usize, n: &mut Numbers) -> Problem {
         .collect();
     let mut p = problem(axis, forces);
     p.govern = Some(LineKind::Closest);
-    p.weight_on_axis = if kind % 3 == 0 { n.between(1.0, 15.0) } else { 0.0 };
-    p.depth = (kind % 2 == 0).then(|| Depth::Constant(n.between(0.3, 1.0)));
+    p.weight_on_axis = if kind.is_multiple_of(3) { n.between(1.0, 15.0) } else { 0.0 };
+    p.depth = kind.is_multiple_of(2).then(|| Depth::Constant(n.between(0.3, 1.0)));
     p
 }
 

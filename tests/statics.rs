@@ -57,6 +57,7 @@ prop_compose! {
             (0.3..1.0_f64, 0.3..1.0_f64).prop_map(|(s, c)| Some(Depth::Linear { springing: s, crown: c })),
         ],
         tilt in -0.1..0.1_f64,
+        heavy in any::<bool>(),
     ) -> Problem {
         let span = 20.0;
         let axis = match shape {
@@ -77,7 +78,11 @@ prop_compose! {
             })
             .collect();
         let mut p = problem(axis, forces);
-        p.weight_on_axis = weight;
+        // The same weight on the axis, or as that of a ring with its own centroids.
+        match depth {
+            Some(_) if heavy => p.ring_weight = weight,
+            _ => p.weight_on_axis = weight,
+        }
         p.depth = depth;
         closest(p)
     }
@@ -156,7 +161,7 @@ proptest! {
                 l.depth_use.map_or_else(|| l.offset.unwrap().max_abs, |u| u.ratio)
             };
             prop_assert!((value(best) - proof.primal).abs() <= 1e-9 * proof.primal.max(1.0));
-            if p.weight_on_axis == 0.0 {
+            if p.weight_on_axis + p.ring_weight == 0.0 {
                 let worst = summed_anew(&p, &a, best.reaction.unwrap());
                 prop_assert!(worst <= proof.primal + 1e-9 * proof.primal.max(1.0), "{worst} {}", proof.primal);
                 prop_assert!(worst >= proof.primal * 0.99 - 1e-9, "{worst} {}", proof.primal);
@@ -201,9 +206,11 @@ proptest! {
         same(&p, &mapped(&p, p.axis.shifted_scaled(by, 1.0), |p| p + by, |f| f), 1.0, 1.0);
         let mut heavy = mapped(&p, p.axis.clone(), |p| p, |f| f * k);
         heavy.weight_on_axis *= k;
+        heavy.ring_weight *= k;
         same(&p, &heavy, k, 1.0);
         let mut large = mapped(&p, p.axis.shifted_scaled(Vec2::ZERO, k), |p| (p.to_vec2() * k).to_point(), |f| f);
         large.weight_on_axis /= k;
+        large.ring_weight /= k * k;
         large.depth = match &p.depth {
             Some(Depth::Constant(d)) => Some(Depth::Constant(d * k)),
             Some(Depth::Linear { springing, crown }) => {
@@ -225,12 +232,14 @@ proptest! {
 
     #[test]
     fn lines_through_three_hinges_add_up(p in arches(), q in arches()) {
-        let mut all = [p.clone(), p.clone(), p];
+        let mut all = [p.clone(), p.clone(), p.clone()];
         all[1].forces.clone_from(&q.forces);
         all[1].weight_on_axis = q.weight_on_axis;
+        all[1].ring_weight = if p.depth.is_some() { q.ring_weight } else { 0.0 };
         let second = all[1].forces.clone();
         all[2].forces.extend(second);
         all[2].weight_on_axis += q.weight_on_axis;
+        all[2].ring_weight += all[1].ring_weight;
         let reactions = all.map(|mut p| {
             p.govern = None;
             p.support = Some(Support::ThreeHinged);

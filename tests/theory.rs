@@ -7,7 +7,7 @@ use std::f64::consts::FRAC_PI_2;
 
 use support::{circle, close, down, height, parabola, polyline, problem, push, solve, station};
 use thrustmark::geometry::Point;
-use thrustmark::statics::{Depth, Line, Problem, Rule, SpanKind, Support};
+use thrustmark::statics::{Analysis, Depth, Line, Problem, Rule, SpanKind, Support};
 
 #[test]
 fn f01_odd_number_of_equal_loads() {
@@ -250,4 +250,33 @@ fn string_under_weight_along_the_axis() {
         let v = height(&line, s.at.x) - s.at.y;
         assert!((v - s.moment / push(&line)).abs() < 1e-5 * 17.0);
     }
+}
+
+/// Half the ratio of the closest line of a ring under its true weight, which is 1/4 where the ring is just thick enough.
+fn milankovitch(half_opening: f64, thickness: f64) -> (Analysis, Line) {
+    let mut p = problem(circle(10.0, half_opening), Vec::new());
+    p.ring_weight = 3.0;
+    p.depth = Some(Depth::Constant(10.0 * thickness));
+    p.govern = None;
+    solve(&p)
+}
+
+#[test]
+fn m03_and_m08_true_centroids() {
+    // M03 (published): same [semicircle, least t/R] with true wedge centroids (Milankovitch 1907), radial joints. Source:
+    // N. Makris, H. Alexakis, 'The effect of stereotomy on the shape of the thrust-line and the minimum thickness of
+    // semicircular masonry arches', Arch. Appl. Mech. 83 (2013) (journal from memory), abstract. M03b (derived): to 12
+    // digits, with hinge and push. Source: closed form, derived. M08 (derived): rows Milankovitch.
+    for (degrees, thickness) in [
+        (45.0_f64, 0.00749612344837),
+        (60.0, 0.0228489099394),
+        (90.0, 0.107478038107),
+        (120.0, 0.327606507711),
+    ] {
+        let (_, line) = milankovitch(degrees.to_radians(), thickness);
+        close(line.depth_use.unwrap().ratio, 0.5);
+    }
+    let (a, line) = milankovitch(FRAC_PI_2, 0.107478038107);
+    close(push(&line) / (3.0 * 1.07478038107 * 10.0), 0.620881206172);
+    close(a.total.y, -3.0 * 1.07478038107 * 10.0 * std::f64::consts::PI);
 }

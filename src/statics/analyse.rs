@@ -105,7 +105,7 @@ impl Work<'_> {
     fn closest(&self) -> Result<(Line, Option<Unknowns>), Unsolved> {
         let kind = LineKind::Closest;
         let rows: Vec<_> = self.choice.hinges.iter().map(|&p| self.span.hinge_row(p)).collect();
-        let Some(space) = Subspace::new(self.span, &rows) else {
+        let Some(space) = Subspace::lines(self.span, &rows) else {
             return Err(Unsolved::Hinges(
                 "the drawn hinges lie on one straight line or in one place: no single line of thrust passes through them"
                     .into(),

@@ -11,7 +11,7 @@ use super::Proof;
 use super::peaks::{Peak, Sampling};
 use super::quadratic::{Bound, Quadratic};
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
-use super::span::{Joint, Span, Unknowns};
+use super::span::{Affine, Joint, Span, Unknowns};
 use super::subspace::Subspace;
 use crate::tolerance;
 
@@ -47,9 +47,9 @@ pub(super) enum Closest {
 #[derive(Debug, Clone, Copy)]
 struct Cut {
     joint: Joint,
-    moment: ([f64; 3], f64),
+    moment: Affine,
     /// Depth times thrust in its own sense.
-    room: ([f64; 3], f64),
+    room: Affine,
 }
 
 /// One problem on its way.
@@ -472,6 +472,6 @@ impl<'a> Search<'a> {
     }
 }
 
-fn value(row: &([f64; 3], f64), y: &[f64; 3]) -> f64 {
+fn value(row: &Affine, y: &[f64; 3]) -> f64 {
     row.0[0] * y[0] + row.0[1] * y[1] + row.0[2] * y[2] + row.1
 }

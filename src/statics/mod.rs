@@ -84,6 +84,13 @@ pub struct Problem {
     pub forces: Vec<Force>,
     /// Uniform downward weight per metre of axis, acting on the axis, kN/m; 0 for a weightless rib.
     pub weight_on_axis: f64,
+    /// Unit weight times width of the ring, kN per square metre of elevation: the weight of its true pieces between
+    /// normals, at their own centroids. Needs a depth; 0 for a weightless ring.
+    pub ring_weight: f64,
+    /// Indices of the forces that a load factor multiplies.
+    pub varying: Vec<usize>,
+    /// Whether a load factor multiplies the weight of the rib too.
+    pub weight_varies: bool,
     /// Depth of the rib or ring; `None` where only the axis is known.
     pub depth: Option<Depth>,
     /// Whether the section can take tension.
@@ -98,6 +105,27 @@ pub struct Problem {
     pub govern: Option<LineKind>,
     /// Lines wanted beside the governing one.
     pub draw: Vec<LineKind>,
+}
+
+impl Problem {
+    /// A weightless axis without loads, depth, support or wishes: to be filled in.
+    pub fn new(axis: Path) -> Self {
+        Self {
+            axis,
+            forces: Vec::new(),
+            weight_on_axis: 0.0,
+            ring_weight: 0.0,
+            varying: Vec::new(),
+            weight_varies: false,
+            depth: None,
+            tension: false,
+            support: None,
+            hinges: Vec::new(),
+            through: None,
+            govern: None,
+            draw: Vec::new(),
+        }
+    }
 }
 
 /// Whether the span pushes or pulls.

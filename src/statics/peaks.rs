@@ -148,10 +148,11 @@ impl<'a> Sampling<'a> {
         self.peaks(r, 0.0).first().copied()
     }
 
-    /// `M' D − M D'` with `D = d N`: the slope of `M / D` but for a positive factor. `M' = S`.
+    /// `M' D − M D'` with `D = d N`: the slope of `M / D` but for a positive factor.
     fn slope(&self, piece: &Piece, joint: &Joint, r: &Unknowns) -> f64 {
-        let (m, n, s) = (joint.moment(r), joint.thrust(r), joint.shear(r));
-        s * joint.depth * n - m * (piece.depth_slope * n + joint.depth * piece.thrust_slope(joint, r))
+        let (m, n) = (joint.moment(r), joint.thrust(r));
+        piece.moment_slope(joint, r) * joint.depth * n
+            - m * (piece.depth_slope * n + joint.depth * piece.thrust_slope(joint, r))
     }
 
     /// Where the slope vanishes between two joints at which it has opposite signs: regula falsi, halving the weight of

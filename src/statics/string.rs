@@ -4,7 +4,7 @@
 //! `x`, on the line of action of the weight of that joint [Culmann 1866]. The polygon is cut off at the springing joints.
 
 use super::line::eccentricity;
-use super::span::{Joint, Loads, Span, Unknowns, moment_about};
+use super::span::{Joint, LoadSets, Piece, Span, Unknowns, moment_about};
 use crate::geometry::{Point, Vec2};
 use crate::tolerance;
 
@@ -14,7 +14,7 @@ const HALVINGS: u32 = 12;
 /// The vertices in the drawing, m.
 pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
     let mut corners: Vec<Corner> = Vec::new();
-    let mut loads = Loads::default();
+    let mut loads = LoadSets::default();
     let mut next = 0;
     for (i, piece) in span.pieces.iter().enumerate() {
         while let Some(e) = span.entered.get(next)
@@ -22,17 +22,15 @@ pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
             && (piece.s1 > piece.s0 || i > 0)
         {
             let before = loads;
-            loads.fx += e.force.x;
-            loads.fy += e.force.y;
-            loads.moment += e.at.x * e.force.y - e.at.y * e.force.x;
+            loads.enter(e);
             corners.extend(meeting(e.at, e.force, &before, r).map(|at| Corner { at, before, after: loads }));
             next += 1;
         }
-        if piece.weight > 0.0 && piece.s1 > piece.s0 {
+        if piece.weighs() && piece.s1 > piece.s0 {
             let (a, b) = (piece.joint(piece.s0, i), piece.joint(piece.s1, i));
-            if let (Some(p), Some(q)) = (touch(&a, r), touch(&b, r)) {
+            if let (Some(p), Some(q)) = (touch(piece, &a, r), touch(piece, &b, r)) {
                 corners.push(p);
-                let middle = |s: f64| touch(&piece.joint(s, i), r);
+                let middle = |s: f64| touch(piece, &piece.joint(s, i), r);
                 refine(&middle, (piece.s0, p.at), (piece.s1, q.at), HALVINGS, &mut corners);
                 corners.push(q);
             }
@@ -43,9 +41,7 @@ pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
     }
     for e in span.entered.iter().skip(next) {
         let before = loads;
-        loads.fx += e.force.x;
-        loads.fy += e.force.y;
-        loads.moment += e.at.x * e.force.y - e.at.y * e.force.x;
+        loads.enter(e);
         corners.extend(meeting(e.at, e.force, &before, r).map(|at| Corner { at, before, after: loads }));
     }
     corners.dedup_by(|b, a| {
@@ -62,28 +58,30 @@ pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
 #[derive(Clone, Copy)]
 struct Corner {
     at: Point,
-    before: Loads,
-    after: Loads,
+    before: LoadSets,
+    after: LoadSets,
 }
 
 /// Where the ray before a load meets the load's line of action.
-fn meeting(at: Point, force: Vec2, before: &Loads, r: &Unknowns) -> Option<Point> {
+fn meeting(at: Point, force: Vec2, before: &LoadSets, r: &Unknowns) -> Option<Point> {
     if force.hypot() == 0.0 {
         return None;
     }
     let f = force.normalize();
-    let ray = Vec2::new(r[0] + before.fx, r[1] + before.fy);
+    let loads = before.times(r[3]);
+    let ray = Vec2::new(r[0] + loads.fx, r[1] + loads.fy);
     let rate = ray.y * f.x - ray.x * f.y;
     // A load along the ray only lengthens it.
     (rate.abs() > tolerance::VERTICAL_THRUST * ray.hypot())
         .then(|| at - f * (moment_about(at, before, r) / rate))
 }
 
-/// Where the ray of a joint touches the string of the distributed weight.
-fn touch(joint: &Joint, r: &Unknowns) -> Option<Corner> {
+/// Where the ray of a joint touches the string of the distributed weight: on the line of action of its own weight.
+fn touch(piece: &Piece, joint: &Joint, r: &Unknowns) -> Option<Corner> {
     let ray = joint.resultant(r);
+    let x = piece.weight_offset(joint, r);
     (ray.x.abs() > tolerance::ONE_JOINT * ray.hypot()).then(|| Corner {
-        at: joint.at + Vec2::new(0.0, joint.moment(r) / ray.x),
+        at: joint.at + Vec2::new(x, (joint.moment(r) + ray.y * x) / ray.x),
         before: joint.loads,
         after: joint.loads,
     })
@@ -113,7 +111,7 @@ fn refine(
 
 /// The polygon between the two springing joints: corners behind a joint are left out, and the side that crosses the
 /// joint ends in it.
-fn cut_off(span: &Span, r: &Unknowns, corners: &[Corner], all: &Loads) -> Vec<Point> {
+fn cut_off(span: &Span, r: &Unknowns, corners: &[Corner], all: &LoadSets) -> Vec<Point> {
     let (first, last) = (span.first(), span.last());
     let slack = tolerance::ONE_JOINT;
     let behind = |c: &&Corner| (c.at - first.at).dot(first.tangent) < slack;
@@ -141,7 +139,7 @@ fn cut_off(span: &Span, r: &Unknowns, corners: &[Corner], all: &Loads) -> Vec<Po
 }
 
 /// Where a ray crosses a joint.
-fn meet(joint: &Joint, loads: &Loads, r: &Unknowns) -> Option<Point> {
+fn meet(joint: &Joint, loads: &LoadSets, r: &Unknowns) -> Option<Point> {
     let joint = Joint { loads: *loads, ..*joint };
     Some(joint.at + joint.normal() * eccentricity(&joint, r)?)
 }

@@ -18,18 +18,7 @@ pub fn down(loads: &[(f64, f64)], y: f64) -> Vec<Force> {
 
 /// An axis with forces whose line goes through springings and crown.
 pub fn problem(axis: Path, forces: Vec<Force>) -> Problem {
-    Problem {
-        axis,
-        forces,
-        weight_on_axis: 0.0,
-        depth: None,
-        tension: false,
-        support: None,
-        hinges: Vec::new(),
-        through: None,
-        govern: Some(LineKind::Through),
-        draw: Vec::new(),
-    }
+    Problem { forces, govern: Some(LineKind::Through), ..Problem::new(axis) }
 }
 
 pub fn polyline(points: &[(f64, f64)]) -> Path {
