@@ -80,3 +80,19 @@ pub const LINE_POLYGON: f64 = 1e-5;
 /// Least thrust of the closest line in any joint, as a part of all loads. Larger: it keeps lines from parts of the arch
 /// that hardly carry; smaller: in a part that carries nothing the eccentricity is rounding over rounding.
 pub const LEAST_THRUST: f64 = 1e-4;
+
+/// Excess over a constraint of the limit analysis, in units of all forces and of the axis length, that is still rounding.
+/// Larger: factors too favourable; smaller: the exchange never ends.
+pub const LIMIT_SLACK: f64 = 2e-14;
+
+/// Part by which a peak may stay below the limit and still be the place of a hinge. Larger: hinges move to a neighbouring
+/// peak; smaller: rounding keeps a hinge off its peak.
+pub const HINGE_CONTACT: f64 = 1e-4;
+
+/// Length of axis, as a part of the whole, within which joints with multipliers are one hinge. Larger: two hinges fall
+/// together; smaller: the neighbouring joints that close in on one peak count as hinges of their own.
+pub const HINGE_PLACE: f64 = 1e-3;
+
+/// Largest eccentricity over depth that counts as none: the geometric factor is then unbounded. Larger: a true factor of
+/// hundreds of millions is called unbounded; smaller: rounding is called a factor.
+pub const FUNICULAR: f64 = 1e-9;

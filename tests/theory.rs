@@ -6,8 +6,10 @@ mod support;
 use std::f64::consts::FRAC_PI_2;
 
 use support::{circle, close, down, height, parabola, polyline, problem, push, solve, station};
-use thrustmark::geometry::Point;
-use thrustmark::statics::{Analysis, Depth, Line, Problem, Rule, SpanKind, Support};
+use thrustmark::geometry::{Point, Vec2};
+use thrustmark::statics::{
+    Analysis, Depth, Force, Line, LineKind, Problem, Rule, SpanKind, Status, Support, analyse,
+};
 
 #[test]
 fn f01_odd_number_of_equal_loads() {
@@ -279,4 +281,98 @@ fn m03_and_m08_true_centroids() {
     let (a, line) = milankovitch(FRAC_PI_2, 0.107478038107);
     close(push(&line) / (3.0 * 1.07478038107 * 10.0), 0.620881206172);
     close(a.total.y, -3.0 * 1.07478038107 * 10.0 * std::f64::consts::PI);
+}
+
+/// Voussoirs of a circular ring of radius 10 and thickness 1.5: centroids, and the horizontal forces of their weight.
+fn shaken(count: usize) -> Problem {
+    let (radius, t, embrace) = (10.0, 1.5, 157.5_f64.to_radians());
+    let mut p = problem(circle(radius, embrace / 2.0), Vec::new());
+    p.ring_weight = 2.0;
+    p.depth = Some(Depth::Constant(t));
+    p.voussoirs = Some(count);
+    p.govern = None;
+    let a = embrace / count as f64 / 2.0;
+    let (r1, r2) = (radius - t / 2.0, radius + t / 2.0);
+    let centroid = 2.0 / 3.0 * a.sin() / a * (r2.powi(3) - r1.powi(3)) / (r2 * r2 - r1 * r1);
+    let weight = 2.0 * a * radius * t * 2.0;
+    for k in 0..count {
+        let angle = -embrace / 2.0 + a * (2.0 * k as f64 + 1.0);
+        let at = Point::new(centroid * angle.sin(), centroid * angle.cos());
+        p.entering.push((k, radius * (angle + embrace / 2.0)));
+        p.forces.push(Force { at, force: Vec2::new(weight, 0.0) });
+    }
+    p.varying = (0..count).collect();
+    p
+}
+
+#[test]
+fn m12_horizontal_body_force() {
+    // M12 (from memory): horizontal body force (inclined loads): 7 equal voussoirs, R=10, t/R=0.15, embrace 157.5 deg:
+    // mechanism at 0.37 g; straight radial joints. Source: I.J. Oppenheim, 'The masonry arch as a four-link mechanism
+    // under base motion', Earthq. Eng. Struct. Dyn. 21 (1992) 1005-1017; recomputed as 0.370009738022 by the primal and
+    // the explicit dual of an independent program, 140 joints: 0.3534.
+    let a = analyse(&shaken(7)).unwrap();
+    let safety = a.safety.unwrap();
+    let load = safety.load.unwrap();
+    close(load.value.unwrap(), 0.370009738022);
+    assert!(load.proof.unwrap().gap < 1e-9);
+    close(safety.load_least.unwrap().value.unwrap(), 0.0);
+    let mechanism = safety.mechanism.unwrap();
+    assert_eq!(mechanism.hinges.len(), 4);
+    assert!(mechanism.hinges.windows(2).all(|w| w[0].side != w[1].side), "{mechanism:?}");
+    close(-mechanism.work_fixed / mechanism.work_varying, 0.370009738022);
+    assert!(mechanism.residual < 1e-9);
+    let many = analyse(&shaken(140)).unwrap().safety.unwrap().load.unwrap().value.unwrap();
+    assert!((many - 0.3534).abs() < 5e-5, "{many}");
+}
+
+#[test]
+fn m03b_least_and_greatest_push_meet_at_the_least_thickness() {
+    // M03b (derived): Milankovitch value to 12 digits: hinge 54.483974034 deg, h 0.620881206172. Source: closed form,
+    // derived. At the least thickness one line is left: least and greatest push fall together.
+    let mut p = problem(circle(10.0, FRAC_PI_2), Vec::new());
+    p.ring_weight = 1.0;
+    p.depth = Some(Depth::Constant(1.07478038107 * (1.0 + 1e-9)));
+    p.govern = None;
+    p.draw = vec![LineKind::LeastThrust, LineKind::GreatestThrust];
+    let a = analyse(&p).unwrap();
+    close(a.safety.unwrap().geometric.value.unwrap(), 1.0);
+    for line in &a.lines[1..] {
+        assert_eq!(line.status, Status::Found, "{:?}", line.reason);
+        assert!((push(line) / 10.7478038107 - 0.620881206172).abs() < 1e-6);
+        assert!(line.proof.unwrap().gap < 1e-9);
+    }
+    // A ring too thin for its own weight has no line: an answer.
+    p.depth = Some(Depth::Constant(1.07));
+    let a = analyse(&p).unwrap();
+    assert!(a.safety.unwrap().geometric.value.unwrap() < 1.0);
+    for line in &a.lines[1..] {
+        assert_eq!(line.status, Status::None);
+        assert!(line.reason.as_ref().unwrap().contains("near ("), "{:?}", line.reason);
+    }
+}
+
+#[test]
+fn m06_friction_limits_of_the_semicircle() {
+    // M06 (published): friction limits, semicircle (centreline weight): purely rotational for mu>0.395832; mixed down to
+    // 0.309215 where t/R=0.200637, h=0.485714; no equilibrium below. Source: G. Cocchetti, E. Rizzi, 'Analytical and
+    // numerical analysis on the collapse modes of least-thickness circular masonry arches at decreasing friction',
+    // Frattura ed Integrita Strutturale 51 (2020) 356-375, Table 3.
+    let least = |thickness: f64, friction: f64| {
+        let mut p = problem(circle(10.0, FRAC_PI_2), Vec::new());
+        p.weight_on_axis = 1.0;
+        p.depth = Some(Depth::Constant(10.0 * thickness));
+        p.friction = Some(friction);
+        p.govern = Some(LineKind::LeastThrust);
+        analyse(&p).unwrap().lines.remove(0)
+    };
+    let (thin, rotational) = (0.107426452755 * (1.0 + 1e-8), 0.395832038138);
+    assert_eq!(least(thin, rotational * (1.0 + 1e-6)).status, Status::Found);
+    assert_eq!(least(thin, rotational * (1.0 - 1e-6)).status, Status::None);
+    let (thick, mixed) = (0.200637318842, 0.30921544433);
+    let line = least(thick * (1.0 + 1e-8), mixed * (1.0 + 1e-8));
+    assert_eq!(line.status, Status::Found, "{:?}", line.reason);
+    assert!((push(&line) / 10.0 - 0.485714484142).abs() < 1e-6);
+    assert_eq!(least(thick, mixed * (1.0 - 1e-6)).status, Status::None);
+    assert_eq!(least(thick * 3.0, mixed * (1.0 - 1e-6)).status, Status::None);
 }

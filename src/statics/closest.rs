@@ -56,6 +56,8 @@ struct Cut {
 pub(super) struct Search<'a> {
     span: &'a Span,
     sampling: &'a Sampling<'a>,
+    /// The whole axis, where `sampling` may be single joints.
+    whole: &'a Sampling<'a>,
     space: &'a Subspace,
     sense: f64,
     cuts: Vec<Cut>,
@@ -99,13 +101,20 @@ impl RowKind {
 }
 
 impl<'a> Search<'a> {
-    pub fn new(span: &'a Span, sampling: &'a Sampling<'a>, space: &'a Subspace, sense: f64) -> Self {
+    pub fn new(
+        span: &'a Span,
+        sampling: &'a Sampling<'a>,
+        whole: &'a Sampling<'a>,
+        space: &'a Subspace,
+        sense: f64,
+    ) -> Self {
         let mut cost = vec![0.0; space.free];
         cost.push(1.0);
         let deepest = sampling.joints().iter().fold(0.0, |m, j| f64::max(m, j.depth));
         let mut search = Self {
             span,
             sampling,
+            whole,
             space,
             sense,
             cuts: Vec::new(),
@@ -450,7 +459,7 @@ impl<'a> Search<'a> {
     /// `½ ∫ M² ds` in the free unknowns, by Gauss with three points between neighbouring samples.
     fn bending(&self) -> Quadratic {
         let mut q = Quadratic { n: self.space.free, matrix: [[0.0; 3]; 3], linear: [0.0; 3] };
-        for pair in self.sampling.joints().windows(2) {
+        for pair in self.whole.joints().windows(2) {
             if pair[0].piece != pair[1].piece {
                 continue;
             }

@@ -4,7 +4,7 @@
 //! Lengths are in units of the axis length, measured from the left springing; forces in units of the total load.
 //! National grid coordinates, millimetres and meganewtons therefore all give the same arithmetic.
 
-use super::{Depth, Force, Problem, Reaction, Unsolved};
+use super::{Depth, Problem, Reaction, Unsolved};
 use crate::geometry::{Boxes, Path, Point, Segment, Vec2};
 use crate::tolerance;
 
@@ -242,6 +242,11 @@ impl Piece {
         self.curvature * joint.shear(r) - self.weight_at(joint, r) * joint.tangent.y
     }
 
+    /// Rate of change of `S`.
+    pub fn shear_slope(&self, joint: &Joint, r: &Unknowns) -> f64 {
+        -self.curvature * joint.thrust(r) - self.weight_at(joint, r) * joint.tangent.x
+    }
+
     /// Rate of change of `M`: the shear, and the couple of a weight that acts beside the axis.
     pub fn moment_slope(&self, joint: &Joint, r: &Unknowns) -> f64 {
         joint.shear(r) + self.weight_arm(joint, r)
@@ -332,6 +337,9 @@ pub(super) struct Entered {
     pub varies: bool,
 }
 
+/// Largest number of voussoirs.
+const MOST_VOUSSOIRS: usize = 100_000;
+
 /// The span in local units.
 #[derive(Debug, Clone)]
 pub(super) struct Span {
@@ -382,7 +390,7 @@ impl Span {
         let hangs = above.1 <= flat;
         let crown = if hangs || above.1 < -below.1 { below } else { above };
 
-        let (mut entered, missed) = place(&path, &boxes, &problem.forces, origin, length);
+        let (mut entered, missed) = place(&path, &boxes, problem, origin, length);
         for e in &mut entered {
             e.varies = problem.varying.contains(&e.index);
         }
@@ -606,6 +614,15 @@ impl Piece {
 
 fn check_input(problem: &Problem) -> Result<(), Unsolved> {
     let bad = |what: &str| Err(Unsolved::Input(what.into()));
+    if !problem.entering.iter().all(|(i, s)| *i < problem.forces.len() && s.is_finite()) {
+        return bad("a force that does not exist has a place where it enters the ring");
+    }
+    if problem.voussoirs.is_some_and(|n| n == 0 || n > MOST_VOUSSOIRS) {
+        return bad("the number of voussoirs must be between 1 and 100 000");
+    }
+    if problem.friction.is_some_and(|f| !(f > 0.0 && f.is_finite())) {
+        return bad("the coefficient of friction must be positive");
+    }
     if !problem.forces.iter().all(|f| f.at.is_finite() && f.force.is_finite()) {
         return bad("a load has a place or a force that is not a finite number");
     }
@@ -675,13 +692,19 @@ fn depth_at(table: &[(f64, f64)], s: f64) -> (f64, f64) {
 fn place(
     path: &Path,
     boxes: &Boxes,
-    forces: &[Force],
+    problem: &Problem,
     origin: Point,
     length: f64,
 ) -> (Vec<Entered>, Vec<usize>) {
-    let mut entered = Vec::with_capacity(forces.len());
+    let mut stated = vec![None; problem.forces.len()];
+    for &(index, s) in &problem.entering {
+        if let Some(place) = stated.get_mut(index) {
+            *place = Some(s / length);
+        }
+    }
+    let mut entered = Vec::with_capacity(problem.forces.len());
     let mut missed = Vec::new();
-    for (index, force) in forces.iter().enumerate() {
+    for (index, force) in problem.forces.iter().enumerate() {
         let at = ((force.at - origin) / length).to_point();
         // A load whose factor is zero still has a place: below or above its point.
         let direction = if force.force.hypot() > 0.0 { force.force } else { Vec2::new(0.0, -1.0) };
@@ -690,11 +713,11 @@ fn place(
             // Of two at one distance the one ahead of the force.
             a.along.abs().total_cmp(&b.along.abs()).then(b.along.total_cmp(&a.along))
         });
-        let Some(first) = first else {
+        let Some(mut foot) = stated[index].or(first.map(|f| f.s)) else {
             missed.push(index);
             continue;
         };
-        let mut foot = first.s;
+        foot = foot.clamp(0.0, 1.0);
         for end in [0.0, 1.0] {
             if (foot - end).abs() <= tolerance::ONE_JOINT {
                 foot = end;
