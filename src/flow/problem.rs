@@ -15,9 +15,7 @@ pub fn problem(span: &Span, settings: &Settings) -> Problem {
         draw.push(LineKind::Closest);
     }
     Problem {
-        axis: span.axis.clone(),
         forces: span.loads.iter().map(|load| Force { at: load.at, force: load.force }).collect(),
-        weight_on_axis: 0.0,
         depth: rib.depth.map(|depth| match depth {
             RibDepth::Constant(d) => Depth::Constant(d),
             RibDepth::Linear([springing, crown]) => Depth::Linear { springing, crown },
@@ -29,7 +27,7 @@ pub fn problem(span: &Span, settings: &Settings) -> Problem {
             Support::ThreeHinged => statics::Support::ThreeHinged,
             Support::None => statics::Support::None,
         }),
-        hinges: Vec::new(),
+        voussoirs: rib.voussoirs.and_then(|n| usize::try_from(n).ok()),
         through: settings.line.through.map(|points| points.map(|[x, y]| Point::new(x, y))),
         govern: match settings.line.govern {
             Govern::Auto => None,
@@ -40,6 +38,7 @@ pub fn problem(span: &Span, settings: &Settings) -> Problem {
             Govern::Elastic => Some(LineKind::Elastic),
         },
         draw,
+        ..Problem::new(span.axis.clone())
     }
 }
 

@@ -1,12 +1,15 @@
 //! A span and its analysis as the results hold them.
 
+use std::collections::BTreeMap;
+
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
 use crate::model::{self, Forces};
 use crate::outcome::{
-    self, Axis, Case, End, Line, LineKind, Load, Offset, Pole, Proof, Ring, Span, Station, Status, Xy,
+    self, Axis, Case, End, Hinge, Line, LineKind, Load, Offset, Pole, Proof, Ring, Safety, Span, Station,
+    Status, Xy,
 };
-use crate::statics::{self, Analysis, Rule, SpanKind, Support};
+use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support};
 
 /// The name of the one case that a job without cases has.
 pub const DRAWN: &str = "drawn";
@@ -113,7 +116,7 @@ fn case(analysis: &Analysis, _forces: Forces) -> Case {
         governs_why: why(analysis.rule).into(),
         lines,
         traffic: Vec::new(),
-        safety: None,
+        safety: analysis.safety.as_ref().map(safety),
         residual: analysis.residual,
     }
 }
@@ -161,12 +164,7 @@ fn line(line: &statics::Line) -> Line {
         }),
         left: line.left.map(end),
         right: line.right.map(end),
-        status: match line.status {
-            statics::Status::Found => Status::Found,
-            statics::Status::None => Status::None,
-            statics::Status::Unbounded => Status::Unbounded,
-            statics::Status::Refused => Status::Refused,
-        },
+        status: status(line.status),
         reason: line.reason.clone(),
         vertices: line.vertices.iter().copied().map(xy).collect(),
         offset: line.offset.map(|o| Offset {
@@ -177,6 +175,46 @@ fn line(line: &statics::Line) -> Line {
         }),
         stations: line.stations.iter().map(station).collect(),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn safety(from: &statics::Safety) -> Safety {
+    let mut found = BTreeMap::new();
+    let mut value = |name: &str, factor: Option<&statics::Factor>| {
+        found.insert(name.to_string(), factor.map_or(Status::NotAsked, |f| status(f.status)));
+        factor.and_then(|f| f.value)
+    };
+    let geometric_factor = value("geometric_factor", Some(&from.geometric));
+    let load_factor = value("load_factor", from.load.as_ref());
+    let load_factor_least = value("load_factor_least", from.load_least.as_ref());
+    let least_depth = value("least_depth", None);
+    let proof = from.load.as_ref().and_then(|f| f.proof).or(from.geometric.proof);
+    Safety {
+        geometric_factor,
+        load_factor,
+        load_factor_least,
+        least_depth,
+        status: found,
+        hinges: from.mechanism.iter().flat_map(|m| &m.hinges).map(hinge).collect(),
+        proof: proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn hinge(from: &statics::Hinge) -> Hinge {
+    let side = match from.side {
+        HingeSide::Extrados => "extrados",
+        HingeSide::Intrados => "intrados",
+        HingeSide::Slip => "slip",
+    };
+    Hinge { at: xy(from.at), side: side.into() }
+}
+
+fn status(from: statics::Status) -> Status {
+    match from {
+        statics::Status::Found => Status::Found,
+        statics::Status::None => Status::None,
+        statics::Status::Unbounded => Status::Unbounded,
+        statics::Status::Refused => Status::Refused,
     }
 }
 
