@@ -7,6 +7,7 @@
 mod analyse;
 mod check;
 mod closest;
+mod elastic;
 mod limit;
 mod line;
 mod peaks;
@@ -16,11 +17,13 @@ mod rule;
 mod safety;
 mod simplex;
 mod span;
+pub mod stress;
 mod string;
 mod subspace;
 mod through;
 
-pub use analyse::analyse;
+pub use analyse::{analyse, elastic};
+pub use elastic::{Effects, Flexibility, Place};
 
 use crate::geometry::{Path, Point, Vec2};
 
@@ -102,6 +105,10 @@ pub struct Problem {
     pub voussoirs: Option<usize>,
     /// Coefficient of friction between the pieces; `None`: nothing slides.
     pub friction: Option<f64>,
+    /// Modulus of elasticity times width, kN/m (lowered for creep); only what strains the rib beside its loads needs it.
+    pub stiffness: Option<f64>,
+    /// What strains an elastic rib beside its loads.
+    pub effects: Effects,
     /// Whether the section can take tension.
     pub tension: bool,
     /// How the span is held; `None` when nothing was said.
@@ -130,6 +137,8 @@ impl Problem {
             depth: None,
             voussoirs: None,
             friction: None,
+            stiffness: None,
+            effects: Effects::default(),
             tension: false,
             support: None,
             hinges: Vec::new(),
