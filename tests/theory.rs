@@ -398,3 +398,24 @@ fn k01_to_k04_stress_in_a_section() {
     // (3), Eq. (12.2).
     close(thrust_capacity(0.24, 0.6, 1.0, 5000.0).unwrap(), 600.0);
 }
+
+#[test]
+fn m14_crushing_of_a_flat_arch() {
+    // M14 (derived): crushing, closed form: weightless flat (jack) arch of depth d between rigid abutments, one load at
+    // mid-span: H(d-H/(bf))=PL/4, greatest P=f b d^2/L at H=f b d/2. Source: closed form, derived. The axis here rises by four
+    // hundredths of a micrometre, for an axis without any rise is refused: that much is added to the depth.
+    let mut p = problem(polyline(&[(0.0, 0.0), (2.0, 4e-8), (4.0, 0.0)]), down(&[(1.0, 2.0)], 1.0));
+    p.depth = Some(Depth::Constant(0.6));
+    p.strength = Some(5000.0);
+    p.varying = vec![0];
+    p.govern = None;
+    let safety = analyse(&p).unwrap().safety.unwrap();
+    let load = safety.load.unwrap();
+    let found = load.value.unwrap();
+    assert!((found / 450.0 - 1.0).abs() < 2e-7, "{load:?}");
+    assert!(load.proof.unwrap().gap < 1e-7);
+    assert!(safety.mechanism.unwrap().residual < 1e-7);
+    // At unlimited strength everything that acts varies: no factor.
+    p.strength = None;
+    assert_eq!(analyse(&p).unwrap().safety.unwrap().load.unwrap().status, Status::Refused);
+}

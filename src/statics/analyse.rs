@@ -183,6 +183,7 @@ impl Work<'_> {
             sampling: self.sheet.sampling,
             space: self.space,
             friction: self.problem.friction,
+            crushing: self.span.crushing,
         };
         match limit.solve(aim) {
             Extreme::Found { r, primal, dual, .. } => {

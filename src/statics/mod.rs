@@ -105,6 +105,8 @@ pub struct Problem {
     pub voussoirs: Option<usize>,
     /// Coefficient of friction between the pieces; `None`: nothing slides.
     pub friction: Option<f64>,
+    /// Strength in compression times width, kN/m, of a uniform block of stress; `None`: unlimited.
+    pub strength: Option<f64>,
     /// Modulus of elasticity times width, kN/m (lowered for creep); only what strains the rib beside its loads needs it.
     pub stiffness: Option<f64>,
     /// What strains an elastic rib beside its loads.
@@ -137,6 +139,7 @@ impl Problem {
             depth: None,
             voussoirs: None,
             friction: None,
+            strength: None,
             stiffness: None,
             effects: Effects::default(),
             tension: false,
@@ -308,7 +311,7 @@ pub enum HingeSide {
 /// A hinge of a mechanism.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Hinge {
-    /// Where on the edge of the ring, m.
+    /// Where it turns: on the edge of the ring, inside where the edge crushes, m.
     pub at: Point,
     /// Length of its joint along the axis, m.
     pub s: f64,
@@ -327,6 +330,8 @@ pub struct Mechanism {
     pub work_fixed: f64,
     /// Virtual work of the varying loads at factor 1: one, or minus one at the lower end.
     pub work_varying: f64,
+    /// What crushing at finite strength takes of it.
+    pub work_crushing: f64,
     /// What is left of the work of all loads at the factor found, relative to its parts.
     pub residual: f64,
 }
