@@ -259,3 +259,7 @@ pub const HINGE_PLACE: f64 = 1e-3;
 /// Largest eccentricity over depth that counts as none: the geometric factor is then unbounded. Larger: a true factor of
 /// hundreds of millions is called unbounded; smaller: rounding is called a factor.
 pub const FUNICULAR: f64 = 1e-9;
+
+/// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
+/// tangents without end.
+pub const CONE_SLACK: f64 = 1e-11;
