@@ -210,7 +210,7 @@ pub const UNBOUNDED: f64 = 1e6;
 
 /// Multiplier, relative to the largest, below which a joint does not hold the optimum in place. Larger: joints that
 /// hold it are let go in the tie-break; smaller: rounding errors hold it.
-pub const MULTIPLIER: f64 = 1e-9;
+pub const MULTIPLIER: f64 = 1e-7;
 
 /// Part of a unit row that must be independent of the others to count in the rank. Larger: an optimum that is unique
 /// counts as free, which the tie-break then leaves in place; smaller: neighbouring cuts at one peak count twice.
@@ -218,7 +218,7 @@ pub const RANK: f64 = 1e-5;
 
 /// Relative leave that the tie-break has over the optimum it must keep. Larger: the optimum is given away; smaller:
 /// rounding leaves no room.
-pub const TIE_LEAVE: f64 = 1e-11;
+pub const TIE_LEAVE: f64 = 1e-10;
 
 /// Part of the resultant below which its horizontal part vanishes, so that a height above the axis means nothing.
 pub const VERTICAL_THRUST: f64 = 1e-12;
@@ -240,3 +240,48 @@ pub const LABEL_CHOICES: usize = 256;
 /// Steps that pairing labels with loads may take (some seconds). A count. Larger: a hostile drawing keeps the program busy;
 /// smaller: crowded but clear drawings are refused.
 pub const PAIRING_STEPS: u64 = 100_000_000;
+/// Least thrust of the closest line in any joint, as a part of all loads. Larger: it keeps lines from parts of the arch
+/// that hardly carry; smaller: in a part that carries nothing the eccentricity is rounding over rounding.
+pub const LEAST_THRUST: f64 = 1e-4;
+
+/// Excess over a constraint of the limit analysis, in units of all forces and of the axis length, that is still rounding.
+/// Larger: factors too favourable; smaller: the exchange never ends.
+pub const LIMIT_SLACK: f64 = 2e-14;
+
+/// Part by which a peak may stay below the limit and still be the place of a hinge. Larger: hinges move to a neighbouring
+/// peak; smaller: rounding keeps a hinge off its peak.
+pub const HINGE_CONTACT: f64 = 1e-4;
+
+/// Length of axis, as a part of the whole, within which joints with multipliers are one hinge. Larger: two hinges fall
+/// together; smaller: the neighbouring joints that close in on one peak count as hinges of their own.
+pub const HINGE_PLACE: f64 = 1e-3;
+
+/// Largest eccentricity over depth that counts as none: the geometric factor is then unbounded. Larger: a true factor of
+/// hundreds of millions is called unbounded; smaller: rounding is called a factor.
+pub const FUNICULAR: f64 = 1e-9;
+
+/// Furthest a chain of arcs may stray from the true middle line of a ring, as part of the length of the line: a fifth of a
+/// micrometre over twenty metres, far below what a drawing means.
+pub const MIDDLE_LINE: f64 = 1e-8;
+
+/// Furthest the depth read from a table may stray from the true depth of a ring, as part of it: a few micrometres.
+pub const RING_DEPTH: f64 = 1e-5;
+
+/// Halvings of an eighth of a ring before its middle line is taken as it is: pieces of a thirty-thousandth of the length.
+pub const MIDDLE_HALVINGS: u32 = 12;
+
+/// Most pieces of a middle line: a survey with a point every few millimetres stays within it.
+pub const MIDDLE_PIECES: usize = 4000;
+
+/// Arcs whose centres and radii agree to this part of the length of the ring are one arc.
+pub const ONE_ARC: f64 = 1e-9;
+
+/// Depth of a ring, as part of its length, below which its two lines are taken to touch.
+pub const NO_DEPTH: f64 = 1e-6;
+
+/// Distance of a drawn axis from the middle of the ring, as part of the depth, from which on it is told.
+pub const OFF_MIDDLE: f64 = 0.005;
+
+/// Angle in radians between the drawn end of a ring and the joint normal to its axis from which on it is told: five
+/// degrees.
+pub const END_SKEW: f64 = 0.09;

@@ -40,6 +40,7 @@ pub fn problem(span: &Span, settings: &Settings) -> Problem {
             Govern::Elastic => Some(LineKind::Elastic),
         },
         draw,
+        ..Problem::new(span.axis.clone())
     }
 }
 

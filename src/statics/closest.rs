@@ -11,7 +11,7 @@ use super::Proof;
 use super::peaks::{Peak, Sampling};
 use super::quadratic::{Bound, Quadratic};
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
-use super::span::{Joint, Span, Unknowns};
+use super::span::{Affine, Joint, Span, Unknowns};
 use super::subspace::Subspace;
 use crate::tolerance;
 
@@ -21,6 +21,12 @@ const START: usize = 24;
 const ROUND: usize = 8;
 /// Rounds after which the exchange must have ended.
 const ROUNDS: usize = 80;
+/// Rounds of the polish, and how far from a peak (as a part of the axis) a joint is taken for its neighbour.
+const POLISH: usize = 8;
+const NEIGHBOUR: f64 = 0.02;
+/// Peaks lower than the highest by less than this part may touch too; no more than so many are looked at.
+const CONTACT: f64 = 0.001;
+const MOST_CONTACTS: usize = 64;
 /// Linear programs for one set of joints.
 const STEPS: usize = 40;
 
@@ -41,15 +47,17 @@ pub(super) enum Closest {
 #[derive(Debug, Clone, Copy)]
 struct Cut {
     joint: Joint,
-    moment: ([f64; 3], f64),
+    moment: Affine,
     /// Depth times thrust in its own sense.
-    room: ([f64; 3], f64),
+    room: Affine,
 }
 
 /// One problem on its way.
 pub(super) struct Search<'a> {
     span: &'a Span,
     sampling: &'a Sampling<'a>,
+    /// The whole axis, where `sampling` may be single joints.
+    whole: &'a Sampling<'a>,
     space: &'a Subspace,
     sense: f64,
     cuts: Vec<Cut>,
@@ -73,19 +81,40 @@ struct Step {
 struct Multiplier {
     /// Index of the cut.
     cut: usize,
-    /// Whether of `M ≤ τ d N` or of `−M ≤ τ d N`.
-    upper: bool,
+    row: RowKind,
     value: f64,
 }
 
+/// The rows of a cut.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum RowKind {
+    /// `M ≤ τ d N`
+    Upper,
+    /// `−M ≤ τ d N`
+    Lower,
+    /// `N ≥ ε`: without it no thrust at all would count as close.
+    Thrust,
+}
+
+impl RowKind {
+    const ALL: [Self; 3] = [Self::Upper, Self::Lower, Self::Thrust];
+}
+
 impl<'a> Search<'a> {
-    pub fn new(span: &'a Span, sampling: &'a Sampling<'a>, space: &'a Subspace, sense: f64) -> Self {
+    pub fn new(
+        span: &'a Span,
+        sampling: &'a Sampling<'a>,
+        whole: &'a Sampling<'a>,
+        space: &'a Subspace,
+        sense: f64,
+    ) -> Self {
         let mut cost = vec![0.0; space.free];
         cost.push(1.0);
         let deepest = sampling.joints().iter().fold(0.0, |m, j| f64::max(m, j.depth));
         let mut search = Self {
             span,
             sampling,
+            whole,
             space,
             sense,
             cuts: Vec::new(),
@@ -142,7 +171,64 @@ impl<'a> Search<'a> {
         if gain > tolerance::PROOF_GAP * step.tau.max(self.floor) {
             return Closest::Stalled;
         }
+        let step = self.polish(step);
         self.finish(step)
+    }
+
+    /// Moves the joints of the program to the very peaks of the line, so that the multipliers belong to the places that
+    /// the line touches and not to their neighbours. Each round squares the distance, as in Newton's method.
+    fn polish(&mut self, mut step: Step) -> Step {
+        for _ in 0..POLISH {
+            let Some(before) = self.worst_finite(&step.r) else {
+                break;
+            };
+            let peaks = self.sampling.peaks(&step.r, step.tau * (1.0 - CONTACT));
+            let known = self.cuts.clone();
+            let inner = |j: &Joint| {
+                let piece = &self.span.pieces[j.piece];
+                j.s > piece.s0 && j.s < piece.s1
+            };
+            let (inside, ends): (Vec<_>, Vec<_>) =
+                peaks.iter().take(MOST_CONTACTS).map(|p| p.joint).partition(|j| inner(j));
+            let mut moved = 0.0_f64;
+            for joint in &inside {
+                let near = known.iter().filter(|c| c.joint.piece == joint.piece && inner(&c.joint));
+                let nearest = near.map(|c| (c.joint.s - joint.s).abs()).fold(f64::INFINITY, f64::min);
+                moved = moved.max(nearest.min(NEIGHBOUR));
+            }
+            if moved <= tolerance::PEAK_PLACE {
+                break;
+            }
+            self.cuts.retain(|c| {
+                let near = |j: &Joint| c.joint.piece == j.piece && (c.joint.s - j.s).abs() < NEIGHBOUR;
+                !(inner(&c.joint) && inside.iter().any(near))
+            });
+            for joint in inside {
+                self.add(joint);
+            }
+            for joint in ends {
+                let same = |c: &Cut| {
+                    c.joint.piece == joint.piece && (c.joint.s - joint.s).abs() <= tolerance::PEAK_PLACE
+                };
+                if !self.cuts.iter().any(same) {
+                    self.add(joint);
+                }
+            }
+            let next = self.least(&step.r, before);
+            let after = next.as_ref().and_then(|n| self.worst_finite(&n.r));
+            match (next, after) {
+                (Some(next), Some(after))
+                    if after <= before + tolerance::EXCHANGE_GAIN * before.max(self.floor) =>
+                {
+                    step = next;
+                }
+                _ => {
+                    self.cuts = known;
+                    break;
+                }
+            }
+        }
+        step
     }
 
     /// Adds the highest peaks above `tau`; gives how many.
@@ -211,16 +297,16 @@ impl<'a> Search<'a> {
         let mut last: Option<Step> = None;
         for _ in 0..STEPS {
             let rows = self.cuts.iter().zip(&weights).flat_map(|(cut, w)| {
-                [1.0, -1.0].map(|side| {
+                RowKind::ALL.map(|kind| {
+                    let (bound, b) = self.bound(cut, kind, tau);
                     let mut a = [0.0; MOST];
-                    for i in 0..n {
-                        a[i] = side * cut.moment.0[i] - tau * cut.room.0[i];
-                    }
-                    a[n] = -w.max(f64::MIN_POSITIVE);
-                    Row { a, b: tau * cut.room.1 - side * cut.moment.1 }
+                    a[..n].copy_from_slice(&bound[..n]);
+                    a[n] = if kind == RowKind::Thrust { 0.0 } else { -w.max(f64::MIN_POSITIVE) };
+                    Row { a, b }
                 })
             });
-            self.program.replace(rows);
+            let rows: Vec<Row> = rows.collect();
+            self.program.replace(rows.into_iter());
             let Outcome::Best(vertex) = self.program.solve() else {
                 return last;
             };
@@ -229,27 +315,26 @@ impl<'a> Search<'a> {
             let Some(reached) = self.ratio(&y) else {
                 return last;
             };
-            let gain = tau - reached;
-            let step = Step {
+            let done = tau - reached <= 4.0 * f64::EPSILON * tau.max(self.floor);
+            let mut step = Step {
                 r: self.space.unknowns(&y),
                 tau: reached,
                 asked: tau,
                 bound: vertex.dual,
                 multipliers: self.multipliers(&vertex),
             };
-            let done = gain <= 4.0 * f64::EPSILON * tau.max(self.floor);
-            if !done {
-                tau = reached;
-                for (w, cut) in weights.iter_mut().zip(&self.cuts) {
-                    *w = value(&cut.room, &y);
-                }
-            }
-            if last.as_ref().is_none_or(|l| reached <= l.tau || !done) {
-                last = Some(step);
-            }
             if done {
-                break;
+                // The last program proves the line before it when rounding has made its own line the worse.
+                if let Some(l) = last.filter(|l| l.tau < reached) {
+                    (step.r, step.tau) = (l.r, l.tau);
+                }
+                return Some(step);
             }
+            tau = reached;
+            for (w, cut) in weights.iter_mut().zip(&self.cuts) {
+                *w = value(&cut.room, &y);
+            }
+            last = Some(step);
         }
         last
     }
@@ -282,6 +367,7 @@ impl<'a> Search<'a> {
         let room: f64 = step
             .multipliers
             .iter()
+            .filter(|m| m.row != RowKind::Thrust)
             .map(|m| {
                 let joint = &self.cuts[m.cut].joint;
                 m.value * joint.thrust(r) * self.sense * joint.depth
@@ -294,8 +380,8 @@ impl<'a> Search<'a> {
         let first = self.program.box_rows();
         let cuts = vertex.active.iter().filter(|a| a.0 >= first);
         cuts.map(|&(i, value)| Multiplier {
-            cut: (i - first) / 2,
-            upper: (i - first).is_multiple_of(2),
+            cut: (i - first) / RowKind::ALL.len(),
+            row: RowKind::ALL[(i - first) % RowKind::ALL.len()],
             value,
         })
         .collect()
@@ -311,7 +397,7 @@ impl<'a> Search<'a> {
         let mut held: Vec<Bound> = Vec::new();
         let mut units: Vec<[f64; 3]> = Vec::new();
         for m in &active {
-            let (a, b) = self.bound(&self.cuts[m.cut], m.upper, step.tau);
+            let (a, b) = self.bound(&self.cuts[m.cut], m.row, step.tau);
             let size = a.iter().map(|v| v * v).sum::<f64>().sqrt();
             let mut rest = a.map(|v| v / size);
             for u in &units {
@@ -329,14 +415,19 @@ impl<'a> Search<'a> {
         held
     }
 
-    /// `±M − τ d N ≤ 0` as a row of the free unknowns.
-    fn bound(&self, cut: &Cut, upper: bool, tau: f64) -> Bound {
-        let side = if upper { 1.0 } else { -1.0 };
+    /// `±M − τ d N ≤ 0` or `ε − N ≤ 0` as a row of the free unknowns.
+    fn bound(&self, cut: &Cut, kind: RowKind, tau: f64) -> Bound {
+        let (side, room) = match kind {
+            RowKind::Upper => (1.0, tau),
+            RowKind::Lower => (-1.0, tau),
+            RowKind::Thrust => (0.0, 1.0 / cut.joint.depth),
+        };
+        let least = if kind == RowKind::Thrust { tolerance::LEAST_THRUST } else { 0.0 };
         let mut a = [0.0; 3];
         for (i, v) in a.iter_mut().enumerate().take(self.space.free) {
-            *v = side * cut.moment.0[i] - tau * cut.room.0[i];
+            *v = side * cut.moment.0[i] - room * cut.room.0[i];
         }
-        (a, tau * cut.room.1 - side * cut.moment.1)
+        (a, room * cut.room.1 - side * cut.moment.1 - least)
     }
 
     /// Of all lines as close as the best, the one of least `∫ M² ds`.
@@ -346,11 +437,8 @@ impl<'a> Search<'a> {
         let known = self.cuts.len();
         let mut chosen = None;
         for _ in 0..ROUNDS {
-            let rows: Vec<Bound> = self
-                .cuts
-                .iter()
-                .flat_map(|c| [self.bound(c, true, leave), self.bound(c, false, leave)])
-                .collect();
+            let rows: Vec<Bound> =
+                self.cuts.iter().flat_map(|c| RowKind::ALL.map(|kind| self.bound(c, kind, leave))).collect();
             let y = aim.least(holds, &rows)?;
             let r = self.space.unknowns(&y);
             let peaks = self.sampling.peaks(&r, leave);
@@ -371,7 +459,7 @@ impl<'a> Search<'a> {
     /// `½ ∫ M² ds` in the free unknowns, by Gauss with three points between neighbouring samples.
     fn bending(&self) -> Quadratic {
         let mut q = Quadratic { n: self.space.free, matrix: [[0.0; 3]; 3], linear: [0.0; 3] };
-        for pair in self.sampling.joints().windows(2) {
+        for pair in self.whole.joints().windows(2) {
             if pair[0].piece != pair[1].piece {
                 continue;
             }
@@ -393,6 +481,6 @@ impl<'a> Search<'a> {
     }
 }
 
-fn value(row: &([f64; 3], f64), y: &[f64; 3]) -> f64 {
+fn value(row: &Affine, y: &[f64; 3]) -> f64 {
     row.0[0] * y[0] + row.0[1] * y[1] + row.0[2] * y[2] + row.1
 }

@@ -49,6 +49,8 @@ pub(super) struct Vertex {
     pub x: [f64; MOST],
     /// Row and multiplier (not negative, of the row as it was given) of each basic row.
     pub active: Vec<(usize, f64)>,
+    /// `c · x`
+    pub cost: f64,
     /// The bound that the multipliers give: `−Σ y_i b_i`.
     pub dual: f64,
 }
@@ -226,7 +228,8 @@ impl Program {
         let scaled = || (0..self.unknowns).map(|i| (at.basis[i], at.y[i].max(0.0)));
         let dual = -scaled().map(|(i, y)| y * self.rows[i].b).sum::<f64>();
         let active = scaled().map(|(i, y)| (i, y / self.lengths[i])).collect();
-        Vertex { x: at.x, active, dual }
+        let cost = self.cost.iter().zip(&at.x).map(|(c, x)| c * x).sum();
+        Vertex { x: at.x, active, cost, dual }
     }
 }
 

@@ -4,7 +4,7 @@
 //! Lengths are in units of the axis length, measured from the left springing; forces in units of the total load.
 //! National grid coordinates, millimetres and meganewtons therefore all give the same arithmetic.
 
-use super::{Depth, Force, Problem, Reaction, Unsolved};
+use super::{Depth, Problem, Reaction, Unsolved};
 use crate::geometry::{Boxes, Path, Point, Segment, Vec2};
 use crate::tolerance;
 
@@ -25,6 +25,47 @@ impl Loads {
     }
 }
 
+/// The loads before a joint in two sets: those that stay, and those that the load factor multiplies.
+#[derive(Debug, Clone, Copy, Default, PartialEq)]
+pub(super) struct LoadSets {
+    pub fixed: Loads,
+    pub varying: Loads,
+}
+
+impl LoadSets {
+    /// All loads with the varying ones times `factor`.
+    pub fn times(&self, factor: f64) -> Loads {
+        Loads {
+            fx: self.fixed.fx + factor * self.varying.fx,
+            fy: self.fixed.fy + factor * self.varying.fy,
+            moment: self.fixed.moment + factor * self.varying.moment,
+        }
+    }
+
+    pub fn enter(&mut self, e: &Entered) {
+        let set = if e.varies { &mut self.varying } else { &mut self.fixed };
+        set.add(e.at, e.force);
+    }
+}
+
+/// Weight along the axis of one set: per length on the axis itself, and per area of the ring.
+#[derive(Debug, Clone, Copy, Default)]
+pub(super) struct Weight {
+    pub on_axis: f64,
+    pub of_ring: f64,
+}
+
+impl Weight {
+    pub fn is_zero(&self) -> bool {
+        self.on_axis <= 0.0 && self.of_ring <= 0.0
+    }
+
+    /// Per length of axis at a joint of depth `d`.
+    fn at(&self, d: f64) -> f64 {
+        self.on_axis + self.of_ring * d
+    }
+}
+
 /// A stretch of the axis with one curvature, no load inside and a linear depth.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Piece {
@@ -36,11 +77,14 @@ pub(super) struct Piece {
     tangent: Vec2,
     /// Turning to the left per length: negative for an arch.
     pub curvature: f64,
-    before: Loads,
-    /// Distributed downward weight per length of axis.
-    pub weight: f64,
+    before: LoadSets,
+    /// Downward weight that stays, and weight that the load factor multiplies.
+    weight: [Weight; 2],
+    /// Depth that a line is measured by, and its slope: 1 throughout where none is known.
     depth: f64,
     pub depth_slope: f64,
+    /// Depth of the ring that weighs, and its slope.
+    ring: (f64, f64),
 }
 
 /// A joint normal to the axis: all that the forces in it depend on, but for the unknowns.
@@ -50,18 +94,23 @@ pub(super) struct Joint {
     pub at: Point,
     pub tangent: Vec2,
     pub depth: f64,
-    pub loads: Loads,
+    pub loads: LoadSets,
     /// Index of the piece it belongs to, which tells the two sides of a load or a kink apart.
     pub piece: usize,
 }
 
-/// The unknowns `(H, V, M_0)` in local units.
-pub(super) type Unknowns = [f64; 3];
+/// The unknowns `(H, V, M_0, λ)` in local units: the reaction, and the factor of the varying loads, which is 1 for a line
+/// under the loads as they are.
+pub(super) type Unknowns = [f64; 4];
+
+/// Coefficients of the unknowns, and a constant.
+pub(super) type Affine = ([f64; 4], f64);
 
 impl Joint {
     /// Resultant of all that acts before the joint.
     pub fn resultant(&self, r: &Unknowns) -> Vec2 {
-        Vec2::new(r[0] + self.loads.fx, r[1] + self.loads.fy)
+        let loads = self.loads.times(r[3]);
+        Vec2::new(r[0] + loads.fx, r[1] + loads.fy)
     }
 
     /// Thrust `N = R · t`, compression positive.
@@ -79,15 +128,24 @@ impl Joint {
         moment_about(self.at, &self.loads, r)
     }
 
-    /// `M` as coefficients of the unknowns and a constant.
-    pub fn moment_row(&self) -> ([f64; 3], f64) {
+    /// `M` as an affine function of the unknowns.
+    pub fn moment_row(&self) -> Affine {
         moment_row(self.at, &self.loads)
     }
 
-    /// `N` as coefficients of the unknowns and a constant.
-    pub fn thrust_row(&self) -> ([f64; 3], f64) {
-        let t = self.tangent;
-        ([t.x, t.y, 0.0], self.loads.fx * t.x + self.loads.fy * t.y)
+    /// `N` as an affine function of the unknowns.
+    pub fn thrust_row(&self) -> Affine {
+        self.force_row(self.tangent)
+    }
+
+    /// `S` as an affine function of the unknowns.
+    pub fn shear_row(&self) -> Affine {
+        self.force_row(self.normal())
+    }
+
+    fn force_row(&self, u: Vec2) -> Affine {
+        let along = |l: &Loads| l.fx * u.x + l.fy * u.y;
+        ([u.x, u.y, 0.0, along(&self.loads.varying)], along(&self.loads.fixed))
     }
 
     pub fn normal(&self) -> Vec2 {
@@ -95,14 +153,16 @@ impl Joint {
     }
 }
 
-/// Moment about `p` of the reaction `r` and of `loads`.
-pub(super) fn moment_about(p: Point, loads: &Loads, r: &Unknowns) -> f64 {
+/// Moment about `p` of the reaction and of `loads`.
+pub(super) fn moment_about(p: Point, loads: &LoadSets, r: &Unknowns) -> f64 {
+    let loads = loads.times(r[3]);
     r[2] + (r[1] + loads.fy) * p.x - (r[0] + loads.fx) * p.y - loads.moment
 }
 
-/// The same as coefficients of the unknowns and a constant.
-pub(super) fn moment_row(p: Point, loads: &Loads) -> ([f64; 3], f64) {
-    ([-p.y, p.x, 1.0], loads.fy * p.x - loads.fx * p.y - loads.moment)
+/// The same as an affine function of the unknowns.
+pub(super) fn moment_row(p: Point, loads: &LoadSets) -> Affine {
+    let about = |l: &Loads| l.fy * p.x - l.fx * p.y - l.moment;
+    ([-p.y, p.x, 1.0, about(&loads.varying)], about(&loads.fixed))
 }
 
 impl Piece {
@@ -112,33 +172,104 @@ impl Piece {
         let turn = Turn::new(self.curvature * d);
         let (t, n) = (self.tangent, Vec2::new(-self.tangent.y, self.tangent.x));
         let at = self.start + t * (d * turn.sinc) + n * (d * turn.cosc);
+        let depth = self.depth + self.depth_slope * d;
         let mut loads = self.before;
-        if self.weight > 0.0 {
-            // The weight stands on the axis: its moment is the integral of x along the piece.
-            let integral = self.start.x * d + d * d * (t.x * turn.second + n.x * turn.angle * turn.third);
-            loads.fy -= self.weight * d;
-            loads.moment -= self.weight * integral;
+        for (set, weight) in [&mut loads.fixed, &mut loads.varying].into_iter().zip(&self.weight) {
+            if weight.is_zero() {
+                continue;
+            }
+            let (force, moment) = if self.ring.1.abs() > 0.0 && weight.of_ring > 0.0 {
+                self.weight_by_gauss(weight, d)
+            } else {
+                // The weight on the axis has the integral of x along the piece for its moment; that of the ring acts at
+                // the centroid of each piece between two normals, outside the axis by curvature · depth² / 12.
+                let integral = self.start.x * d + d * d * (t.x * turn.second + n.x * turn.angle * turn.third);
+                let shift = self.curvature * self.ring.0.powi(3) / 12.0 * (at.y - self.start.y);
+                let density = weight.at(self.ring.0);
+                (density * d, density * integral + weight.of_ring * shift)
+            };
+            set.fy -= force;
+            set.moment -= moment;
         }
-        Joint {
-            s,
-            at,
-            tangent: t * turn.cos + n * turn.sin,
-            depth: self.depth + self.depth_slope * d,
-            loads,
-            piece,
+        Joint { s, at, tangent: t * turn.cos + n * turn.sin, depth, loads, piece }
+    }
+
+    /// Weight up to `d` from the start of the piece and its moment about the left springing, where the depth varies. Ten
+    /// points are exact to rounding on a piece that turns by half a radian at most.
+    fn weight_by_gauss(&self, weight: &Weight, d: f64) -> (f64, f64) {
+        let (mut force, mut moment) = (0.0, 0.0);
+        for (x, w) in GAUSS_10 {
+            for side in [-x, x] {
+                let u = d / 2.0 * (1.0 + side);
+                let turn = Turn::new(self.curvature * u);
+                let (t, n) = (self.tangent, Vec2::new(-self.tangent.y, self.tangent.x));
+                let at = self.start.x + t.x * u * turn.sinc + n.x * u * turn.cosc;
+                let depth = self.ring.0 + self.ring.1 * u;
+                let rise = t.y * turn.cos + n.y * turn.sin;
+                let shift = weight.of_ring * self.curvature * depth.powi(3) / 12.0 * rise;
+                force += w * d / 2.0 * weight.at(depth);
+                moment += w * d / 2.0 * (weight.at(depth) * at + shift);
+            }
         }
+        (force, moment)
+    }
+
+    /// Weight per length of axis at a joint of this piece.
+    pub fn weight_at(&self, joint: &Joint, r: &Unknowns) -> f64 {
+        let depth = self.ring_depth(joint.s);
+        self.weight[0].at(depth) + r[3] * self.weight[1].at(depth)
+    }
+
+    /// Depth of the ring that weighs at length `s` of the axis.
+    pub fn ring_depth(&self, s: f64) -> f64 {
+        self.ring.0 + self.ring.1 * (s - self.s0)
+    }
+
+    /// How far to the right of the axis point the weight of a joint acts, times that weight.
+    fn weight_arm(&self, joint: &Joint, r: &Unknowns) -> f64 {
+        let ring = self.weight[0].of_ring + r[3] * self.weight[1].of_ring;
+        ring * self.curvature * self.ring_depth(joint.s).powi(3) / 12.0 * joint.tangent.y
+    }
+
+    /// Where the line of action of the weight of a joint crosses the level of its axis point, right of it.
+    pub fn weight_offset(&self, joint: &Joint, r: &Unknowns) -> f64 {
+        let weight = self.weight_at(joint, r);
+        if weight > 0.0 { self.weight_arm(joint, r) / weight } else { 0.0 }
     }
 
     /// Rate of change of `N` along the axis at a joint of this piece.
     pub fn thrust_slope(&self, joint: &Joint, r: &Unknowns) -> f64 {
-        self.curvature * joint.shear(r) - self.weight * joint.tangent.y
+        self.curvature * joint.shear(r) - self.weight_at(joint, r) * joint.tangent.y
+    }
+
+    /// Rate of change of `S`.
+    pub fn shear_slope(&self, joint: &Joint, r: &Unknowns) -> f64 {
+        -self.curvature * joint.thrust(r) - self.weight_at(joint, r) * joint.tangent.x
+    }
+
+    /// Rate of change of `M`: the shear, and the couple of a weight that acts beside the axis.
+    pub fn moment_slope(&self, joint: &Joint, r: &Unknowns) -> f64 {
+        joint.shear(r) + self.weight_arm(joint, r)
+    }
+
+    pub fn weighs(&self) -> bool {
+        !(self.weight[0].is_zero() && self.weight[1].is_zero())
     }
 
     /// Whether `M / (d N)` has no peak inside: `M` and `d N` are both linear there, or one of them is constant.
     pub fn is_plain(&self) -> bool {
-        self.curvature.abs() == 0.0 && self.weight.abs() == 0.0
+        self.curvature.abs() == 0.0 && !self.weighs()
     }
 }
+
+/// Abscissae (of both signs) and weights of the Gauss rule of ten points.
+const GAUSS_10: [(f64, f64); 5] = [
+    (0.148_874_338_981_631_22, 0.295_524_224_714_752_87),
+    (0.433_395_394_129_247_2, 0.269_266_719_309_996_35),
+    (0.679_409_568_299_024_4, 0.219_086_362_515_982_04),
+    (0.865_063_366_688_984_5, 0.149_451_349_150_580_6),
+    (0.973_906_528_517_171_7, 0.066_671_344_308_688_14),
+];
 
 /// Sine, cosine and the integrals of a turning tangent that stay exact for hardly curved pieces.
 struct Turn {
@@ -202,7 +333,12 @@ pub(super) struct Entered {
     pub foot: f64,
     pub at: Point,
     pub force: Vec2,
+    /// Whether the load factor multiplies it.
+    pub varies: bool,
 }
+
+/// Largest number of voussoirs.
+const MOST_VOUSSOIRS: usize = 100_000;
 
 /// The span in local units.
 #[derive(Debug, Clone)]
@@ -225,8 +361,8 @@ pub(super) struct Span {
     /// The axis lies wholly below its chord.
     pub hangs: bool,
     pub has_depth: bool,
-    /// Distributed weight per local length, in local units.
-    pub weight: f64,
+    /// Weight along the axis that stays, and weight that the load factor multiplies.
+    pub weight: [Weight; 2],
 }
 
 impl Span {
@@ -254,15 +390,27 @@ impl Span {
         let hangs = above.1 <= flat;
         let crown = if hangs || above.1 < -below.1 { below } else { above };
 
-        let (entered, missed) = place(&path, &boxes, &problem.forces, origin, length);
+        let (mut entered, missed) = place(&path, &boxes, problem, origin, length);
+        for e in &mut entered {
+            e.varies = problem.varying.contains(&e.index);
+        }
+        let depth = depth_table(problem.depth.as_ref(), length, crown.0);
         let total: f64 = entered.iter().map(|e| e.force.hypot()).sum();
-        let load = total + problem.weight_on_axis * length;
+        let load = total + (problem.weight_on_axis + problem.ring_weight * mean(&depth) * length) * length;
         let inside = |e: &&Entered| {
             e.force.hypot() > 0.0 && e.foot > tolerance::ONE_JOINT && e.foot < 1.0 - tolerance::ONE_JOINT
         };
-        if problem.weight_on_axis <= 0.0 && entered.iter().find(inside).is_none() {
+        let weight = Weight {
+            on_axis: problem.weight_on_axis * length / load,
+            of_ring: problem.ring_weight * length * length / load,
+        };
+        if problem.weight_on_axis + problem.ring_weight <= 0.0 && entered.iter().find(inside).is_none() {
             return Err(Unsolved::NoLoad);
         }
+        let weight = match problem.weight_varies {
+            false => [weight, Weight::default()],
+            true => [Weight::default(), weight],
+        };
         let mut span = Self {
             origin,
             length,
@@ -274,12 +422,20 @@ impl Span {
             crown,
             hangs,
             has_depth: problem.depth.is_some(),
-            weight: problem.weight_on_axis * length / load,
+            weight,
         };
         for e in &mut span.entered {
             e.force /= load;
         }
-        span.cut(&depth_table(problem.depth.as_ref(), length, crown.0));
+        span.cut(&depth);
+        // Measured again on the pieces, which keep the digits of hardly curved arcs.
+        let (top, end) = (span.joint_at(crown.0, true).at, span.last().at);
+        if span.crown.1.abs() > 0.0 {
+            span.crown.1 = top.y - end.y / end.x * top.x;
+        }
+        if span.crown.1.abs() <= flat {
+            return Err(Unsolved::NoRise);
+        }
         Ok(span)
     }
 
@@ -287,13 +443,13 @@ impl Span {
     fn cut(&mut self, depth: &[(f64, f64)]) {
         let cumulative = self.path.cumulative();
         let mut start = Point::ORIGIN;
-        let mut loads = Loads::default();
+        let mut loads = LoadSets::default();
         let mut next = 0;
-        let enter = |next: &mut usize, until: f64, loads: &mut Loads| {
+        let enter = |next: &mut usize, until: f64, loads: &mut LoadSets| {
             while let Some(e) = self.entered.get(*next)
                 && e.foot <= until
             {
-                loads.add(e.at, e.force);
+                loads.enter(e);
                 *next += 1;
             }
         };
@@ -324,6 +480,12 @@ impl Span {
             let from = self.entered.partition_point(|e| e.foot <= s0);
             cuts.extend(self.entered[from..].iter().map(|e| e.foot).take_while(|&s| s < s1).filter(inner));
             cuts.extend(depth.iter().map(|d| d.0).filter(inner));
+            if self.weight.iter().any(|w| w.of_ring > 0.0) {
+                // Short enough for the weight by Gauss.
+                let turn = (whole.curvature * (s1 - s0)).abs();
+                let parts = (1..20).find(|&n| f64::from(n) * 0.5 >= turn).unwrap_or(20);
+                cuts.extend((1..parts).map(|k| s0 + (s1 - s0) * f64::from(k) / f64::from(parts)));
+            }
             cuts.sort_by(f64::total_cmp);
             cuts.dedup_by(|b, a| *b - *a <= slack);
             cuts.push(s1);
@@ -343,6 +505,7 @@ impl Span {
                 let middle = depth_at(depth, f64::midpoint(a, b));
                 piece.depth = middle.0 + middle.1 * (a - f64::midpoint(a, b));
                 piece.depth_slope = middle.1;
+                piece.ring = (piece.depth, piece.depth_slope);
                 let end = piece.joint(b, 0);
                 loads = end.loads;
                 start = end.at;
@@ -390,8 +553,8 @@ impl Span {
         self.pieces[i].joint(self.pieces[i].s1, i)
     }
 
-    /// `M = 0` about a point near the axis, as coefficients and a constant: the loads before its nearest joint count.
-    pub fn hinge_row(&self, p: Point) -> ([f64; 3], f64) {
+    /// `M` about a point near the axis as an affine function: the loads before its nearest joint count.
+    pub fn hinge_row(&self, p: Point) -> Affine {
         let (s, _) = self.path.nearest(p);
         moment_row(p, &self.joint_at(s, true).loads)
     }
@@ -427,7 +590,7 @@ impl Span {
 
     /// Sum of all loads, in local units.
     pub fn total(&self) -> Vec2 {
-        let loads = self.last().loads;
+        let loads = self.last().loads.times(1.0);
         Vec2::new(loads.fx, loads.fy)
     }
 }
@@ -440,21 +603,34 @@ impl Piece {
             start,
             tangent,
             curvature: 0.0,
-            before: Loads::default(),
-            weight: 0.0,
+            before: LoadSets::default(),
+            weight: [Weight::default(); 2],
             depth: 1.0,
             depth_slope: 0.0,
+            ring: (1.0, 0.0),
         }
     }
 }
 
 fn check_input(problem: &Problem) -> Result<(), Unsolved> {
     let bad = |what: &str| Err(Unsolved::Input(what.into()));
+    if !problem.entering.iter().all(|(i, s)| *i < problem.forces.len() && s.is_finite()) {
+        return bad("a force that does not exist has a place where it enters the ring");
+    }
+    if problem.voussoirs.is_some_and(|n| n == 0 || n > MOST_VOUSSOIRS) {
+        return bad("the number of voussoirs must be between 1 and 100 000");
+    }
+    if problem.friction.is_some_and(|f| !(f > 0.0 && f.is_finite())) {
+        return bad("the coefficient of friction must be positive");
+    }
     if !problem.forces.iter().all(|f| f.at.is_finite() && f.force.is_finite()) {
         return bad("a load has a place or a force that is not a finite number");
     }
-    if !(problem.weight_on_axis >= 0.0 && problem.weight_on_axis.is_finite()) {
-        return bad("the weight along the axis must be zero or positive");
+    if ![problem.weight_on_axis, problem.ring_weight].iter().all(|w| *w >= 0.0 && w.is_finite()) {
+        return bad("the weight of the rib must be zero or positive");
+    }
+    if problem.ring_weight > 0.0 && problem.depth.is_none() {
+        return bad("the weight of the ring needs its depth");
     }
     let positive = |d: f64| d > 0.0 && d.is_finite();
     let sound = match &problem.depth {
@@ -490,6 +666,14 @@ fn depth_table(depth: Option<&Depth>, length: f64, crown: f64) -> Vec<(f64, f64)
     }
 }
 
+/// Mean depth over the axis, in local units.
+fn mean(table: &[(f64, f64)]) -> f64 {
+    let mut places: Vec<f64> = table.iter().map(|d| d.0).filter(|s| *s > 0.0 && *s < 1.0).collect();
+    places.insert(0, 0.0);
+    places.push(1.0);
+    places.windows(2).map(|w| (w[1] - w[0]) * depth_at(table, f64::midpoint(w[0], w[1])).0).sum()
+}
+
 /// Depth and its slope at length `s`.
 fn depth_at(table: &[(f64, f64)], s: f64) -> (f64, f64) {
     let i = table.partition_point(|d| d.0 <= s);
@@ -508,13 +692,19 @@ fn depth_at(table: &[(f64, f64)], s: f64) -> (f64, f64) {
 fn place(
     path: &Path,
     boxes: &Boxes,
-    forces: &[Force],
+    problem: &Problem,
     origin: Point,
     length: f64,
 ) -> (Vec<Entered>, Vec<usize>) {
-    let mut entered = Vec::with_capacity(forces.len());
+    let mut stated = vec![None; problem.forces.len()];
+    for &(index, s) in &problem.entering {
+        if let Some(place) = stated.get_mut(index) {
+            *place = Some(s / length);
+        }
+    }
+    let mut entered = Vec::with_capacity(problem.forces.len());
     let mut missed = Vec::new();
-    for (index, force) in forces.iter().enumerate() {
+    for (index, force) in problem.forces.iter().enumerate() {
         let at = ((force.at - origin) / length).to_point();
         // A load whose factor is zero still has a place: below or above its point.
         let direction = if force.force.hypot() > 0.0 { force.force } else { Vec2::new(0.0, -1.0) };
@@ -523,17 +713,17 @@ fn place(
             // Of two at one distance the one ahead of the force.
             a.along.abs().total_cmp(&b.along.abs()).then(b.along.total_cmp(&a.along))
         });
-        let Some(first) = first else {
+        let Some(mut foot) = stated[index].or(first.map(|f| f.s)) else {
             missed.push(index);
             continue;
         };
-        let mut foot = first.s;
+        foot = foot.clamp(0.0, 1.0);
         for end in [0.0, 1.0] {
             if (foot - end).abs() <= tolerance::ONE_JOINT {
                 foot = end;
             }
         }
-        entered.push(Entered { index, foot, at, force: force.force });
+        entered.push(Entered { index, foot, at, force: force.force, varies: false });
     }
     // Nothing may depend on the order of the input: loads with one foot follow by place and force.
     entered.sort_by(|a, b| {

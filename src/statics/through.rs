@@ -7,7 +7,7 @@ use crate::geometry::Point;
 /// The line with no moment about three points (local units); `None` when they lie on one straight line.
 pub(super) fn through(span: &Span, points: &[Point; 3]) -> Option<Unknowns> {
     let rows = points.map(|p| span.hinge_row(p));
-    let space = Subspace::new(span, &rows)?;
+    let space = Subspace::lines(span, &rows)?;
     Some(space.unknowns(&[]))
 }
 
