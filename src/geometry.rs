@@ -334,7 +334,7 @@ fn swept_part(angle: f64, start_angle: f64, sweep: f64) -> Option<f64> {
 }
 
 /// Length along the piece of its point nearest to `p`, and the distance.
-fn nearest_on_segment(segment: &Segment, p: Point) -> (f64, f64) {
+pub(crate) fn nearest_on_segment(segment: &Segment, p: Point) -> (f64, f64) {
     match *segment {
         Segment::Line { start, end } => {
             let d = end - start;

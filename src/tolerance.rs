@@ -263,3 +263,28 @@ pub const FUNICULAR: f64 = 1e-9;
 /// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
 /// tangents without end.
 pub const CONE_SLACK: f64 = 1e-11;
+/// Furthest a chain of arcs may stray from the true middle line of a ring, as part of the length of the line: a fifth of a
+/// micrometre over twenty metres, far below what a drawing means.
+pub const MIDDLE_LINE: f64 = 1e-8;
+
+/// Furthest the depth read from a table may stray from the true depth of a ring, as part of it: a few micrometres.
+pub const RING_DEPTH: f64 = 1e-5;
+
+/// Halvings of an eighth of a ring before its middle line is taken as it is: pieces of a thirty-thousandth of the length.
+pub const MIDDLE_HALVINGS: u32 = 12;
+
+/// Most pieces of a middle line: a survey with a point every few millimetres stays within it.
+pub const MIDDLE_PIECES: usize = 4000;
+
+/// Arcs whose centres and radii agree to this part of the length of the ring are one arc.
+pub const ONE_ARC: f64 = 1e-9;
+
+/// Depth of a ring, as part of its length, below which its two lines are taken to touch.
+pub const NO_DEPTH: f64 = 1e-6;
+
+/// Distance of a drawn axis from the middle of the ring, as part of the depth, from which on it is told.
+pub const OFF_MIDDLE: f64 = 0.005;
+
+/// Angle in radians between the drawn end of a ring and the joint normal to its axis from which on it is told: five
+/// degrees.
+pub const END_SKEW: f64 = 0.09;

@@ -16,7 +16,7 @@ use crate::tolerance;
 /// Curves that are not read yet.
 const UNREAD: [&str; 5] = ["SPLINE", "ELLIPSE", "HELIX", "MLINE", "CIRCLE"];
 
-/// Whether the first scan of a drawing keeps a record: everything on the layers of axis and loads, by their patterns or, where
+/// Whether the first scan of a drawing keeps a record: everything on the layers of axis, ring lines and loads, by their patterns or, where
 /// the job names none, by words in their names.
 pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     let stated = |role: Role| settings.states(&format!("layers.{}", role.key()));
@@ -24,7 +24,7 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
         return true;
     }
     match settings.layers.role_of(candidate.layer) {
-        Ok(Some(JobRole::Axis | JobRole::Loads)) | Err(_) => true,
+        Ok(Some(JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados)) | Err(_) => true,
         Ok(_) => {
             candidate.block.is_none()
                 && ((!stated(Role::Axis)
@@ -55,14 +55,20 @@ pub fn read_outlined(
 ) -> Result<Drawing, Refusal> {
     let notes = outline.notes.iter().cloned().map(Note::File).collect();
     let mut reader = Reader { bytes, outline, settings, notes };
-    let (axis_layers, axis) = reader.axis()?;
-    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, &axis)?;
-    reader.one_plane(&axis, &points)?;
-    reader.hidden(axis_layers.iter().chain(&load_layers));
+    let [(intrados_layers, intrados), (extrados_layers, extrados)] = reader.ring_lines()?;
+    let (axis_layers, axis) = reader.axis(!intrados.is_empty())?;
+    // Where no axis is drawn, the ring lines stand for it.
+    let outline_of = if axis.is_empty() { [&intrados[..], &extrados[..]].concat() } else { axis.clone() };
+    let at = if axis.is_empty() { &intrados } else { &axis };
+    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, at)?;
+    reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points)?;
+    reader.hidden(axis_layers.iter().chain(&load_layers).chain(&intrados_layers).chain(&extrados_layers));
     reader.parts_not_read()?;
     reader.in_blocks(&axis_layers, &load_layers)?;
+    reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
+    reader.passed_over(Role::Extrados, &extrados_layers, &CURVES);
     let number = |name| outline.header(name, 70).and_then(|v| v.parse().ok());
-    let (left, right) = extent(&axis);
+    let (left, right) = extent(&outline_of);
     let unit = unit::decide(
         settings.drawing.unit,
         settings.drawing.scale,
@@ -72,7 +78,18 @@ pub fn read_outlined(
         &mut reader.notes,
     );
     let viewports = outline.records.iter().filter_map(viewport::viewport).collect();
-    Ok(Drawing { unit, axis_layers, load_layers, axis, points, texts, viewports, notes: reader.notes })
+    Ok(Drawing {
+        unit,
+        axis_layers,
+        load_layers,
+        axis,
+        intrados,
+        extrados,
+        points,
+        texts,
+        viewports,
+        notes: reader.notes,
+    })
 }
 
 /// The layers of the loads with what they hold.
@@ -91,13 +108,40 @@ struct Reader<'a> {
 }
 
 impl Reader<'_> {
-    /// The axis: by the patterns, else guessed by name and content, else by content.
-    fn axis(&mut self) -> Result<(Vec<String>, Vec<Curve>), Refusal> {
+    /// Intrados and extrados by the patterns; both or none.
+    fn ring_lines(&mut self) -> Result<[(Vec<String>, Vec<Curve>); 2], Refusal> {
+        let read = |role: Role| -> Result<(Vec<String>, Vec<Curve>), Refusal> {
+            let layers = roles::named(self.outline, self.settings, role, &CURVES)?;
+            let curves = self.curves(&layers, &self.outline.records)?;
+            self.refuse_unread(&layers, role)?;
+            Ok((layers, curves))
+        };
+        let lines = [read(Role::Intrados)?, read(Role::Extrados)?];
+        match &lines {
+            [(inner, _), (outer, _)] if inner.is_empty() != outer.is_empty() => {
+                let (have, lack) = if outer.is_empty() { ("intrados", "extrados") } else { ("extrados", "intrados") };
+                let layer = inner.iter().chain(outer).next().cloned().unwrap_or_default();
+                Err(Refusal::new(
+                    "ring-half",
+                    format!("layer {layer} holds the {have}, and no layer holds the {lack}: a ring has both"),
+                    format!("Draw the {lack}, or name its layer with `[layers] {lack}`"),
+                )
+                .on_layer(layer))
+            }
+            _ => Ok(lines),
+        }
+    }
+
+    /// The axis: by the patterns, else (without ring lines) guessed by name and content, else by content.
+    fn axis(&mut self, ring: bool) -> Result<(Vec<String>, Vec<Curve>), Refusal> {
         let layers = roles::named(self.outline, self.settings, Role::Axis, &CURVES)?;
         if !layers.is_empty() {
             let curves = self.curves(&layers, &self.outline.records)?;
-            self.refuse_unread(&layers)?;
+            self.refuse_unread(&layers, Role::Axis)?;
             return Ok((layers, curves));
+        }
+        if ring {
+            return Ok((Vec::new(), Vec::new()));
         }
         // The best names first; among equals the one layer that holds a line from springing to springing.
         let by_name = roles::axis_by_name(self.outline);
@@ -236,10 +280,10 @@ impl Reader<'_> {
         Ok(curves)
     }
 
-    /// Refuses curves on the layers of the axis that cannot be read: without them it would be another axis.
-    fn refuse_unread(&self, layers: &[String]) -> Result<(), Refusal> {
+    /// Refuses curves on the layers of axis or ring line that cannot be read: without them it would be another one.
+    fn refuse_unread(&self, layers: &[String], role: Role) -> Result<(), Refusal> {
         match in_model(&self.outline.records, layers).find(|r| UNREAD.contains(&r.kind.as_str())) {
-            Some(record) => Err(not_an_axis(record)),
+            Some(record) => Err(not_readable(record, role)),
             None => Ok(()),
         }
     }
@@ -301,7 +345,8 @@ impl Reader<'_> {
         for layer in &self.outline.census {
             let count: u64 = layer.model.values().sum();
             let part = match roles::role_of(self.settings, &layer.name)? {
-                Some(role) if role != JobRole::Axis && role != JobRole::Loads => role.name(),
+                Some(JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados) => continue,
+                Some(role) => role.name(),
                 _ => continue,
             };
             if count > 0 {
@@ -322,6 +367,8 @@ impl Reader<'_> {
             };
             let role = match roles::role_of(self.settings, &record.layer)? {
                 Some(JobRole::Axis) if CURVES.contains(&record.kind.as_str()) => Role::Axis,
+                Some(JobRole::Intrados) if CURVES.contains(&record.kind.as_str()) => Role::Intrados,
+                Some(JobRole::Extrados) if CURVES.contains(&record.kind.as_str()) => Role::Extrados,
                 Some(JobRole::Loads) if POINTS.contains(&record.kind.as_str()) => Role::Loads,
                 _ => continue,
             };
@@ -420,17 +467,18 @@ pub(super) fn in_model<'r>(records: &'r [Record], layers: &[String]) -> impl Ite
     })
 }
 
-fn not_an_axis(record: &Record) -> Refusal {
+fn not_readable(record: &Record, role: Role) -> Refusal {
     let source: Source = convert::source(record);
     source.refuse(
         "axis-kind",
         format!(
-            "layer {} of the axis holds {} {}: the axis is read from LINE, ARC, LWPOLYLINE and POLYLINE only",
+            "layer {} of the {} holds {} {}: it is read from LINE, ARC, LWPOLYLINE and POLYLINE only",
             record.layer,
+            role.key(),
             if matches!(record.kind.as_str(), "ELLIPSE" | "MLINE") { "an" } else { "a" },
             record.kind
         ),
-        "Draw the axis with lines, arcs and polylines, or move what is no part of it to another layer",
+        "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",
     )
 }
 

@@ -34,8 +34,12 @@ pub struct Drawing {
     pub axis_layers: Vec<String>,
     /// Layers that hold loads.
     pub load_layers: Vec<String>,
-    /// Curves on the axis layers, in the order of the file.
+    /// Curves on the axis layers, in the order of the file; empty where ring lines stand for it.
     pub axis: Vec<Curve>,
+    /// Curves of the inner line of the ring, in the order of the file.
+    pub intrados: Vec<Curve>,
+    /// Curves of its outer line, in the order of the file.
+    pub extrados: Vec<Curve>,
     /// Points on the load layers, in the order of the file.
     pub points: Vec<PointLike>,
     /// Texts on the load layers, in the order of the file.

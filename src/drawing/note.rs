@@ -12,6 +12,10 @@ pub enum Role {
     Axis,
     /// Loads and their labels.
     Loads,
+    /// The inner line of the ring.
+    Intrados,
+    /// The outer line of the ring.
+    Extrados,
 }
 
 impl Role {
@@ -20,6 +24,8 @@ impl Role {
         match self {
             Self::Axis => "axis",
             Self::Loads => "loads",
+            Self::Intrados => "intrados",
+            Self::Extrados => "extrados",
         }
     }
 }

@@ -35,6 +35,8 @@ pub fn named(
     let wanted = match role {
         Role::Axis => JobRole::Axis,
         Role::Loads => JobRole::Loads,
+        Role::Intrados => JobRole::Intrados,
+        Role::Extrados => JobRole::Extrados,
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();
@@ -49,7 +51,7 @@ pub fn named(
         }
     }
     let path = format!("layers.{}", role.key());
-    if found.is_empty() && (settings.states(&path) || role == Role::Axis && !unusable.is_empty()) {
+    if found.is_empty() && (settings.states(&path) || role != Role::Loads && !unusable.is_empty()) {
         return Err(nothing_on(outline, settings, role, wanted, kinds, &unusable));
     }
     Ok(found)
@@ -84,7 +86,7 @@ fn nothing_on(
         return Refusal::new(
             "layer-unusable",
             format!("layer {} for `[layers] {key}` holds nothing of type {}: only {}", layer.name, kinds.join(", "), holds.join(", ")),
-            "Draw the axis with lines, arcs and polylines and the loads with points, circles and blocks, or name another layer",
+            "Draw axis and ring lines with lines, arcs and polylines and the loads with points, circles and blocks, or name another layer",
         )
         .on_layer(layer.name.clone());
     }

@@ -7,6 +7,7 @@ pub mod figures;
 pub mod labels;
 pub mod loads;
 pub mod matching;
+pub mod middle;
 pub mod note;
 pub mod pieces;
 pub mod piers;

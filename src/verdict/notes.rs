@@ -134,6 +134,8 @@ fn role_name(role: Role) -> &'static str {
     match role {
         Role::Axis => "axis",
         Role::Loads => "loads",
+        Role::Intrados => "intrados",
+        Role::Extrados => "extrados",
     }
 }
 
