@@ -262,7 +262,7 @@ fn analyse(model: &Model, settings: &Settings) -> Result<Vec<Analysis>, Refusal>
         .spans
         .iter()
         .map(|span| {
-            let problem = problem::problem(span, settings);
+            let problem = problem::problem(span, model.forces, settings)?;
             statics::analyse(&problem).map_err(|unsolved| problem::refusal(span, &unsolved))
         })
         .collect()

@@ -2,19 +2,26 @@
 
 use crate::geometry::Point;
 use crate::job::{Draw, Govern, RibDepth, Settings, Support};
-use crate::model::Span;
+use crate::model::{Forces, Span};
 use crate::refusal::Refusal;
-use crate::statics::{self, Depth, Force, LineKind, Problem, Unsolved};
+use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Unsolved};
 
-/// The problem of one span under its drawn loads.
-pub fn problem(span: &Span, settings: &Settings) -> Problem {
+/// The problem of one span under its drawn loads. With unit loads nothing strains the rib but the loads: a change of
+/// temperature has no size beside an unknown force.
+///
+/// # Errors
+/// When a key that the elastic line needs is missing from the job.
+pub fn problem(span: &Span, forces: Forces, settings: &Settings) -> Result<Problem, Refusal> {
     let rib = &settings.rib;
+    let effects = if forces == Forces::Kilonewtons { effects(settings)? } else { Effects::default() };
     let mut draw: Vec<LineKind> = settings.line.draw.iter().map(|d| drawn(*d)).collect();
     if settings.limits.geometric_factor.is_some() && !draw.contains(&LineKind::Closest) {
         // The factor is that of the closest line, whichever line governs.
         draw.push(LineKind::Closest);
     }
-    Problem {
+    Ok(Problem {
+        stiffness: rib.elastic_modulus.zip(rib.width).map(|(e, b)| e * KN_PER_M2 * b / (1.0 + rib.creep)),
+        effects,
         forces: span.loads.iter().map(|load| Force { at: load.at, force: load.force }).collect(),
         depth: rib.depth.map(|depth| match depth {
             RibDepth::Constant(d) => Depth::Constant(d),
@@ -39,6 +46,41 @@ pub fn problem(span: &Span, settings: &Settings) -> Problem {
         },
         draw,
         ..Problem::new(span.axis.clone())
+    })
+}
+
+/// kN/m² in a MPa.
+const KN_PER_M2: f64 = 1000.0;
+
+/// What strains the rib beside its loads.
+fn effects(settings: &Settings) -> Result<Effects, Refusal> {
+    let rib = &settings.rib;
+    let thermal = match (rib.temperature, rib.expansion) {
+        (0.0, _) => 0.0,
+        (change, Some(expansion)) => change * expansion,
+        (_, None) => return Err(missing(settings, "rib.expansion", "rib.temperature")),
+    };
+    let effects =
+        Effects { strain: thermal - rib.shrinkage, left: rib.movement.left, right: rib.movement.right };
+    if effects != Effects::default() {
+        for (key, given) in [("rib.elastic_modulus", rib.elastic_modulus), ("rib.width", rib.width)] {
+            if given.is_none() {
+                return Err(missing(settings, key, "temperature, shrinkage and movement"));
+            }
+        }
+    }
+    Ok(effects)
+}
+
+fn missing(settings: &Settings, key: &str, asks: &str) -> Refusal {
+    let refusal = Refusal::new(
+        "job-missing",
+        format!("`{key}` is missing, and {asks} cannot be reckoned without it"),
+        format!("State `{key}` in the job file."),
+    );
+    match &settings.origin.file {
+        Some(file) => refusal.in_file(file),
+        None => refusal,
     }
 }
 

@@ -282,21 +282,20 @@ fn one_arc_each(segments: &[Segment], reach: f64) -> Vec<Segment> {
     let mut first: Option<Segment> = None;
     for &next in segments {
         let joined = match (first, out.last()) {
-            (
-                Some(Segment::Arc { centre, radius, .. }),
-                Some(&Segment::Arc { sweep: before, .. }),
-            ) => match next {
-                Segment::Arc { centre: c, radius: r, sweep, .. }
-                    if (c - centre).hypot() <= reach
-                        && (r - radius).abs() <= reach
-                        && (before + sweep).abs() < 1.9 * std::f64::consts::PI
-                        && before * sweep > 0.0 =>
-                {
-                    let start = out[out.len() - 1].start();
-                    Some(Segment::bulge(start, next.end(), ((before + sweep) / 4.0).tan()))
+            (Some(Segment::Arc { centre, radius, .. }), Some(&Segment::Arc { sweep: before, .. })) => {
+                match next {
+                    Segment::Arc { centre: c, radius: r, sweep, .. }
+                        if (c - centre).hypot() <= reach
+                            && (r - radius).abs() <= reach
+                            && (before + sweep).abs() < 1.9 * std::f64::consts::PI
+                            && before * sweep > 0.0 =>
+                    {
+                        let start = out[out.len() - 1].start();
+                        Some(Segment::bulge(start, next.end(), ((before + sweep) / 4.0).tan()))
+                    }
+                    _ => None,
                 }
-                _ => None,
-            },
+            }
             (Some(Segment::Line { .. }), Some(&Segment::Line { start, end })) => match next {
                 Segment::Line { end: far, .. } => {
                     let way = far - start;
@@ -338,7 +337,8 @@ mod tests {
     use std::f64::consts::PI;
 
     fn arc(radius: f64, centre: Point, half: f64) -> Path {
-        Path::new([Segment::Arc { centre, radius, start_angle: PI / 2.0 + half, sweep: -2.0 * half }]).unwrap()
+        Path::new([Segment::Arc { centre, radius, start_angle: PI / 2.0 + half, sweep: -2.0 * half }])
+            .unwrap()
     }
 
     #[test]
@@ -398,7 +398,8 @@ mod tests {
 
     #[test]
     fn a_mirrored_ring_has_the_mirrored_line() {
-        let pts = |list: &[(f64, f64)]| -> Vec<Point> { list.iter().map(|&(x, y)| Point::new(x, y)).collect() };
+        let pts =
+            |list: &[(f64, f64)]| -> Vec<Point> { list.iter().map(|&(x, y)| Point::new(x, y)).collect() };
         let inner = pts(&[(0.0, 0.0), (1.0, 1.4), (3.1, 2.4), (5.0, 2.2), (6.4, 1.1), (7.0, 0.0)]);
         let outer = pts(&[(-0.6, 0.2), (0.7, 2.0), (3.0, 3.0), (5.3, 2.8), (6.9, 1.4), (7.5, 0.1)]);
         let turned = |p: &[Point]| -> Vec<Point> { p.iter().rev().map(|q| Point::new(-q.x, q.y)).collect() };
