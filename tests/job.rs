@@ -416,7 +416,7 @@ fn a_byte_order_mark_and_crlf_are_no_trouble() {
 
 #[test]
 fn all_problems_are_told_at_once() {
-    let refusal = refusal("[rib]\nwidth = -1\ndetph = 2\ncreep = 3\n");
+    let refusal = refusal("[rib]\nwidth = -1\ndetph = 2\nbacking = 3\n");
     assert_eq!(refusal.line, Some(2));
     assert!(refusal.message.contains("line 3: `rib.detph`"), "{refusal}");
     assert!(refusal.message.contains("line 4: `rib.backing`"), "{refusal}");
