@@ -142,7 +142,7 @@ impl Limit<'_> {
                 }
             }
             if added == 0 {
-                return self.found(&vertex, r, constant, sign, &rows, first);
+                return self.found(&vertex, r, (unknown, sign, constant), &rows, first);
             }
         }
         Extreme::Stalled
@@ -152,14 +152,12 @@ impl Limit<'_> {
         &self,
         vertex: &Vertex,
         r: Unknowns,
-        constant: f64,
-        sign: f64,
+        (unknown, sign, constant): (usize, f64, f64),
         rows: &[Bound],
         first: usize,
     ) -> Extreme {
-        let far = tolerance::UNBOUNDED * 0.5;
-        let flat = (8.0 * self.span.lever()).min(1.0);
-        if (r[0] * flat).abs().max(r[1].abs()).max(r[3].abs()) > far {
+        let flat = if unknown == 0 { (8.0 * self.span.lever()).min(1.0) } else { 1.0 };
+        if (r[unknown] * flat).abs() > tolerance::UNBOUNDED * 0.5 {
             return Extreme::Unbounded;
         }
         let primal = sign * (vertex.cost + constant);
