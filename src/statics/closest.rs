@@ -9,10 +9,11 @@
 
 use super::Proof;
 use super::peaks::{Peak, Sampling};
-use super::quadratic::{Bound, Quadratic};
+use super::quadratic::Bound;
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
 use super::span::{Affine, Joint, Span, Unknowns};
 use super::subspace::Subspace;
+use super::ties::{bending, independent};
 use crate::tolerance;
 
 /// Joints that the exchange starts with.
@@ -394,25 +395,7 @@ impl<'a> Search<'a> {
         let mut active = step.multipliers.clone();
         active.retain(|m| m.value > tolerance::MULTIPLIER * most);
         active.sort_by(|a, b| b.value.total_cmp(&a.value).then(a.cut.cmp(&b.cut)));
-        let mut held: Vec<Bound> = Vec::new();
-        let mut units: Vec<[f64; 3]> = Vec::new();
-        for m in &active {
-            let (a, b) = self.bound(&self.cuts[m.cut], m.row, step.tau);
-            let size = a.iter().map(|v| v * v).sum::<f64>().sqrt();
-            let mut rest = a.map(|v| v / size);
-            for u in &units {
-                let along: f64 = (0..n).map(|j| rest[j] * u[j]).sum();
-                for j in 0..n {
-                    rest[j] -= along * u[j];
-                }
-            }
-            let left = rest.iter().map(|v| v * v).sum::<f64>().sqrt();
-            if size > 0.0 && left > tolerance::RANK {
-                units.push(rest.map(|v| v / left));
-                held.push((a, b));
-            }
-        }
-        held
+        independent(n, active.iter().map(|m| self.bound(&self.cuts[m.cut], m.row, step.tau)))
     }
 
     /// `±M − τ d N ≤ 0` or `ε − N ≤ 0` as a row of the free unknowns.
@@ -432,7 +415,7 @@ impl<'a> Search<'a> {
 
     /// Of all lines as close as the best, the one of least `∫ M² ds`.
     fn least_bending(&mut self, step: &Step, holds: &[Bound]) -> Option<Unknowns> {
-        let aim = self.bending();
+        let aim = bending(self.span, self.whole, self.space);
         let leave = step.tau + tolerance::TIE_LEAVE * step.tau.max(self.floor);
         let known = self.cuts.len();
         let mut chosen = None;
@@ -454,30 +437,6 @@ impl<'a> Search<'a> {
         // The multipliers of the proof count the cuts that the program knew.
         self.cuts.truncate(known);
         chosen
-    }
-
-    /// `½ ∫ M² ds` in the free unknowns, by Gauss with three points between neighbouring samples.
-    fn bending(&self) -> Quadratic {
-        let mut q = Quadratic { n: self.space.free, matrix: [[0.0; 3]; 3], linear: [0.0; 3] };
-        for pair in self.whole.joints().windows(2) {
-            if pair[0].piece != pair[1].piece {
-                continue;
-            }
-            let piece = &self.span.pieces[pair[0].piece];
-            let (half, middle) = ((pair[1].s - pair[0].s) / 2.0, f64::midpoint(pair[0].s, pair[1].s));
-            let far = 0.6_f64.sqrt();
-            for (x, w) in [(-far, 5.0 / 9.0), (0.0, 8.0 / 9.0), (far, 5.0 / 9.0)] {
-                let joint = piece.joint(middle + half * x, pair[0].piece);
-                let (m, c) = self.space.row(&joint.moment_row());
-                for i in 0..q.n {
-                    for j in 0..q.n {
-                        q.matrix[i][j] += w * half * m[i] * m[j];
-                    }
-                    q.linear[i] += w * half * m[i] * c;
-                }
-            }
-        }
-        q
     }
 }
 

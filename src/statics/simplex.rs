@@ -115,8 +115,9 @@ impl Program {
             };
             let w = at.combination(&self.rows[enter].a, n);
             let mut leave: Option<(usize, f64)> = None;
+            let largest = w.iter().fold(0.0, |m, v| f64::max(m, v.abs()));
             for i in 0..n {
-                if w[i] <= tolerance::SIMPLEX_PIVOT {
+                if w[i] <= tolerance::SIMPLEX_PIVOT * largest {
                     continue;
                 }
                 let ratio = at.y[i].max(0.0) / w[i];
