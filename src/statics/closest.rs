@@ -22,6 +22,9 @@ const START: usize = 24;
 const ROUND: usize = 8;
 /// Rounds after which the exchange must have ended.
 const ROUNDS: usize = 80;
+/// Size of the box that the unknowns start in, and how it grows.
+const FIRST_BOX: f64 = 100.0;
+const BOX_GROWTH: f64 = 100.0;
 /// Rounds of the polish, and how far from a peak (as a part of the axis) a joint is taken for its neighbour.
 const POLISH: usize = 8;
 const NEIGHBOUR: f64 = 0.02;
@@ -75,6 +78,8 @@ struct Step {
     asked: f64,
     bound: f64,
     multipliers: Vec<Multiplier>,
+    /// Largest multiplier of the box.
+    held: f64,
 }
 
 /// The multiplier of one row of the last program.
@@ -119,7 +124,7 @@ impl<'a> Search<'a> {
             space,
             sense,
             cuts: Vec::new(),
-            program: Program::new(&cost, tolerance::UNBOUNDED),
+            program: Program::new(&cost, FIRST_BOX),
             floor: 0.1 * span.crown.1.abs() / deepest,
         };
         for joint in sampling.spread(START) {
@@ -138,13 +143,30 @@ impl<'a> Search<'a> {
 
     /// Finds the closest line, starting from `first` if that pushes throughout.
     pub fn run(mut self, first: Option<Unknowns>) -> Closest {
+        // Vertices of a large box cost digits: it grows only as long as it holds the optimum.
+        let mut size = FIRST_BOX;
+        loop {
+            let (held, ended) = self.run_in_box(first, size);
+            if !held {
+                return ended;
+            }
+            if size >= tolerance::UNBOUNDED {
+                return Closest::Unbounded;
+            }
+            size *= BOX_GROWTH;
+            self.program.widen(size);
+        }
+    }
+
+    /// The closest line in the box, and whether the box holds it.
+    fn run_in_box(&mut self, first: Option<Unknowns>, size: f64) -> (bool, Closest) {
         let start = first.filter(|r| self.worst_finite(r).is_some());
         let mut r = match start.map_or_else(|| self.pushing(), Ok) {
             Ok(r) => r,
-            Err(joint) => return Closest::None(joint),
+            Err(joint) => return (false, Closest::None(joint)),
         };
         let Some(mut upper) = self.worst_finite(&r) else {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         };
         let mut best: Option<(f64, Step)> = None;
         for _ in 0..ROUNDS {
@@ -167,13 +189,16 @@ impl<'a> Search<'a> {
             }
         }
         let Some((gain, step)) = best else {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         };
+        if step.held * size > tolerance::PROOF_GAP * step.tau.max(self.floor) {
+            return (true, Closest::Unbounded);
+        }
         if gain > tolerance::PROOF_GAP * step.tau.max(self.floor) {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         }
         let step = self.polish(step);
-        self.finish(step)
+        (false, self.finish(&step))
     }
 
     /// Moves the joints of the program to the very peaks of the line, so that the multipliers belong to the places that
@@ -323,6 +348,7 @@ impl<'a> Search<'a> {
                 asked: tau,
                 bound: vertex.dual,
                 multipliers: self.multipliers(&vertex),
+                held: self.program.held(&vertex),
             };
             if done {
                 // The last program proves the line before it when rounding has made its own line the worse.
@@ -341,23 +367,22 @@ impl<'a> Search<'a> {
     }
 
     /// Chooses among equally close lines, measures the line on the whole axis, and draws up the proof.
-    fn finish(mut self, step: Step) -> Closest {
-        let holds = self.holding(&step);
+    fn finish(&mut self, step: &Step) -> Closest {
+        let holds = self.holding(step);
         let mut r = step.r;
         if holds.len() < self.space.free
-            && let Some(chosen) = self.least_bending(&step, &holds)
+            && let Some(chosen) = self.least_bending(step, &holds)
         {
             r = chosen;
-        }
-        let far = tolerance::UNBOUNDED * 0.5;
-        let sized = (r[0] * (8.0 * self.span.lever()).min(1.0)).abs().max(r[1].abs());
-        if sized > far {
-            return Closest::Unbounded;
         }
         let Some(primal) = self.worst_finite(&r) else {
             return Closest::Stalled;
         };
-        let dual = self.dual(&step, &r);
+        let dual = self.dual(step, &r);
+        if (primal - dual).abs() > tolerance::PROOF_GAP * primal.max(self.floor) {
+            // Never an optimum without its proof.
+            return Closest::Stalled;
+        }
         let gap = (primal - dual).abs() / primal.abs().max(dual.abs()).max(1.0);
         Closest::Found { r, proof: Proof { primal, dual, gap } }
     }

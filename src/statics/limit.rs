@@ -18,6 +18,9 @@ const START: usize = 32;
 const ROUND: usize = 12;
 /// Rounds after which the exchange must have ended.
 const ROUNDS: usize = 120;
+/// Size of the box that the unknowns start in, and how it grows.
+const FIRST_BOX: f64 = 100.0;
+const BOX_GROWTH: f64 = 100.0;
 /// Rounds of the polish, how far from a peak (as a part of the axis) a joint is taken for its neighbour, and how many peaks
 /// are looked at.
 const POLISH: usize = 6;
@@ -95,6 +98,8 @@ struct Run {
     program: Program,
     rows: Vec<Bound>,
     first: usize,
+    /// Size of the box.
+    size: f64,
 }
 
 /// The programs of one ring.
@@ -124,21 +129,35 @@ impl Limit<'_> {
         unit[unknown] = sign;
         let (cost, constant) = self.space.row(&(unit, 0.0));
         let goal = Goal { unknown, sign, cost, constant };
-        let mut run = self.start(&goal);
+        let mut run = self.start(&goal, FIRST_BOX);
         for joint in self.sampling.spread(START) {
             self.add(&mut run, joint, 0.0);
         }
-        let vertex = match self.exchange(&mut run) {
-            Ok(vertex) => vertex,
-            Err(ended) => return ended,
+        // Vertices of a large box cost digits: it grows only as long as it holds the optimum.
+        let vertex = loop {
+            let (held, ended) = match self.exchange(&mut run) {
+                Ok(vertex) => {
+                    let held = run.program.held(&vertex) * run.size;
+                    (held > tolerance::PROOF_GAP * vertex.cost.abs().max(1.0), Ok(vertex))
+                }
+                Err((held, ended)) => (held, Err(ended)),
+            };
+            match ended {
+                Ok(vertex) if !held => break vertex,
+                Ok(_) if run.size >= tolerance::UNBOUNDED => return Extreme::Unbounded,
+                Err(ended) if !held || run.size >= tolerance::UNBOUNDED => return ended,
+                _ => {}
+            }
+            run.size *= BOX_GROWTH;
+            run.program.widen(run.size);
         };
         let (run, vertex) = self.polish(&goal, run, vertex);
         self.found(&goal, &run, &vertex)
     }
 
     /// A program without joints yet.
-    fn start(&self, goal: &Goal) -> Run {
-        let mut program = Program::new(&goal.cost[..self.space.free], tolerance::UNBOUNDED);
+    fn start(&self, goal: &Goal, size: f64) -> Run {
+        let mut program = Program::new(&goal.cost[..self.space.free], size);
         let mut first = program.box_rows();
         if goal.unknown == 3 {
             // A load factor is not negative.
@@ -146,7 +165,7 @@ impl Limit<'_> {
             program.push(Row { a, b: -c });
             first += 1;
         }
-        Run { program, rows: Vec::new(), first }
+        Run { program, rows: Vec::new(), first, size }
     }
 
     fn add(&self, run: &mut Run, joint: Joint, touched: f64) {
@@ -164,13 +183,17 @@ impl Limit<'_> {
     }
 
     /// Solves, and takes in the joints of the continuous axis that break a constraint most, until none does.
-    fn exchange(&self, run: &mut Run) -> Result<Vertex, Extreme> {
+    /// Where there is no line, whether the box has a part in that.
+    fn exchange(&self, run: &mut Run) -> Result<Vertex, (bool, Extreme)> {
         let slack = if self.crushing > 0.0 { tolerance::CONE_SLACK } else { tolerance::LIMIT_SLACK };
         for _ in 0..ROUNDS {
             let vertex = match run.program.solve() {
                 Outcome::Best(vertex) => vertex,
-                Outcome::Infeasible(proof) => return Err(Extreme::None(self.leans(run, &proof))),
-                Outcome::Stalled => return Err(Extreme::Stalled),
+                Outcome::Infeasible(proof) => {
+                    let boxed = proof.iter().any(|p| p.0 < run.program.box_rows() && p.1 > 0.0);
+                    return Err((boxed, Extreme::None(self.leans(run, &proof))));
+                }
+                Outcome::Stalled => return Err((false, Extreme::Stalled)),
             };
             let r = self.space.unknowns(&vertex.x[..self.space.free]);
             let mut added = 0;
@@ -190,7 +213,7 @@ impl Limit<'_> {
                 return Ok(vertex);
             }
         }
-        Err(Extreme::Stalled)
+        Err((false, Extreme::Stalled))
     }
 
     /// Moves the joints of the program to the very peaks of the line, so that the multipliers belong to the places that
@@ -211,7 +234,7 @@ impl Limit<'_> {
             if self.crushing > 0.0 || moved <= tolerance::PEAK_PLACE {
                 break;
             }
-            let mut next = self.start(goal);
+            let mut next = self.start(goal, run.size);
             for bound in &run.rows {
                 if !(inner(&bound.joint) && tops.iter().any(|top| near(&bound.joint, top))) {
                     self.add_bound(&mut next, *bound);
@@ -241,10 +264,6 @@ impl Limit<'_> {
 
     fn found(&self, goal: &Goal, run: &Run, vertex: &Vertex) -> Extreme {
         let r = self.space.unknowns(&vertex.x[..self.space.free]);
-        let flat = if goal.unknown == 0 { (8.0 * self.span.lever()).min(1.0) } else { 1.0 };
-        if (r[goal.unknown] * flat).abs() > tolerance::UNBOUNDED * 0.5 {
-            return Extreme::Unbounded;
-        }
         let primal = goal.sign * (vertex.cost + goal.constant);
         let dual = goal.sign * (vertex.dual + goal.constant);
         let most = vertex.active.iter().fold(0.0, |m, a| f64::max(m, a.1));
