@@ -184,9 +184,9 @@ pub const SIMPLEX_TIGHT: f64 = 4e-15;
 /// The same once thousands of steps have not brought an end. Larger: optima lose digits; smaller: no end.
 pub const SIMPLEX_LOOSE: f64 = 1e-12;
 
-/// Smallest weight in a ratio test of the simplex that is not rounding. Larger: a blocking row is passed over;
+/// Smallest weight in a ratio test of the simplex, relative to the largest, that is not rounding. Larger: a blocking row is passed over;
 /// smaller: the basis becomes singular.
-pub const SIMPLEX_PIVOT: f64 = 1e-13;
+pub const SIMPLEX_PIVOT: f64 = 1e-11;
 
 /// Smallest pivot of a basis of unit rows that is not singular. Larger: thin but true corners are given up; smaller:
 /// vertices without a correct digit.

@@ -201,6 +201,50 @@ proptest! {
     }
 
     #[test]
+    fn limits_close_on_each_other_and_mirror(p in arches(), depth in 1.0..4.0_f64) {
+        let mut p = p;
+        p.depth = Some(Depth::Constant(depth));
+        // A weightless part may be left without any thrust: it counts as inside, but has no eccentricity.
+        p.weight_on_axis += 0.5;
+        p.draw = vec![LineKind::LeastThrust, LineKind::GreatestThrust];
+        p.varying = vec![0];
+        let q = mapped(&p, mirrored(&p.axis), |p| Point::new(-p.x, p.y), |f| Vec2::new(-f.x, f.y));
+        let (Ok(a), Ok(b)) = (analyse(&p), analyse(&q)) else { return Ok(()) };
+        let (s, t) = (a.safety.as_ref().unwrap(), b.safety.as_ref().unwrap());
+        let size = a.total.hypot();
+        for (m, n) in a.lines.iter().zip(&b.lines) {
+            prop_assert_eq!(m.status, n.status);
+            let (Some(u), Some(v)) = (m.left, n.right) else { continue };
+            let scale = size.max(u.horizontal.abs());
+            prop_assert!((u.horizontal - v.horizontal).abs() < 1e-6 * scale, "{u:?} {v:?}");
+            prop_assert!((u.vertical - v.vertical).abs() < 1e-6 * scale, "{:?} {u:?} {v:?}", m.kind);
+        }
+        for f in [&s.load, &s.load_least].into_iter().flatten() {
+            if let Some(proof) = f.proof {
+                prop_assert!(proof.gap < 1e-9);
+            }
+        }
+        for m in [&s.mechanism, &s.mechanism_least].into_iter().flatten() {
+            prop_assert!(m.residual < 1e-6, "{m:?}");
+        }
+        // Some line inside at the loads as they are: the geometric factor is at least one, and one lies in the interval.
+        let inside = a.lines[1].status == Status::Found;
+        if let Some(g) = s.geometric.value {
+            prop_assert!(inside == (g >= 1.0) || (g - 1.0).abs() < 1e-9, "{g} {inside}");
+        }
+        if let (Some(f), Some(g)) = (&s.load, &t.load) {
+            prop_assert_eq!(f.status, g.status);
+            if let (Some(x), Some(y)) = (f.value, g.value) {
+                close(x, y);
+                if let Some(low) = s.load_least.as_ref().and_then(|l| l.value) {
+                    prop_assert!(low <= x + 1e-9);
+                    prop_assert!(inside == (low <= 1.0 && 1.0 <= x) || (x - 1.0).abs().min((low - 1.0).abs()) < 1e-8);
+                }
+            }
+        }
+    }
+
+    #[test]
     fn national_grid_and_units_change_no_digit(p in arches(), k in 0.001..1000.0_f64) {
         let by = Vec2::new(2_600_000.0, 1_200_000.0);
         same(&p, &mapped(&p, p.axis.shifted_scaled(by, 1.0), |p| p + by, |f| f), 1.0, 1.0);

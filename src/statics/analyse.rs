@@ -85,7 +85,7 @@ fn solve(
 
     let safety = closest.filter(|_| judged).map(|closest| {
         let with_factor = Subspace::with_factor(&span, &rows);
-        super::safety::safety(problem, &span, &sampling, with_factor.as_ref(), &closest)
+        super::safety::safety(problem, &span, (&sampling, &bare), with_factor.as_ref(), &closest)
     });
 
     let crown = span.joint_at(span.crown.0, true).at;
@@ -181,6 +181,7 @@ impl Work<'_> {
         let limit = Limit {
             span: self.span,
             sampling: self.sheet.sampling,
+            whole: self.sheet.bare,
             space: self.space,
             friction: self.problem.friction,
             crushing: self.span.crushing,

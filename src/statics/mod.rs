@@ -21,6 +21,7 @@ pub mod stress;
 mod string;
 mod subspace;
 mod through;
+mod ties;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
