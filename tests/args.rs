@@ -30,6 +30,8 @@ fn mark_takes_all_options() {
 #[test]
 fn check_unmark_list_and_schema() {
     let Command::Check(check) = parse(&["check", "--json", "-", "a.dxf"]).unwrap().command else { panic!() };
+    assert!(!check.no_store);
+    let check = check.check;
     assert_eq!(check.json, Some(JsonTarget::Stdout));
     assert_eq!((check.job, check.force, check.verbose), (None, false, false));
     let Command::Unmark(unmark) = parse(&["unmark", "a.thrust.dxf", "-f", "-o", "a.dxf"]).unwrap().command
@@ -59,7 +61,8 @@ fn wrong_usage_is_two_on_stderr() {
         &["mark", "--force"],
         &["check", "a.dxf", "--output", "b"],
         &["unmark", "a", "b"],
-        &["list", "a", "--write-job", "x"],
+        &["list", "a", "--write-job"],
+        &["mark", "a.dxf", "--no-store"],
         &["schema", "x"],
         &["mark", ""],
     ] {

@@ -40,7 +40,7 @@ pub enum Command {
     Mark(MarkArgs),
     /// Check drawings and print the findings; write no drawing
     #[command(arg_required_else_help = true, after_help = CHECK_HELP)]
-    Check(CheckArgs),
+    Check(OnlyCheckArgs),
     /// Take the marks out of a marked copy again, byte for byte
     #[command(arg_required_else_help = true, after_help = UNMARK_HELP)]
     Unmark(UnmarkArgs),
@@ -77,6 +77,18 @@ pub struct MarkArgs {
 }
 
 /// `thrustmark check`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct OnlyCheckArgs {
+    /// What is shared with `mark`.
+    #[command(flatten)]
+    pub check: CheckArgs,
+
+    /// Neither take nor keep results of unchanged drawings in the user's cache folder
+    #[arg(long)]
+    pub no_store: bool,
+}
+
+/// What `mark` and `check` share.
 #[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
 pub struct CheckArgs {
     /// DXF drawings, and folders of them
@@ -130,6 +142,10 @@ pub struct ListArgs {
     /// Job file [default: the first thrustmark.toml on the way up from the drawing's folder]
     #[arg(short, long, value_name = "FILE")]
     pub job: Option<PathBuf>,
+
+    /// Write a commented job file to begin with; an existing file is left alone
+    #[arg(long, value_name = "FILE")]
+    pub write_job: Option<PathBuf>,
 }
 
 /// `thrustmark verify`
@@ -256,6 +272,9 @@ Examples:
   thrustmark check bridge.dxf
   thrustmark check drawings/ --json - > results.json
 
+Results of unchanged drawings are kept in the user's cache folder, which may be
+deleted at any time.
+
 ",
     status!(),
     "\n\n",
@@ -277,8 +296,9 @@ when the two differ, nothing is written (with --force the latter is).
 
 const LIST_HELP: &str = concat!(
     "\
-Example:
+Examples:
   thrustmark list bridge.dxf
+  thrustmark list bridge.dxf --write-job thrustmark.toml
 
 ",
     plain_status!()

@@ -18,7 +18,8 @@ use serde::Serialize;
 use crate::flow::{self, Environment, Target};
 use crate::job::Job;
 use crate::office::batch::{self, Event};
-use crate::office::demo;
+use crate::office::store::{self, Store};
+use crate::office::{demo, starter};
 use crate::outcome::{CONTRACT, Document, Run, Tool, Verdict};
 use crate::refusal::Refusal;
 use crate::write::file::{self, Replace};
@@ -38,8 +39,13 @@ pub fn run() -> ExitCode {
         Err(error) => error.exit(),
     };
     let done = match &args.command {
-        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref())),
-        Command::Check(args) => check(args, None),
+        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref()), None),
+        Command::Check(args) => {
+            let store = if args.no_store { None } else { Store::of_user() };
+            let done = check(&args.check, None, store.as_ref());
+            store.iter().for_each(Store::tidy);
+            done
+        }
         Command::Unmark(args) => unmark(args),
         Command::List(args) => list(args),
         Command::Verify(args) => verify::verify(args),
@@ -58,7 +64,7 @@ pub fn run() -> ExitCode {
 }
 
 /// `check`, and `mark` when a place for the copies is given (which may be "beside each drawing").
-fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
+fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -> Result<u8, Refusal> {
     let environment = Environment::of_process()?;
     let named = args.job.as_deref().map(Job::load).transpose()?;
     let drawings = paths::drawings(&args.drawings)?;
@@ -74,7 +80,7 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
             let target = Target { output: targets[i].clone(), force: args.force };
             flow::mark(drawing, named.as_ref(), &target, environment)
         }
-        None => flow::check(drawing, named.as_ref(), environment),
+        None => store::check(drawing, named.as_ref(), environment, store),
     })?;
     let document = Document {
         contract: CONTRACT,
@@ -147,7 +153,14 @@ fn unmark(args: &UnmarkArgs) -> Result<u8, Refusal> {
 fn list(args: &ListArgs) -> Result<u8, Refusal> {
     let named = args.job.as_deref().map(Job::load).transpose()?;
     let listing = flow::list(&args.drawing, named.as_ref())?;
+    if let Some(target) = &args.write_job {
+        starter::write(&args.drawing, named.as_ref(), &listing, Environment::of_process()?, target)?;
+    }
     say(&listing::text(&listing));
+    if let Some(target) = &args.write_job {
+        let name = plain(&target.display().to_string());
+        say(&format!("job file to begin with: {name}; read it, state a limit, then check\n"));
+    }
     Ok(0)
 }
 
