@@ -228,3 +228,7 @@ pub const NO_THRUST: f64 = 1e-13;
 
 /// Deviation, as a part of the span, of the polygon that stands for a curved line of thrust. A visible corner is larger.
 pub const LINE_POLYGON: f64 = 1e-5;
+
+/// Offset, as a part of the span, below which a line counts as lying on the axis where offsets are drawn. Larger: small
+/// offsets get no diagram of their own; smaller: rounding is drawn thousands of times as large.
+pub const OFFSET_SHOWN: f64 = 1e-6;

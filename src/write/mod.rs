@@ -4,8 +4,11 @@
 //! Knows results and neutral marks only: no bytes of a drawing, no mechanics.
 
 pub mod annotate;
+pub mod csv;
 pub mod file;
 pub mod json;
+pub mod junit;
+pub mod picture;
 #[cfg(test)]
 #[allow(clippy::unwrap_used, missing_docs)]
 mod sample;

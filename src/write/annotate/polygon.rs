@@ -344,7 +344,7 @@ fn dimensions(
     {
         let (a, b) = (Point::new(x, from), Point::new(x, to));
         dimension(canvas, a, b, Vec2::new(1.0, 0.0));
-        let words = format!("{name} {}", text::three_digits(value));
+        let words = format!("{name} {}", text::four_digits(value));
         let middle = f64::midpoint(from, to);
         // Beside its dimension; where that is short, wherever there is room along it.
         let places = (0..60).flat_map(|k| {
