@@ -2,6 +2,7 @@
 
 pub mod args;
 mod listing;
+mod outputs;
 mod paths;
 
 use std::io::{self, IsTerminal, Write};
@@ -14,9 +15,11 @@ use crate::flow::{self, Environment, Target};
 use crate::job::Job;
 use crate::outcome::{CONTRACT, Document, Run, Tool, Verdict};
 use crate::refusal::Refusal;
-use crate::write::file::{self, Replace};
+use crate::write::file::Replace;
 use crate::write::text::plain;
 use crate::write::{json, terminal};
+use outputs::Outputs;
+
 use args::{Args, CheckArgs, Command, JsonTarget, ListArgs, UnmarkArgs};
 
 /// Status of a run that could not be done.
@@ -53,9 +56,15 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
         Some(output) => Some(paths::targets(&args.drawings, &drawings, output)?),
         None => None,
     };
-    if let Some(JsonTarget::File(target)) = &args.json {
-        file::may_write(target, &borrowed(&drawings), &json_may_replace(args.force))?;
-    }
+    let copies: Vec<PathBuf> = match &targets {
+        Some(targets) => drawings
+            .iter()
+            .zip(targets)
+            .map(|(drawing, target)| target.clone().unwrap_or_else(|| flow::beside(drawing)))
+            .collect(),
+        None => Vec::new(),
+    };
+    let outputs = Outputs::plan(args, &drawings, &copies)?;
     let runs: Vec<Run> = drawings
         .iter()
         .enumerate()
@@ -75,21 +84,12 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
     let on_stdout = args.json != Some(JsonTarget::Stdout);
     let style = terminal::Style { width: width(on_stdout), colour: colour(on_stdout), verbose: args.verbose };
     let summary = terminal::summary(&document, &style);
-    match &args.json {
-        None => say_results(&document, &summary),
-        Some(JsonTarget::Stdout) => {
-            say(&json::to_json(&document)?);
-            tell(&summary);
-        }
-        Some(JsonTarget::File(target)) => {
-            let text = json::to_json(&document)?;
-            file::write_whole(target, &borrowed(&drawings), &json_may_replace(args.force), |out| {
-                out.write_all(text.as_bytes()).map_err(|error| {
-                    Refusal::new("write", format!("{}: {error}", target.display()), "Look at the space left.")
-                })
-            })?;
-            say_results(&document, &summary);
-        }
+    outputs.write(&document, environment)?;
+    if on_stdout {
+        say_results(&document, &summary);
+    } else {
+        say(&json::to_json(&document)?);
+        tell(&summary);
     }
     Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
 }

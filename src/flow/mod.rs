@@ -152,6 +152,14 @@ fn stages(
         None => Settings::default(),
     };
     *in_force = settings.to_json();
+    // Which job it was, beside what it says.
+    if let (Some(file), Some(tree)) = (&settings.origin.file, in_force.as_object_mut()) {
+        let name = file.file_name().unwrap_or_default().to_string_lossy();
+        let origin = serde_json::json!({
+            "file": name, "sha256": settings.origin.sha256, "sheets": settings.origin.sheets,
+        });
+        tree.insert("origin".into(), origin);
+    }
     let file = Source::open(path)?;
     let (source, outline, marks) = without_marks(file, &settings)?;
     facts.sha256.clone_from(&outline.sha256);

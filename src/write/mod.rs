@@ -9,6 +9,7 @@ pub mod file;
 pub mod json;
 pub mod junit;
 pub mod picture;
+pub mod report;
 #[cfg(test)]
 #[allow(clippy::unwrap_used, missing_docs)]
 mod sample;

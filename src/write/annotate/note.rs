@@ -430,7 +430,7 @@ pub fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
 }
 
 /// A piece of rib with the senses in which figures count as positive. Gives back the height below it.
-fn signs(canvas: &mut Canvas, corner: Point) -> f64 {
+pub fn signs(canvas: &mut Canvas, corner: Point) -> f64 {
     let h = canvas.h;
     let layer = Layer::Notes;
     let y = corner.y - 5.6 * h;

@@ -127,6 +127,19 @@ pub fn offsets(run: &Run) -> Option<Picture> {
     (!canvas.marks.is_empty()).then(|| picture(run, canvas, "Offset of the line of thrust", 0))
 }
 
+/// The signs in which figures count as positive.
+pub fn signs() -> Picture {
+    let mut canvas = Canvas::new(1.0);
+    note::signs(&mut canvas, Point::ZERO);
+    Picture {
+        title: "Signs".into(),
+        description:
+            "A piece of rib, pressed at both ends, with its axis and a positive offset toward the extrados."
+                .into(),
+        ..bounded(canvas)
+    }
+}
+
 fn spans(run: &Run) -> Vec<Shown<'_>> {
     run.spans.iter().map(|span| Shown::new(run, span, 1.0)).collect()
 }
@@ -148,16 +161,26 @@ fn draw_elevation(run: &Run, spans: &[Shown], canvas: &mut Canvas) -> usize {
 }
 
 fn picture(run: &Run, canvas: Canvas, what: &str, hidden: usize) -> Picture {
-    let room = MARGIN * canvas.h;
-    let (low, high) = canvas.extent().unwrap_or((Point::ZERO, Point::new(canvas.h, canvas.h)));
     Picture {
         title: format!("{what}: {}", text::plain(&name(run))),
         description: description(run),
+        hidden,
+        ..bounded(canvas)
+    }
+}
+
+/// What was drawn, with room round it, and no words yet.
+fn bounded(canvas: Canvas) -> Picture {
+    let room = MARGIN * canvas.h;
+    let (low, high) = canvas.extent().unwrap_or((Point::ZERO, Point::new(canvas.h, canvas.h)));
+    Picture {
+        title: String::new(),
+        description: String::new(),
         low: Point::new(low.x - room, low.y - room),
         high: Point::new(high.x + room, high.y + room),
         scale: CAPITALS / canvas.h,
         marks: canvas.marks,
-        hidden,
+        hidden: 0,
     }
 }
 

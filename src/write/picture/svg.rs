@@ -13,6 +13,9 @@ pub const CAPITAL_PART: f64 = 0.714;
 /// What a picture file says of its maker.
 pub const MADE_BY: &str = concat!("made by ", env!("CARGO_PKG_NAME"));
 
+/// Pictures wider than this, in pixels, count as wide.
+const WIDE: f64 = 500.0;
+
 /// Where the SVG stands.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Home<'a> {
@@ -35,10 +38,12 @@ pub fn svg(picture: &Picture, home: Home) -> String {
         out.push_str("<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n");
         let _ = writeln!(out, "<!-- {} -->", MADE_BY);
     }
+    // A page may give wide pictures room to scroll on a narrow screen.
+    let class = if home != Home::File && width > WIDE { "class=\"wide\" " } else { "" };
     let (w, h) = (number(width), number(height));
     let _ = writeln!(
         out,
-        "<svg xmlns=\"http://www.w3.org/2000/svg\" width=\"{w}\" height=\"{h}\" viewBox=\"0 0 {w} {h}\" role=\"img\" \
+        "<svg xmlns=\"http://www.w3.org/2000/svg\" width=\"{w}\" height=\"{h}\" viewBox=\"0 0 {w} {h}\" {class}role=\"img\" \
          aria-labelledby=\"{id}-title {id}-desc\" font-family=\"sans-serif\">\n<title id=\"{id}-title\">{}</title>\n\
          <desc id=\"{id}-desc\">{}</desc>",
         escape(&picture.title),
