@@ -232,3 +232,6 @@ pub const LINE_POLYGON: f64 = 1e-5;
 /// Offset, as a part of the span, below which a line counts as lying on the axis where offsets are drawn. Larger: small
 /// offsets get no diagram of their own; smaller: rounding is drawn thousands of times as large.
 pub const OFFSET_SHOWN: f64 = 1e-6;
+
+/// Error below which a report says only that it is smaller: the digits beyond are rounding and differ between machines.
+pub const SHOWN_ERROR: f64 = 1e-12;

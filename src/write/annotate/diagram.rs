@@ -96,16 +96,15 @@ fn offset_limit(run: &Run) -> Option<f64> {
         .min_by(f64::total_cmp)
 }
 
-/// The offset along the span, at the stations; without stations, at the loads and the ends.
+/// Steps of the curve along a span, beside its stations.
+const STEPS: u32 = 160;
+
+/// The offset along the span, at the stations, the loads and evenly between.
 fn offsets(shown: &Shown) -> Curve {
-    let Some(line) = shown.line else { return Vec::new() };
-    let stations: Curve =
-        line.stations.iter().filter_map(|t| t.eccentricity.map(|e| (t.at[0] * shown.unit, e))).collect();
-    if stations.len() > 1 {
-        return stations;
-    }
-    let Some(path) = &shown.path else { return Vec::new() };
-    let mut lengths = vec![0.0, path.length()];
+    let (Some(line), Some(path)) = (shown.line, &shown.path) else { return Vec::new() };
+    let mut lengths: Vec<f64> =
+        (0..=STEPS).map(|i| path.length() * f64::from(i) / f64::from(STEPS)).collect();
+    lengths.extend(line.stations.iter().map(|t| t.s * shown.unit));
     lengths.extend(&shown.feet);
     lengths.extend(shown.worst().map(|w| w.0));
     lengths.sort_by(f64::total_cmp);

@@ -60,7 +60,7 @@ pub fn draw(
     }
     y -= 0.4 * h;
     canvas.line(layer, "rule", Point::new(x, y), Point::new(x + width, y));
-    let key_low = key(spans, canvas, Point::new(x + pad, y));
+    let key_low = key(spans, canvas, Point::new(x + pad, y), &[]);
     let signs_low = signs(canvas, Point::new(x + width - 29.0 * h, y));
     y = key_low.min(signs_low) - 0.6 * h;
     canvas.line(layer, "rule", Point::new(x, y), Point::new(x + width, y));
@@ -401,14 +401,23 @@ fn other_kinds(spans: &[Shown]) -> Vec<(String, Option<Dash>)> {
     out
 }
 
-/// Samples of the lines drawn. Gives back the height below the last.
-pub fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
+/// Samples of the lines drawn, those of `more` first. Gives back the height below the last.
+pub fn key(
+    spans: &[Shown],
+    canvas: &mut Canvas,
+    corner: Point,
+    more: &[(Layer, Option<Dash>, String)],
+) -> f64 {
     let h = canvas.h;
-    let mut samples = vec![
+    let mut samples = more.to_vec();
+    samples.extend([
         (Layer::Line, None, "line of thrust".to_owned()),
         (Layer::Offsets, None, "offset, mm".to_owned()),
-    ];
+    ]);
     samples.extend(other_kinds(spans).into_iter().map(|(name, dash)| (Layer::OtherLines, dash, name)));
+    if canvas.marks.iter().any(|m| m.role == "ring") {
+        samples.push((Layer::Ring, None, "ring, joints".into()));
+    }
     if canvas.marks.iter().any(|m| m.layer == Layer::Kern as usize) {
         samples.push((Layer::Kern, Some(Dash::Dots), "middle third".into()));
     }
@@ -420,7 +429,7 @@ pub fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
         let middle = y + h / 2.0;
         let (a, b) = (Point::new(corner.x, middle), Point::new(corner.x + 6.0 * h, middle));
         match layer {
-            Layer::Reactions => canvas.arrow(layer, "key", a, b),
+            Layer::Reactions | Layer::Loads => canvas.arrow(layer, "key", a, b),
             Layer::Letters => canvas.text(layer, "key", &Words::new("a b c", a.midpoint(b), h).centred()),
             _ => canvas.dashed(layer, "key", a, b, dash),
         }

@@ -117,6 +117,8 @@ pub struct Canvas {
     pub marks: Vec<Mark>,
     /// What is taken.
     pub taken: Taken,
+    /// Whether lengths can be told in drawing units, as in a drawing; a picture has none.
+    pub has_units: bool,
     low: Point,
     high: Point,
 }
@@ -128,6 +130,7 @@ impl Canvas {
             h,
             marks: Vec::new(),
             taken: Taken::default(),
+            has_units: true,
             low: Point::new(f64::INFINITY, f64::INFINITY),
             high: Point::new(f64::NEG_INFINITY, f64::NEG_INFINITY),
         }

@@ -67,7 +67,15 @@ fn names(run: &Run, shown: &Shown, ends: &[Option<Vec2>], canvas: &mut Canvas) {
     let words: Vec<String> = loads
         .iter()
         .zip(&shown.forces)
-        .map(|(load, force)| format!("{} {}", load.label, text::force(force.hypot(), &run.units)))
+        .map(|(load, force)| {
+            let size = text::force(force.hypot(), &run.units);
+            // A bare number would read as part of the figure.
+            if load.label.chars().all(|c| c.is_ascii_digit()) {
+                size
+            } else {
+                format!("{} {size}", load.label)
+            }
+        })
         .collect();
     let widest = words.iter().map(|w| text::columns(w)).max().unwrap_or(0) as f64 * h;
     let closest =

@@ -57,7 +57,7 @@ pub struct Look {
 
 /// The look of each layer, in the order of [`Layer`].
 pub const LOOKS: [(Layer, Look); 13] = [
-    (Layer::Line, Look { class: "line", colour: [0x0b, 0x5f, 0xa5], width: 2.6, dash: None }),
+    (Layer::Line, Look { class: "line", colour: [0x0b, 0x5f, 0xa5], width: 2.2, dash: None }),
     (Layer::OtherLines, Look { class: "other", colour: [0x5e, 0x5e, 0x5e], width: 1.2, dash: None }),
     (Layer::Ring, Look { class: "ring", colour: [0x8c, 0x8c, 0x8c], width: 0.7, dash: None }),
     (Layer::Kern, Look { class: "kern", colour: [0x6e, 0x6e, 0x6e], width: 1.0, dash: Some(Dash::Dots) }),
@@ -93,7 +93,8 @@ pub fn whole(run: &Run) -> Picture {
     let y = diagram::draw(run, &spans, &mut canvas, Point::new(left, y), right, hidden) - 3.5 * h;
     let edge = polygon::draw(run, &spans, &mut canvas, Point::new(left, y), right);
     let key_at = Point::new(edge.max(right - 34.0 * h) + 2.0 * h, y);
-    note::key(&spans, &mut canvas, key_at);
+    let drawn = [(Layer::Axis, None, "axis".to_owned()), (Layer::Loads, None, "load".to_owned())];
+    note::key(&spans, &mut canvas, key_at, &drawn);
     let columns = diagram::columns_between(left, right, h);
     let mut y = low(&canvas) - 2.0 * h;
     for line in text::wrap(CAUTION, columns) {
@@ -149,7 +150,9 @@ fn canvas(run: &Run) -> (Canvas, f64, f64) {
     let content = content(run, None);
     let size = (content.high[0] - content.low[0]).max(content.high[1] - content.low[1]);
     let h = if size > 0.0 && size.is_finite() { size / ACROSS } else { 1.0 };
-    (Canvas::new(h), content.low[0], content.high[0])
+    let mut canvas = Canvas::new(h);
+    canvas.has_units = false;
+    (canvas, content.low[0], content.high[0])
 }
 
 fn draw_elevation(run: &Run, spans: &[Shown], canvas: &mut Canvas) -> usize {

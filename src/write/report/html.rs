@@ -34,6 +34,12 @@ pub fn figures(name: &str) -> Column<'_> {
     Column { name, figures: true }
 }
 
+/// The text with a capital at its beginning.
+pub fn sentence(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+}
+
 impl Page {
     /// HTML as it is.
     pub fn raw(&mut self, html: &str) {

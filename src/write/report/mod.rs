@@ -31,7 +31,7 @@ pub fn html(document: &Document, date: &str) -> String {
     page.raw(&format!("<title>{}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n", escape(&title)));
     page.raw("<a class=\"skip\" href=\"#main\">To the results</a>\n");
     page.raw("<header class=\"sheet-head\">\n<p class=\"kind\">Calculation sheet</p>\n");
-    page.raw(&format!("<h1>{}</h1>\n", escape(&title)));
+    page.raw("<h1>Check of the line of thrust</h1>\n");
     page.raw(&format!(
         "<p class=\"made\">{} {}, {} UTC</p>\n</header>\n<main id=\"main\">\n",
         escape(&document.tool.name),

@@ -2,7 +2,7 @@
 
 use serde_json::Value;
 
-use super::html::{Page, figures, words};
+use super::html::{self, Page, figures, words};
 use crate::outcome::{Check, Finding, FindingVerdict, Load, MagnitudeFrom, Run, Source, Status};
 use crate::refusal::Refusal;
 use crate::write::annotate::note::omitted;
@@ -64,7 +64,7 @@ pub fn summary(run: &Run, page: &mut Page) {
         if span.cases.len() > 1 {
             told.push_str(&format!(" Worst case of {}: {}.", span.cases.len(), case.name));
         }
-        page.paragraph(&told);
+        page.paragraph(&html::sentence(&told));
     }
     page.end();
 }
@@ -287,7 +287,7 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
     if let Some(source) = &finding.entity {
         place.push(entity(source));
     }
-    let mut said = finding.message.clone();
+    let mut said = html::sentence(&finding.message);
     if let Some(accepted) = &finding.accepted {
         said.push_str(&format!(". Accepted by {}: {}", accepted.by, accepted.reason));
         if let Some(until) = &accepted.until {
@@ -328,11 +328,9 @@ pub fn proofs(run: &Run, page: &mut Page) {
             for line in &case.lines {
                 let name = format!("{}, case {}: {}", span.name, case.name, kind_name(line.kind));
                 let row = match (&line.proof, line.status) {
-                    (Some(proof), _) => [
-                        format!("{:.9e}", proof.primal),
-                        format!("{:.9e}", proof.dual),
-                        format!("{:.1e}", proof.gap),
-                    ],
+                    (Some(proof), _) => {
+                        [format!("{:.9e}", proof.primal), format!("{:.9e}", proof.dual), small(proof.gap)]
+                    }
                     (None, Status::Found) => {
                         ["given by its points".into(), "nothing to prove".into(), String::new()]
                     }
@@ -344,7 +342,7 @@ pub fn proofs(run: &Run, page: &mut Page) {
                 };
                 let mut cells = vec![name];
                 cells.extend(row);
-                cells.push(format!("{:.1e}", case.residual));
+                cells.push(small(case.residual));
                 rows.push(cells);
             }
         }
@@ -361,6 +359,12 @@ pub fn proofs(run: &Run, page: &mut Page) {
         &rows,
     );
     page.end();
+}
+
+/// An error that should be nought, without the digits of rounding.
+fn small(value: f64) -> String {
+    let shown = crate::tolerance::SHOWN_ERROR;
+    if value.abs() <= shown { format!("below {shown:.0e}") } else { format!("{value:.1e}") }
 }
 
 /// What was assumed and what was left out; with the signs.
@@ -388,7 +392,7 @@ pub fn assumptions(run: &Run, page: &mut Page) {
     page.raw("<ul>\n");
     for line in lines {
         page.raw("<li>");
-        page.text(&line);
+        page.text(&html::sentence(&line));
         page.raw("</li>\n");
     }
     page.raw("</ul>\n");
