@@ -288,3 +288,9 @@ pub const OFF_MIDDLE: f64 = 0.005;
 /// Angle in radians between the drawn end of a ring and the joint normal to its axis from which on it is told: five
 /// degrees.
 pub const END_SKEW: f64 = 0.09;
+/// Offset, as a part of the span, below which a line counts as lying on the axis where offsets are drawn. Larger: small
+/// offsets get no diagram of their own; smaller: rounding is drawn thousands of times as large.
+pub const OFFSET_SHOWN: f64 = 1e-6;
+
+/// Error below which a report says only that it is smaller: the digits beyond are rounding and differ between machines.
+pub const SHOWN_ERROR: f64 = 1e-12;

@@ -103,6 +103,22 @@ pub struct CheckArgs {
     #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
     pub json: Option<JsonTarget>,
 
+    /// Report to read, print on A4 and sign, one HTML file for all drawings
+    #[arg(long, value_name = "FILE.html")]
+    pub report: Option<PathBuf>,
+
+    /// Picture of elevation, offset diagram and force polygon; with several drawings a folder for SVG pictures
+    #[arg(long, value_name = "FILE.svg|FILE.png|FOLDER")]
+    pub picture: Option<PathBuf>,
+
+    /// Stations of all lines as comma-separated values
+    #[arg(long, value_name = "FILE.csv")]
+    pub csv: Option<PathBuf>,
+
+    /// Results for build servers, as JUnit XML
+    #[arg(long, value_name = "FILE.xml")]
+    pub junit: Option<PathBuf>,
+
     /// Replace existing files, even those that thrustmark did not write
     #[arg(short, long)]
     pub force: bool,
@@ -256,6 +272,7 @@ const MARK_HELP: &str = concat!(
 Examples:
   thrustmark mark bridge.dxf
   thrustmark mark bridge.dxf --output issue/bridge.dxf --json bridge.json
+  thrustmark mark bridge.dxf --report bridge.html --picture bridge.svg
   thrustmark mark set-1/ set-2/ --output marked/ --job office.toml
 
 A drawing that is marked already needs --output; its old marks are replaced.
@@ -271,6 +288,7 @@ const CHECK_HELP: &str = concat!(
 Examples:
   thrustmark check bridge.dxf
   thrustmark check drawings/ --json - > results.json
+  thrustmark check drawings/ --junit results.xml --csv stations.csv
 
 Results of unchanged drawings are kept in the user's cache folder, which may be
 deleted at any time.

@@ -3,6 +3,7 @@
 pub mod args;
 mod listing;
 mod manual;
+mod outputs;
 mod paths;
 mod progress;
 mod verify;
@@ -26,6 +27,7 @@ use crate::write::file::{self, Replace};
 use crate::write::text::plain;
 use crate::write::{json, terminal};
 use args::{Args, CheckArgs, Command, DemoArgs, JsonTarget, ListArgs, UnmarkArgs};
+use outputs::Outputs;
 use progress::Progress;
 
 /// Status of a run that could not be done.
@@ -72,9 +74,15 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -
         Some(output) => Some(paths::targets(&args.drawings, &drawings, output)?),
         None => None,
     };
-    if let Some(JsonTarget::File(target)) = &args.json {
-        file::may_write(target, &borrowed(&drawings), &json_may_replace(args.force))?;
-    }
+    let copies: Vec<PathBuf> = match &targets {
+        Some(targets) => drawings
+            .iter()
+            .zip(targets)
+            .map(|(drawing, target)| target.clone().unwrap_or_else(|| flow::beside(drawing)))
+            .collect(),
+        None => Vec::new(),
+    };
+    let outputs = Outputs::plan(args, &drawings, &copies)?;
     let runs = all(&drawings, args.jobs, |i, drawing| match &targets {
         Some(targets) => {
             let target = Target { output: targets[i].clone(), force: args.force };
@@ -90,16 +98,12 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -
     let on_stdout = args.json != Some(JsonTarget::Stdout);
     let style = terminal::Style { width: width(on_stdout), colour: colour(on_stdout), verbose: args.verbose };
     let summary = terminal::summary(&document, &style);
-    match &args.json {
-        None => say_results(&document, &summary),
-        Some(JsonTarget::Stdout) => {
-            say(&json::to_json(&document)?);
-            tell(&summary);
-        }
-        Some(JsonTarget::File(target)) => {
-            write_json(target, &borrowed(&drawings), args.force, &json::to_json(&document)?)?;
-            say_results(&document, &summary);
-        }
+    outputs.write(&document, environment)?;
+    if on_stdout {
+        say_results(&document, &summary);
+    } else {
+        say(&json::to_json(&document)?);
+        tell(&summary);
     }
     Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
 }

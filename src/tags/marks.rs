@@ -119,6 +119,9 @@ pub struct Mark {
     pub colour: Option<u8>,
     /// Line type when it differs from the layer's: an index into [`Marks::line_types`].
     pub line_type: Option<usize>,
+    /// Constant width of a polyline, drawing units, for versions and viewers without line weights; other shapes, and
+    /// polylines that do not lie level in x and y, have none.
+    pub width: Option<f64>,
 }
 
 /// All that is added to a drawing in one go.
