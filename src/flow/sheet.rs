@@ -8,7 +8,6 @@ use crate::drawing::viewport::scale_that_shows;
 use crate::geometry::Point;
 use crate::job;
 use crate::outcome::Xy;
-use crate::tags::marks::Plane;
 use crate::write::annotate::{Extents, Sheet, TextHeight};
 
 /// Millimetres in a paper unit where the drawing measures in inches.
@@ -29,7 +28,7 @@ pub fn sheet(path: &Path, checked: &Checked, environment: Environment) -> Sheet 
     let english = checked.outline.header("$MEASUREMENT", 70) == Some("0");
     Sheet {
         metres_per_unit: metres,
-        plane: Plane::XY,
+        plane: drawing.plane,
         elevation,
         model_space: model_extents(checked, metres),
         occupied: labels,
@@ -58,14 +57,22 @@ fn in_metres(corners: [Point; 4], metres: f64) -> Extents {
         .unwrap_or(Extents { low: [0.0, 0.0], high: [0.0, 0.0] })
 }
 
-/// `$EXTMIN` and `$EXTMAX`, where they make sense. They may be stale; they only keep the marks clear of other parts.
+/// `$EXTMIN` and `$EXTMAX`, where they make sense, as they are seen in the plane of the elevation. They may be stale; they
+/// only keep the marks clear of other parts.
 fn model_extents(checked: &Checked, metres: f64) -> Option<Extents> {
-    let read = |name: &str| -> Option<Xy> {
+    let read = |name: &str| -> Option<[f64; 3]> {
         let number = |code| checked.outline.header(name, code)?.parse::<f64>().ok();
-        Some([number(10)? * metres, number(20)? * metres])
+        Some([number(10)?, number(20)?, number(30).unwrap_or(0.0)])
     };
     let (low, high) = (read("$EXTMIN")?, read("$EXTMAX")?);
-    (low[0] < high[0] && low[1] < high[1]).then_some(Extents { low, high })
+    let plane = checked.drawing.plane;
+    let corners = (0..8).map(|i| {
+        let corner: [f64; 3] =
+            std::array::from_fn(|axis| if i >> axis & 1 == 0 { low[axis] } else { high[axis] });
+        [plane.right, plane.up].map(|d| d.iter().zip(corner).map(|(d, c)| d * c).sum::<f64>() * metres)
+    });
+    let sound = low[0] < high[0] && low[1] < high[1];
+    Extents::round(corners).filter(|_| sound)
 }
 
 /// The median height of the texts that were read.
