@@ -221,6 +221,43 @@ def third(results, folder, modules):
             problems.append("dxf-parser sees no layer of ours")
 
 
+def edited(binary, folder, fixtures):
+    """Marked copies that ezdxf saved again: `unmark` must say that they are not the source, or give it back; never damage.
+
+    With --force what is left holds nothing of ours, and as many entities as the source."""
+    import ezdxf
+
+    problems = []
+    for _, name, data, job in fixtures:
+        base = pathlib.Path(folder) / ("edited " + name)
+        base.mkdir()
+        source, marked = base / "drawing.dxf", base / "drawing.thrust.dxf"
+        saved, rest = base / "saved.dxf", base / "rest.dxf"
+        source.write_bytes(data)
+        (base / "thrustmark.toml").write_text(job, encoding="utf-8")
+        subprocess.run([binary, "mark", source], capture_output=True, timeout=300)
+        doc = ezdxf.readfile(marked)
+        for entity in doc.modelspace().query("POINT"):
+            entity.translate(0.0, 0.25, 0.0)
+        doc.saveas(saved)
+        undo = subprocess.run([binary, "unmark", saved, "--output", rest], capture_output=True, timeout=300)
+        words = undo.stderr.decode(errors="replace")
+        if undo.returncode != 2 or rest.exists() or "not the source" not in words:
+            problems.append(f"edited {name}: unmark ended in {undo.returncode}: {words[:300]}")
+            continue
+        forced = subprocess.run([binary, "unmark", saved, "--force", "--output", rest], capture_output=True, timeout=300)
+        if forced.returncode != 0:
+            problems.append(f"edited {name}: unmark --force: {forced.stderr.decode(errors='replace')[:300]}")
+            continue
+        left, _ = audit(rest)
+        before, _ = audit(source)
+        if left is None or left[2] or left[1] != before[1] or left[0] - before[0]:
+            problems.append(f"edited {name}: of {before} unmark --force leaves {left}")
+        if b"THRUST-" in rest.read_bytes():
+            problems.append(f"edited {name}: unmark --force leaves names of ours")
+    return problems
+
+
 def table(tasks, results, left):
     """docs/readers.md: how many drawings of which kind were marked, and what each reader could tell."""
     rows = collections.defaultdict(collections.Counter)
@@ -291,8 +328,11 @@ def main():
             third(results, folder, a.modules)
         else:
             print("SKIPPED: the third reader; no --modules")
+        changed = edited(binary, folder, [d for d in found if d[0] == "fixtures"])
     total = collections.Counter()
-    bad = 0
+    bad = len(changed)
+    for problem in changed:
+        print(f"PROBLEM  {problem}")
     for number, state, why, problems, seen in results:
         group, name = found[number][:2]
         total[state] += 1
