@@ -47,7 +47,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("sheet", All),
         ],
     ),
-    ("drawing", &[("unit", All), ("scale", All), ("plane", Only(&["auto", "xy"]))]),
+    ("drawing", &[("unit", All), ("scale", All), ("plane", All)]),
     (
         "layers",
         &[
