@@ -285,3 +285,6 @@ pub const OFF_MIDDLE: f64 = 0.005;
 /// Angle in radians between the drawn end of a ring and the joint normal to its axis from which on it is told: five
 /// degrees.
 pub const END_SKEW: f64 = 0.09;
+/// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
+/// tangents without end.
+pub const CONE_SLACK: f64 = 1e-11;

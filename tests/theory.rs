@@ -376,3 +376,46 @@ fn m06_friction_limits_of_the_semicircle() {
     assert_eq!(least(thick, mixed * (1.0 - 1e-6)).status, Status::None);
     assert_eq!(least(thick * 3.0, mixed * (1.0 - 1e-6)).status, Status::None);
 }
+
+#[test]
+fn k01_to_k04_stress_in_a_section() {
+    use thrustmark::statics::stress::{moment_capacity, thrust_capacity, uncracked, without_tension};
+    // K01 (from memory): rectangle d x b: kern |e|<=d/6; at e=d/6 the edge stress is 2N/A and the other edge 0. Source:
+    // middle-third rule.
+    let s = uncracked(100.0, 10.0, 0.6, 1.0).unwrap();
+    close(s.extrados, 333.333333333);
+    assert!(s.intrados.abs() < 1e-9);
+    // K02 (from memory): no tension, e>d/6: triangular block of length 3(d/2-e), peak 2N/(3b(d/2-e)); at e=d/3 peak =
+    // 4N/(bd). Source: closed form, derived.
+    let s = without_tension(100.0, 20.0, 0.6, 1.0).unwrap();
+    close(s.extrados, 666.666666667);
+    close(s.extrados, 4.0 * 100.0 / 0.6);
+    // K03 (from memory): moment-thrust capacity, rectangular stress block f: M=N(d/2-N/(2bf)); summit M=b f d^2/8 at N=b f
+    // d/2; e_max=d/2-N/(2bf). Source: closed form, derived.
+    close(moment_capacity(600.0, 0.6, 1.0, 5000.0).unwrap(), 144.0);
+    close(moment_capacity(1500.0, 0.6, 1.0, 5000.0).unwrap(), 225.0);
+    // K04 (from memory): same law as plain concrete N_Rd=eta f_cd b h(1-2e/h) with eta=1. Source: EN 1992-1-1:2004, 12.6.1
+    // (3), Eq. (12.2).
+    close(thrust_capacity(0.24, 0.6, 1.0, 5000.0).unwrap(), 600.0);
+}
+
+#[test]
+fn m14_crushing_of_a_flat_arch() {
+    // M14 (derived): crushing, closed form: weightless flat (jack) arch of depth d between rigid abutments, one load at
+    // mid-span: H(d-H/(bf))=PL/4, greatest P=f b d^2/L at H=f b d/2. Source: closed form, derived. The axis here rises by four
+    // hundredths of a micrometre, for an axis without any rise is refused: that much is added to the depth.
+    let mut p = problem(polyline(&[(0.0, 0.0), (2.0, 4e-8), (4.0, 0.0)]), down(&[(1.0, 2.0)], 1.0));
+    p.depth = Some(Depth::Constant(0.6));
+    p.strength = Some(5000.0);
+    p.varying = vec![0];
+    p.govern = None;
+    let safety = analyse(&p).unwrap().safety.unwrap();
+    let load = safety.load.unwrap();
+    let found = load.value.unwrap();
+    assert!((found / 450.0 - 1.0).abs() < 2e-7, "{load:?}");
+    assert!(load.proof.unwrap().gap < 1e-7);
+    assert!(safety.mechanism.unwrap().residual < 1e-7);
+    // At unlimited strength everything that acts varies: no factor.
+    p.strength = None;
+    assert_eq!(analyse(&p).unwrap().safety.unwrap().load.unwrap().status, Status::Refused);
+}

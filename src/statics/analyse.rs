@@ -1,6 +1,7 @@
 //! From a problem to its lines of thrust.
 
 use super::closest::{Closest, Search};
+use super::elastic::{Effects, Flexibility, Place, least_energy};
 use super::limit::{Aim, Extreme, Limit};
 use super::line::{Sheet, missing};
 use super::peaks::Sampling;
@@ -8,7 +9,7 @@ use super::rule::{Choice, choose, through_points};
 use super::span::{Joint, Span, Unknowns};
 use super::subspace::Subspace;
 use super::through::{slack, through};
-use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, Unsolved};
+use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, Support, Unsolved};
 
 /// Computes the governing line of thrust of a span and those wanted beside it.
 ///
@@ -17,9 +18,26 @@ use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, 
 /// # Errors
 ///
 /// [`Unsolved`] says why: no load, an axis without rise or one that crosses itself, hinges that contradict each other, a
-/// cable that would have to push, numbers that are not finite, a line that is not built. An optimum that does not exist
+/// cable that would have to push, numbers that are not finite. An optimum that does not exist
 /// is no error but a [`Status`] of its line.
 pub fn analyse(problem: &Problem) -> Result<Analysis, Unsolved> {
+    solve(problem, None)
+}
+
+/// As [`analyse`], with the elastic line among its lines worked out for a stiffness that is given along the axis, where
+/// [`analyse`] takes the rectangle of the drawn depth.
+///
+/// # Errors
+///
+/// As [`analyse`].
+pub fn elastic(problem: &Problem, flexibility: &dyn Fn(&Place) -> Flexibility) -> Result<Analysis, Unsolved> {
+    solve(problem, Some(flexibility))
+}
+
+fn solve(
+    problem: &Problem,
+    flexibility: Option<&dyn Fn(&Place) -> Flexibility>,
+) -> Result<Analysis, Unsolved> {
     let span = Span::new(problem)?;
     let choice = choose(problem, &span)?;
     let sense = if choice.kind == SpanKind::Cable { -1.0 } else { 1.0 };
@@ -41,6 +59,7 @@ pub fn analyse(problem: &Problem) -> Result<Analysis, Unsolved> {
         span: &span,
         choice: &choice,
         space: &space,
+        flexibility,
         sense,
         sheet: Sheet { span: &span, sampling: &sampling, bare: &bare },
     };
@@ -94,6 +113,7 @@ struct Work<'a> {
     choice: &'a Choice,
     /// Lines through all hinges.
     space: &'a Subspace,
+    flexibility: Option<&'a dyn Fn(&Place) -> Flexibility>,
     sense: f64,
     sheet: Sheet<'a>,
 }
@@ -105,9 +125,45 @@ impl Work<'_> {
             (LineKind::Closest, Some(closest)) => self.closest(closest),
             (LineKind::LeastThrust, _) => self.extreme(kind, Aim::LeastPush),
             (LineKind::GreatestThrust, _) => self.extreme(kind, Aim::GreatestPush),
-            (LineKind::Closest | LineKind::Elastic, _) => {
-                Err(Unsolved::NotBuilt("the line `elastic` is not built yet".into()))
+            (LineKind::Closest | LineKind::Elastic, _) => self.elastic(),
+        }
+    }
+
+    /// Least complementary energy.
+    fn elastic(&self) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let kind = LineKind::Elastic;
+        let support = self.choice.support;
+        let refuse = |reason: &str| Ok((missing(kind, support, Status::Refused, reason.into()), None));
+        if self.choice.kind == SpanKind::Cable {
+            return refuse("a cable has no bending stiffness");
+        }
+        if support.is_none_or(|s| s == Support::None) {
+            return refuse("the elastic line needs a support: hingeless, two-hinged or three-hinged");
+        }
+        let effects = self.problem.effects;
+        if self.flexibility.is_none() {
+            if !self.span.has_depth {
+                return refuse("the elastic line needs the depth of the rib");
             }
+            if effects != Effects::default() && self.problem.stiffness.is_none() {
+                return refuse(
+                    "temperature, shrinkage and movement need the modulus of elasticity and the width",
+                );
+            }
+        }
+        let modulus = self.problem.stiffness.unwrap_or(1.0);
+        let rectangle = |p: &Place| {
+            let d = p.depth.unwrap_or(1.0);
+            Flexibility { bending: 12.0 / (modulus * d.powi(3)), axial: 1.0 / (modulus * d) }
+        };
+        let flexibility = self.flexibility.unwrap_or(&rectangle);
+        let whole = self.sheet.bare;
+        let Some(r) = least_energy(self.span, whole, self.space, flexibility, &effects) else {
+            return refuse("the stiffness along the axis is no positive number");
+        };
+        match slack(whole.least_thrust(&r)) {
+            Some(joint) => self.no_line(kind, "the elastic line", &joint),
+            None => Ok((self.sheet.found(kind, support, &r, None), Some(r))),
         }
     }
 
@@ -127,6 +183,7 @@ impl Work<'_> {
             sampling: self.sheet.sampling,
             space: self.space,
             friction: self.problem.friction,
+            crushing: self.span.crushing,
         };
         match limit.solve(aim) {
             Extreme::Found { r, primal, dual, .. } => {

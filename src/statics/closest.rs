@@ -349,7 +349,7 @@ impl<'a> Search<'a> {
             r = chosen;
         }
         let far = tolerance::UNBOUNDED * 0.5;
-        let sized = (r[0] * (8.0 * self.span.crown.1.abs()).min(1.0)).abs().max(r[1].abs());
+        let sized = (r[0] * (8.0 * self.span.lever()).min(1.0)).abs().max(r[1].abs());
         if sized > far {
             return Closest::Unbounded;
         }

@@ -39,12 +39,25 @@ pub(super) enum Edge {
 
 const EDGES: [Edge; 4] = [Edge::Extrados, Edge::Intrados, Edge::Outward, Edge::Inward];
 
+/// One constraint in one joint: an edge, and the thrust at which the law of a finite strength is touched (0 where there is
+/// none, or for its tangent at no thrust, which is the edge of the ring itself).
+#[derive(Debug, Clone, Copy)]
+struct Bound {
+    joint: Joint,
+    edge: Edge,
+    touched: f64,
+}
+
 /// A joint that the optimum leans on, with its multiplier: a hinge (or slip) of the mechanism and its rotation.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Lean {
     pub joint: Joint,
     pub edge: Edge,
     pub multiplier: f64,
+    /// How far outside the axis the hinge turns: half the depth, less where the edge crushes.
+    pub offset: f64,
+    /// Work that crushing takes per rotation.
+    pub crushing: f64,
 }
 
 /// How a program ended.
@@ -71,6 +84,8 @@ pub(super) struct Limit<'a> {
     pub space: &'a Subspace,
     /// Coefficient of friction; `None`: nothing slides.
     pub friction: Option<f64>,
+    /// `1 / (2 f b)` for a block strength `f` and a width `b`, in local units; 0 for unlimited strength.
+    pub crushing: f64,
 }
 
 impl Limit<'_> {
@@ -86,40 +101,43 @@ impl Limit<'_> {
         unit[unknown] = sign;
         let (cost, constant) = self.space.row(&(unit, 0.0));
         let mut program = Program::new(&cost[..self.space.free], tolerance::UNBOUNDED);
-        let mut rows: Vec<(Joint, Edge)> = Vec::new();
+        let mut rows: Vec<Bound> = Vec::new();
         if unknown == 3 {
             // A load factor is not negative.
             let (a, c) = self.space.row(&([0.0, 0.0, 0.0, -1.0], 0.0));
             program.push(Row { a, b: -c });
         }
         let first = program.box_rows() + usize::from(unknown == 3);
-        let add = |program: &mut Program, rows: &mut Vec<(Joint, Edge)>, joint: Joint| {
+        let add = |program: &mut Program, rows: &mut Vec<Bound>, joint: Joint, touched: f64| {
             for edge in EDGES {
-                if let Some((a, c)) = self.row(&joint, edge) {
-                    let (a, c) = self.space.row(&(a, c));
+                let bound = Bound { joint, edge, touched };
+                if let Some(row) = self.row(&bound) {
+                    let (a, c) = self.space.row(&row);
                     program.push(Row { a, b: -c });
-                    rows.push((joint, edge));
+                    rows.push(bound);
                 }
             }
         };
         for joint in self.sampling.spread(START) {
-            add(&mut program, &mut rows, joint);
+            add(&mut program, &mut rows, joint, 0.0);
         }
         for _ in 0..ROUNDS {
             let vertex = match program.solve() {
                 Outcome::Best(vertex) => vertex,
-                Outcome::Infeasible(proof) => return Extreme::None(leans(&rows, &proof, first)),
+                Outcome::Infeasible(proof) => return Extreme::None(self.leans(&rows, &proof, first)),
                 Outcome::Stalled => return Extreme::Stalled,
             };
             let r = self.space.unknowns(&vertex.x[..self.space.free]);
-            let fresh = self.broken(&r);
             let mut added = 0;
-            for joint in fresh {
-                let known = rows
-                    .iter()
-                    .any(|(j, _)| j.piece == joint.piece && (j.s - joint.s).abs() <= tolerance::PEAK_PLACE);
+            for joint in self.broken(&r) {
+                let touched = if self.crushing > 0.0 { joint.thrust(&r).max(0.0) } else { 0.0 };
+                let known = rows.iter().any(|b| {
+                    b.joint.piece == joint.piece
+                        && (b.joint.s - joint.s).abs() <= tolerance::PEAK_PLACE
+                        && (b.touched - touched).abs() <= tolerance::PEAK_PLACE * touched
+                });
                 if !known {
-                    add(&mut program, &mut rows, joint);
+                    add(&mut program, &mut rows, joint, touched);
                     added += 1;
                 }
             }
@@ -136,11 +154,11 @@ impl Limit<'_> {
         r: Unknowns,
         constant: f64,
         sign: f64,
-        rows: &[(Joint, Edge)],
+        rows: &[Bound],
         first: usize,
     ) -> Extreme {
         let far = tolerance::UNBOUNDED * 0.5;
-        let flat = (8.0 * self.span.crown.1.abs()).min(1.0);
+        let flat = (8.0 * self.span.lever()).min(1.0);
         if (r[0] * flat).abs().max(r[1].abs()).max(r[3].abs()) > far {
             return Extreme::Unbounded;
         }
@@ -149,14 +167,16 @@ impl Limit<'_> {
         let most = vertex.active.iter().fold(0.0, |m, a| f64::max(m, a.1));
         let active: Vec<_> =
             vertex.active.iter().filter(|a| a.1 > tolerance::MULTIPLIER * most).copied().collect();
-        Extreme::Found { r, primal, dual, leans: self.gather(leans(rows, &active, first), &r) }
+        Extreme::Found { r, primal, dual, leans: self.gather(self.leans(rows, &active, first), &r) }
     }
 
-    /// A constraint as `a · r + c ≤ 0`.
-    fn row(&self, joint: &Joint, edge: Edge) -> Option<Affine> {
-        let (over, side, room) = match edge {
-            Edge::Extrados => (joint.moment_row(), 1.0, joint.depth / 2.0),
-            Edge::Intrados => (joint.moment_row(), -1.0, joint.depth / 2.0),
+    /// A constraint as `a · r + c ≤ 0`. The law of a finite strength, `|M| ≤ N d / 2 − N² / (2 f b)`, is concave in `N`:
+    /// it is kept when all its tangents are.
+    fn row(&self, bound: &Bound) -> Option<Affine> {
+        let joint = &bound.joint;
+        let (over, side, room) = match bound.edge {
+            Edge::Extrados => (joint.moment_row(), 1.0, self.offset(bound)),
+            Edge::Intrados => (joint.moment_row(), -1.0, self.offset(bound)),
             Edge::Outward => (joint.shear_row(), 1.0, self.friction?),
             Edge::Inward => (joint.shear_row(), -1.0, self.friction?),
         };
@@ -165,24 +185,62 @@ impl Limit<'_> {
         for (i, v) in a.iter_mut().enumerate() {
             *v = side * over.0[i] - room * thrust.0[i];
         }
-        Some((a, side * over.1 - room * thrust.1))
+        Some((a, side * over.1 - room * thrust.1 - self.crushed(bound)))
+    }
+
+    fn offset(&self, bound: &Bound) -> f64 {
+        bound.joint.depth / 2.0 - 2.0 * self.crushing * bound.touched
+    }
+
+    /// The constant of the tangent: the work that crushing takes per rotation.
+    fn crushed(&self, bound: &Bound) -> f64 {
+        match bound.edge {
+            Edge::Extrados | Edge::Intrados => self.crushing * bound.touched * bound.touched,
+            Edge::Outward | Edge::Inward => 0.0,
+        }
+    }
+
+    fn leans(&self, rows: &[Bound], active: &[(usize, f64)], first: usize) -> Vec<Lean> {
+        let lean = |&(i, multiplier): &(usize, f64)| {
+            let bound = rows.get(i.checked_sub(first)?)?;
+            Some(Lean {
+                joint: bound.joint,
+                edge: bound.edge,
+                multiplier,
+                offset: self.offset(bound),
+                crushing: self.crushed(bound),
+            })
+        };
+        active.iter().filter_map(lean).collect()
+    }
+
+    /// What bounds the moment in a joint.
+    fn bending(&self) -> (Measure, f64) {
+        if self.crushing > 0.0 {
+            (Measure::Crushing(self.crushing), 1.0)
+        } else {
+            (Measure::Eccentricity, 0.5)
+        }
     }
 
     /// The joints on the continuous axis that break a constraint most.
     fn broken(&self, r: &Unknowns) -> Vec<Joint> {
         let size = 1.0 + r[0].abs() + r[1].abs() + r[3].abs();
         let excess = |joint: &Joint, edge: Edge| {
-            self.row(joint, edge).map_or(0.0, |(a, c)| (0..4).map(|i| a[i] * r[i]).sum::<f64>() + c)
+            // The tangent at the thrust of the line itself has the value of the law.
+            let touched = if self.crushing > 0.0 { joint.thrust(r).max(0.0) } else { 0.0 };
+            let row = self.row(&Bound { joint: *joint, edge, touched });
+            row.map_or(0.0, |(a, c)| (0..4).map(|i| a[i] * r[i]).sum::<f64>() + c)
         };
+        let slack = if self.crushing > 0.0 { tolerance::CONE_SLACK } else { tolerance::LIMIT_SLACK };
         let mut found = Vec::new();
         let mut take = |what: Measure, floor: f64, edges: [Edge; 2]| {
             let peaks = self.sampling.peaks_of(what, r, floor);
-            let over = peaks
-                .iter()
-                .filter(|p| edges.iter().any(|&e| excess(&p.joint, e) > tolerance::LIMIT_SLACK * size));
+            let over = peaks.iter().filter(|p| edges.iter().any(|&e| excess(&p.joint, e) > slack * size));
             found.extend(over.take(ROUND).map(|p| p.joint));
         };
-        take(Measure::Eccentricity, 0.5, [Edge::Extrados, Edge::Intrados]);
+        let (what, floor) = self.bending();
+        take(what, floor, [Edge::Extrados, Edge::Intrados]);
         if let Some(friction) = self.friction {
             take(Measure::Sliding, friction, [Edge::Outward, Edge::Inward]);
         }
@@ -192,7 +250,8 @@ impl Limit<'_> {
     /// Brings the multipliers of neighbouring joints together at the peak that they stand around.
     fn gather(&self, leans: Vec<Lean>, r: &Unknowns) -> Vec<Lean> {
         let near = 1.0 - tolerance::HINGE_CONTACT;
-        let mut tops = self.sampling.peaks_of(Measure::Eccentricity, r, 0.5 * near);
+        let (what, floor) = self.bending();
+        let mut tops = self.sampling.peaks_of(what, r, floor * near);
         if let Some(friction) = self.friction {
             tops.extend(self.sampling.peaks_of(Measure::Sliding, r, friction * near));
         }
@@ -213,7 +272,13 @@ impl Limit<'_> {
                     && (g.joint.s - lean.joint.s).abs() <= tolerance::HINGE_PLACE
             });
             match same {
-                Some(g) => g.multiplier += lean.multiplier,
+                Some(g) => {
+                    // The place and the work of both, weighted by their rotations.
+                    let (a, b) = (g.multiplier, lean.multiplier);
+                    g.offset = (a * g.offset + b * lean.offset) / (a + b);
+                    g.crushing = (a * g.crushing + b * lean.crushing) / (a + b);
+                    g.multiplier = a + b;
+                }
                 None => gathered.push(lean),
             }
         }
@@ -222,28 +287,18 @@ impl Limit<'_> {
     }
 }
 
-fn leans(rows: &[(Joint, Edge)], active: &[(usize, f64)], first: usize) -> Vec<Lean> {
-    active
-        .iter()
-        .filter_map(|&(i, multiplier)| {
-            let (joint, edge) = *rows.get(i.checked_sub(first)?)?;
-            Some(Lean { joint, edge, multiplier })
-        })
-        .collect()
-}
-
-/// Virtual work of the mechanism that the multipliers describe: of the loads that stay, and of the varying ones at
-/// factor 1, each load's force along its displacement. With all hinges in place nothing else does work, so the factor is
-/// minus the one over the other.
-pub(super) fn virtual_work(leans: &[Lean]) -> (f64, f64) {
-    let (mut fixed, mut varying) = (0.0, 0.0);
+/// Virtual work of the mechanism that the multipliers describe: of the loads that stay, of the varying ones at factor 1
+/// (each load's force along its displacement), and what crushing takes. With all hinges in place nothing else does work,
+/// so fixed plus factor times varying is what crushing takes.
+pub(super) fn virtual_work(leans: &[Lean]) -> (f64, f64, f64) {
+    let (mut fixed, mut varying, mut crushing) = (0.0, 0.0, 0.0);
     for lean in leans {
         let (at, n) = (lean.joint.at, lean.joint.normal());
         let work = |l: &super::span::Loads| match lean.edge {
-            // Moment about the edge point of all loads before the hinge.
+            // Moment about the hinge of all loads before it.
             Edge::Extrados | Edge::Intrados => {
                 let side = if lean.edge == Edge::Extrados { 1.0 } else { -1.0 };
-                let q = at + n * (side * lean.joint.depth / 2.0);
+                let q = at + n * (side * lean.offset);
                 side * (q.x * l.fy - q.y * l.fx - l.moment)
             }
             Edge::Outward => l.fx * n.x + l.fy * n.y,
@@ -251,8 +306,9 @@ pub(super) fn virtual_work(leans: &[Lean]) -> (f64, f64) {
         };
         fixed += lean.multiplier * work(&lean.joint.loads.fixed);
         varying += lean.multiplier * work(&lean.joint.loads.varying);
+        crushing += lean.multiplier * lean.crushing;
     }
-    (fixed, varying)
+    (fixed, varying, crushing)
 }
 
 const _: () = assert!(MOST >= 4, "the reaction and the load factor are four unknowns");

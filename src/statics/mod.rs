@@ -7,6 +7,7 @@
 mod analyse;
 mod check;
 mod closest;
+mod elastic;
 mod limit;
 mod line;
 mod peaks;
@@ -16,11 +17,13 @@ mod rule;
 mod safety;
 mod simplex;
 mod span;
+pub mod stress;
 mod string;
 mod subspace;
 mod through;
 
-pub use analyse::analyse;
+pub use analyse::{analyse, elastic};
+pub use elastic::{Effects, Flexibility, Place};
 
 use crate::geometry::{Path, Point, Vec2};
 
@@ -102,6 +105,12 @@ pub struct Problem {
     pub voussoirs: Option<usize>,
     /// Coefficient of friction between the pieces; `None`: nothing slides.
     pub friction: Option<f64>,
+    /// Strength in compression times width, kN/m, of a uniform block of stress; `None`: unlimited.
+    pub strength: Option<f64>,
+    /// Modulus of elasticity times width, kN/m (lowered for creep); only what strains the rib beside its loads needs it.
+    pub stiffness: Option<f64>,
+    /// What strains an elastic rib beside its loads.
+    pub effects: Effects,
     /// Whether the section can take tension.
     pub tension: bool,
     /// How the span is held; `None` when nothing was said.
@@ -130,6 +139,9 @@ impl Problem {
             depth: None,
             voussoirs: None,
             friction: None,
+            strength: None,
+            stiffness: None,
+            effects: Effects::default(),
             tension: false,
             support: None,
             hinges: Vec::new(),
@@ -299,7 +311,7 @@ pub enum HingeSide {
 /// A hinge of a mechanism.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Hinge {
-    /// Where on the edge of the ring, m.
+    /// Where it turns: on the edge of the ring, inside where the edge crushes, m.
     pub at: Point,
     /// Length of its joint along the axis, m.
     pub s: f64,
@@ -318,6 +330,8 @@ pub struct Mechanism {
     pub work_fixed: f64,
     /// Virtual work of the varying loads at factor 1: one, or minus one at the lower end.
     pub work_varying: f64,
+    /// What crushing at finite strength takes of it.
+    pub work_crushing: f64,
     /// What is left of the work of all loads at the factor found, relative to its parts.
     pub residual: f64,
 }

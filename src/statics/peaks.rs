@@ -1,6 +1,7 @@
 //! Where a constraint's own function is worst on the continuous axis.
 //!
-//! The function is `|M| / (d N)` for a line of thrust, eccentricity over depth, or `|S| / N` for sliding. Between loads,
+//! The function is `|M| / (d N)` for a line of thrust, eccentricity over depth, `|S| / N` for sliding, or the like for
+//! crushing. Between loads,
 //! kinks and joints of pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of
 //! its slope is followed to the peak. A ring of a stated number of voussoirs has its own joints and no others.
 
@@ -13,12 +14,14 @@ const SAMPLE_TURN: f64 = 3.0;
 const SAMPLES_STRAIGHT: usize = 4;
 
 /// What is measured in a joint.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[derive(Debug, Clone, Copy, PartialEq)]
 pub(super) enum Measure {
     /// `|M| / (d N)`
     Eccentricity,
     /// `|S| / N`
     Sliding,
+    /// `|M| / (N d / 2 − c N²)` with this `c`
+    Crushing(f64),
 }
 
 /// A joint where the function has a peak or an end.
@@ -101,6 +104,10 @@ impl<'a> Sampling<'a> {
             match what {
                 Measure::Eccentricity => joint.moment(r).abs() / (joint.depth * thrust),
                 Measure::Sliding => joint.shear(r).abs() / thrust,
+                Measure::Crushing(c) => {
+                    let room = thrust * (joint.depth / 2.0 - c * thrust);
+                    if room > 0.0 { joint.moment(r).abs() / room } else { f64::INFINITY }
+                }
             }
         } else {
             f64::INFINITY
@@ -205,6 +212,11 @@ impl<'a> Sampling<'a> {
                 (piece.moment_slope(joint, r), piece.depth_slope * joint.thrust(r) + joint.depth * thrust)
             }
             Measure::Sliding => (piece.shear_slope(joint, r), thrust),
+            Measure::Crushing(c) => {
+                let n = joint.thrust(r);
+                let room = thrust * (joint.depth / 2.0 - 2.0 * c * n) + n * piece.depth_slope / 2.0;
+                (piece.moment_slope(joint, r), room)
+            }
         };
         rise * under - over * base
     }
@@ -251,6 +263,7 @@ fn fraction(what: Measure, joint: &Joint, r: &Unknowns) -> (f64, f64) {
     match what {
         Measure::Eccentricity => (joint.moment(r), joint.depth * thrust),
         Measure::Sliding => (joint.shear(r), thrust),
+        Measure::Crushing(c) => (joint.moment(r), thrust * (joint.depth / 2.0 - c * thrust)),
     }
 }
 

@@ -31,7 +31,7 @@ pub(super) fn safety(
     let (true, Some(space)) = (any, with_factor) else {
         return safety;
     };
-    if !stays {
+    if !stays && problem.strength.is_none() {
         let all = || {
             factor(
                 Status::Refused,
@@ -41,7 +41,7 @@ pub(super) fn safety(
         (safety.load, safety.load_least) = (Some(all()), Some(all()));
         return safety;
     }
-    let limit = Limit { span, sampling, space, friction: problem.friction };
+    let limit = Limit { span, sampling, space, friction: problem.friction, crushing: span.crushing };
     let (load, mechanism) = interval(&limit, Aim::GreatestFactor, problem);
     let (least, mechanism_least) = interval(&limit, Aim::LeastFactor, problem);
     safety.load = Some(load);
@@ -134,7 +134,7 @@ pub(super) fn contradiction(span: &Span, leans: &[Lean], problem: &Problem) -> S
 }
 
 fn mechanism(span: &Span, leans: &[Lean], factor: f64) -> Option<Mechanism> {
-    let (fixed, varying) = virtual_work(leans);
+    let (fixed, varying, crushing) = virtual_work(leans);
     // Scaled so that the varying loads do unit work at factor 1.
     let unit = varying.abs();
     if unit <= 0.0 {
@@ -144,23 +144,24 @@ fn mechanism(span: &Span, leans: &[Lean], factor: f64) -> Option<Mechanism> {
         .iter()
         .map(|l| {
             let (side, off) = match l.edge {
-                Edge::Extrados => (HingeSide::Extrados, 0.5),
-                Edge::Intrados => (HingeSide::Intrados, -0.5),
+                Edge::Extrados => (HingeSide::Extrados, l.offset),
+                Edge::Intrados => (HingeSide::Intrados, -l.offset),
                 Edge::Outward | Edge::Inward => (HingeSide::Slip, 0.0),
             };
             Hinge {
-                at: span.drawn(l.joint.at + l.joint.normal() * (off * l.joint.depth)),
+                at: span.drawn(l.joint.at + l.joint.normal() * off),
                 s: l.joint.s * span.length,
                 side,
                 rotation: l.multiplier / unit / (span.load * span.length),
             }
         })
         .collect();
-    let work = fixed + factor * varying;
+    let work = fixed + factor * varying - crushing;
     Some(Mechanism {
         hinges,
         work_fixed: fixed / unit,
         work_varying: varying / unit,
-        residual: work.abs() / (fixed.abs() + factor * varying.abs()),
+        work_crushing: crushing / unit,
+        residual: work.abs() / (fixed.abs() + factor * varying.abs() + crushing.abs()),
     })
 }

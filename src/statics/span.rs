@@ -263,7 +263,7 @@ impl Piece {
 }
 
 /// Abscissae (of both signs) and weights of the Gauss rule of ten points.
-const GAUSS_10: [(f64, f64); 5] = [
+pub(super) const GAUSS_10: [(f64, f64); 5] = [
     (0.148_874_338_981_631_22, 0.295_524_224_714_752_87),
     (0.433_395_394_129_247_2, 0.269_266_719_309_996_35),
     (0.679_409_568_299_024_4, 0.219_086_362_515_982_04),
@@ -361,6 +361,8 @@ pub(super) struct Span {
     /// The axis lies wholly below its chord.
     pub hangs: bool,
     pub has_depth: bool,
+    /// `1 / (2 f b)`; 0 for unlimited strength.
+    pub crushing: f64,
     /// Weight along the axis that stays, and weight that the load factor multiplies.
     pub weight: [Weight; 2],
 }
@@ -422,6 +424,7 @@ impl Span {
             crown,
             hangs,
             has_depth: problem.depth.is_some(),
+            crushing: problem.strength.map_or(0.0, |f| load / (2.0 * f * length)),
             weight,
         };
         for e in &mut span.entered {
@@ -588,6 +591,12 @@ impl Span {
         other
     }
 
+    /// Lever arm of the push that a line may count on: the rise, and the depth where one is known.
+    pub fn lever(&self) -> f64 {
+        let deepest = self.pieces.iter().fold(0.0, |m, p| f64::max(m, p.depth));
+        self.crown.1.abs() + if self.has_depth { deepest } else { 0.0 }
+    }
+
     /// Sum of all loads, in local units.
     pub fn total(&self) -> Vec2 {
         let loads = self.last().loads.times(1.0);
@@ -619,6 +628,9 @@ fn check_input(problem: &Problem) -> Result<(), Unsolved> {
     }
     if problem.voussoirs.is_some_and(|n| n == 0 || n > MOST_VOUSSOIRS) {
         return bad("the number of voussoirs must be between 1 and 100 000");
+    }
+    if problem.strength.is_some_and(|f| !(f > 0.0 && f.is_finite())) {
+        return bad("the strength must be positive");
     }
     if problem.friction.is_some_and(|f| !(f > 0.0 && f.is_finite())) {
         return bad("the coefficient of friction must be positive");

@@ -24,8 +24,8 @@ impl Subspace {
 
     /// The same with the factor of the varying loads free.
     pub fn with_factor(span: &Span, rows: &[Affine]) -> Option<Self> {
-        // A push of the line of the rise has size 1 / (8 rise); in such units all columns are alike.
-        let sizes = [(0.125 / span.crown.1.abs()).max(1.0), 1.0, 1.0, 1.0];
+        // A push of a line with this lever arm has size 1 / (8 arm); in such units all columns are alike.
+        let sizes = [(0.125 / span.lever()).max(1.0), 1.0, 1.0, 1.0];
         let mut directions = [[0.0; 4]; 4];
         for k in 0..4 {
             directions[k][k] = sizes[k];
