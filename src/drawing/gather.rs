@@ -119,7 +119,8 @@ impl Reader<'_> {
         let lines = [read(Role::Intrados)?, read(Role::Extrados)?];
         match &lines {
             [(inner, _), (outer, _)] if inner.is_empty() != outer.is_empty() => {
-                let (have, lack) = if outer.is_empty() { ("intrados", "extrados") } else { ("extrados", "intrados") };
+                let (have, lack) =
+                    if outer.is_empty() { ("intrados", "extrados") } else { ("extrados", "intrados") };
                 let layer = inner.iter().chain(outer).next().cloned().unwrap_or_default();
                 Err(Refusal::new(
                     "ring-half",

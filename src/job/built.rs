@@ -35,7 +35,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("rib", All),
             ("loads", All),
             ("area", Later),
-            ("case", Later),
+            ("case", All),
             ("traffic", Later),
             ("range", Later),
             ("line", All),
@@ -52,8 +52,8 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         "layers",
         &[
             ("axis", All),
-            ("intrados", Later),
-            ("extrados", Later),
+            ("intrados", All),
+            ("extrados", All),
             ("loads", All),
             ("posts", Later),
             ("joints", Later),
@@ -67,7 +67,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         &[
             ("depth", All),
             ("width", All),
-            ("unit_weight", LaterZero),
+            ("unit_weight", All),
             ("voussoirs", Later),
             ("strength", Later),
             ("friction", Later),
@@ -139,7 +139,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("ring", All),
             ("stress", Later),
             ("geometric_factor", All),
-            ("load_factor", Later),
+            ("load_factor", All),
             ("pier_push", Later),
             ("dimension", Later),
         ],
@@ -148,7 +148,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
     (
         "accept.finding",
         &[
-            ("check", Only(&["offset", "ring", "kern", "geometric-factor"])),
+            ("check", Only(&["offset", "ring", "kern", "geometric-factor", "load-factor"])),
             ("span", All),
             ("case", All),
             ("up_to", All),
