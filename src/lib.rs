@@ -12,6 +12,7 @@ pub mod flow;
 pub mod geometry;
 pub mod job;
 pub mod model;
+pub mod office;
 pub mod outcome;
 pub mod refusal;
 pub mod statics;

@@ -52,7 +52,7 @@ fn wrong_usage_is_two_on_stderr() {
         &["check"],
         &["unmark"],
         &["list"],
-        &["verify", "a.dxf"],
+        &["verify"],
         &["watch", "."],
         &["mark", "a.dxf", "--pdf", "x"],
         &["mark", "a.dxf", "--job"],
@@ -74,7 +74,7 @@ fn wrong_usage_is_two_on_stderr() {
 
 #[test]
 fn help_tells_examples_status_and_caution() {
-    for command in ["mark", "check", "unmark", "list", "schema"] {
+    for command in ["mark", "check", "unmark", "list", "verify", "demo", "schema", "completions", "manual"] {
         let help = parse(&[command, "--help"]).unwrap_err();
         assert_eq!((help.kind(), help.exit_code()), (ErrorKind::DisplayHelp, 0));
         let text = help.to_string();
@@ -92,7 +92,9 @@ fn help_tells_examples_status_and_caution() {
 #[test]
 fn examples_of_the_help_parse() {
     let mut found = 0;
-    for command in ["", "mark", "check", "unmark", "list", "schema"] {
+    for command in
+        ["", "mark", "check", "unmark", "list", "verify", "demo", "schema", "completions", "manual"]
+    {
         let arguments: Vec<&str> = [command, "--help"].into_iter().filter(|a| !a.is_empty()).collect();
         let text = parse(&arguments).unwrap_err().to_string();
         for line in text.lines().filter_map(|line| line.strip_prefix("  thrustmark ")) {

@@ -28,6 +28,7 @@ fn run(folder: &Path, arguments: &[&str]) -> Output {
         .args(arguments)
         .env("SOURCE_DATE_EPOCH", "1790000000")
         .env("NO_COLOR", "1")
+        .env("XDG_CACHE_HOME", env!("CARGO_TARGET_TMPDIR"))
         .output()
         .unwrap()
 }

@@ -158,7 +158,6 @@ fn the_contract_example_has_only_unbuilt_keys() {
     assert_eq!(
         named,
         [
-            "rib.voussoirs",
             "rib.strength",
             "rib.friction",
             "rib.backing",
@@ -221,8 +220,8 @@ fn what_is_not_built_is_refused_by_name() {
         ("[[traffic]]\nname = \"train\"", "traffic"),
         ("[[range]]\nwhat = \"rib.depth\"\nlow = 0.1\nhigh = 0.2", "range"),
         ("[line]\ngovern = \"elastic\"", "line.govern"),
-        ("[line]\ngovern = \"least-thrust\"", "line.govern"),
-        ("[line]\ndraw = [\"closest\", \"greatest-thrust\"]", "line.draw"),
+        ("[line]\ngovern = \"elastic\"", "line.govern"),
+        ("[line]\ndraw = [\"closest\", \"elastic\"]", "line.draw"),
         ("[limits]\nstress = 10", "limits.stress"),
         ("[limits]\npier_push = 2", "limits.pier_push"),
         ("[limits]\ndimension = 0.01", "limits.dimension"),

@@ -41,7 +41,11 @@ const FLOW: &[(&str, &[&str])] = &[
             "write",
         ],
     ),
-    ("cli", &["refusal", "units", "outcome", "tags", "job", "drawing", "write", "flow"]),
+    (
+        "office",
+        &["tolerance", "geometry", "refusal", "units", "outcome", "tags", "job", "drawing", "write", "flow"],
+    ),
+    ("cli", &["refusal", "units", "outcome", "tags", "job", "drawing", "write", "flow", "office"]),
 ];
 
 fn sources() -> Vec<PathBuf> {

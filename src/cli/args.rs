@@ -4,6 +4,7 @@
 //! changes a number, a verdict or the mark is a key of the job file and never an option.
 
 use std::ffi::OsString;
+use std::num::NonZeroUsize;
 use std::path::PathBuf;
 
 use clap::builder::{OsStringValueParser, TypedValueParser};
@@ -46,9 +47,21 @@ pub enum Command {
     /// Show what a drawing holds, and which layer could be the axis or the loads
     #[command(arg_required_else_help = true, after_help = LIST_HELP)]
     List(ListArgs),
+    /// Tell whether a marked copy still belongs to its source, its job and this version
+    #[command(arg_required_else_help = true, after_help = VERIFY_HELP)]
+    Verify(VerifyArgs),
+    /// Write demo drawings and their job file into a folder
+    #[command(arg_required_else_help = true, after_help = DEMO_HELP)]
+    Demo(DemoArgs),
     /// Print the JSON Schema of the results
     #[command(after_help = SCHEMA_HELP)]
     Schema,
+    /// Print the completions of a shell
+    #[command(arg_required_else_help = true, after_help = COMPLETIONS_HELP)]
+    Completions(CompletionsArgs),
+    /// Print the manual page
+    #[command(after_help = MANUAL_HELP)]
+    Manual,
 }
 
 /// `thrustmark mark`
@@ -85,6 +98,10 @@ pub struct CheckArgs {
     /// Print every figure with the entity it was read from
     #[arg(short, long)]
     pub verbose: bool,
+
+    /// Drawings worked on at a time; the results are the same [default: one for each processor]
+    #[arg(long, value_name = "N")]
+    pub jobs: Option<NonZeroUsize>,
 }
 
 /// `thrustmark unmark`
@@ -113,6 +130,46 @@ pub struct ListArgs {
     /// Job file [default: the first thrustmark.toml on the way up from the drawing's folder]
     #[arg(short, long, value_name = "FILE")]
     pub job: Option<PathBuf>,
+}
+
+/// `thrustmark verify`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct VerifyArgs {
+    /// Marked copy
+    #[arg(value_name = "MARKED")]
+    pub marked: PathBuf,
+
+    /// Drawing that was marked [default: the copy is held against the hash that it carries]
+    #[arg(value_name = "SOURCE")]
+    pub source: Option<PathBuf>,
+
+    /// Job file [default: the first thrustmark.toml on the way up from SOURCE's folder, or else MARKED's]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+
+    /// Result as JSON into FILE; with - on stdout, and the words on stderr
+    #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
+    pub json: Option<JsonTarget>,
+
+    /// Replace an existing file under the name of --json
+    #[arg(short, long)]
+    pub force: bool,
+}
+
+/// `thrustmark demo`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct DemoArgs {
+    /// Folder to write into; it is made when it is not there
+    #[arg(value_name = "FOLDER")]
+    pub folder: PathBuf,
+}
+
+/// `thrustmark completions`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct CompletionsArgs {
+    /// Shell
+    #[arg(value_name = "SHELL")]
+    pub shell: clap_complete::Shell,
 }
 
 /// Where the JSON results go.
@@ -174,7 +231,7 @@ drawing or in a folder above it.
 
 ",
     status!(),
-    "\n  list, unmark and schema end in 0 or 2.\n\n",
+    "\n  verify: 0 current, 1 stale, 2 neither. The other commands: 0, or 2 when it\n  could not be done.\n\n",
     caution!()
 );
 
@@ -231,6 +288,49 @@ const SCHEMA_HELP: &str = concat!(
     "\
 Example:
   thrustmark schema > thrustmark.schema.json
+
+",
+    plain_status!()
+);
+
+const VERIFY_HELP: &str = "\
+Examples:
+  thrustmark verify bridge.thrust.dxf bridge.dxf
+  thrustmark verify bridge.thrust.dxf --json verified.json
+
+A mark is stale when the source, the job file, the settings for this drawing or
+the version of thrustmark differ from those that it was made with, and when marks
+were edited or taken out: the drawing is marked again in memory and compared.
+
+Exit status:
+  0  current    marking the drawing again would give this copy
+  1  stale      it would not
+  2             it could not be told: a file cannot be read, or carries no mark";
+
+const DEMO_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark demo demo
+
+Writes four drawings and thrustmark.toml, and never over a file that is there.
+
+",
+    plain_status!()
+);
+
+const COMPLETIONS_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark completions bash > ~/.local/share/bash-completion/completions/thrustmark
+
+",
+    plain_status!()
+);
+
+const MANUAL_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark manual > thrustmark.1
 
 ",
     plain_status!()

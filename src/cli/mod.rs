@@ -2,28 +2,37 @@
 
 pub mod args;
 mod listing;
+mod manual;
 mod paths;
+mod progress;
+mod verify;
 
 use std::io::{self, IsTerminal, Write};
+use std::num::NonZeroUsize;
 use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
 use clap::Parser;
+use serde::Serialize;
 
 use crate::flow::{self, Environment, Target};
 use crate::job::Job;
+use crate::office::batch::{self, Event};
+use crate::office::demo;
 use crate::outcome::{CONTRACT, Document, Run, Tool, Verdict};
 use crate::refusal::Refusal;
 use crate::write::file::{self, Replace};
 use crate::write::text::plain;
 use crate::write::{json, terminal};
-use args::{Args, CheckArgs, Command, JsonTarget, ListArgs, UnmarkArgs};
+use args::{Args, CheckArgs, Command, DemoArgs, JsonTarget, ListArgs, UnmarkArgs};
+use progress::Progress;
 
 /// Status of a run that could not be done.
 const REFUSED: u8 = 2;
 
 /// Runs the program with the arguments of the process.
 pub fn run() -> ExitCode {
+    batch::keep_panics();
     let args = match Args::try_parse() {
         Ok(args) => args,
         Err(error) => error.exit(),
@@ -33,6 +42,10 @@ pub fn run() -> ExitCode {
         Command::Check(args) => check(args, None),
         Command::Unmark(args) => unmark(args),
         Command::List(args) => list(args),
+        Command::Verify(args) => verify::verify(args),
+        Command::Demo(args) => demo(args),
+        Command::Completions(args) => Ok(manual::completions(args.shell)),
+        Command::Manual => manual::manual(),
         Command::Schema => json::schema().map(|schema| {
             say(&schema);
             0
@@ -56,17 +69,13 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
     if let Some(JsonTarget::File(target)) = &args.json {
         file::may_write(target, &borrowed(&drawings), &json_may_replace(args.force))?;
     }
-    let runs: Vec<Run> = drawings
-        .iter()
-        .enumerate()
-        .map(|(i, drawing)| match &targets {
-            Some(targets) => {
-                let target = Target { output: targets[i].clone(), force: args.force };
-                flow::mark(drawing, named.as_ref(), &target, environment)
-            }
-            None => flow::check(drawing, named.as_ref(), environment),
-        })
-        .collect();
+    let runs = all(&drawings, args.jobs, |i, drawing| match &targets {
+        Some(targets) => {
+            let target = Target { output: targets[i].clone(), force: args.force };
+            flow::mark(drawing, named.as_ref(), &target, environment)
+        }
+        None => flow::check(drawing, named.as_ref(), environment),
+    })?;
     let document = Document {
         contract: CONTRACT,
         tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
@@ -82,16 +91,32 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
             tell(&summary);
         }
         Some(JsonTarget::File(target)) => {
-            let text = json::to_json(&document)?;
-            file::write_whole(target, &borrowed(&drawings), &json_may_replace(args.force), |out| {
-                out.write_all(text.as_bytes()).map_err(|error| {
-                    Refusal::new("write", format!("{}: {error}", target.display()), "Look at the space left.")
-                })
-            })?;
+            write_json(target, &borrowed(&drawings), args.force, &json::to_json(&document)?)?;
             say_results(&document, &summary);
         }
     }
     Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
+}
+
+/// The runs of all drawings, in their order, with the progress told on the way.
+fn all(
+    drawings: &[PathBuf],
+    jobs: Option<NonZeroUsize>,
+    one: impl Fn(usize, &Path) -> Run + Sync,
+) -> Result<Vec<Run>, Refusal> {
+    let mut progress = Progress::new(drawings.len());
+    let runs = batch::in_order(
+        drawings.len(),
+        jobs.unwrap_or_else(batch::processors),
+        |i| one(i, &drawings[i]),
+        |i, refusal| flow::refused_unread(&drawings[i], refusal),
+        |event| match event {
+            Event::Done(run) => progress.step(run.error.is_some()),
+            Event::Tick => progress.tick(),
+        },
+    );
+    progress.end();
+    runs
 }
 
 /// Results go to stdout; a run that was refused is told on stderr.
@@ -126,6 +151,16 @@ fn list(args: &ListArgs) -> Result<u8, Refusal> {
     Ok(0)
 }
 
+fn demo(args: &DemoArgs) -> Result<u8, Refusal> {
+    let written = demo::write(&args.folder)?;
+    for file in &written {
+        say(&format!("{}\n", plain(&file.display().to_string())));
+    }
+    let folder = plain(&args.folder.display().to_string());
+    say(&format!("Next: thrustmark check {folder}\n"));
+    Ok(0)
+}
+
 /// Exit status of one run.
 fn status(run: &Run) -> u8 {
     match run.verdict {
@@ -144,6 +179,35 @@ fn severity(status: u8) -> u8 {
         1 => 2,
         _ => 3,
     }
+}
+
+fn write_json(target: &Path, sources: &[&Path], force: bool, text: &str) -> Result<(), Refusal> {
+    file::write_whole(target, sources, &json_may_replace(force), |out| {
+        out.write_all(text.as_bytes()).map_err(|error| {
+            Refusal::new("write", format!("{}: {error}", target.display()), "Look at the space left.")
+        })
+    })
+}
+
+/// A document of one result that is no run: contract and tool as in the results, then the result under its name, or the
+/// error.
+fn document_of(name: &str, result: Result<&impl Serialize, &Refusal>) -> Result<String, Refusal> {
+    let value = |v: Result<serde_json::Value, serde_json::Error>| {
+        v.map_err(|e| {
+            Refusal::new("json", format!("the result could not be written as JSON: {e}"), "Please report it.")
+        })
+    };
+    let (result, error) = match result {
+        Ok(result) => (value(serde_json::to_value(result))?, serde_json::Value::Null),
+        Err(refusal) => (serde_json::Value::Null, value(serde_json::to_value(refusal))?),
+    };
+    let document = serde_json::json!({
+        "contract": CONTRACT,
+        "tool": {"name": env!("CARGO_PKG_NAME"), "version": env!("CARGO_PKG_VERSION")},
+        name: result,
+        "error": error,
+    });
+    Ok(format!("{document:#}\n"))
 }
 
 /// A results file may replace another JSON document of this tool, and anything with `--force`.

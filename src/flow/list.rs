@@ -3,9 +3,9 @@
 use std::collections::BTreeMap;
 use std::path::Path;
 
-use super::{job_for, without_marks};
+use super::{settings_for, without_marks};
 use crate::drawing::{self, Suggestion, viewport};
-use crate::job::{Job, Settings};
+use crate::job::Job;
 use crate::refusal::Refusal;
 use crate::tags::{Outline, Source, fold};
 
@@ -56,10 +56,7 @@ pub struct LayerLine {
 /// # Errors
 /// When it cannot be read as a drawing, or the job file is wrong.
 pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
-    let settings = match job_for(path, job)? {
-        Some(job) => job.for_sheet(&super::source_name(path))?,
-        None => Settings::default(),
-    };
+    let settings = settings_for(path, job)?;
     let (source, outline, marks) = without_marks(Source::open(path)?, &settings)?;
     let spelled = |name: &str, code| outline.header(name, code).map(str::to_string);
     let units = ["$INSUNITS", "$MEASUREMENT"]

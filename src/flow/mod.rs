@@ -5,6 +5,7 @@ mod problem;
 mod sheet;
 mod unmark;
 
+use std::io::Read;
 use std::path::{Path, PathBuf};
 
 use jiff::civil::Date;
@@ -15,6 +16,7 @@ use crate::model::{self, Model};
 use crate::outcome::{DrawingFacts, Run, Units};
 use crate::refusal::Refusal;
 use crate::statics::{self, Analysis};
+use crate::tags::marks::Marks;
 use crate::tags::{self, FoundMarks, Outline, Source};
 use crate::verdict;
 use crate::write::annotate;
@@ -65,6 +67,28 @@ pub struct Checked {
     settings: Settings,
     /// The marks that the file as it stands carries.
     marks: Option<FoundMarks>,
+}
+
+impl Checked {
+    /// The marks that the file as it stands carries.
+    pub fn marks(&self) -> Option<&FoundMarks> {
+        self.marks.as_ref()
+    }
+
+    /// The drawing without marks of ours.
+    pub fn source(&self) -> &Source {
+        &self.source
+    }
+
+    /// The settings in force.
+    pub fn settings(&self) -> &Settings {
+        &self.settings
+    }
+
+    /// What the marks need to know of the sheet.
+    pub fn sheet(&self, path: &Path, environment: Environment) -> annotate::Sheet {
+        sheet::sheet(path, self, environment)
+    }
 }
 
 /// Where the marked copy goes.
@@ -132,26 +156,55 @@ pub fn job_for(path: &Path, named: Option<&Job>) -> Result<Option<Job>, Refusal>
     }
 }
 
-fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Box<Run>> {
+/// The settings in force for a drawing; the built-in ones where there is no job file.
+///
+/// # Errors
+/// As [`Job::load`] and [`Job::for_sheet`].
+pub fn settings_for(path: &Path, named: Option<&Job>) -> Result<Settings, Refusal> {
+    settings_as(path, &source_name(path), named)
+}
+
+/// The settings for a drawing that the job's sheets know by another name.
+///
+/// # Errors
+/// As [`settings_for`].
+pub fn settings_as(path: &Path, name: &Path, named: Option<&Job>) -> Result<Settings, Refusal> {
+    match job_for(path, named)? {
+        Some(job) => job.for_sheet(name),
+        None => Ok(Settings::default()),
+    }
+}
+
+/// Reads, computes and judges one drawing, and keeps what a mark needs.
+///
+/// # Errors
+/// The run with its refusal.
+pub fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Box<Run>> {
+    match settings_for(path, job) {
+        Ok(settings) => checked_with(path, settings, environment),
+        Err(refusal) => Err(Box::new(refused(no_facts(path), serde_json::Value::Null, refusal))),
+    }
+}
+
+/// The same with settings of the caller's.
+///
+/// # Errors
+/// The run with its refusal.
+pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -> Result<Checked, Box<Run>> {
     let mut facts = no_facts(path);
-    let mut in_force = serde_json::Value::Null;
-    stages(path, job, environment, &mut facts, &mut in_force)
+    let in_force = settings.to_json();
+    stages(path, settings, environment, &mut facts, &in_force)
         .map_err(|refusal| Box::new(refused(facts, in_force, refusal)))
 }
 
-/// The stages in order; what is known so far is left in `facts` and `in_force` for a refusal.
+/// The stages in order; what is known so far is left in `facts` for a refusal.
 fn stages(
     path: &Path,
-    job: Option<&Job>,
+    settings: Settings,
     environment: Environment,
     facts: &mut DrawingFacts,
-    in_force: &mut serde_json::Value,
+    in_force: &serde_json::Value,
 ) -> Result<Checked, Refusal> {
-    let settings = match job_for(path, job)? {
-        Some(job) => job.for_sheet(&source_name(path))?,
-        None => Settings::default(),
-    };
-    *in_force = settings.to_json();
     let file = Source::open(path)?;
     let (source, outline, marks) = without_marks(file, &settings)?;
     facts.sha256.clone_from(&outline.sha256);
@@ -248,13 +301,35 @@ fn write_copy(
     force: bool,
     environment: Environment,
 ) -> Result<(), Refusal> {
-    let sources = [path];
+    may_write_copy(path, output, force)?;
+    write_marked(path, checked, &marked(path, checked, environment)?, output, force)
+}
+
+/// Looks whether a marked copy may be written, before any work is done: over nothing, over a copy of ours, or by force.
+///
+/// # Errors
+/// As [`file::may_write`].
+pub fn may_write_copy(path: &Path, output: &Path, force: bool) -> Result<(), Refusal> {
     let ours = |target: &Path| Ok(carries_marks(target));
     let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
-    file::may_write(output, &sources, &replace)?;
+    file::may_write(output, &[path], &replace)
+}
+
+/// The marked copy of a checked drawing, in memory.
+///
+/// # Errors
+/// When the drawing cannot take the marks.
+pub fn marked(path: &Path, checked: &Checked, environment: Environment) -> Result<Source, Refusal> {
     let sheet = sheet::sheet(path, checked, environment);
-    let marks = annotate::annotate(&checked.run, &sheet);
-    let edits = tags::mark(&checked.source, &checked.outline, &marks)?;
+    with_marks(checked, &annotate::annotate(&checked.run, &sheet))
+}
+
+/// A checked drawing with marks of the caller's in it, in memory. Marks that it carried are gone.
+///
+/// # Errors
+/// When the drawing cannot take the marks.
+pub fn with_marks(checked: &Checked, marks: &Marks) -> Result<Source, Refusal> {
+    let edits = tags::mark(&checked.source, &checked.outline, marks)?;
     let broken = tags::validate::check_inserted(&checked.source, &checked.outline, &edits)?;
     if let Some(first) = broken.first() {
         return Err(Refusal::new(
@@ -268,8 +343,23 @@ fn write_copy(
             "Report this drawing; nothing was written.",
         ));
     }
-    let marked = checked.source.spliced(&edits)?;
-    file::write_whole(output, &sources, &replace, |target| {
+    checked.source.spliced(&edits)
+}
+
+/// Writes a marked copy that was made in memory.
+///
+/// # Errors
+/// As [`may_write_copy`]; when the copy cannot be written; when another program wrote to the source meanwhile.
+pub fn write_marked(
+    path: &Path,
+    checked: &Checked,
+    marked: &Source,
+    output: &Path,
+    force: bool,
+) -> Result<(), Refusal> {
+    let ours = |target: &Path| Ok(carries_marks(target));
+    let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
+    file::write_whole(output, &[path], &replace, |target| {
         marked.write_to(target).map_err(|error| {
             Refusal::new(
                 "write",
@@ -285,9 +375,38 @@ fn write_copy(
 pub fn carries_marks(path: &Path) -> bool {
     let look = || -> Result<bool, Refusal> {
         let source = Source::open(path)?;
+        // A scan is dearer than a search, and most drawings of a set carry no marks.
+        if !holds_name(&mut source.reader()).unwrap_or(true) {
+            return Ok(false);
+        }
         Ok(tags::scan(&source, &tags::Options { keep: None, hash: false })?.marks.is_some())
     };
     look().unwrap_or(false)
+}
+
+/// Whether the name of our application stands anywhere in the bytes, in capitals or not.
+fn holds_name(reader: &mut impl Read) -> std::io::Result<bool> {
+    const CHUNK: usize = 1 << 18;
+    let name = tags::APPLICATION.as_bytes();
+    let first = name.first().copied().unwrap_or_default();
+    let mut buffer = vec![0; CHUNK];
+    // Bytes at the start of the buffer that were there before: a name may lie across two chunks.
+    let mut kept = 0;
+    loop {
+        let read = reader.read(&mut buffer[kept..])?;
+        if read == 0 {
+            return Ok(false);
+        }
+        let filled = &buffer[..kept + read];
+        let found = memchr::memchr2_iter(first, first.to_ascii_lowercase(), filled)
+            .any(|at| filled.get(at..at + name.len()).is_some_and(|part| part.eq_ignore_ascii_case(name)));
+        if found {
+            return Ok(true);
+        }
+        let tail = filled.len().saturating_sub(name.len() - 1)..filled.len();
+        kept = tail.len();
+        buffer.copy_within(tail, 0);
+    }
 }
 
 fn no_facts(path: &Path) -> DrawingFacts {
@@ -321,4 +440,36 @@ pub fn refused(facts: DrawingFacts, settings: serde_json::Value, refusal: Refusa
 /// A run for a drawing that was refused before it was opened.
 pub fn refused_unread(path: &Path, refusal: Refusal) -> Run {
     refused(no_facts(path), serde_json::Value::Null, refusal)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Gives a few bytes at a time.
+    struct Slow<'a>(&'a [u8], usize);
+
+    impl Read for Slow<'_> {
+        fn read(&mut self, buf: &mut [u8]) -> std::io::Result<usize> {
+            let count = self.1.min(self.0.len()).min(buf.len());
+            buf[..count].copy_from_slice(&self.0[..count]);
+            self.0 = &self.0[count..];
+            Ok(count)
+        }
+    }
+
+    #[test]
+    fn the_name_is_found_across_chunks() {
+        for step in [1, 3, 7, 100] {
+            for (text, found) in [
+                ("  1\nTHRUSTMARK\n", true),
+                ("tTtthrustMark", true),
+                ("THRUSTMAR", false),
+                ("", false),
+                ("THRUST MARK THRUSTMAR K", false),
+            ] {
+                assert_eq!(holds_name(&mut Slow(text.as_bytes(), step)).unwrap(), found, "{text} by {step}");
+            }
+        }
+    }
 }

@@ -52,7 +52,7 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
             Support::ThreeHinged => statics::Support::ThreeHinged,
             Support::None => statics::Support::None,
         }),
-        hinges: Vec::new(),
+        voussoirs: rib.voussoirs.and_then(|n| usize::try_from(n).ok()),
         through: settings.line.through.map(|points| points.map(|[x, y]| Point::new(x, y))),
         govern: match settings.line.govern {
             Govern::Auto => None,

@@ -8,7 +8,9 @@ use crate::drawing::viewport::scale_that_shows;
 use crate::geometry::Point;
 use crate::job;
 use crate::outcome::Xy;
+use crate::tags;
 use crate::tags::marks::Plane;
+use crate::tolerance;
 use crate::write::annotate::{Extents, Sheet, TextHeight};
 
 /// Millimetres in a paper unit where the drawing measures in inches.
@@ -58,14 +60,32 @@ fn in_metres(corners: [Point; 4], metres: f64) -> Extents {
         .unwrap_or(Extents { low: [0.0, 0.0], high: [0.0, 0.0] })
 }
 
-/// `$EXTMIN` and `$EXTMAX`, where they make sense. They may be stale; they only keep the marks clear of other parts.
+/// Largest drawing, bytes, whose entities are gone through for their extents when its header does not tell them.
+const MOST_TO_MEASURE: u64 = 50 << 20;
+
+/// What model space fills, in metres: `$EXTMIN` and `$EXTMAX` where they make sense, else what the entities say. The
+/// variables may be stale; they only keep the marks clear of other parts. None for a drawing of more than 50 MB whose
+/// variables make no sense.
 fn model_extents(checked: &Checked, metres: f64) -> Option<Extents> {
     let read = |name: &str| -> Option<Xy> {
         let number = |code| checked.outline.header(name, code)?.parse::<f64>().ok();
-        Some([number(10)? * metres, number(20)? * metres])
+        Some([number(10)?, number(20)?])
     };
-    let (low, high) = (read("$EXTMIN")?, read("$EXTMAX")?);
-    (low[0] < high[0] && low[1] < high[1]).then_some(Extents { low, high })
+    let sane = |low: Xy, high: Xy| {
+        let plain = low.iter().chain(&high).all(|v| v.abs() < tolerance::GREATEST_NUMBER);
+        plain && low[0] < high[0] && low[1] < high[1]
+    };
+    let stated = read("$EXTMIN").zip(read("$EXTMAX")).filter(|(low, high)| sane(*low, *high));
+    let (low, high) = match stated {
+        Some(stated) => stated,
+        // A drawing that was scanned once is scanned again without error; were it not, the marks would only lack room.
+        None if checked.source.len() <= MOST_TO_MEASURE => {
+            let [low, high] = tags::extents(&checked.source).ok().flatten()?;
+            (low, high)
+        }
+        None => return None,
+    };
+    Some(Extents { low: low.map(|v| v * metres), high: high.map(|v| v * metres) })
 }
 
 /// The median height of the texts that were read.

@@ -68,7 +68,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("depth", All),
             ("width", All),
             ("unit_weight", All),
-            ("voussoirs", Later),
+            ("voussoirs", All),
             ("strength", Later),
             ("friction", Later),
             ("tension", All),
@@ -126,8 +126,8 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
     (
         "line",
         &[
-            ("govern", Only(&["auto", "closest", "through"])),
-            ("draw", Only(&["closest", "through"])),
+            ("govern", Only(&["auto", "closest", "through", "least-thrust", "greatest-thrust"])),
+            ("draw", Only(&["closest", "through", "least-thrust", "greatest-thrust"])),
             ("through", All),
         ],
     ),

@@ -9,6 +9,7 @@ mod census;
 mod close;
 mod codes;
 mod emit;
+mod extents;
 mod facts;
 mod finish;
 mod handles;
@@ -29,6 +30,7 @@ mod tokens;
 mod unmark;
 pub mod validate;
 
+pub use extents::extents;
 pub use facts::FoundMarks;
 pub use machine::{Candidate, Keep, Options};
 pub use mark::mark;

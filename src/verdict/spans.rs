@@ -1,12 +1,15 @@
 //! A span and its analysis as the results hold them.
 
+use std::collections::BTreeMap;
+
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
 use crate::model::{self, Model, cases, weight};
 use crate::outcome::{
-    self, Axis, Case, End, Line, LineKind, Load, Offset, Pole, Proof, Ring, Span, Station, Status, Xy,
+    self, Axis, Case, End, Hinge, Line, LineKind, Load, Offset, Pole, Proof, Ring, Safety, Span, Station,
+    Status, Xy,
 };
-use crate::statics::{self, Analysis, Rule, SpanKind, Support};
+use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support};
 
 /// Puts a span together.
 pub fn span(
@@ -169,50 +172,6 @@ fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>) -> Case {
     }
 }
 
-fn safety(safety: &statics::Safety) -> outcome::Safety {
-    let mut ends = std::collections::BTreeMap::new();
-    ends.insert("geometric_factor".to_owned(), status(safety.geometric.status));
-    let both = [("load_factor", &safety.load), ("load_factor_least", &safety.load_least)];
-    for (name, factor) in both {
-        if let Some(factor) = factor {
-            ends.insert(name.to_owned(), status(factor.status));
-        }
-    }
-    let value = |factor: &Option<statics::Factor>| factor.as_ref().and_then(|f| f.value);
-    let proof = safety.load.as_ref().and_then(|f| f.proof).or(safety.geometric.proof);
-    outcome::Safety {
-        geometric_factor: safety.geometric.value,
-        load_factor: value(&safety.load),
-        load_factor_least: value(&safety.load_least),
-        least_depth: None,
-        status: ends,
-        hinges: safety
-            .mechanism
-            .iter()
-            .flat_map(|m| &m.hinges)
-            .map(|h| outcome::Hinge {
-                at: xy(h.at),
-                side: match h.side {
-                    statics::HingeSide::Extrados => "extrados",
-                    statics::HingeSide::Intrados => "intrados",
-                    statics::HingeSide::Slip => "slip",
-                }
-                .into(),
-            })
-            .collect(),
-        proof: proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
-    }
-}
-
-fn status(status: statics::Status) -> Status {
-    match status {
-        statics::Status::Found => Status::Found,
-        statics::Status::None => Status::None,
-        statics::Status::Unbounded => Status::Unbounded,
-        statics::Status::Refused => Status::Refused,
-    }
-}
-
 /// Which rule chose the governing line, in words.
 pub fn why(rule: Rule) -> &'static str {
     match rule {
@@ -267,6 +226,46 @@ fn line(line: &statics::Line) -> Line {
         }),
         stations: line.stations.iter().map(station).collect(),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn safety(from: &statics::Safety) -> Safety {
+    let mut found = BTreeMap::new();
+    let mut value = |name: &str, factor: Option<&statics::Factor>| {
+        found.insert(name.to_string(), factor.map_or(Status::NotAsked, |f| status(f.status)));
+        factor.and_then(|f| f.value)
+    };
+    let geometric_factor = value("geometric_factor", Some(&from.geometric));
+    let load_factor = value("load_factor", from.load.as_ref());
+    let load_factor_least = value("load_factor_least", from.load_least.as_ref());
+    let least_depth = value("least_depth", None);
+    let proof = from.load.as_ref().and_then(|f| f.proof).or(from.geometric.proof);
+    Safety {
+        geometric_factor,
+        load_factor,
+        load_factor_least,
+        least_depth,
+        status: found,
+        hinges: from.mechanism.iter().flat_map(|m| &m.hinges).map(hinge).collect(),
+        proof: proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn hinge(from: &statics::Hinge) -> Hinge {
+    let side = match from.side {
+        HingeSide::Extrados => "extrados",
+        HingeSide::Intrados => "intrados",
+        HingeSide::Slip => "slip",
+    };
+    Hinge { at: xy(from.at), side: side.into() }
+}
+
+fn status(from: statics::Status) -> Status {
+    match from {
+        statics::Status::Found => Status::Found,
+        statics::Status::None => Status::None,
+        statics::Status::Unbounded => Status::Unbounded,
+        statics::Status::Refused => Status::Refused,
     }
 }
 

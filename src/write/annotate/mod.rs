@@ -37,6 +37,8 @@ pub use elevation::check_name;
 pub use note::{CAUTION, heading};
 pub use shown::{governing, kind_name, worst_case};
 
+use sha2::{Digest, Sha256};
+
 use crate::geometry::Point;
 use crate::outcome::{Run, Verdict, Xy};
 use crate::tags::APPLICATION;
@@ -168,7 +170,14 @@ fn facts(run: &Run, sheet: &Sheet) -> Vec<(String, String)> {
     if let Some(hash) = &sheet.job_hash {
         facts.push(("job".to_owned(), hash.clone()));
     }
+    // Tells a job file that changed for this sheet from one that changed for others only.
+    facts.push(("settings".to_owned(), settings_hash(&run.settings)));
     facts
+}
+
+/// SHA-256 of settings in force, lower-case hexadecimal.
+pub fn settings_hash(settings: &serde_json::Value) -> String {
+    Sha256::digest(settings.to_string()).iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
 /// Extents of axis, loads and lines, m.

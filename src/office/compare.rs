@@ -1,0 +1,3 @@
+//! x
+/// y
+pub const HOLDS: &str = "changes";

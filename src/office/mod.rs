@@ -1,0 +1,6 @@
+//! Sets of drawings in a drawing office, day after day: many at once, and what comes before and after a mark.
+
+pub mod batch;
+pub mod compare;
+pub mod demo;
+pub mod verify;

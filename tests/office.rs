@@ -1,0 +1,345 @@
+//! The tool in a drawing office: many drawings, marks held against their sources, revisions compared, folders watched.
+
+#![allow(clippy::unwrap_used, clippy::float_cmp)]
+
+use std::fs;
+use std::path::{Path, PathBuf};
+use std::process::{Command, Output};
+
+use serde_json::Value;
+
+const DRAWINGS: [&str; 4] =
+    ["hanging-cable.dxf", "masonry-ring.dxf", "open-spandrel-rib.dxf", "unsymmetric-rib.dxf"];
+
+/// A private folder with the demo drawings and their job file, and a cache folder of its own.
+struct Office {
+    folder: tempfile::TempDir,
+    cache: tempfile::TempDir,
+}
+
+impl Office {
+    fn new() -> Self {
+        let office = Self::empty();
+        for entry in fs::read_dir(Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/good")).unwrap() {
+            let path = entry.unwrap().path();
+            if path.extension().is_some_and(|e| e != "md") {
+                fs::copy(&path, office.path(path.file_name().unwrap().to_str().unwrap())).unwrap();
+            }
+        }
+        office
+    }
+
+    fn empty() -> Self {
+        Self { folder: tempfile::tempdir().unwrap(), cache: tempfile::tempdir().unwrap() }
+    }
+
+    fn path(&self, name: &str) -> PathBuf {
+        self.folder.path().join(name)
+    }
+
+    fn command(&self, arguments: &[&str]) -> Command {
+        let mut command = Command::new(env!("CARGO_BIN_EXE_thrustmark"));
+        command
+            .current_dir(self.folder.path())
+            .args(arguments)
+            .env("SOURCE_DATE_EPOCH", "1790000000")
+            .env("NO_COLOR", "1")
+            .env("XDG_CACHE_HOME", self.cache.path());
+        command
+    }
+
+    fn run(&self, arguments: &[&str]) -> Ran {
+        Ran::of(self.command(arguments).output().unwrap())
+    }
+
+    fn json(&self, arguments: &[&str]) -> (i32, Value) {
+        let mut all = arguments.to_vec();
+        all.extend(["--json", "-"]);
+        let ran = self.run(&all);
+        let value = serde_json::from_str(&ran.out).unwrap_or_else(|e| panic!("{e}: {}{}", ran.out, ran.err));
+        (ran.status, value)
+    }
+
+    fn edit(&self, name: &str, from: &str, to: &str) {
+        let text = fs::read_to_string(self.path(name)).unwrap();
+        assert!(text.contains(from), "{name} holds no {from:?}");
+        fs::write(self.path(name), text.replacen(from, to, 1)).unwrap();
+    }
+}
+
+struct Ran {
+    status: i32,
+    out: String,
+    err: String,
+}
+
+impl Ran {
+    fn of(output: Output) -> Self {
+        let text = |bytes| String::from_utf8(bytes).unwrap();
+        let ran = Self {
+            status: output.status.code().expect("ended by a signal"),
+            out: text(output.stdout),
+            err: text(output.stderr),
+        };
+        assert!(!ran.err.contains("panicked"), "{}", ran.err);
+        ran
+    }
+
+    #[track_caller]
+    fn ends(self, status: i32) -> Self {
+        assert_eq!(self.status, status, "{}{}", self.out, self.err);
+        self
+    }
+
+    #[track_caller]
+    fn says(self, words: &[&str]) -> Self {
+        for word in words {
+            assert!(self.out.contains(word), "no {word:?} in: {}{}", self.out, self.err);
+        }
+        self
+    }
+
+    #[track_caller]
+    fn tells(self, words: &[&str]) -> Self {
+        for word in words {
+            assert!(self.err.contains(word), "no {word:?} in: {}{}", self.out, self.err);
+        }
+        self
+    }
+}
+
+// Many drawings.
+
+#[test]
+fn any_number_of_threads_gives_the_same_results() {
+    let office = Office::new();
+    fs::write(office.path("broken.dxf"), "  0\nSECTION\nnonsense\n").unwrap();
+    let of = |jobs: &str| {
+        let ran = office.run(&["check", ".", "absent.dxf", "--jobs", jobs, "--json", "-"]).ends(2);
+        ran.out
+    };
+    let one = of("1");
+    assert_eq!(one, of("2"));
+    assert_eq!(one, of("16"));
+    let document: Value = serde_json::from_str(&one).unwrap();
+    let files: Vec<&str> =
+        document["runs"].as_array().unwrap().iter().map(|r| r["drawing"]["file"].as_str().unwrap()).collect();
+    let expected: Vec<String> = ["broken.dxf"]
+        .into_iter()
+        .chain(DRAWINGS)
+        .map(|n| format!("./{n}"))
+        .chain(["absent.dxf".to_owned()])
+        .collect();
+    assert_eq!(files, expected);
+}
+
+#[test]
+fn one_bad_drawing_never_stops_the_rest() {
+    let office = Office::new();
+    fs::write(office.path("a-broken.dxf"), "  0\nSECTION\nnonsense\n").unwrap();
+    let ran = office.run(&["mark", "."]).ends(2);
+    assert!(ran.out.starts_with("5 drawings: 1 not read, 4 within\n"), "{}", ran.out);
+    assert!(ran.out.lines().nth(1).unwrap().contains("a-broken.dxf"), "worst first: {}", ran.out);
+    for name in DRAWINGS {
+        assert!(office.path(&name.replace(".dxf", ".thrust.dxf")).exists());
+    }
+    assert!(!office.path("a-broken.thrust.dxf").exists());
+}
+
+#[test]
+fn a_copy_is_never_written_over_a_drawing_of_the_same_run() {
+    let office = Office::new();
+    office.run(&["mark", "masonry-ring.dxf"]).ends(0);
+    let before = fs::read(office.path("masonry-ring.thrust.dxf")).unwrap();
+    office
+        .run(&["mark", "masonry-ring.dxf", "masonry-ring.thrust.dxf"])
+        .ends(2)
+        .tells(&["read in the same run", "--output"]);
+    assert_eq!(fs::read(office.path("masonry-ring.thrust.dxf")).unwrap(), before);
+}
+
+#[test]
+fn numbers_of_threads_that_make_no_sense_are_wrong_usage() {
+    let office = Office::new();
+    for jobs in ["0", "-1", "two", ""] {
+        office.run(&["check", ".", &format!("--jobs={jobs}")]).ends(2).tells(&["--jobs"]);
+    }
+}
+
+// Marks held against their sources.
+
+#[test]
+fn a_fresh_mark_is_current() {
+    let office = Office::new();
+    for name in DRAWINGS {
+        let marked = name.replace(".dxf", ".thrust.dxf");
+        office.run(&["mark", name]).ends(0);
+        office.run(&["verify", &marked, name]).ends(0).says(&[
+            "CURRENT",
+            &format!("compared with {name}"),
+            "within (carried by the mark)",
+        ]);
+        office.run(&["verify", &marked]).ends(0).says(&["CURRENT", "source not compared"]);
+        // On another day, too: the marks carry the day on which they were made.
+        let later =
+            office.command(&["verify", &marked]).env("SOURCE_DATE_EPOCH", "1890000000").output().unwrap();
+        Ran::of(later).ends(0);
+        // The job of the source counts wherever the copy went, and whatever it is called.
+        let away = Office::empty();
+        fs::copy(office.path(&marked), away.path("issue.dxf")).unwrap();
+        let source = office.path(name);
+        away.run(&["verify", "issue.dxf", source.to_str().unwrap()]).ends(0).says(&["CURRENT"]);
+        away.run(&["verify", "issue.dxf"]).ends(1).says(&["STALE", "there is none now"]);
+        let job = office.path("thrustmark.toml");
+        away.run(&["verify", "issue.dxf", "--job", job.to_str().unwrap()]).ends(0);
+    }
+}
+
+#[test]
+fn every_kind_of_staleness_is_found_and_named() {
+    let office = Office::new();
+    let (name, marked) = ("masonry-ring.dxf", "masonry-ring.thrust.dxf");
+    office.run(&["mark", name]).ends(0);
+    let copy = fs::read_to_string(office.path(marked)).unwrap();
+    let source = fs::read_to_string(office.path(name)).unwrap();
+    let job = fs::read_to_string(office.path("thrustmark.toml")).unwrap();
+    let stale = |what: &str, words: &str| {
+        let (status, value) = office.json(&["verify", marked, name]);
+        assert_eq!(status, 1, "{value:#}");
+        assert_eq!(value["verify"]["state"], "stale");
+        let reasons = value["verify"]["reasons"].as_array().unwrap();
+        let found =
+            reasons.iter().any(|r| r["what"] == what && r["message"].as_str().unwrap().contains(words));
+        assert!(found, "no {what}, {words}: {reasons:#?}");
+        office.run(&["verify", marked, name]).ends(1).says(&["STALE", words, "mark the drawing again"]);
+        fs::write(office.path(marked), &copy).unwrap();
+        fs::write(office.path(name), &source).unwrap();
+        fs::write(office.path("thrustmark.toml"), &job).unwrap();
+        office.run(&["verify", marked, name]).ends(0);
+    };
+    office.edit(name, "MILL LADE", "MILL RACE");
+    stale("source", "is not the drawing that was marked");
+    office.edit(marked, "MILL LADE", "MILL RACE");
+    stale("copy", "without its marks");
+    office.edit("thrustmark.toml", "limits.offset = 0.15", "limits.offset = 0.16");
+    stale("job", "so were the settings");
+    office.edit("thrustmark.toml", "# Job file", "# The job file");
+    stale("job", "is the same");
+    fs::remove_file(office.path("thrustmark.toml")).unwrap();
+    stale("job", "there is none now");
+    office.edit(marked, &format!("tool thrustmark {}", env!("CARGO_PKG_VERSION")), "tool thrustmark 0.0.1");
+    stale("tool", "thrustmark 0.0.1");
+    // A figure of the note block edited by hand.
+    office.edit(marked, "every stated limit holds", "every stated limit HOLDS");
+    stale("marks", "edited");
+    // One mark taken out.
+    let plain = without_one_mark(&copy);
+    fs::write(office.path(marked), plain).unwrap();
+    stale("marks", "marks were removed");
+}
+
+/// A marked ASCII drawing without the first of its marks.
+fn without_one_mark(copy: &str) -> String {
+    let lines: Vec<&str> = copy.split_inclusive('\n').collect();
+    let entities = lines.iter().position(|l| l.trim_end() == "ENTITIES").unwrap();
+    let last = entities + lines[entities..].iter().position(|l| l.trim_end() == "THRUSTMARK").unwrap();
+    let starts: Vec<usize> = (0..lines.len()).step_by(2).filter(|i| lines[*i].trim() == "0").collect();
+    let start = *starts.iter().rfind(|s| **s < last).unwrap();
+    let end = *starts.iter().find(|s| **s > last).unwrap();
+    lines[..start].concat() + &lines[end..].concat()
+}
+
+#[test]
+fn an_exception_that_ran_out_makes_a_mark_stale() {
+    let office = Office::new();
+    fs::write(
+        office.path("accepted.toml"),
+        "[rib]\nsupport = \"none\"\ndepth = 0.45\n[limits]\noffset = 0.01\n[[accept.finding]]\ncheck = \"offset\"\n\
+         up_to = 1.0\nreason = \"surveyed\"\nby = \"checker\"\nuntil = 2026-12-31\n",
+    )
+    .unwrap();
+    let (name, marked) = ("open-spandrel-rib.dxf", "open-spandrel-rib.thrust.dxf");
+    let marked_with = office.run(&["mark", name, "--job", "accepted.toml"]);
+    assert_ne!(marked_with.status, 2, "{}", marked_with.err);
+    let on = |day: &str| {
+        let arguments = ["verify", marked, name, "--job", "accepted.toml"];
+        Ran::of(office.command(&arguments).env("SOURCE_DATE_EPOCH", day).output().unwrap())
+    };
+    on("1790000000").ends(0);
+    on("1890000000").ends(1).says(&["has run out", "would be outside today"]);
+}
+
+#[test]
+fn verify_without_a_mark_is_an_error() {
+    let office = Office::new();
+    office.run(&["verify", "masonry-ring.dxf"]).ends(2).tells(&["no marks", "Give the marked copy"]);
+    office.run(&["verify", "absent.dxf"]).ends(2).tells(&["absent.dxf"]);
+    office.run(&["mark", "masonry-ring.dxf"]).ends(0);
+    office.run(&["verify", "masonry-ring.thrust.dxf", "absent.dxf"]).ends(2).tells(&["absent.dxf"]);
+    office
+        .run(&["verify", "masonry-ring.thrust.dxf", "--job", "absent.toml"])
+        .ends(2)
+        .tells(&["absent.toml"]);
+    office.run(&["verify"]).ends(2);
+    office.run(&["verify", "a", "b", "c"]).ends(2);
+    let (status, value) = office.json(&["verify", "masonry-ring.dxf"]);
+    assert_eq!((status, &value["verify"]), (2, &Value::Null));
+    assert_eq!(value["error"]["check"], "no-marks");
+    fs::write(office.path("notes.json"), "{}").unwrap();
+    office.run(&["verify", "masonry-ring.thrust.dxf", "--json", "notes.json"]).ends(2).tells(&["--force"]);
+    assert_eq!(fs::read_to_string(office.path("notes.json")).unwrap(), "{}");
+}
+
+// The first minutes.
+
+#[test]
+fn demo_writes_drawings_that_check_and_overwrites_nothing() {
+    let office = Office::empty();
+    let ran = office.run(&["demo", "first/demo"]).ends(0).says(&["Next: thrustmark check first/demo"]);
+    assert_eq!(ran.out.lines().count(), 6);
+    office.run(&["check", "first/demo"]).ends(0).says(&["4 drawings: 4 within"]);
+    fs::write(office.path("first/demo/masonry-ring.dxf"), "mine").unwrap();
+    fs::remove_file(office.path("first/demo/thrustmark.toml")).unwrap();
+    office.run(&["demo", "first/demo"]).ends(2).tells(&["is there already"]);
+    assert_eq!(fs::read(office.path("first/demo/masonry-ring.dxf")).unwrap(), b"mine");
+    assert!(!office.path("first/demo/thrustmark.toml").exists(), "all or nothing");
+    fs::write(office.path("file"), "").unwrap();
+    office.run(&["demo", "file"]).ends(2).tells(&["file"]);
+    office.run(&["demo"]).ends(2);
+}
+
+#[test]
+fn shells_are_given_every_command() {
+    let office = Office::empty();
+    for shell in ["bash", "zsh", "fish", "elvish", "powershell"] {
+        office.run(&["completions", shell]).ends(0).says(&["verify", "demo", "completions", "manual"]);
+    }
+    office.run(&["completions", "tcl"]).ends(2).tells(&["bash"]);
+    office.run(&["completions"]).ends(2);
+}
+
+#[test]
+fn bash_takes_the_completions() {
+    let office = Office::empty();
+    let script = office.run(&["completions", "bash"]).ends(0).out;
+    fs::write(office.path("complete.bash"), script).unwrap();
+    let ask = "source complete.bash; COMP_WORDS=(thrustmark ver); COMP_CWORD=1; _thrustmark thrustmark ver thrustmark; \
+               echo \"${COMPREPLY[@]}\"";
+    match Command::new("bash").current_dir(office.folder.path()).args(["-c", ask]).output() {
+        Ok(output) => assert_eq!(Ran::of(output).ends(0).out.trim(), "verify"),
+        Err(error) => println!("SKIPPED: no bash here ({error})"),
+    }
+}
+
+#[test]
+fn the_manual_holds_every_command_and_option() {
+    let office = Office::empty();
+    let page = office.run(&["manual"]).ends(0).out;
+    assert!(page.contains(".TH thrustmark 1"), "{page}");
+    for word in
+        ["COMMAND MARK", "COMMAND VERIFY", "COMMAND DEMO", "\\-\\-job", "qualified engineer", "Exit status"]
+    {
+        assert!(page.contains(word), "no {word}");
+    }
+    office.run(&["manual", "x"]).ends(2);
+}
