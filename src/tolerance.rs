@@ -260,9 +260,6 @@ pub const HINGE_PLACE: f64 = 1e-3;
 /// hundreds of millions is called unbounded; smaller: rounding is called a factor.
 pub const FUNICULAR: f64 = 1e-9;
 
-/// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
-/// tangents without end.
-pub const CONE_SLACK: f64 = 1e-11;
 /// Furthest a chain of arcs may stray from the true middle line of a ring, as part of the length of the line: a fifth of a
 /// micrometre over twenty metres, far below what a drawing means.
 pub const MIDDLE_LINE: f64 = 1e-8;
@@ -323,3 +320,6 @@ pub const DEEPEST_BLOCK: usize = 64;
 /// Entities and references that blocks may bring into a drawing, arrays counted out. A count. Larger: blocks that hold one
 /// another many times over use up memory and minutes; smaller: large arrays of posts are refused.
 pub const MOST_PLACED: usize = 200_000;
+/// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
+/// tangents without end.
+pub const CONE_SLACK: f64 = 1e-11;

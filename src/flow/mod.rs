@@ -223,8 +223,11 @@ fn stages(
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
     let model = model::build(&drawing, &(&settings).into())?;
-    let analyses = analyse(&model, &settings)?;
-    let judged = verdict::judge(&settings, &drawing.notes, &model, &analyses, environment.today);
+    own_weight_stated(&settings)?;
+    let cases = model::cases::cases(&model, &settings)?;
+    let analyses = analyse(&model, &cases, &settings)?;
+    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses };
+    let judged = verdict::judge(&settings, &drawing.notes, &computed, environment.today);
     let run = Run {
         units: judged.units,
         drawing: facts.clone(),
@@ -265,15 +268,38 @@ fn source_name(path: &Path) -> PathBuf {
     }
 }
 
-fn analyse(model: &Model, settings: &Settings) -> Result<Vec<Analysis>, Refusal> {
+/// For every span, in every case.
+fn analyse(model: &Model, cases: &[model::Case], settings: &Settings) -> Result<Vec<Vec<Analysis>>, Refusal> {
     model
         .spans
         .iter()
         .map(|span| {
-            let problem = problem::problem(span, model.forces, settings)?;
-            statics::analyse(&problem).map_err(|unsolved| problem::refusal(span, &unsolved))
+            cases
+                .iter()
+                .map(|case| {
+                    let problem = problem::problem(model, span, case, settings)?;
+                    statics::analyse(&problem).map_err(|unsolved| problem::refusal(span, case, &unsolved))
+                })
+                .collect()
         })
         .collect()
+}
+
+/// Refuses a unit weight without a width: no weight follows from it.
+fn own_weight_stated(settings: &Settings) -> Result<(), Refusal> {
+    if settings.rib.unit_weight.is_some_and(|w| w > 0.0) && settings.rib.width.is_none() {
+        let mut refusal = Refusal::new(
+            "own-weight",
+            "`rib.unit_weight` is given and `rib.width` is not: the weight of the rib cannot be told",
+            "Add `width` to [rib], in metres",
+        );
+        refusal.line = settings.line_of("rib.unit_weight");
+        if let Some(file) = &settings.origin.file {
+            refusal = refusal.in_file(file);
+        }
+        return Err(refusal);
+    }
+    Ok(())
 }
 
 fn write_copy(

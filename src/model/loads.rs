@@ -20,11 +20,13 @@ pub struct LoadSettings {
     pub unlabelled: Option<f64>,
     /// How fractions are marked.
     pub decimal: Decimal,
+    /// Whether the rib has a weight of its own, in kN.
+    pub weighs: bool,
 }
 
 impl Default for LoadSettings {
     fn default() -> Self {
-        Self { unit: None, unlabelled: None, decimal: Decimal::Auto }
+        Self { unit: None, unlabelled: None, decimal: Decimal::Auto, weighs: false }
     }
 }
 
@@ -34,6 +36,7 @@ impl From<&Settings> for LoadSettings {
             unit: settings.loads.unit,
             unlabelled: settings.loads.unlabelled_kn(),
             decimal: settings.loads.decimal,
+            weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0),
         }
     }
 }
@@ -109,7 +112,7 @@ pub fn loads(
     }
     let kept = once_each(points, &found, notes);
     let figures = kept.iter().filter(|&&i| found[i].is_some()).count();
-    if figures == 0 && settings.unlabelled.is_none() {
+    if figures == 0 && settings.unlabelled.is_none() && !(kept.is_empty() && settings.weighs) {
         none_out_of_reach(&labels, texts)?;
         if !kept.is_empty() {
             notes.push(Note::LoadsEqual { count: kept.len() });

@@ -23,6 +23,8 @@ struct Edge {
 pub struct Band {
     inner: Edge,
     outer: Edge,
+    /// Start of the inner line, from which all coordinates count here: grid coordinates would cost six digits.
+    origin: Point,
     /// Length of the longer line: the measure of all tolerances.
     size: f64,
 }
@@ -122,13 +124,16 @@ impl Band {
     /// A ring between its inner and its outer line, both from left to right. `None` where they touch at an end or have no
     /// length.
     pub fn new(inner: &Path, outer: &Path) -> Option<Self> {
+        let origin = inner.start();
+        let near = |p: &Path| p.shifted_scaled(-origin.to_vec2(), 1.0);
+        let (inner, outer) = (&near(inner), &near(outer));
         let size = inner.length().max(outer.length());
         let ends = [(outer.start() - inner.start()).hypot(), (outer.end() - inner.end()).hypot()];
         if ends.iter().any(|&e| e <= tolerance::NO_DEPTH * size) {
             return None;
         }
         let on = 2.0 * f64::max(ends[0], ends[1]);
-        Some(Self { inner: Edge::new(inner, on)?, outer: Edge::new(outer, on)?, size })
+        Some(Self { inner: Edge::new(inner, on)?, outer: Edge::new(outer, on)?, origin, size })
     }
 
     /// Whether the outer line lies on the left of the inner one, as it does when both run from left to right over an arch.
@@ -139,6 +144,11 @@ impl Band {
 
     /// The joint through `p` along the unit vector `normal`, which points to the outer line.
     pub fn across(&self, p: Point, normal: Vec2) -> Option<Across> {
+        self.near(p - self.origin.to_vec2(), normal)
+    }
+
+    /// As [`Band::across`], from the origin of the ring.
+    fn near(&self, p: Point, normal: Vec2) -> Option<Across> {
         Some(Across { inner: self.inner.ahead(p, -normal)?, outer: self.outer.ahead(p, normal)? })
     }
 
@@ -165,6 +175,7 @@ impl Band {
             normal.cross(drawn).atan2(normal.dot(drawn)).abs()
         };
         let skew = skew(0.0, &nodes[0]).max(skew(1.0, &nodes[nodes.len() - 1]));
+        let path = path.shifted_scaled(self.origin.to_vec2(), 1.0);
         Some(Middle { path, depth: plain(depth), stray: build.stray, skew })
     }
 
@@ -213,7 +224,7 @@ impl Band {
         }
         let normal = ((at - inner) + (outer - at)).normalize();
         let tangent = Vec2::new(normal.y, -normal.x);
-        let depth = self.across(at, normal).map_or(2.0 * radius, |j| j.depth());
+        let depth = self.near(at, normal).map_or(2.0 * radius, |j| j.depth());
         Some(Node { at, tangent, depth })
     }
 }
@@ -320,7 +331,7 @@ fn one_arc_each(segments: &[Segment], reach: f64) -> Vec<Segment> {
     out
 }
 
-/// A table of depths without values that lie on the line between their neighbours to a tenth of the tolerance.
+/// A table of depths; one value where they are all the same.
 pub fn plain(table: Vec<(f64, f64)>) -> Vec<(f64, f64)> {
     let Some(&first) = table.first() else {
         return table;

@@ -2,6 +2,7 @@
 //!
 //! Knows layers only as names of load sets; knows no mechanics.
 
+pub mod cases;
 pub mod chain;
 pub mod figures;
 pub mod labels;
@@ -11,14 +12,19 @@ pub mod middle;
 pub mod note;
 pub mod pieces;
 pub mod piers;
+pub mod ring;
+pub mod weight;
 
 use crate::drawing::{Drawing, Source};
 use crate::geometry::{Path, Point, Vec2};
+use crate::job::Settings;
 use crate::refusal::Refusal;
 use crate::tolerance;
 
+pub use cases::Case;
 pub use loads::LoadSettings;
 pub use note::Note;
+pub use ring::Ring;
 
 /// Everything that is computed of one drawing.
 #[derive(Debug, Clone, PartialEq)]
@@ -31,6 +37,18 @@ pub struct Model {
     pub off_span: Vec<Load>,
     /// What was noticed.
     pub notes: Vec<Note>,
+}
+
+impl Model {
+    /// Weight of the rib per area of the elevation, kN/m²: unit weight times width. `None` where it is not given, or
+    /// forces are multiples of an unknown load.
+    pub fn own_weight(&self, settings: &Settings) -> Option<f64> {
+        if self.forces == Forces::UnitLoads {
+            return None;
+        }
+        let weight = settings.rib.unit_weight.filter(|w| *w > 0.0)?;
+        Some(weight * settings.rib.width?)
+    }
 }
 
 /// What forces are given in.
@@ -49,8 +67,10 @@ pub struct Span {
     pub name: String,
     /// Its axis from the left springing to the right one, m, in the drawing's origin.
     pub axis: Path,
-    /// The entities of the axis, left to right.
+    /// The entities of the axis, left to right; of the ring lines where the axis runs midway between them.
     pub sources: Vec<Source>,
+    /// Its ring, where its lines are drawn.
+    pub ring: Option<Ring>,
     /// Its loads, left to right.
     pub loads: Vec<Load>,
 }
@@ -97,26 +117,7 @@ pub enum MagnitudeFrom {
 pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusal> {
     let metres = drawing.unit.metres;
     let mut notes = Vec::new();
-    let chains = chain::chains(&drawing.axis)?;
-    notes.extend(chains.doubles.into_iter().map(|(source, kept)| Note::DrawnTwice { source, kept }));
-    notes.extend(chains.lengthless.into_iter().map(|source| Note::NoLength { source }));
-    let mut spans = Vec::new();
-    for (i, chain) in chains.chains.into_iter().enumerate() {
-        let name = format!("span {}", i + 1);
-        for gap in &chain.gaps {
-            notes.push(Note::GapClosed {
-                span: name.clone(),
-                size: gap.size * metres,
-                at: (gap.at.to_vec2() * metres).to_point(),
-            });
-        }
-        let axis = chain.path.shifted_scaled(Vec2::ZERO, metres);
-        let size = axis.end().x - axis.start().x;
-        if !(tolerance::LEAST_SPAN..=tolerance::GREATEST_SPAN).contains(&size) {
-            notes.push(Note::SizeUnlikely { span: name.clone(), size });
-        }
-        spans.push(Span { name, axis, sources: chain.sources, loads: Vec::new() });
-    }
+    let mut spans = spans(drawing, &mut notes)?;
     let (loads, forces) = loads::loads(&drawing.points, &drawing.texts, settings, metres, &mut notes)?;
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
@@ -125,8 +126,65 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
         at: load.at,
         force: -load.force.y,
     }));
-    notes.extend(spans.iter().filter(|s| s.loads.is_empty()).map(|s| Note::NoLoads { span: s.name.clone() }));
+    let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
+    notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
     Ok(Model { spans, forces, off_span, notes })
+}
+
+/// The spans with their axes and rings, without loads.
+fn spans(drawing: &Drawing, notes: &mut Vec<Note>) -> Result<Vec<Span>, Refusal> {
+    let metres = drawing.unit.metres;
+    let mut rings = ring::lines(&drawing.intrados, &drawing.extrados, metres, notes)?;
+    let mut spans = Vec::new();
+    if drawing.axis.is_empty() && !rings.is_empty() {
+        for (i, lines) in rings.into_iter().enumerate() {
+            let name = format!("span {}", i + 1);
+            let (axis, ring) = lines.midway(&name, notes)?;
+            spans.push(Span {
+                name,
+                axis,
+                sources: ring.sources.clone(),
+                ring: Some(ring),
+                loads: Vec::new(),
+            });
+        }
+    } else {
+        let chains = chain::chains(&drawing.axis)?;
+        notes.extend(chains.doubles.into_iter().map(|(source, kept)| Note::DrawnTwice { source, kept }));
+        notes.extend(chains.lengthless.into_iter().map(|source| Note::NoLength { source }));
+        if !rings.is_empty() && rings.len() != chains.chains.len() {
+            let source = drawing.intrados.first().map(|c| c.source.clone()).unwrap_or_default();
+            return Err(source.refuse(
+                "ring-spans",
+                format!("the axis has {} spans and the ring {}", chains.chains.len(), rings.len()),
+                "Draw axis and both ring lines for every span, or leave the axis out: it is then found midway",
+            ));
+        }
+        for (i, chain) in chains.chains.into_iter().enumerate() {
+            let name = format!("span {}", i + 1);
+            for gap in &chain.gaps {
+                notes.push(Note::GapClosed {
+                    line: "axis",
+                    span: name.clone(),
+                    size: gap.size * metres,
+                    at: (gap.at.to_vec2() * metres).to_point(),
+                });
+            }
+            let axis = chain.path.shifted_scaled(Vec2::ZERO, metres);
+            let ring = match rings.is_empty() {
+                true => None,
+                false => Some(rings.remove(0).about(&name, &axis, notes)?),
+            };
+            spans.push(Span { name, axis, sources: chain.sources, ring, loads: Vec::new() });
+        }
+    }
+    for span in &spans {
+        let size = span.axis.end().x - span.axis.start().x;
+        if !(tolerance::LEAST_SPAN..=tolerance::GREATEST_SPAN).contains(&size) {
+            notes.push(Note::SizeUnlikely { span: span.name.clone(), size });
+        }
+    }
+    Ok(spans)
 }
 
 /// Gives each load to its span, in order from the left, and numbers those without a name; gives back the rest.

@@ -132,7 +132,7 @@ fn gaps_are_closed_and_told() {
     left[15] = line(p[15], (p[16].0 - 0.02, p[16].1));
     let model = built(&drawing(vec![curve(2, right.clone()), curve(1, left.clone())], vec![], vec![]));
     assert_eq!(model.spans.len(), 1);
-    let Note::GapClosed { span, size, at } = &model.notes[0] else { panic!("{:?}", model.notes) };
+    let Note::GapClosed { span, size, at, .. } = &model.notes[0] else { panic!("{:?}", model.notes) };
     assert_eq!(span, "span 1");
     assert!((size - 0.02).abs() < 1e-12 && (*at - Point::new(19.98, 8.0)).hypot() < 1e-12);
     // Ten times as wide: refused, with its place.

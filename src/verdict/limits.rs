@@ -6,7 +6,7 @@ use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
 use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
 use crate::tolerance;
 
-/// Judges one span; there is one case so far.
+/// Judges one span in one case; the findings get the case's name afterwards.
 pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
     let limits = &settings.limits;
     let governing = &analysis.lines[analysis.governs];
@@ -51,6 +51,9 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
             None => judge.not_judged("geometric_factor", no_depth(analysis)),
         }
     }
+    if let Some(limit) = limits.load_factor {
+        judge.load_factor(limit);
+    }
 }
 
 /// Whether the job declares a support that makes the rib an elastic arch.
@@ -72,11 +75,9 @@ struct Judge<'a> {
 }
 
 impl Judge<'_> {
-    /// Adds a finding that belongs to this span and its case.
+    /// Adds a finding that belongs to this span.
     fn add(&mut self, finding: Finding) {
-        let mut finding = finding.of(&self.span.name);
-        finding.case = Some(spans::DRAWN.into());
-        self.findings.push(finding);
+        self.findings.push(finding.of(&self.span.name));
     }
 
     /// True when the governing line is only the most favourable one, and so not the state of the rib.
@@ -291,6 +292,73 @@ impl Judge<'_> {
             ));
         }
         self.add(finding);
+    }
+
+    /// The limit holds when the loads as drawn stand (the interval begins at or below 1) and its upper end reaches the
+    /// limit.
+    fn load_factor(&mut self, limit: f64) {
+        let Some(safety) = &self.analysis.safety else {
+            let why = match self.analysis.kind {
+                SpanKind::Cable => "a cable has no load factor",
+                SpanKind::Arch => "it needs a ring without tension whose depth is known",
+            };
+            return self.not_judged("load_factor", why);
+        };
+        let (Some(upper), Some(least)) = (&safety.load, &safety.load_least) else {
+            return self.not_judged(
+                "load_factor",
+                "nothing varies; name what varies in the case: vary = [\"LAYER\"]",
+            );
+        };
+        let stands = matches!(least.status, Status::Found)
+            && least.value.is_some_and(|v| v <= 1.0 + tolerance::LIMIT_MET);
+        let at = safety
+            .mechanism
+            .as_ref()
+            .and_then(|m| m.hinges.first())
+            .map_or(spans::xy(self.analysis.crown), |h| spans::xy(h.at));
+        let basis = "[limits] load_factor";
+        match (upper.status, upper.value) {
+            (Status::Found, Some(value)) => {
+                let holds = stands && value >= limit * (1.0 - tolerance::LIMIT_MET);
+                let least = least.value.unwrap_or(0.0);
+                let message = format!(
+                    "the varying loads can be multiplied by {least:.2} to {value:.2} before the ring becomes a \
+                     mechanism; up to at least {limit:.2} is wanted"
+                );
+                let mut finding = self.limit(Check::LoadFactor, basis, value, limit, "1", at, holds, message);
+                if !holds {
+                    finding = finding
+                        .remedy("a deeper ring, an axis nearer to the line of thrust, or less varying load");
+                }
+                self.add(finding);
+            }
+            (Status::Unbounded, _) => {
+                let mut finding = note(
+                    Check::LoadFactor,
+                    format!("the varying loads can grow without end inside the ring; limit {limit:.2}"),
+                );
+                finding.verdict = if stands { FindingVerdict::Within } else { FindingVerdict::Outside };
+                finding.limit = Some(limit);
+                finding.unit = Some("1".into());
+                finding.basis = Some(basis.into());
+                self.add(finding);
+            }
+            (Status::None, _) => {
+                let reason = upper.reason.clone().unwrap_or_default();
+                let mut finding =
+                    note(Check::LoadFactor, format!("no load factor: {reason}; limit {limit:.2}"));
+                finding.verdict = FindingVerdict::Outside;
+                finding.limit = Some(limit);
+                finding.unit = Some("1".into());
+                finding.basis = Some(basis.into());
+                self.add(finding);
+            }
+            (Status::Refused | Status::Found, _) => {
+                let reason = upper.reason.clone().unwrap_or_else(|| "it was not found".into());
+                self.not_judged("load_factor", &reason);
+            }
+        }
     }
 
     #[allow(clippy::too_many_arguments)]

@@ -6,15 +6,22 @@ use crate::drawing::{Doubt, FileNote, Reason, Role};
 use crate::job::Settings;
 use crate::job::Support;
 use crate::model;
-use crate::model::Forces;
 use crate::model::figures::NoFigure;
-use crate::outcome::{Check, Finding, Span, Units};
+use crate::model::{Forces, Model};
+use crate::outcome::{Check, Finding, MagnitudeFrom, Span, Units};
 use crate::statics::{Analysis, SpanKind};
 use crate::tolerance;
 
 /// Notes of the reader.
-pub fn drawing(notes: &[drawing::Note], findings: &mut Vec<Finding>) {
-    findings.extend(notes.iter().map(drawing_note));
+pub fn drawing(notes: &[drawing::Note], settings: &Settings, findings: &mut Vec<Finding>) {
+    findings.extend(notes.iter().map(|n| {
+        let finding = drawing_note(n);
+        // Cases say what acts; where they name no load layer, none is missing.
+        if matches!(n, drawing::Note::NoLoadLayer) && !settings.case.is_empty() {
+            return Finding { unchecks: false, ..finding };
+        }
+        finding
+    }));
 }
 
 fn drawing_note(n: &drawing::Note) -> Finding {
@@ -173,14 +180,43 @@ pub fn model(notes: &[model::Note], units: &Units, findings: &mut Vec<Finding>) 
 fn model_note(n: &model::Note, units: &Units) -> Finding {
     use model::Note;
     match n {
-        Note::GapClosed { span, size, at } => {
-            note(Check::Gaps, format!("a gap of {} in the axis was closed", small_length(*size)))
+        Note::GapClosed { line, span, size, at } => {
+            note(Check::Gaps, format!("a gap of {} in the {line} was closed", small_length(*size)))
                 .value(*size, "m")
                 .at(spans::xy(*at))
                 .of(span)
                 .uncheck()
                 .remedy("join the ends in the drawing, or allow it: [accept] assumed = [\"gaps\"]")
         }
+        Note::AxisMidway { span, pieces, stray } => note(
+            Check::Layers,
+            format!(
+                "no axis is drawn; it was found midway between intrados and extrados, in {pieces} arcs that stray at most \
+                 {} from the true middle line",
+                tiny_length(*stray)
+            ),
+        )
+        .of(span),
+        Note::EndsSkew { span, angle } => note(
+            Check::LeftOut,
+            format!(
+                "the ring ends in a face {:.1}° off the joint square to its axis; the end joint was taken square",
+                angle.to_degrees()
+            ),
+        )
+        .value(angle.to_degrees(), "°")
+        .of(span),
+        Note::AxisOffMiddle { span, by, at } => note(
+            Check::Layers,
+            format!(
+                "the drawn axis runs up to {} beside the middle of the ring; at each joint the depth was taken as twice \
+                 the distance to the nearer ring line",
+                small_length(*by)
+            ),
+        )
+        .value(*by, "m")
+        .at(spans::xy(*at))
+        .of(span),
         Note::DrawnTwice { source, kept } => note(
             Check::PassedOver,
             format!("{} lies on {} and was passed over as drawn twice", source.named(), kept.named()),
@@ -275,8 +311,13 @@ fn small_length(metres: f64) -> String {
     if metres < 0.001 { format!("{:.3} mm", metres * 1000.0) } else { format!("{:.1} mm", metres * 1000.0) }
 }
 
-/// What the statics of a span found worth saying beside the limits.
-pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, findings: &mut Vec<Finding>) {
+/// A length far below what is drawn, in words.
+fn tiny_length(metres: f64) -> String {
+    if metres < 0.000_001 { "1 µm".into() } else { small_length(metres) }
+}
+
+/// What the statics of a span in one case found worth saying beside the limits.
+pub fn analysis(a: &Analysis, span: &Span, units: &Units, findings: &mut Vec<Finding>) {
     let mut add = |finding: Finding| findings.push(finding.of(&span.name));
     let residual = note(Check::Equilibrium, "equilibrium of every line closes").value(a.residual, "1");
     if a.residual > tolerance::EQUILIBRIUM {
@@ -287,6 +328,30 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
     } else {
         add(residual);
     }
+    for &i in &a.off_span {
+        add(note(
+            Check::OffSpan,
+            format!("the line of action of load {} does not meet the axis; it is left out", i + 1),
+        )
+        .uncheck());
+    }
+    if let Some(pole) = a.pole {
+        let mut text = format!(
+            "the rays of the graphic method scatter by {:.4} {} about their pole",
+            pole.scatter, units.force
+        );
+        if let Some(ratio) = pole.scatter_ratio {
+            text.push_str(&format!(" ({:.2} % of the push)", ratio * 100.0));
+        }
+        let mut finding = note(Check::Offset, text).value(pole.scatter, &units.force);
+        finding.basis = Some("the drawn axis against a funicular of the drawn loads".into());
+        add(finding);
+    }
+}
+
+/// What is worth saying of a span whatever the case.
+pub fn shape(a: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
+    let mut add = |finding: Finding| findings.push(finding.of(&span.name));
     if a.kind == SpanKind::Arch && settings.rib.support.is_none() {
         add(note(
             Check::Support,
@@ -312,24 +377,8 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
         )
         .value(uneven.1 / uneven.0, "1"));
     }
-    for &i in &a.off_span {
-        add(note(
-            Check::OffSpan,
-            format!("the line of action of load {} does not meet the axis; it is left out", i + 1),
-        )
-        .uncheck());
-    }
-    if let Some(pole) = a.pole {
-        let mut text = format!(
-            "the rays of the graphic method scatter by {:.4} {} about their pole",
-            pole.scatter, units.force
-        );
-        if let Some(ratio) = pole.scatter_ratio {
-            text.push_str(&format!(" ({:.2} % of the push)", ratio * 100.0));
-        }
-        let mut finding = note(Check::Offset, text).value(pole.scatter, &units.force);
-        finding.basis = Some("the drawn axis against a funicular of the drawn loads".into());
-        add(finding);
+    if settings.rib.depth.is_some() && span.ring.as_ref().is_some_and(|r| !r.entities.is_empty()) {
+        add(note(Check::Layers, "the depth was read from the ring lines; [rib] depth was not needed"));
     }
 }
 
@@ -342,16 +391,41 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
         (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
-    uneven(span.loads.iter().map(|l| l.at[0]).collect())
+    let drawn = span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight);
+    uneven(drawn.map(|l| l.at[0]).collect())
+}
+
+/// What each case leaves out, and what it names in vain.
+pub fn cases(cases: &[model::Case], findings: &mut Vec<Finding>) {
+    for case in cases {
+        let mut add = |message: String, uncheck: bool| {
+            let mut finding = note(Check::LeftOut, message);
+            finding.case = Some(case.name.clone());
+            findings.push(if uncheck {
+                finding.uncheck().remedy("correct the name in the job file, or the layer in the drawing")
+            } else {
+                finding
+            });
+        };
+        if !case.left_out.is_empty() {
+            add(format!("case {} leaves out: {}", case.name, case.left_out.join(", ")), false);
+        }
+        if !case.unknown.is_empty() {
+            let names = case.unknown.join(", ");
+            add(format!("case {} names {names}, and nothing of that name acts here", case.name), true);
+        }
+    }
 }
 
 /// What the computation leaves out.
-pub fn left_out(settings: &Settings, forces: Forces, findings: &mut Vec<Finding>) {
-    let mut parts =
-        vec!["the rib's own weight", "fill", "traffic", "everything out of the plane of the elevation"];
-    if forces == Forces::UnitLoads {
+pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>) {
+    let mut parts = Vec::new();
+    if model.own_weight(settings).is_none() {
+        parts.push("the rib's own weight");
+    }
+    parts.extend(["fill", "traffic", "everything out of the plane of the elevation"]);
+    if model.forces == Forces::UnitLoads {
         parts.push("stresses");
     }
-    let _ = settings;
     findings.push(note(Check::LeftOut, format!("left out: {}", parts.join(", "))));
 }

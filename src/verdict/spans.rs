@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
-use crate::model::{self, Forces};
+use crate::model::{self, Forces, Model, cases, weight};
 use crate::outcome::{
     self, Axis, Case, End, Hinge, Line, LineKind, Load, Offset, Pole, Proof, Ring, Safety, Span, Station,
     Status, Xy,
@@ -12,32 +12,44 @@ use crate::outcome::{
 use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support, stress};
 use crate::tolerance;
 
-/// The name of the one case that a job without cases has.
-pub const DRAWN: &str = "drawn";
-
 /// Puts a span together.
-pub fn span(span: &model::Span, analysis: &Analysis, settings: &Settings, forces: Forces) -> Span {
+pub fn span(
+    model: &Model,
+    span: &model::Span,
+    cases: &[model::Case],
+    analyses: &[Analysis],
+    settings: &Settings,
+) -> Span {
     let axis = &span.axis;
+    let first = &analyses[0];
+    let listed = listed(model, span, first, settings);
     Span {
         name: span.name.clone(),
-        kind: match analysis.kind {
+        kind: match first.kind {
             SpanKind::Arch => "arch",
             SpanKind::Cable => "cable",
         }
         .into(),
         axis: Axis {
-            span: analysis.span,
-            rise: analysis.rise,
+            span: first.span,
+            rise: first.rise,
             length: axis.length(),
             left: xy(axis.start()),
             right: xy(axis.end()),
-            crown: xy(analysis.crown),
+            crown: xy(first.crown),
             entities: span.sources.iter().map(super::source).collect(),
             curve: curve(axis),
         },
-        ring: ring(analysis, settings),
-        loads: loads(span, analysis),
-        cases: vec![case(analysis, &Section::of(analysis, settings, forces))],
+        ring: ring(span, settings),
+        cases: cases
+            .iter()
+            .zip(analyses)
+            .map(|(c, analysis)| {
+                let forces = listed.iter().map(|l| l.force.map(|f| f * c.factor(&l.set))).collect();
+                case(c, analysis, forces, &Section::of(analysis, settings, model.forces))
+            })
+            .collect(),
+        loads: listed,
     }
 }
 
@@ -64,40 +76,79 @@ fn curve(axis: &Path) -> Vec<[f64; 3]> {
     out
 }
 
-fn ring(analysis: &Analysis, settings: &Settings) -> Option<Ring> {
-    let depths = analysis.lines.iter().flat_map(|l| &l.stations).filter_map(|s| s.depth);
-    let (low, high) = depths.fold((f64::INFINITY, 0.0_f64), |(low, high), d| (low.min(d), high.max(d)));
-    (high > 0.0).then_some(Ring { depth_min: low, depth_max: high, width: settings.rib.width })
+fn ring(span: &model::Span, settings: &Settings) -> Option<Ring> {
+    let depths = weight::depths(span, settings.rib.depth)?;
+    let (low, high) =
+        depths.iter().fold((f64::INFINITY, 0.0_f64), |(low, high), d| (low.min(d.1), high.max(d.1)));
+    Some(Ring {
+        depth_min: low,
+        depth_max: high,
+        width: settings.rib.width,
+        entities: span.ring.iter().flat_map(|r| &r.sources).map(super::source).collect(),
+    })
 }
 
-fn loads(span: &model::Span, analysis: &Analysis) -> Vec<Load> {
-    let letters = outcome::bow::spaces(analysis.order.len());
-    analysis
-        .order
-        .iter()
-        .zip(letters)
-        .map(|(placed, space)| {
-            let load = &span.loads[placed.force];
-            Load {
-                label: load.label.clone(),
-                space,
-                at: xy(load.at),
-                force: [load.force.x, load.force.y],
-                set: load.set.clone(),
-                source: super::source(&load.source),
-                magnitude_from: match load.magnitude_from {
-                    model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
-                    model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
-                    model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
-                    model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
+/// Pieces of the ring that are listed where no load stands between the springings.
+const BARE_PIECES: u32 = 10;
+
+/// The loads in their order along the ring, with the pieces of the rib's own weight between them.
+fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Settings) -> Vec<Load> {
+    let mut all: Vec<(f64, Load)> =
+        analysis.order.iter().map(|placed| (placed.foot, load(&span.loads[placed.force]))).collect();
+    let depths = weight::depths(span, settings.rib.depth);
+    if let (Some(own), Some(depths)) = (model.own_weight(settings), depths) {
+        let whole = span.axis.length();
+        let hair = whole * crate::tolerance::ONE_JOINT;
+        let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
+        cuts.dedup_by(|b, a| *b - *a <= hair);
+        if cuts.is_empty() {
+            cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
+        }
+        for (i, piece) in weight::pieces(span, &depths, &cuts).iter().enumerate() {
+            let middle = f64::midpoint(piece.between.0, piece.between.1);
+            all.push((
+                middle,
+                Load {
+                    label: format!("ring {}", i + 1),
+                    space: Default::default(),
+                    at: xy(piece.centroid),
+                    force: [0.0, -own * piece.area],
+                    set: cases::OWN_WEIGHT.into(),
+                    source: span
+                        .sources
+                        .first()
+                        .map(super::source)
+                        .unwrap_or_else(|| super::source(&Default::default())),
+                    magnitude_from: outcome::MagnitudeFrom::SelfWeight,
+                    text: None,
                 },
-                text: load.text.clone(),
-            }
-        })
-        .collect()
+            ));
+        }
+        all.sort_by(|a, b| a.0.total_cmp(&b.0));
+    }
+    let letters = outcome::bow::spaces(all.len());
+    all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
 }
 
-fn case(analysis: &Analysis, section: &Section) -> Case {
+fn load(load: &model::Load) -> Load {
+    Load {
+        label: load.label.clone(),
+        space: Default::default(),
+        at: xy(load.at),
+        force: [load.force.x, load.force.y],
+        set: load.set.clone(),
+        source: super::source(&load.source),
+        magnitude_from: match load.magnitude_from {
+            model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
+            model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
+            model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
+            model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
+        },
+        text: load.text.clone(),
+    }
+}
+
+fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>, section: &Section) -> Case {
     let governing = &analysis.lines[analysis.governs];
     let mut lines: Vec<Line> = vec![line(governing, section)];
     lines.extend(
@@ -109,9 +160,9 @@ fn case(analysis: &Analysis, section: &Section) -> Case {
             .map(|(_, l)| line(l, section)),
     );
     Case {
-        name: DRAWN.into(),
+        name: case.name.clone(),
         total_load: [analysis.total.x, analysis.total.y],
-        forces: Vec::new(),
+        forces,
         pole: analysis.pole.map(|p| Pole {
             horizontal: p.horizontal,
             vertical: p.vertical,
