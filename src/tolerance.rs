@@ -100,3 +100,7 @@ pub const FUNICULAR: f64 = 1e-9;
 /// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
 /// tangents without end.
 pub const CONE_SLACK: f64 = 1e-11;
+
+/// Logarithm of the line's share of the depth at which the search for the least thickness ends. Larger: digits of the
+/// thickness are lost; smaller: steps that only see rounding.
+pub const THICKNESS: f64 = 1e-13;
