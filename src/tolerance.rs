@@ -323,3 +323,7 @@ pub const MOST_PLACED: usize = 200_000;
 /// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
 /// tangents without end.
 pub const CONE_SLACK: f64 = 1e-11;
+
+/// Logarithm of the line's share of the depth at which the search for the least thickness ends. Larger: digits of the
+/// thickness are lost; smaller: steps that only see rounding.
+pub const THICKNESS: f64 = 1e-13;

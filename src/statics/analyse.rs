@@ -2,11 +2,12 @@
 
 use super::closest::{Closest, Search};
 use super::elastic::{Effects, Flexibility, Place, least_energy};
+use super::joint::{Joint, Unknowns};
 use super::limit::{Aim, Extreme, Limit};
 use super::line::{Sheet, missing};
 use super::peaks::Sampling;
 use super::rule::{Choice, choose, through_points};
-use super::span::{Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use super::through::{slack, through};
 use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, Support, Unsolved};

@@ -8,10 +8,11 @@
 #![allow(clippy::needless_range_loop, reason = "small dense matrices read best by index")]
 
 use super::Proof;
+use super::joint::{Affine, Joint, Unknowns};
 use super::peaks::{Peak, Sampling};
 use super::quadratic::Bound;
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
-use super::span::{Affine, Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use super::ties::{bending, independent};
 use crate::tolerance;

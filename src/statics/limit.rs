@@ -6,9 +6,10 @@
 //! interval of the load factor are linear programs. The continuous ring is met by exchange. The multipliers are the
 //! rotations of a mechanism: its hinges, and its virtual work, which gives the same factor.
 
+use super::joint::{Affine, Joint, Unknowns};
 use super::peaks::{Measure, Sampling};
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
-use super::span::{Affine, Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use super::ties::{bending, independent};
 use crate::tolerance;
@@ -425,7 +426,7 @@ pub(super) fn virtual_work(leans: &[Lean]) -> (f64, f64, f64) {
     let (mut fixed, mut varying, mut crushing) = (0.0, 0.0, 0.0);
     for lean in leans {
         let (at, n) = (lean.joint.at, lean.joint.normal());
-        let work = |l: &super::span::Loads| match lean.edge {
+        let work = |l: &super::joint::Loads| match lean.edge {
             // Moment about the hinge of all loads before it.
             Edge::Extrados | Edge::Intrados => {
                 let side = if lean.edge == Edge::Extrados { 1.0 } else { -1.0 };

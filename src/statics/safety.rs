@@ -23,7 +23,7 @@ pub(super) fn safety(
         mechanism: None,
         mechanism_least: None,
     };
-    let varies = |l: &super::span::Loads| l.fx.abs() + l.fy.abs() + l.moment.abs() > 0.0;
+    let varies = |l: &super::joint::Loads| l.fx.abs() + l.fy.abs() + l.moment.abs() > 0.0;
     let any =
         span.entered.iter().any(|e| e.varies && e.force.hypot() > 0.0) || varies(&span.last().loads.varying);
     let stays =
