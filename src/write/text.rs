@@ -117,7 +117,7 @@ pub fn quantity(value: f64, unit: Option<&str>) -> String {
     match unit {
         Some("m") => format!("{} mm", millimetres(value)),
         Some("mm") => format!("{} mm", millimetres(value / 1000.0)),
-        Some("-" | "") | None => three_digits(value),
+        Some("-" | "" | "1") | None => three_digits(value),
         Some(unit @ ("kN" | "unit load")) => format!("{} {unit}", four_digits(value)),
         Some(unit) => format!("{} {unit}", three_digits(value)),
     }

@@ -14,8 +14,10 @@ use crate::write::annotate::shown::Shown;
 use crate::write::annotate::{content, diagram, elevation, note, polygon};
 use crate::write::text;
 
-/// Text heights along the larger side of the elevation.
+/// Text heights along the larger side of the elevation, in a picture of its own and in one of a report, whose text must be
+/// legible on a page of A4.
 const ACROSS: f64 = 96.0;
+const ACROSS_PAGE: f64 = 70.0;
 
 /// Height of the capitals, in the pixels of a picture that is shown at its own size.
 pub const CAPITALS: f64 = 8.5;
@@ -80,7 +82,7 @@ pub fn look(mark: &Mark) -> Look {
 /// Elevation, offset diagram, force polygons, key and caution on one sheet.
 pub fn whole(run: &Run) -> Picture {
     let spans = spans(run);
-    let (mut canvas, left, right) = canvas(run);
+    let (mut canvas, left, right) = canvas(run, ACROSS);
     let hidden = draw_elevation(run, &spans, &mut canvas);
     let h = canvas.h;
     let top = canvas.extent().map_or(0.0, |(_, high)| high.y) + 2.2 * h;
@@ -107,7 +109,7 @@ pub fn whole(run: &Run) -> Picture {
 /// The elevation alone.
 pub fn elevation(run: &Run) -> Picture {
     let spans = spans(run);
-    let (mut canvas, ..) = canvas(run);
+    let (mut canvas, ..) = canvas(run, ACROSS_PAGE);
     let hidden = draw_elevation(run, &spans, &mut canvas);
     picture(run, canvas, "Elevation with the line of thrust", hidden)
 }
@@ -115,7 +117,7 @@ pub fn elevation(run: &Run) -> Picture {
 /// The force polygons alone; `None` where no span has any.
 pub fn polygons(run: &Run) -> Option<Picture> {
     let spans = spans(run);
-    let (mut canvas, left, right) = canvas(run);
+    let (mut canvas, left, right) = canvas(run, ACROSS_PAGE);
     polygon::draw(run, &spans, &mut canvas, Point::new(left, 0.0), right);
     (!canvas.marks.is_empty()).then(|| picture(run, canvas, "Force polygon", 0))
 }
@@ -123,7 +125,7 @@ pub fn polygons(run: &Run) -> Option<Picture> {
 /// The offset diagram alone; `None` where no line was found.
 pub fn offsets(run: &Run) -> Option<Picture> {
     let spans = spans(run);
-    let (mut canvas, left, right) = canvas(run);
+    let (mut canvas, left, right) = canvas(run, ACROSS_PAGE);
     diagram::draw(run, &spans, &mut canvas, Point::new(left, 0.0), right, 0);
     (!canvas.marks.is_empty()).then(|| picture(run, canvas, "Offset of the line of thrust", 0))
 }
@@ -146,10 +148,10 @@ fn spans(run: &Run) -> Vec<Shown<'_>> {
 }
 
 /// An empty canvas with its left and right edge.
-fn canvas(run: &Run) -> (Canvas, f64, f64) {
+fn canvas(run: &Run, across: f64) -> (Canvas, f64, f64) {
     let content = content(run, None);
     let size = (content.high[0] - content.low[0]).max(content.high[1] - content.low[1]);
-    let h = if size > 0.0 && size.is_finite() { size / ACROSS } else { 1.0 };
+    let h = if size > 0.0 && size.is_finite() { size / across } else { 1.0 };
     let mut canvas = Canvas::new(h);
     canvas.has_units = false;
     (canvas, content.low[0], content.high[0])

@@ -215,6 +215,10 @@ mod tests {
             sample::arch(7, 36.0, 9.0).limited(0.01).run(),
             sample::arch(40, 36.0, 9.0).unit_loads().run(),
             sample::arch(3, 20.0, -4.0).run(),
+            sample::run_of(vec![
+                sample::arch(6, 30.0, 6.0).limited(0.02),
+                sample::Sample { x: 34.0, ..sample::arch(3, 18.0, 5.0) },
+            ]),
         ] {
             let text = svg(&picture::whole(&run), Home::File);
             for needed in ["tm-axis", "tm-line", "tm-load", "tm-force", "tm-diagram", "qualified engineer"] {

@@ -124,7 +124,9 @@ mod tests {
 
     #[test]
     fn holds_what_a_reviewer_signs() {
-        let text = report(vec![sample::arch(7, 36.0, 9.0).limited(9.0).run()]);
+        let mut run = sample::arch(7, 36.0, 9.0).limited(9.0).run();
+        run.settings = serde_json::json!({ "rib": { "depth": 0.4 }, "limits": { "offset": 9.0 } });
+        let text = report(vec![run]);
         for needed in [
             "WITHIN THE STATED LIMITS",
             "abababababababab",

@@ -156,9 +156,9 @@ fn entity(source: &Source) -> String {
 pub fn elevation(run: &Run, page: &mut Page) {
     page.section("Elevation and line of thrust", "picture");
     let picture = picture::elevation(run);
-    let mut caption = "Axis black, governing line of thrust heavy blue, ring grey. Figures at the loads: offset of the \
-                       line from the axis along the joint, mm, positive toward the extrados. Letters: spaces between the \
-                       loads (Bow's notation)."
+    let mut caption = "Axis thin, governing line of thrust heavy, ring lines faint where a depth is known. Figures at the \
+                       loads: offset of the line from the axis along the joint, mm, positive toward the extrados. Letters: \
+                       spaces between the loads (Bow's notation)."
         .to_owned();
     match picture.hidden {
         0 => {}
