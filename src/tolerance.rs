@@ -228,3 +228,15 @@ pub const NO_THRUST: f64 = 1e-13;
 
 /// Deviation, as a part of the span, of the polygon that stands for a curved line of thrust. A visible corner is larger.
 pub const LINE_POLYGON: f64 = 1e-5;
+
+/// Distance between two places or lengths of two revisions, m, up to which they are one. Larger: a drafter's correction
+/// goes unseen; smaller: the rounding of a program that saved the drawing again counts as a change.
+pub const REVISION_LENGTH: f64 = 1e-6;
+
+/// Difference of two figures of two revisions, relative to their size (or to the load they stand beside), up to which
+/// they are one. As above.
+pub const REVISION_RELATIVE: f64 = 1e-6;
+
+/// Part of the span up to which a load without a name of its own may have moved and still be the same load. Larger: two
+/// loads of a close row are taken for one that moved; smaller: a load pushed aside a little counts as gone and new.
+pub const REVISION_NEAR: f64 = 0.01;

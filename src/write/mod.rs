@@ -8,6 +8,6 @@ pub mod file;
 pub mod json;
 #[cfg(test)]
 #[allow(clippy::unwrap_used, missing_docs)]
-mod sample;
+pub(crate) mod sample;
 pub mod terminal;
 pub mod text;
