@@ -3,7 +3,7 @@
 //!
 //! `THRUSTMARK_WRITE_DOCS=1 cargo test --test book` writes the pages that are made from the code.
 
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 use std::collections::BTreeMap;
 use std::fs;

@@ -1,6 +1,6 @@
 //! The tool in a drawing office: many drawings, marks held against their sources, revisions compared, folders watched.
 
-#![allow(clippy::unwrap_used, clippy::float_cmp)]
+#![allow(clippy::unwrap_used, clippy::float_cmp, clippy::print_stdout)]
 
 use std::fs;
 use std::path::{Path, PathBuf};
