@@ -327,3 +327,14 @@ pub const CONE_SLACK: f64 = 1e-11;
 /// Logarithm of the line's share of the depth at which the search for the least thickness ends. Larger: digits of the
 /// thickness are lost; smaller: steps that only see rounding.
 pub const THICKNESS: f64 = 1e-13;
+/// Distance between two places or lengths of two revisions, m, up to which they are one. Larger: a drafter's correction
+/// goes unseen; smaller: the rounding of a program that saved the drawing again counts as a change.
+pub const REVISION_LENGTH: f64 = 1e-6;
+
+/// Difference of two figures of two revisions, relative to their size (or to the load they stand beside), up to which
+/// they are one. As above.
+pub const REVISION_RELATIVE: f64 = 1e-6;
+
+/// Part of the span up to which a load without a name of its own may have moved and still be the same load. Larger: two
+/// loads of a close row are taken for one that moved; smaller: a load pushed aside a little counts as gone and new.
+pub const REVISION_NEAR: f64 = 0.01;

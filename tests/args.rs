@@ -64,7 +64,8 @@ fn wrong_usage_is_two_on_stderr() {
         &["unmark"],
         &["list"],
         &["verify"],
-        &["watch", "."],
+        &["watch"],
+        &["compare", "a.dxf"],
         &["mark", "a.dxf", "--pdf", "x"],
         &["mark", "a.dxf", "--job"],
         &["mark", "--force"],
@@ -86,7 +87,19 @@ fn wrong_usage_is_two_on_stderr() {
 
 #[test]
 fn help_tells_examples_status_and_caution() {
-    for command in ["mark", "check", "unmark", "list", "verify", "demo", "schema", "completions", "manual"] {
+    for command in [
+        "mark",
+        "check",
+        "unmark",
+        "list",
+        "verify",
+        "compare",
+        "watch",
+        "demo",
+        "schema",
+        "completions",
+        "manual",
+    ] {
         let help = parse(&[command, "--help"]).unwrap_err();
         assert_eq!((help.kind(), help.exit_code()), (ErrorKind::DisplayHelp, 0));
         let text = help.to_string();
@@ -104,9 +117,20 @@ fn help_tells_examples_status_and_caution() {
 #[test]
 fn examples_of_the_help_parse() {
     let mut found = 0;
-    for command in
-        ["", "mark", "check", "unmark", "list", "verify", "demo", "schema", "completions", "manual"]
-    {
+    for command in [
+        "",
+        "mark",
+        "check",
+        "unmark",
+        "list",
+        "verify",
+        "compare",
+        "watch",
+        "demo",
+        "schema",
+        "completions",
+        "manual",
+    ] {
         let arguments: Vec<&str> = [command, "--help"].into_iter().filter(|a| !a.is_empty()).collect();
         let text = parse(&arguments).unwrap_err().to_string();
         for line in text.lines().filter_map(|line| line.strip_prefix("  thrustmark ")) {

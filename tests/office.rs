@@ -1,6 +1,6 @@
 //! The tool in a drawing office: many drawings, marks held against their sources, revisions compared, folders watched.
 
-#![allow(clippy::unwrap_used, clippy::float_cmp)]
+#![allow(clippy::unwrap_used, clippy::float_cmp, clippy::print_stdout)]
 
 use std::fs;
 use std::path::{Path, PathBuf};
@@ -506,4 +506,298 @@ fn the_starter_job_overwrites_nothing() {
     office.run(&["list", "absent.dxf", "--write-job", "new.toml"]).ends(2);
     assert!(!office.path("new.toml").exists());
     office.run(&["list", "masonry-ring.dxf", "--write-job"]).ends(2);
+}
+
+// Two revisions.
+
+#[test]
+fn the_same_arch_is_the_same() {
+    let office = Office::new();
+    fs::create_dir(office.path("old")).unwrap();
+    for name in DRAWINGS {
+        fs::copy(office.path(name), office.path(&format!("old/{name}"))).unwrap();
+        // Another remark on the sheet is no change of the arch, and neither is a mark.
+        office.run(&["mark", name]).ends(0);
+        let marked = name.replace(".dxf", ".thrust.dxf");
+        for new in [name, &marked] {
+            office.run(&["compare", &format!("old/{name}"), new]).ends(0).says(&["SAME"]);
+        }
+        let (status, value) = office.json(&["compare", &format!("old/{name}"), name]);
+        assert_eq!((status, &value["compare"]["same"]), (0, &Value::Bool(true)));
+        assert_eq!(value["compare"]["changes"], serde_json::json!([]));
+    }
+}
+
+#[test]
+fn changes_are_told_and_drawn() {
+    let office = Office::new();
+    fs::create_dir(office.path("old")).unwrap();
+    let (name, old) = ("open-spandrel-rib.dxf", "old/open-spandrel-rib.dxf");
+    fs::copy(office.path(name), office.path(old)).unwrap();
+    fs::copy(office.path("thrustmark.toml"), office.path("old/thrustmark.toml")).unwrap();
+    let before = office.json(&["check", name]).1;
+    let load = &before["runs"][0]["spans"][0]["loads"][2];
+    let text = load["text"].as_str().unwrap();
+    // P3 stays P3 and weighs something else.
+    let (named, figure) = text.split_once('=').unwrap();
+    let heavier = format!("{named}={}", figure.replace(|c: char| c.is_ascii_digit(), "7"));
+    assert_ne!(text, heavier);
+    office.edit(name, text, &heavier);
+    let (status, value) = office.json(&["compare", old, name]);
+    assert_eq!(status, 1, "{value:#}");
+    let changes = value["compare"]["changes"].as_array().unwrap();
+    let changed: Vec<&Value> = changes.iter().filter(|c| c["what"] == "load-changed").collect();
+    assert_eq!(changed.len(), 1, "{value:#}");
+    assert_eq!(changed[0]["at"], load["at"]);
+    assert_eq!(changed[0]["old"], load["force"]);
+    assert!(changes.iter().any(|c| c["what"] == "result"), "{value:#}");
+    assert!(changes.iter().all(|c| c["what"] != "axis"), "{value:#}");
+    let said = office.run(&["compare", old, name, "--output", "changes.dxf"]).ends(1);
+    assert!(said.out.starts_with("DIFFERENT") && said.out.contains("now, was"), "{}", said.out);
+    let copy = fs::read_to_string(office.path("changes.dxf")).unwrap();
+    assert!(copy.contains("THRUST-CHANGES") && copy.contains("CHANGES from old/open-spandrel-rib.dxf"));
+    assert!(!copy.contains("THRUST-LINE"));
+    // Without the layer it is NEW again, to the byte; and it is no mark of a check.
+    office.run(&["unmark", "changes.dxf", "--output", "back.dxf"]).ends(0);
+    assert_eq!(fs::read(office.path("back.dxf")).unwrap(), fs::read(office.path(name)).unwrap());
+    office.run(&["verify", "changes.dxf"]).ends(2).tells(&["no mark of a check"]);
+    // The other way round the same load changed back.
+    let (_, back) = office.json(&["compare", name, old]);
+    let back = back["compare"]["changes"].as_array().unwrap().clone();
+    assert!(back.iter().any(|c| c["what"] == "load-changed" && c["new"] == load["force"]));
+}
+
+#[test]
+fn a_moved_axis_is_told_with_its_place() {
+    let office = Office::new();
+    fs::create_dir(office.path("old")).unwrap();
+    for name in ["unsymmetric-rib.dxf", "thrustmark.toml"] {
+        fs::copy(office.path(name), office.path(&format!("old/{name}"))).unwrap();
+    }
+    // The new revision is drawn to another scale: everything is a hundredth larger.
+    office.edit("thrustmark.toml", "[layers]", "[drawing]\nscale = 1.01\n\n[layers]");
+    let (status, value) = office.json(&["compare", "old/unsymmetric-rib.dxf", "unsymmetric-rib.dxf"]);
+    assert_eq!(status, 1, "{value:#}");
+    let changes = value["compare"]["changes"].as_array().unwrap();
+    let of = |what: &str, name: &str| {
+        changes.iter().find(|c| c["what"] == what && c["name"] == name).unwrap_or_else(|| panic!("{value:#}"))
+    };
+    let span = of("axis", "span");
+    let ratio = span["new"].as_f64().unwrap() / span["old"].as_f64().unwrap();
+    assert!((ratio - 1.01).abs() < 1e-12, "{ratio}");
+    assert!(of("axis", "largest distance")["new"].as_f64().unwrap() > 0.05);
+    assert_eq!(of("setting", "drawing.scale")["new"], 1.01);
+}
+
+#[test]
+fn what_cannot_be_compared_is_an_error() {
+    let office = Office::new();
+    let name = "masonry-ring.dxf";
+    office.run(&["compare", name, "absent.dxf"]).ends(2).tells(&["absent.dxf"]);
+    office.run(&["compare", "thrustmark.toml", name]).ends(2).tells(&["thrustmark.toml"]);
+    office.run(&["compare", name]).ends(2);
+    office
+        .run(&["compare", name, name, "--output", name, "--force"])
+        .ends(2)
+        .tells(&["is the source itself"]);
+    fs::write(office.path("mine.dxf"), "mine").unwrap();
+    office.run(&["compare", name, name, "--output", "mine.dxf"]).ends(2).tells(&["--force"]);
+    assert_eq!(fs::read(office.path("mine.dxf")).unwrap(), b"mine");
+    office
+        .run(&["compare", name, name, "--output", "mine.dxf", "--force"])
+        .ends(0)
+        .says(&["SAME", "mine.dxf"]);
+    let (status, value) = office.json(&["compare", "absent.dxf", name]);
+    assert_eq!((status, &value["compare"]), (2, &Value::Null));
+    assert!(value["error"]["message"].as_str().unwrap().contains("absent.dxf"));
+}
+
+// A folder under watch.
+
+#[cfg(unix)]
+mod watched {
+    use super::*;
+    use std::io::{BufRead, BufReader};
+    use std::process::{Child, Stdio};
+    use std::sync::mpsc::{self, Receiver};
+    use std::thread;
+    use std::time::{Duration, Instant};
+
+    struct Watch {
+        child: Child,
+        lines: Receiver<String>,
+    }
+
+    impl Watch {
+        fn begin(office: &Office) -> Self {
+            let mut child = office
+                .command(&["watch", "."])
+                .stdout(Stdio::piped())
+                .stderr(Stdio::piped())
+                .spawn()
+                .unwrap();
+            let (send, lines) = mpsc::channel();
+            let pipes: [Box<dyn std::io::Read + Send>; 2] =
+                [Box::new(child.stdout.take().unwrap()), Box::new(child.stderr.take().unwrap())];
+            for pipe in pipes {
+                let send = send.clone();
+                thread::spawn(move || {
+                    for line in BufReader::new(pipe).lines() {
+                        if send.send(line.unwrap()).is_err() {
+                            return;
+                        }
+                    }
+                });
+            }
+            let watch = Self { child, lines };
+            watch.until("watching");
+            watch
+        }
+
+        /// Waits for a line that holds the words; gives all lines up to it.
+        fn until(&self, words: &str) -> String {
+            let mut all = String::new();
+            loop {
+                let line = self
+                    .lines
+                    .recv_timeout(Duration::from_secs(30))
+                    .unwrap_or_else(|_| panic!("no {words:?} after: {all}"));
+                all.push_str(&line);
+                all.push('\n');
+                if line.contains(words) {
+                    return all;
+                }
+            }
+        }
+
+        fn says_nothing(&self) {
+            if let Ok(line) = self.lines.recv_timeout(Duration::from_millis(700)) {
+                panic!("said {line}");
+            }
+        }
+
+        fn end(mut self, signal: &str) {
+            Command::new("kill").args([signal, &self.child.id().to_string()]).status().unwrap();
+            assert_eq!(self.child.wait().unwrap().code(), Some(0));
+        }
+    }
+
+    #[test]
+    fn a_save_is_marked_within_a_second_and_its_changes_told() {
+        let office = Office::new();
+        let name = "open-spandrel-rib.dxf";
+        let watch = Watch::begin(&office);
+        let marked = office.path("open-spandrel-rib.thrust.dxf");
+        assert!(!marked.exists(), "nothing is written before a save");
+        let source = fs::read_to_string(office.path(name)).unwrap();
+        let figure = source.lines().find(|l| l.starts_with("P3 =")).unwrap().trim_end().to_owned();
+        let mut fastest = Duration::MAX;
+        for (round, weight) in [71, 72, 73, 74].into_iter().enumerate() {
+            let saved = source.replacen(&figure, &format!("P3 = {weight} kN"), 1);
+            let begun = Instant::now();
+            if round % 2 == 0 {
+                fs::write(office.path(name), saved).unwrap();
+            } else {
+                // As many programs save: under another name, the old one away, the new one in its place.
+                fs::write(office.path("save.tmp"), saved).unwrap();
+                fs::rename(office.path(name), office.path("open-spandrel-rib.bak")).unwrap();
+                fs::rename(office.path("save.tmp"), office.path(name)).unwrap();
+            }
+            let told = watch.until("copy");
+            fastest = fastest.min(begun.elapsed());
+            assert!(told.contains("load P3") && told.contains(&format!("is {weight}")), "{told}");
+            assert!(fs::read_to_string(&marked).unwrap().contains("THRUST-LINE"));
+            // Never its own output.
+            watch.says_nothing();
+        }
+        assert!(fastest < Duration::from_secs(1), "{fastest:?}");
+        assert!(!office.path("open-spandrel-rib.thrust.thrust.dxf").exists());
+        watch.end("-INT");
+        office.run(&["verify", "open-spandrel-rib.thrust.dxf", name]).ends(0);
+    }
+
+    #[test]
+    fn a_half_written_drawing_and_a_changed_job_are_taken_well() {
+        let office = Office::new();
+        let watch = Watch::begin(&office);
+        let name = "masonry-ring.dxf";
+        let whole = fs::read(office.path(name)).unwrap();
+        fs::write(office.path(name), &whole[..whole.len() / 2]).unwrap();
+        watch.until("masonry-ring.dxf: ");
+        fs::write(office.path(name), &whole).unwrap();
+        watch.until("same       as at the last save");
+        watch.until("copy");
+        office.edit("thrustmark.toml", "limits.offset = 0.15", "limits.offset = 0.001");
+        let told = watch.until("unsymmetric-rib.thrust.dxf");
+        assert!(told.contains("limits.offset is 0.001 now, it was 0.15"), "{told}");
+        watch.end("-TERM");
+    }
+
+    #[test]
+    fn a_folder_that_cannot_be_watched_is_an_error() {
+        let office = Office::new();
+        office.run(&["watch", "absent"]).ends(2).tells(&["cannot be watched"]);
+        office.run(&["watch", "masonry-ring.dxf"]).ends(2).tells(&["cannot be watched"]);
+        office.run(&["watch", ".", "--job", "absent.toml"]).ends(2).tells(&["absent.toml"]);
+        office.run(&["watch"]).ends(2);
+    }
+}
+
+// How long a thousand drawings take.
+
+/// Run by hand: `cargo test --release --test office -- --ignored --nocapture thousand`.
+#[test]
+#[ignore = "writes a gigabyte and takes minutes"]
+fn a_thousand_drawings_of_a_megabyte() {
+    let office = Office::new();
+    fs::create_dir(office.path("set")).unwrap();
+    let count = std::env::var("THRUSTMARK_DRAWINGS").map_or(1000, |n| n.parse().unwrap());
+    let source = fs::read_to_string(office.path("masonry-ring.dxf")).unwrap();
+    let end = source.rfind("  0\nENDSEC").or_else(|| source.rfind("0\r\nENDSEC")).unwrap();
+    let newline = if source.contains("\r\n") { "\r\n" } else { "\n" };
+    let mut bulk = String::new();
+    for i in 0_u32.. {
+        if source.len() + bulk.len() >= 1_000_000 {
+            break;
+        }
+        let [x, y] = [i % 977, i % 1009].map(|n| f64::from(n) * 13.7);
+        bulk += &[
+            "0",
+            "LINE",
+            "8",
+            "OTHER",
+            "10",
+            &x.to_string(),
+            "20",
+            &y.to_string(),
+            "11",
+            "5.0",
+            "21",
+            "7.5",
+            "",
+        ]
+        .join(newline);
+    }
+    for i in 0..count {
+        let text = format!("999{newline}{i}{newline}{}{bulk}{}", &source[..end], &source[end..]);
+        fs::write(office.path(&format!("set/{i:04}.dxf")), text).unwrap();
+    }
+    fs::write(
+        office.path("set/thrustmark.toml"),
+        "drawing.unit = \"mm\"\nrib.support = \"none\"\nrib.depth = 0.6\nlimits.offset = 0.15\n",
+    )
+    .unwrap();
+    let timed = |arguments: &[&str]| {
+        let begun = std::time::Instant::now();
+        let ran = office.run(arguments).ends(0);
+        assert!(ran.out.contains(&format!("{count} drawings: {count} within")), "{}", ran.out);
+        let seconds = begun.elapsed().as_secs_f64();
+        println!("{}: {seconds:.2} s, {:.0} drawings/s", arguments.join(" "), f64::from(count) / seconds);
+    };
+    for jobs in ["1", "2"] {
+        timed(&["check", "set", "--no-store", "--jobs", jobs]);
+        timed(&["mark", "set", "--jobs", jobs]);
+    }
+    timed(&["check", "set"]);
+    timed(&["check", "set"]);
 }

@@ -50,6 +50,12 @@ pub enum Command {
     /// Tell whether a marked copy still belongs to its source, its job and this version
     #[command(arg_required_else_help = true, after_help = VERIFY_HELP)]
     Verify(VerifyArgs),
+    /// Tell what changed between two revisions of a drawing
+    #[command(arg_required_else_help = true, after_help = COMPARE_HELP)]
+    Compare(CompareArgs),
+    /// Mark drawings of a folder again whenever they are saved
+    #[command(arg_required_else_help = true, after_help = WATCH_HELP)]
+    Watch(WatchArgs),
     /// Write demo drawings and their job file into a folder
     #[command(arg_required_else_help = true, after_help = DEMO_HELP)]
     Demo(DemoArgs),
@@ -186,6 +192,46 @@ pub struct VerifyArgs {
     /// Replace an existing file under the name of --json
     #[arg(short, long)]
     pub force: bool,
+}
+
+/// `thrustmark compare`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct CompareArgs {
+    /// The old drawing
+    #[arg(value_name = "OLD")]
+    pub old: PathBuf,
+
+    /// The new drawing
+    #[arg(value_name = "NEW")]
+    pub new: PathBuf,
+
+    /// Job file for both [default: the first thrustmark.toml on the way up from each drawing's folder]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+
+    /// Changes as JSON into FILE; with - on stdout, and the words on stderr
+    #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
+    pub json: Option<JsonTarget>,
+
+    /// Copy of NEW with the changes drawn on layer THRUST-CHANGES
+    #[arg(short, long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
+
+    /// Replace existing files, even those that thrustmark did not write
+    #[arg(short, long)]
+    pub force: bool,
+}
+
+/// `thrustmark watch`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct WatchArgs {
+    /// Folder of drawings; folders in it are not watched
+    #[arg(value_name = "FOLDER")]
+    pub folder: PathBuf,
+
+    /// Job file [default: the first thrustmark.toml on the way up from the folder]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
 }
 
 /// `thrustmark demo`
@@ -373,3 +419,25 @@ Example:
 ",
     plain_status!()
 );
+
+const COMPARE_HELP: &str = "\
+Examples:
+  thrustmark compare bridge-a.dxf bridge-b.dxf
+  thrustmark compare bridge-a.dxf bridge-b.dxf --output bridge-changes.dxf
+
+Compares what is computed from the drawings, not their bytes: axis, ring, loads
+(matched by place and label), results, verdicts and the settings in force.
+
+Exit status:
+  0  same
+  1  different
+  2  a drawing could not be read or checked, or the copy could not be written";
+
+const WATCH_HELP: &str = "\
+Example:
+  thrustmark watch drawings
+
+Whenever a drawing or its job file is saved, the marked copy beside the drawing is
+written again, and what changed since the last save is told. Copies are not marked.
+
+Exit status: 0 when it is interrupted, 2 when the folder cannot be watched.";

@@ -1,12 +1,14 @@
 //! The command line: parses, runs, prints, and gives the exit status. The only place that prints.
 
 pub mod args;
+mod compare;
 mod listing;
 mod manual;
 mod outputs;
 mod paths;
 mod progress;
 mod verify;
+mod watch;
 
 use std::io::{self, IsTerminal, Write};
 use std::num::NonZeroUsize;
@@ -33,6 +35,29 @@ use progress::Progress;
 /// Status of a run that could not be done.
 const REFUSED: u8 = 2;
 
+/// Prints a result that is no run in words, and puts its JSON where it was asked for: with JSON on stdout the words go to
+/// stderr.
+fn deliver(
+    target: Option<&JsonTarget>,
+    sources: &[&Path],
+    force: bool,
+    words: &str,
+    json: &str,
+) -> Result<(), Refusal> {
+    match target {
+        None => say(words),
+        Some(JsonTarget::Stdout) => {
+            say(json);
+            tell(words);
+        }
+        Some(JsonTarget::File(target)) => {
+            write_json(target, sources, force, json)?;
+            say(words);
+        }
+    }
+    Ok(())
+}
+
 /// Runs the program with the arguments of the process.
 pub fn run() -> ExitCode {
     batch::keep_panics();
@@ -51,6 +76,8 @@ pub fn run() -> ExitCode {
         Command::Unmark(args) => unmark(args),
         Command::List(args) => list(args),
         Command::Verify(args) => verify::verify(args),
+        Command::Compare(args) => compare::compare(args),
+        Command::Watch(args) => watch::watch(args),
         Command::Demo(args) => demo(args),
         Command::Completions(args) => Ok(manual::completions(args.shell)),
         Command::Manual => manual::manual(),
@@ -90,11 +117,7 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -
         }
         None => store::check(drawing, named.as_ref(), environment, store),
     })?;
-    let document = Document {
-        contract: CONTRACT,
-        tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
-        runs,
-    };
+    let document = document(runs);
     let on_stdout = args.json != Some(JsonTarget::Stdout);
     let style = terminal::Style { width: width(on_stdout), colour: colour(on_stdout), verbose: args.verbose };
     let summary = terminal::summary(&document, &style);
@@ -106,6 +129,14 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -
         tell(&summary);
     }
     Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
+}
+
+fn document(runs: Vec<Run>) -> Document {
+    Document {
+        contract: CONTRACT,
+        tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
+        runs,
+    }
 }
 
 /// The runs of all drawings, in their order, with the progress told on the way.

@@ -3,7 +3,7 @@
 use std::path::Path;
 
 use super::args::{JsonTarget, VerifyArgs};
-use super::{document_of, json_may_replace, say, tell, write_json};
+use super::{deliver, document_of, json_may_replace};
 use crate::flow::Environment;
 use crate::job::Job;
 use crate::office::verify::{self, State, Verified};
@@ -20,18 +20,8 @@ pub fn verify(args: &VerifyArgs) -> Result<u8, Refusal> {
     let done = args.job.as_deref().map(Job::load).transpose().and_then(|job| {
         verify::verify(&args.marked, args.source.as_deref(), job.as_ref(), Environment::of_process()?)
     });
-    let text = done.as_ref().ok().map(words);
-    match &args.json {
-        None => text.iter().for_each(|text| say(text)),
-        Some(JsonTarget::Stdout) => {
-            say(&document_of("verify", done.as_ref())?);
-            text.iter().for_each(|text| tell(text));
-        }
-        Some(JsonTarget::File(target)) => {
-            write_json(target, &sources, args.force, &document_of("verify", done.as_ref())?)?;
-            text.iter().for_each(|text| say(text));
-        }
-    }
+    let words = done.as_ref().map(words).unwrap_or_default();
+    deliver(args.json.as_ref(), &sources, args.force, &words, &document_of("verify", done.as_ref())?)?;
     Ok(match done?.state {
         State::Current => 0,
         State::Stale => 1,

@@ -107,12 +107,17 @@ pub fn keep_panics() {
     std::panic::set_hook(Box::new(move |info| {
         if INSIDE.get() {
             let place = info.location().map(|l| format!(" ({}:{})", l.file(), l.line())).unwrap_or_default();
-            let words = info.payload_as_str().unwrap_or("no message");
-            SAID.set(Some(format!("{words}{place}")));
+            SAID.set(Some(format!("{}{place}", words(info.payload()))));
         } else {
             before(info);
         }
     }));
+}
+
+/// What a panic says.
+fn words(payload: &(dyn std::any::Any + Send)) -> String {
+    let text = payload.downcast_ref::<&str>().map(|s| (*s).to_owned());
+    text.or_else(|| payload.downcast_ref::<String>().cloned()).unwrap_or_else(|| "no message".into())
 }
 
 /// Runs `work`; a panic in it becomes a refusal.
@@ -124,13 +129,10 @@ pub fn guarded<T>(work: impl FnOnce() -> T) -> Result<T, Refusal> {
     let done = catch_unwind(AssertUnwindSafe(work));
     INSIDE.set(outer);
     done.map_err(|payload| {
-        let said = SAID.take().or_else(|| {
-            let text = payload.downcast_ref::<&str>().map(|s| (*s).to_owned());
-            text.or_else(|| payload.downcast_ref::<String>().cloned())
-        });
+        let said = SAID.take().unwrap_or_else(|| words(payload.as_ref()));
         Refusal::new(
             "internal",
-            format!("A fault of thrustmark itself stopped this drawing: {}", said.unwrap_or_default()),
+            format!("A fault of thrustmark itself stopped this drawing: {said}"),
             "Please report it with the drawing; other drawings are not touched by it.",
         )
     })
@@ -147,7 +149,7 @@ mod tests {
     #[test]
     fn results_stand_in_order_whatever_the_threads() {
         let slow_first = |i: usize| {
-            thread::sleep(Duration::from_millis(if i % 5 == 0 { 10 } else { 0 }));
+            thread::sleep(Duration::from_millis(if i.is_multiple_of(5) { 10 } else { 0 }));
             i * i
         };
         let expected: Vec<usize> = (0..40).map(|i| i * i).collect();

@@ -6,3 +6,4 @@ pub mod demo;
 pub mod starter;
 pub mod store;
 pub mod verify;
+pub mod watch;

@@ -183,6 +183,15 @@ fn facts(run: &Run, sheet: &Sheet) -> Vec<(String, String)> {
     facts
 }
 
+/// Where there is room below the elevation for other marks of ours: the upper left corner, and the text height, both in
+/// drawing units.
+pub fn free_corner(run: &Run, sheet: &Sheet) -> (Point, f64) {
+    let unit = 1.0 / sheet.metres_per_unit;
+    let content = content(run, sheet);
+    let h = text_height(sheet, content, unit);
+    (Point::new(content.low[0] * unit, free_below(sheet, content, &Canvas::new(h), unit) - 3.0 * h), h)
+}
+
 /// SHA-256 of settings in force, lower-case hexadecimal.
 pub fn settings_hash(settings: &serde_json::Value) -> String {
     Sha256::digest(settings.to_string()).iter().map(|byte| format!("{byte:02x}")).collect()

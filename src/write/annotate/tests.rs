@@ -351,7 +351,7 @@ fn layers_carry_the_prefix_and_the_frost() {
     assert!(marks.layers.iter().all(|l| l.name.starts_with("T_") && l.frozen));
     assert!(marks.line_types.iter().all(|l| l.name.starts_with("T_")));
     let facts: Vec<&str> = marks.facts.iter().map(|f| f.0.as_str()).collect();
-    assert_eq!(facts, ["sha256", "source", "tool", "verdict", "date", "job"]);
+    assert_eq!(facts, ["sha256", "source", "tool", "verdict", "date", "job", "settings"]);
 }
 
 #[test]

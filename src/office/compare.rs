@@ -1,3 +1,0 @@
-//! x
-/// y
-pub const HOLDS: &str = "changes";
