@@ -240,3 +240,49 @@ fn every_case_is_judged_with_its_factors() {
     let told = run.findings.iter().find(|f| f.message.contains("ARCH-LOADS-LIFE")).unwrap();
     assert!(told.unchecks && told.case.as_deref() == Some("live"));
 }
+
+#[test]
+fn one_arch_in_many_ways_has_one_answer() {
+    let folder = std::path::Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/ways");
+    let job = Job::load(&folder.join("thrustmark.toml")).unwrap();
+    let environment = Environment { today: jiff::civil::date(2026, 12, 1) };
+    let mut files: Vec<_> = std::fs::read_dir(&folder)
+        .unwrap()
+        .map(|e| e.unwrap().path())
+        .filter(|p| p.extension().is_some_and(|e| e == "dxf"))
+        .collect();
+    files.sort();
+    assert!(files.len() >= 15);
+    let mut first: Option<Vec<f64>> = None;
+    for file in files {
+        let run = computed(flow::check(&file, Some(&job), environment));
+        assert_eq!(run.verdict, Some(Verdict::Within), "{file:?} {:#?}", run.findings);
+        let span = &run.spans[0];
+        let case = &span.cases[0];
+        let line = &case.lines[0];
+        let ring = 1005.309_649_148_734;
+        assert!((case.total_load[1] + 140.0 + ring).abs() < 1e-8 * ring, "{file:?}");
+        let (left, right) = (line.left.as_ref().unwrap(), line.right.as_ref().unwrap());
+        let mut numbers = vec![
+            span.axis.span,
+            span.axis.rise,
+            span.axis.length,
+            line.offset.as_ref().unwrap().max_abs,
+            left.horizontal,
+            left.vertical,
+            right.vertical,
+            case.pole.as_ref().unwrap().scatter,
+            case.safety.as_ref().unwrap().geometric_factor.unwrap(),
+        ];
+        numbers.extend(case.forces.iter().flatten());
+        match &first {
+            None => first = Some(numbers),
+            Some(first) => {
+                assert_eq!(first.len(), numbers.len(), "{file:?}");
+                for (a, b) in first.iter().zip(&numbers) {
+                    assert!((a - b).abs() <= 1e-8 * a.abs().max(1.0), "{file:?}: {a} {b}");
+                }
+            }
+        }
+    }
+}
