@@ -242,6 +242,43 @@ fn every_case_is_judged_with_its_factors() {
 }
 
 #[test]
+fn drawn_hinges_fix_the_line() {
+    let mut sheet = Sheet::default();
+    sheet.arc("ARCH-AXIS", [0.0, 0.0], 10.0, 30.0, 150.0);
+    for (x, label) in [(-4.0, "30 kN"), (-1.0, "50 kN"), (3.0, "20 kN")] {
+        sheet.load("ARCH-LOADS", [x, 11.0], label);
+    }
+    let (c, s) = (30_f64.to_radians().cos() * 10.0, 5.0);
+    // The crown hinge stands a little beside the crown and off the axis.
+    let hinges = [[-c, s], [0.5, 9.9], [c, s]];
+    for [x, y] in hinges {
+        sheet.add("POINT", "ARCH-HINGES", &[(10, x), (20, y)]);
+    }
+    let job = "[rib]\ndepth = 0.4\nsupport = \"three-hinged\"\n[limits]\nring = 1.0\n";
+    let run = computed(sheet.run(job));
+    let line = &run.spans[0].cases[0].lines[0];
+    // Moments about the right hinge, and about the middle one for the left part, by hand.
+    let load = |x: f64, p: f64, about: f64| p * (about - x);
+    let v = (load(-4.0, 30.0, c) + load(-1.0, 50.0, c) + load(3.0, 20.0, c)) / (2.0 * c);
+    let h = (v * (0.5 + c) - load(-4.0, 30.0, 0.5) - load(-1.0, 50.0, 0.5)) / (9.9 - s);
+    let left = line.left.as_ref().unwrap();
+    assert!(
+        (left.horizontal - h).abs() < 1e-9 * h && (left.vertical - v).abs() < 1e-9 * v,
+        "{left:?} {h} {v}"
+    );
+    assert_eq!(run.findings.iter().filter(|f| f.message.contains("read as a hinge")).count(), 3);
+    // One that stands off the rib is told; four make a mechanism.
+    let mut off = sheet.clone();
+    off.add("POINT", "ARCH-HINGES", &[(10, 2.0), (20, 5.0)]);
+    let run = computed(off.run(job));
+    let told = run.findings.iter().find(|f| f.message.contains("off every rib")).unwrap();
+    assert!(told.unchecks);
+    let mut four = sheet;
+    four.add("POINT", "ARCH-HINGES", &[(10, -5.0), (20, 75_f64.sqrt())]);
+    assert_eq!(four.run(job).error.unwrap().check, "hinges");
+}
+
+#[test]
 fn one_arch_in_many_ways_has_one_answer() {
     let folder = std::path::Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/ways");
     let job = Job::load(&folder.join("thrustmark.toml")).unwrap();

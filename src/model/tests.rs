@@ -52,6 +52,7 @@ fn text(handle: usize, x: f64, y: f64, says: &str) -> Text {
 fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawing {
     Drawing {
         intrados: Vec::new(),
+        hinges: Vec::new(),
         extrados: Vec::new(),
         viewports: Vec::new(),
         unit: Unit { name: "m", metres: 1.0, source: UnitSource::Job },
