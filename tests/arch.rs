@@ -240,3 +240,86 @@ fn every_case_is_judged_with_its_factors() {
     let told = run.findings.iter().find(|f| f.message.contains("ARCH-LOADS-LIFE")).unwrap();
     assert!(told.unchecks && told.case.as_deref() == Some("live"));
 }
+
+#[test]
+fn drawn_hinges_fix_the_line() {
+    let mut sheet = Sheet::default();
+    sheet.arc("ARCH-AXIS", [0.0, 0.0], 10.0, 30.0, 150.0);
+    for (x, label) in [(-4.0, "30 kN"), (-1.0, "50 kN"), (3.0, "20 kN")] {
+        sheet.load("ARCH-LOADS", [x, 11.0], label);
+    }
+    let (c, s) = (30_f64.to_radians().cos() * 10.0, 5.0);
+    // The crown hinge stands a little beside the crown and off the axis.
+    let hinges = [[-c, s], [0.5, 9.9], [c, s]];
+    for [x, y] in hinges {
+        sheet.add("POINT", "ARCH-HINGES", &[(10, x), (20, y)]);
+    }
+    let job = "[rib]\ndepth = 0.4\nsupport = \"three-hinged\"\n[limits]\nring = 1.0\n";
+    let run = computed(sheet.run(job));
+    let line = &run.spans[0].cases[0].lines[0];
+    // Moments about the right hinge, and about the middle one for the left part, by hand.
+    let load = |x: f64, p: f64, about: f64| p * (about - x);
+    let v = (load(-4.0, 30.0, c) + load(-1.0, 50.0, c) + load(3.0, 20.0, c)) / (2.0 * c);
+    let h = (v * (0.5 + c) - load(-4.0, 30.0, 0.5) - load(-1.0, 50.0, 0.5)) / (9.9 - s);
+    let left = line.left.as_ref().unwrap();
+    assert!(
+        (left.horizontal - h).abs() < 1e-9 * h && (left.vertical - v).abs() < 1e-9 * v,
+        "{left:?} {h} {v}"
+    );
+    assert_eq!(run.findings.iter().filter(|f| f.message.contains("read as a hinge")).count(), 3);
+    // One that stands off the rib is told; four make a mechanism.
+    let mut off = sheet.clone();
+    off.add("POINT", "ARCH-HINGES", &[(10, 2.0), (20, 5.0)]);
+    let run = computed(off.run(job));
+    let told = run.findings.iter().find(|f| f.message.contains("off every rib")).unwrap();
+    assert!(told.unchecks);
+    let mut four = sheet;
+    four.add("POINT", "ARCH-HINGES", &[(10, -5.0), (20, 75_f64.sqrt())]);
+    assert_eq!(four.run(job).error.unwrap().check, "hinges");
+}
+
+#[test]
+fn one_arch_in_many_ways_has_one_answer() {
+    let folder = std::path::Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/ways");
+    let job = Job::load(&folder.join("thrustmark.toml")).unwrap();
+    let environment = Environment { today: jiff::civil::date(2026, 12, 1) };
+    let mut files: Vec<_> = std::fs::read_dir(&folder)
+        .unwrap()
+        .map(|e| e.unwrap().path())
+        .filter(|p| p.extension().is_some_and(|e| e == "dxf"))
+        .collect();
+    files.sort();
+    assert!(files.len() >= 15);
+    let mut first: Option<Vec<f64>> = None;
+    for file in files {
+        let run = computed(flow::check(&file, Some(&job), environment));
+        assert_eq!(run.verdict, Some(Verdict::Within), "{file:?} {:#?}", run.findings);
+        let span = &run.spans[0];
+        let case = &span.cases[0];
+        let line = &case.lines[0];
+        let ring = 1005.309_649_148_734;
+        assert!((case.total_load[1] + 140.0 + ring).abs() < 1e-8 * ring, "{file:?}");
+        let (left, right) = (line.left.as_ref().unwrap(), line.right.as_ref().unwrap());
+        let mut numbers = vec![
+            span.axis.span,
+            span.axis.rise,
+            span.axis.length,
+            line.offset.as_ref().unwrap().max_abs,
+            left.horizontal,
+            left.vertical,
+            right.vertical,
+            case.pole.as_ref().unwrap().scatter,
+            case.safety.as_ref().unwrap().geometric_factor.unwrap(),
+        ];
+        numbers.extend(case.forces.iter().flatten());
+        match &first {
+            None => first = Some(numbers),
+            Some(first) => {
+                assert_eq!(first.len(), numbers.len(), "{file:?}");
+                for (a, b) in first.iter().zip(&numbers) {
+                    assert!((a - b).abs() <= 1e-8 * a.abs().max(1.0), "{file:?}: {a} {b}");
+                }
+            }
+        }
+    }
+}

@@ -198,7 +198,6 @@ fn what_is_not_built_is_refused_by_name() {
         ("[layers]\nextrados = \"I\"", "layers.extrados"),
         ("[layers]\nposts = \"I\"", "layers.posts"),
         ("[layers]\njoints = \"I\"", "layers.joints"),
-        ("[layers]\nhinges = \"I\"", "layers.hinges"),
         ("[layers]\nroad = \"I\"", "layers.road"),
         ("[layers]\nplan = \"I\"", "layers.plan"),
         ("[rib]\njoint_loss = 0.01", "rib.joint_loss"),

@@ -17,7 +17,7 @@ use crate::tolerance;
 /// Curves that make no axis.
 const UNREAD: [&str; 3] = ["HELIX", "MLINE", "CIRCLE"];
 
-/// Whether the first scan of a drawing keeps a record: everything on the layers of axis, ring lines and loads, by their patterns or, where
+/// Whether the first scan of a drawing keeps a record: everything on the layers of axis, ring lines, hinges and loads, by their patterns or, where
 /// the job names none, by words in their names.
 pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     let stated = |role: Role| settings.states(&format!("layers.{}", role.key()));
@@ -25,7 +25,10 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
         return true;
     }
     match settings.layers.role_of(candidate.layer) {
-        Ok(Some(JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados)) | Err(_) => true,
+        Ok(Some(
+            JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+        ))
+        | Err(_) => true,
         Ok(_) => {
             candidate.block.is_none()
                 && ((!stated(Role::Axis)
@@ -116,6 +119,10 @@ fn read_seen(
     let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, at)?;
     reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points)?;
     reader.hidden(axis_layers.iter().chain(&load_layers).chain(&intrados_layers).chain(&extrados_layers));
+    let hinge_layers = roles::named(outline, settings, Role::Hinges, &POINTS)?;
+    let (hinges, _) = reader.points(&hinge_layers, &outline.records)?;
+    reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
+    reader.hidden(hinge_layers.iter());
     reader.parts_not_read()?;
     reader.not_read(&axis_layers, &load_layers);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
@@ -145,6 +152,7 @@ fn read_seen(
         intrados,
         extrados,
         points,
+        hinges,
         texts,
         viewports,
         notes: reader.notes,
@@ -408,7 +416,9 @@ impl Reader<'_> {
         for layer in &self.outline.census {
             let count: u64 = layer.model.values().sum();
             let part = match roles::role_of(self.settings, &layer.name)? {
-                Some(JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados) => continue,
+                Some(
+                    JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+                ) => continue,
                 Some(role) => role.name(),
                 _ => continue,
             };

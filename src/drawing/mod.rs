@@ -51,6 +51,8 @@ pub struct Drawing {
     pub extrados: Vec<Curve>,
     /// Points on the load layers, in the order of the file.
     pub points: Vec<PointLike>,
+    /// Points on the hinge layers, in the order of the file.
+    pub hinges: Vec<PointLike>,
     /// Texts on the load layers, in the order of the file.
     pub texts: Vec<Text>,
     /// Viewports of the layouts.

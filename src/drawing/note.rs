@@ -16,6 +16,8 @@ pub enum Role {
     Intrados,
     /// The outer line of the ring.
     Extrados,
+    /// Hinges of the rib.
+    Hinges,
 }
 
 impl Role {
@@ -26,6 +28,7 @@ impl Role {
             Self::Loads => "loads",
             Self::Intrados => "intrados",
             Self::Extrados => "extrados",
+            Self::Hinges => "hinges",
         }
     }
 }

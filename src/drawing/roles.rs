@@ -37,6 +37,7 @@ pub fn named(
         Role::Loads => JobRole::Loads,
         Role::Intrados => JobRole::Intrados,
         Role::Extrados => JobRole::Extrados,
+        Role::Hinges => JobRole::Hinges,
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();
@@ -51,7 +52,9 @@ pub fn named(
         }
     }
     let path = format!("layers.{}", role.key());
-    if found.is_empty() && (settings.states(&path) || role != Role::Loads && !unusable.is_empty()) {
+    if found.is_empty()
+        && (settings.states(&path) || !matches!(role, Role::Loads | Role::Hinges) && !unusable.is_empty())
+    {
         return Err(nothing_on(outline, settings, role, wanted, kinds, &unusable));
     }
     Ok(found)

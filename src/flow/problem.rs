@@ -59,6 +59,7 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
             Support::None => statics::Support::None,
         }),
         voussoirs: rib.voussoirs.and_then(|n| usize::try_from(n).ok()),
+        hinges: span.hinges.clone(),
         through: settings.line.through.map(|points| points.map(|[x, y]| Point::new(x, y))),
         govern: match settings.line.govern {
             Govern::Auto => None,

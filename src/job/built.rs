@@ -57,7 +57,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("loads", All),
             ("posts", Later),
             ("joints", Later),
-            ("hinges", Later),
+            ("hinges", All),
             ("road", Later),
             ("plan", Later),
         ],

@@ -6,7 +6,7 @@ use super::note::Note;
 use super::{Forces, Load, MagnitudeFrom};
 use crate::drawing::{PointLike, Text, clusters};
 use crate::geometry::Vec2;
-use crate::job::{Decimal, Settings};
+use crate::job::{Decimal, RibDepth, Settings};
 use crate::refusal::Refusal;
 use crate::tolerance;
 use crate::units::ForceUnit;
@@ -22,11 +22,13 @@ pub struct LoadSettings {
     pub decimal: Decimal,
     /// Whether the rib has a weight of its own, in kN.
     pub weighs: bool,
+    /// Depth of the rib where no ring is drawn, m.
+    pub depth: Option<RibDepth>,
 }
 
 impl Default for LoadSettings {
     fn default() -> Self {
-        Self { unit: None, unlabelled: None, decimal: Decimal::Auto, weighs: false }
+        Self { unit: None, unlabelled: None, decimal: Decimal::Auto, weighs: false, depth: None }
     }
 }
 
@@ -36,6 +38,7 @@ impl From<&Settings> for LoadSettings {
             unit: settings.loads.unit,
             unlabelled: settings.loads.unlabelled_kn(),
             decimal: settings.loads.decimal,
+            depth: settings.rib.depth,
             weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0),
         }
     }

@@ -17,7 +17,7 @@ pub mod weight;
 
 use crate::drawing::{Drawing, Source};
 use crate::geometry::{Path, Point, Vec2};
-use crate::job::Settings;
+use crate::job::{RibDepth, Settings};
 use crate::refusal::Refusal;
 use crate::tolerance;
 
@@ -71,6 +71,8 @@ pub struct Span {
     pub sources: Vec<Source>,
     /// Its ring, where its lines are drawn.
     pub ring: Option<Ring>,
+    /// Its drawn hinges, left to right, m.
+    pub hinges: Vec<Point>,
     /// Its loads, left to right.
     pub loads: Vec<Load>,
 }
@@ -118,6 +120,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     let metres = drawing.unit.metres;
     let mut notes = Vec::new();
     let mut spans = spans(drawing, &mut notes)?;
+    hinges(drawing, &mut spans, settings.depth, &mut notes);
     let (loads, forces) = loads::loads(&drawing.points, &drawing.texts, settings, metres, &mut notes)?;
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
@@ -129,6 +132,32 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
     notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
     Ok(Model { spans, forces, off_span, notes })
+}
+
+/// Gives each drawn hinge to the span on whose rib it stands: within half the depth (`stated`, m, where no ring is drawn)
+/// of the axis, or within the reach of a gap where no depth is known.
+fn hinges(drawing: &Drawing, spans: &mut [Span], stated: Option<RibDepth>, notes: &mut Vec<Note>) {
+    let mut points: Vec<_> = drawing
+        .hinges
+        .iter()
+        .map(|h| ((h.at.to_vec2() * drawing.unit.metres).to_point(), &h.source))
+        .collect();
+    points.sort_by(|a, b| a.0.x.total_cmp(&b.0.x).then(a.0.y.total_cmp(&b.0.y)));
+    for (at, source) in points {
+        let owner = spans.iter_mut().find_map(|span| {
+            let (s, distance) = span.axis.nearest(at);
+            let slack = span.axis.length() * tolerance::GAP;
+            let half = weight::depths(span, stated).map_or(0.0, |d| weight::depth_at(&d, s) / 2.0);
+            (distance <= half + slack).then_some(span)
+        });
+        match owner {
+            Some(span) => {
+                notes.push(Note::HingeRead { span: span.name.clone(), source: source.clone(), at });
+                span.hinges.push(at);
+            }
+            None => notes.push(Note::HingeOff { source: source.clone(), at }),
+        }
+    }
 }
 
 /// The spans with their axes and rings, without loads.
@@ -145,6 +174,7 @@ fn spans(drawing: &Drawing, notes: &mut Vec<Note>) -> Result<Vec<Span>, Refusal>
                 axis,
                 sources: ring.sources.clone(),
                 ring: Some(ring),
+                hinges: Vec::new(),
                 loads: Vec::new(),
             });
         }
@@ -175,7 +205,14 @@ fn spans(drawing: &Drawing, notes: &mut Vec<Note>) -> Result<Vec<Span>, Refusal>
                 true => None,
                 false => Some(rings.remove(0).about(&name, &axis, notes)?),
             };
-            spans.push(Span { name, axis, sources: chain.sources, ring, loads: Vec::new() });
+            spans.push(Span {
+                name,
+                axis,
+                sources: chain.sources,
+                ring,
+                hinges: Vec::new(),
+                loads: Vec::new(),
+            });
         }
     }
     for span in &spans {

@@ -135,6 +135,22 @@ pub enum Note {
         /// Its force, downward positive, kN or unit loads.
         force: f64,
     },
+    /// A hinge of a span.
+    HingeRead {
+        /// Name of the span.
+        span: String,
+        /// The entity.
+        source: Source,
+        /// Where, m.
+        at: Point,
+    },
+    /// A point on the hinge layer that stands on no rib.
+    HingeOff {
+        /// The entity.
+        source: Source,
+        /// Where, m.
+        at: Point,
+    },
     /// A span over which no load stands.
     NoLoads {
         /// Name of the span.

@@ -52,6 +52,7 @@ fn text(handle: usize, x: f64, y: f64, says: &str) -> Text {
 fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawing {
     Drawing {
         intrados: Vec::new(),
+        hinges: Vec::new(),
         extrados: Vec::new(),
         plane: crate::tags::marks::Plane::XY,
         viewports: Vec::new(),

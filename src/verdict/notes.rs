@@ -157,6 +157,7 @@ fn role_name(role: Role) -> &'static str {
         Role::Loads => "loads",
         Role::Intrados => "intrados",
         Role::Extrados => "extrados",
+        Role::Hinges => "hinges",
     }
 }
 
@@ -283,6 +284,26 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
         .entity(source)
         .uncheck()
         .remedy("move it over the span, or to another layer"),
+        Note::HingeRead { span, source, at } => note(
+            Check::Support,
+            format!("{} was read as a hinge of the rib at ({:.3}, {:.3}) m", source.named(), at.x, at.y),
+        )
+        .at(spans::xy(*at))
+        .entity(source)
+        .of(span),
+        Note::HingeOff { source, at } => note(
+            Check::Support,
+            format!(
+                "{} on the hinge layer stands at ({:.3}, {:.3}) m, off every rib, and is left out",
+                source.named(),
+                at.x,
+                at.y
+            ),
+        )
+        .at(spans::xy(*at))
+        .entity(source)
+        .uncheck()
+        .remedy("move it onto the rib, or to another layer"),
         Note::NoLoads { span } => note(Check::Loads, "no load stands over this span").of(span).uncheck(),
         Note::SizeUnlikely { span, size } => note(
             Check::Unit,

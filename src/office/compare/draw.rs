@@ -73,6 +73,7 @@ impl Pen {
 
     fn add(&mut self, role: &str, shape: Shape, dashed: bool) {
         self.marks.push(Mark {
+            width: None,
             layer: 0,
             role: role.into(),
             shape,

@@ -187,7 +187,7 @@ fn facts(run: &Run, sheet: &Sheet) -> Vec<(String, String)> {
 /// drawing units.
 pub fn free_corner(run: &Run, sheet: &Sheet) -> (Point, f64) {
     let unit = 1.0 / sheet.metres_per_unit;
-    let content = content(run, sheet);
+    let content = content(run, sheet.elevation);
     let h = text_height(sheet, content, unit);
     (Point::new(content.low[0] * unit, free_below(sheet, content, &Canvas::new(h), unit) - 3.0 * h), h)
 }
