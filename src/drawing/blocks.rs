@@ -279,7 +279,11 @@ impl<'r> Blocks<'r> {
             Some(block) if at.kind == "INSERT" => self.outline.blocks[block].name.clone(),
             _ => self.open.last().map_or_else(String::new, |&b| self.outline.blocks[b].name.clone()),
         };
-        let path: Vec<&str> = self.open.iter().map(|&b| self.outline.blocks[b].name.as_str()).collect();
+        let mut path: Vec<&str> = self.open.iter().map(|&b| self.outline.blocks[b].name.as_str()).collect();
+        // Of a long way the ends are enough.
+        if path.len() > 8 {
+            path.splice(4..path.len() - 3, ["…"]);
+        }
         let place = if path.is_empty() { String::new() } else { format!(" (in {})", path.join(" in ")) };
         at.refuse(Refusal::new(
             check,

@@ -142,7 +142,12 @@ fn read_seen(
         &mut reader.notes,
     );
     let plane = view.plane(outline_of.first().map_or(0.0, |c| c.z));
-    let viewports = outline.records.iter().filter_map(|r| viewport::viewport(r, &plane)).collect();
+    let viewports: Vec<_> = outline.records.iter().filter_map(|r| viewport::viewport(r, &plane)).collect();
+    let (low, high) = corners(&outline_of);
+    if !viewports.is_empty() && !viewports.iter().any(|v| v.shows(low, high) == viewport::Shown::Whole) {
+        let part = viewports.iter().filter(|v| v.shows(low, high) == viewport::Shown::Part).count();
+        reader.notes.push(Note::NotInLayouts { viewports: viewports.len(), part });
+    }
     Ok(Drawing {
         unit,
         plane,
@@ -503,15 +508,21 @@ fn not_readable(record: &Record, role: Role) -> Refusal {
 
 /// Least and greatest x of the pieces' ends and middles.
 fn extent(curves: &[Curve]) -> (f64, f64) {
-    let mut low = f64::INFINITY;
-    let mut high = f64::NEG_INFINITY;
+    let (low, high) = corners(curves);
+    (low.x, high.x)
+}
+
+/// Corners of the box about the pieces' ends and middles.
+pub(super) fn corners(curves: &[Curve]) -> (Point, Point) {
+    let mut low = Point::new(f64::INFINITY, f64::INFINITY);
+    let mut high = Point::new(f64::NEG_INFINITY, f64::NEG_INFINITY);
     for piece in curves.iter().flat_map(|c| &c.pieces) {
         for p in [piece.start(), piece.point_at(piece.length() / 2.0), piece.end()] {
-            low = low.min(p.x);
-            high = high.max(p.x);
+            low = Point::new(low.x.min(p.x), low.y.min(p.y));
+            high = Point::new(high.x.max(p.x), high.y.max(p.y));
         }
     }
-    if low <= high { (low, high) } else { (0.0, 0.0) }
+    if low.x <= high.x { (low, high) } else { (Point::ORIGIN, Point::ORIGIN) }
 }
 
 /// Whether a point stands over an arch (hangs under a cable), or on it.

@@ -61,6 +61,17 @@ pub struct Drawing {
     pub notes: Vec<Note>,
 }
 
+impl Drawing {
+    /// Corners of the box about the axis, or the ring lines that stand for it: least and greatest coordinates of the ends
+    /// and middles of their pieces.
+    pub fn axis_box(&self) -> (crate::geometry::Point, crate::geometry::Point) {
+        if self.axis.is_empty() {
+            return gather::corners(&[&self.intrados[..], &self.extrados].concat());
+        }
+        gather::corners(&self.axis)
+    }
+}
+
 #[cfg(test)]
 mod tests;
 #[cfg(test)]

@@ -143,4 +143,11 @@ pub enum Note {
         /// How many.
         pieces: usize,
     },
+    /// The layouts have viewports, and none shows the whole axis: the marks are seen in model space.
+    NotInLayouts {
+        /// Viewports square onto the elevation.
+        viewports: usize,
+        /// Those of them that show a part of the axis.
+        part: usize,
+    },
 }

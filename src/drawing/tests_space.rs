@@ -246,7 +246,7 @@ fn hostile_blocks_are_refused() {
     let refusal = read(&own, "0 INSERT|5 77|8 0|2 A|10 0|20 0").unwrap_err();
     assert_eq!(refusal.check, "block-loop");
     assert!(refusal.message.contains("A in B"), "{refusal}");
-    assert_eq!(refusal.line.is_some(), true);
+    assert!(refusal.line.is_some());
     // Ten blocks, each of which holds the next ten times over.
     let mut bomb = format!("0 BLOCK|2 X10|{AXIS}|0 ENDBLK");
     for i in 0..10 {
@@ -285,4 +285,37 @@ fn external_references_are_named() {
     let refusal = read(blocks, "0 INSERT|8 0|2 BRIDGE|10 0|20 0").unwrap_err();
     assert_eq!(refusal.check, "no-axis");
     assert!(refusal.message.contains("..\\bridge.dwg"), "{refusal}");
+}
+
+#[test]
+fn viewports_tell_what_they_show() {
+    let viewport = |centre: f64, height: f64, more: &str| {
+        format!("|0 VIEWPORT|8 0|67 1|68 1|69 2|10 0|20 0|40 400|41 200|12 {centre}|22 4|45 {height}|{more}")
+    };
+    let d = read(
+        "",
+        &format!(
+            "{AXIS}{}{}{}",
+            viewport(20.0, 30.0, ""),
+            viewport(0.0, 20.0, ""),
+            viewport(500.0, 20.0, "")
+        ),
+    )
+    .unwrap();
+    let (low, high) = d.axis_box();
+    let shown: Vec<_> = d.viewports.iter().map(|v| v.shows(low, high)).collect();
+    assert_eq!(shown, [viewport::Shown::Whole, viewport::Shown::Part, viewport::Shown::Nothing]);
+    assert!(!d.notes.iter().any(|n| matches!(n, Note::NotInLayouts { .. })));
+    let d = read("", &format!("{AXIS}{}{}", viewport(0.0, 20.0, ""), viewport(500.0, 20.0, ""))).unwrap();
+    assert!(d.notes.contains(&Note::NotInLayouts { viewports: 2, part: 1 }));
+    // An upright elevation is shown by a viewport that looks at it from the front, by no plan.
+    let front = "16 0|26 -1|36 0|17 20|27 3|37 0";
+    let d = read(
+        "",
+        &format!("{}{}{}", solid(|x, y| [x, 3.0, y]), viewport(0.0, 30.0, front), viewport(20.0, 30.0, "")),
+    )
+    .unwrap();
+    let (low, high) = d.axis_box();
+    assert_eq!(d.viewports.iter().map(|v| v.shows(low, high)).collect::<Vec<_>>(), [viewport::Shown::Whole]);
+    assert!((d.viewports[0].scale - 200.0 / 30.0).abs() < 1e-12);
 }

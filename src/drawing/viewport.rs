@@ -47,11 +47,32 @@ pub fn viewport(record: &Record, plane: &Plane) -> Option<Viewport> {
     Some(Viewport { low: middle - half, high: middle + half, scale: height / view_height })
 }
 
+/// How much of a box between two corners a viewport shows.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Shown {
+    /// All of it.
+    Whole,
+    /// Some of it.
+    Part,
+    /// Nothing of it.
+    Nothing,
+}
+
+impl Viewport {
+    /// How much it shows of the box between two corners.
+    pub fn shows(&self, low: Point, high: Point) -> Shown {
+        let apart = self.high.x < low.x || self.high.y < low.y || self.low.x > high.x || self.low.y > high.y;
+        let whole =
+            self.low.x <= low.x && self.low.y <= low.y && self.high.x >= high.x && self.high.y >= high.y;
+        match (whole, apart) {
+            (true, _) => Shown::Whole,
+            (_, true) => Shown::Nothing,
+            _ => Shown::Part,
+        }
+    }
+}
+
 /// The largest scale among the viewports that show the whole box between two corners.
 pub fn scale_that_shows(viewports: &[Viewport], low: Point, high: Point) -> Option<f64> {
-    viewports
-        .iter()
-        .filter(|v| v.low.x <= low.x && v.low.y <= low.y && v.high.x >= high.x && v.high.y >= high.y)
-        .map(|v| v.scale)
-        .max_by(f64::total_cmp)
+    viewports.iter().filter(|v| v.shows(low, high) == Shown::Whole).map(|v| v.scale).max_by(f64::total_cmp)
 }

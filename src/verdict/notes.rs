@@ -71,6 +71,13 @@ fn drawing_note(n: &drawing::Note) -> Finding {
                 .uncheck()
                 .remedy("state [drawing] plane in the job file, or allow it: [accept] assumed = [\"plane\"]")
         }
+        Note::NotInLayouts { viewports, part } => note(
+            Check::PassedOver,
+            format!(
+                "none of the {viewports} viewports of the layouts shows the whole axis ({part} show a part): the marks are seen \
+                 in model space"
+            ),
+        ),
         Note::CurveFitted { source, pieces } => note(
             Check::PassedOver,
             format!(

@@ -38,7 +38,7 @@ def fixtures(folder):
 
 
 def corpus(shared):
-    """Every drawing of the corpus that can take an arch; the others are given back by name with the reason."""
+    """Every drawing of the corpus that can take an arch; the others are given back with the reason."""
     spec = importlib.util.spec_from_file_location("inject", shared / "tools" / "inject.py")
     inject = importlib.util.module_from_spec(spec)
     spec.loader.exec_module(inject)
@@ -47,7 +47,7 @@ def corpus(shared):
         try:
             taken.append(("corpus", path.stem, inject.inject(path.read_bytes()), None))
         except Exception as error:
-            left.append((path.stem, f"takes no arch: {error or type(error).__name__}"))
+            left.append((path.stem, path.read_bytes(), str(error) or type(error).__name__))
     return taken, left
 
 
