@@ -193,7 +193,13 @@ pub fn free_corner(run: &Run, sheet: &Sheet) -> (Point, f64) {
 }
 
 /// SHA-256 of settings in force, lower-case hexadecimal.
+///
+/// Which file they came from does not count: a job file that moved asks for the same.
 pub fn settings_hash(settings: &serde_json::Value) -> String {
+    let mut settings = settings.clone();
+    if let Some(tree) = settings.as_object_mut() {
+        tree.remove("origin");
+    }
     Sha256::digest(settings.to_string()).iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
