@@ -3,8 +3,11 @@
 //! Points are in the elevation plane: `x` to the right, `y` upward. Lengths are in whatever unit the caller uses; the
 //! statics use metres. Arcs stay arcs: nothing here replaces one by chords or by cubics.
 
+mod affine;
 mod crossing;
+pub mod fit;
 
+pub use affine::Affine;
 pub use crossing::{Boxes, Crossing};
 pub use kurbo::{Point, Vec2};
 

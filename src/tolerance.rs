@@ -184,9 +184,9 @@ pub const SIMPLEX_TIGHT: f64 = 4e-15;
 /// The same once thousands of steps have not brought an end. Larger: optima lose digits; smaller: no end.
 pub const SIMPLEX_LOOSE: f64 = 1e-12;
 
-/// Smallest weight in a ratio test of the simplex that is not rounding. Larger: a blocking row is passed over;
+/// Smallest weight in a ratio test of the simplex, relative to the largest, that is not rounding. Larger: a blocking row is passed over;
 /// smaller: the basis becomes singular.
-pub const SIMPLEX_PIVOT: f64 = 1e-13;
+pub const SIMPLEX_PIVOT: f64 = 1e-11;
 
 /// Smallest pivot of a basis of unit rows that is not singular. Larger: thin but true corners are given up; smaller:
 /// vertices without a correct digit.
@@ -285,6 +285,45 @@ pub const OFF_MIDDLE: f64 = 0.005;
 /// Angle in radians between the drawn end of a ring and the joint normal to its axis from which on it is told: five
 /// degrees.
 pub const END_SKEW: f64 = 0.09;
+/// Offset, as a part of the span, below which a line counts as lying on the axis where offsets are drawn. Larger: small
+/// offsets get no diagram of their own; smaller: rounding is drawn thousands of times as large.
+pub const OFFSET_SHOWN: f64 = 1e-6;
+
+/// Error below which a report says only that it is smaller: the digits beyond are rounding and differ between machines.
+pub const SHOWN_ERROR: f64 = 1e-12;
+
+/// Distance, as a part of its extent, within which arcs stand for a curve that is none (spline, ellipse, arc under unequal
+/// scales). No unit. Larger: eccentricities of a fraction of a millimetre in 100 m come from the fit; smaller: thousands of
+/// arcs, and nothing that the numbers of a drawing hold.
+pub const CURVE_FIT: f64 = 1e-9;
+
+/// Places at which the distance of the arcs from the curve is measured on every part, its ends counted as one. A count.
+/// Larger: reading takes longer; smaller: a bulge between two places is missed.
+pub const FIT_PROBES: u32 = 8;
+
+/// Halvings of a curve after which it is given up (a cusp, a place where it stands still). A count. Larger: hostile splines
+/// take long; smaller: sharply bent ones are refused.
+pub const FIT_HALVINGS: u32 = 14;
+
+/// Knots and points of a spline above which it is refused. A count. Larger: reading it takes long; smaller: splines fitted
+/// to a survey are refused.
+pub const MOST_KNOTS: usize = 100_000;
+
+/// Part by which the scales of a block may differ and its arcs still stay arcs. No unit. Larger: arcs are read as circles
+/// that are none; smaller: scales rounded by the format make thousands of pieces.
+pub const EQUAL_SCALES: f64 = 1e-12;
+
+/// Depth of blocks in blocks above which they are refused. A count. Larger: hostile drawings use up the stack; smaller:
+/// deeply nested details are refused.
+pub const DEEPEST_BLOCK: usize = 64;
+
+/// Entities and references that blocks may bring into a drawing, arrays counted out. A count. Larger: blocks that hold one
+/// another many times over use up memory and minutes; smaller: large arrays of posts are refused.
+pub const MOST_PLACED: usize = 200_000;
 /// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
 /// tangents without end.
 pub const CONE_SLACK: f64 = 1e-11;
+
+/// Logarithm of the line's share of the depth at which the search for the least thickness ends. Larger: digits of the
+/// thickness are lost; smaller: steps that only see rounding.
+pub const THICKNESS: f64 = 1e-13;

@@ -10,7 +10,7 @@ use std::path::Path as FilePath;
 use serde_json::{Value, json};
 use support::{parabola, polyline, problem};
 use thrustmark::geometry::{Path, Point, Segment, Vec2};
-use thrustmark::statics::{Depth, Force, LineKind, Problem, Status, analyse};
+use thrustmark::statics::{Analysis, Depth, Force, LineKind, Problem, Status, analyse};
 
 /// A small generator of numbers between 0 and 1, the same on every machine [Park and Miller 1988].
 struct Numbers(u64);
@@ -76,40 +76,69 @@ fn pieces(path: &Path) -> Vec<Value> {
         .collect()
 }
 
+fn described(p: &Problem, a: &Analysis) -> Value {
+    let forces: Vec<_> = a
+        .order
+        .iter()
+        .map(|o| {
+            let f = p.forces[o.force];
+            json!({"at": [f.at.x, f.at.y], "force": [f.force.x, f.force.y], "foot": o.foot})
+        })
+        .collect();
+    let depth = match p.depth {
+        Some(Depth::Constant(d)) => Some(d),
+        _ => None,
+    };
+    json!({"axis": pieces(&p.axis), "forces": forces, "weight": p.weight_on_axis, "depth": depth})
+}
+
 #[test]
 fn write_spans_for_the_independent_program() {
     let mut n = Numbers(20_260_101);
     let mut cases = Vec::new();
-    for kind in 0..60 {
+    for kind in 0..32 {
         let p = span(kind, &mut n);
         let a = analyse(&p).unwrap();
         let line = &a.lines[0];
         if line.status != Status::Found {
             continue;
         }
-        let forces: Vec<_> = a
-            .order
-            .iter()
-            .map(|o| {
-                let f = p.forces[o.force];
-                json!({"at": [f.at.x, f.at.y], "force": [f.force.x, f.force.y], "foot": o.foot})
-            })
-            .collect();
-        let depth = match p.depth {
-            Some(Depth::Constant(d)) => Some(d),
-            _ => None,
-        };
-        cases.push(json!({
-            "name": format!("closest {kind}"),
-            "axis": pieces(&p.axis),
-            "forces": forces,
-            "weight": p.weight_on_axis,
-            "depth": depth,
-            "value": line.proof.unwrap().primal,
-        }));
+        let mut case = described(&p, &a);
+        case["name"] = json!(format!("closest {kind}"));
+        case["value"] = json!(line.proof.unwrap().primal);
+        cases.push(case);
     }
-    assert!(cases.len() > 40, "only {} spans have a closest line", cases.len());
+    let mut limits = Vec::new();
+    for kind in 0..16 {
+        let mut p = span(kind, &mut n);
+        p.depth = Some(Depth::Constant(n.between(0.8, 2.5)));
+        p.weight_on_axis = n.between(2.0, 30.0);
+        p.varying = vec![0];
+        p.friction = kind.is_multiple_of(4).then(|| n.between(0.5, 0.8));
+        p.draw = vec![LineKind::LeastThrust, LineKind::GreatestThrust];
+        let Ok(a) = analyse(&p) else { continue };
+        if a.off_span.contains(&0) {
+            continue;
+        }
+        let push = |l: &thrustmark::statics::Line| l.left.map(|e| e.horizontal);
+        let safety = a.safety.as_ref().unwrap();
+        let factor = |f: &Option<thrustmark::statics::Factor>| f.as_ref().and_then(|f| f.value);
+        let mut case = described(&p, &a);
+        case["name"] = json!(format!("limit {kind}"));
+        case["varying"] = json!(a.order.iter().position(|o| o.force == 0));
+        case["friction"] = json!(p.friction);
+        case["least_push"] = json!(push(&a.lines[1]));
+        case["greatest_push"] = json!(push(&a.lines[2]));
+        case["least_factor"] = json!(factor(&safety.load_least));
+        case["greatest_factor"] = json!(factor(&safety.load));
+        limits.push(case);
+    }
+    assert!(cases.len() > 24, "only {} spans have a closest line", cases.len());
     let folder = FilePath::new(env!("CARGO_MANIFEST_DIR")).join("target/independent");
     fs::create_dir_all(&folder).unwrap();
-    fs::write(folder.join("cases.json"), serde_json::to_vec(&json!({"closest": cases})).unwrap()).unwrap();
+    fs::write(
+        folder.join("cases.json"),
+        serde_json::to_vec(&json!({"closest": cases, "limit": limits})).unwrap(),
+    )
+    .unwrap();
 }

@@ -343,3 +343,167 @@ fn the_manual_holds_every_command_and_option() {
     }
     office.run(&["manual", "x"]).ends(2);
 }
+
+// Kept results.
+
+impl Office {
+    fn kept(&self) -> Vec<PathBuf> {
+        let folder = self.cache.path().join("thrustmark/results");
+        let Ok(entries) = fs::read_dir(folder) else { return Vec::new() };
+        let mut found: Vec<PathBuf> = entries.map(|e| e.unwrap().path()).collect();
+        found.sort();
+        found
+    }
+}
+
+/// Changes a word in a kept result and makes its hash right again: what is printed then tells where it came from.
+fn forge(kept: &Path, from: &str, to: &str) {
+    use sha2::{Digest, Sha256};
+    let text = fs::read_to_string(kept).unwrap();
+    let (head, payload) = text.split_once('\n').unwrap();
+    let payload = payload.replace(from, to);
+    let hash: String = Sha256::digest(payload.as_bytes()).iter().map(|b| format!("{b:02x}")).collect();
+    let head = head.rsplit_once(' ').unwrap().0;
+    fs::write(kept, format!("{head} {hash}\n{payload}")).unwrap();
+}
+
+#[test]
+fn an_unchanged_drawing_is_not_computed_twice() {
+    let office = Office::new();
+    let (_, fresh) = office.json(&["check", "."]);
+    assert_eq!(office.kept().len(), 4);
+    let (_, kept) = office.json(&["check", "."]);
+    assert_eq!(fresh, kept);
+    let (_, bare) = office.json(&["check", ".", "--no-store"]);
+    assert_eq!(fresh, bare);
+    assert_eq!(office.kept().len(), 4);
+    // Under another name it is the same drawing, told under its own name.
+    fs::create_dir(office.path("copy")).unwrap();
+    fs::copy(office.path("masonry-ring.dxf"), office.path("copy/masonry-ring.dxf")).unwrap();
+    let (_, copy) = office.json(&["check", "copy"]);
+    assert_eq!(copy["runs"][0]["drawing"]["file"], "copy/masonry-ring.dxf");
+    assert_eq!(copy["runs"][0]["spans"], fresh["runs"][1]["spans"]);
+    assert_eq!(office.kept().len(), 4);
+    // The kept result is what is shown.
+    office.kept().iter().for_each(|kept| forge(kept, "\"P3\"", "\"KEPT\""));
+    let text = |arguments: &[&str]| office.run(arguments).ends(0).out;
+    assert!(text(&["check", "open-spandrel-rib.dxf", "--verbose"]).contains("KEPT"));
+    assert!(!text(&["check", "open-spandrel-rib.dxf", "--verbose", "--no-store"]).contains("KEPT"));
+    // Whatever changes a result makes another key.
+    office.edit("open-spandrel-rib.dxf", "P3", "P9");
+    assert!(!text(&["check", "open-spandrel-rib.dxf", "--verbose"]).contains("KEPT"));
+    let before = office.kept().len();
+    office.edit("thrustmark.toml", "offset = 0.10 ", "offset = 0.11 ");
+    office.run(&["check", "hanging-cable.dxf"]).ends(0);
+    assert_eq!(office.kept().len(), before + 1);
+}
+
+#[test]
+fn the_store_may_be_deleted_damaged_or_impossible() {
+    let office = Office::new();
+    let (_, fresh) = office.json(&["check", "."]);
+    for kept in office.kept() {
+        fs::write(kept, "thrustmark result 1 nonsense\n{}").unwrap();
+    }
+    assert_eq!(office.json(&["check", "."]).1, fresh);
+    fs::remove_dir_all(office.cache.path().join("thrustmark")).unwrap();
+    assert_eq!(office.json(&["check", "."]).1, fresh);
+    // Marking never uses it.
+    fs::remove_dir_all(office.cache.path().join("thrustmark")).unwrap();
+    office.run(&["mark", "."]).ends(0);
+    assert_eq!(office.kept().len(), 0);
+    // No home: without a word.
+    fs::write(office.path("file"), "").unwrap();
+    for home in ["/dev/null/nowhere", "/nonexistent/home"] {
+        let mut command = office.command(&["check", "masonry-ring.dxf"]);
+        command.env_remove("XDG_CACHE_HOME").env("HOME", home);
+        let ran = Ran::of(command.output().unwrap()).ends(0);
+        assert_eq!(ran.err, "");
+    }
+    assert!(!Path::new("/nonexistent").exists());
+}
+
+#[test]
+fn two_runs_at_once_share_the_store() {
+    let office = Office::new();
+    let (_, fresh) = office.json(&["check", ".", "--no-store"]);
+    let start = || {
+        let mut command = office.command(&["check", ".", "--json", "-"]);
+        command.stdout(std::process::Stdio::piped()).stderr(std::process::Stdio::null()).spawn().unwrap()
+    };
+    for _ in 0..3 {
+        let runs: Vec<_> = (0..6).map(|_| start()).collect();
+        for run in runs {
+            let output = run.wait_with_output().unwrap();
+            assert_eq!(serde_json::from_slice::<Value>(&output.stdout).unwrap(), fresh);
+        }
+        assert!(office.kept().iter().all(|k| k.extension().is_some_and(|e| e == "result")));
+        fs::remove_dir_all(office.cache.path().join("thrustmark")).unwrap();
+    }
+}
+
+#[test]
+fn exceptions_that_run_out_are_judged_by_the_day() {
+    let office = Office::new();
+    fs::write(
+        office.path("thrustmark.toml"),
+        "[rib]\nsupport = \"none\"\n[limits]\noffset = 0.01\n[[accept.finding]]\ncheck = \"offset\"\n\
+         up_to = 1.0\nreason = \"surveyed\"\nby = \"checker\"\nuntil = 2026-12-31\n",
+    )
+    .unwrap();
+    let on = |day: &str| {
+        let mut command = office.command(&["check", "open-spandrel-rib.dxf", "--json", "-"]);
+        Ran::of(command.env("SOURCE_DATE_EPOCH", day).output().unwrap())
+    };
+    assert_ne!(on("1790000000").status, 1);
+    on("1890000000").ends(1).says(&["ran out on 2026-12-31"]);
+    assert_ne!(on("1790000000").status, 1);
+}
+
+// A job file to begin with.
+
+#[test]
+fn the_starter_job_leaves_nothing_to_guess() {
+    let office = Office::new();
+    fs::remove_file(office.path("thrustmark.toml")).unwrap();
+    let plain = fs::read_to_string(office.path("masonry-ring.dxf"))
+        .unwrap()
+        .replace("ARCH-AXIS", "RIBLINE")
+        .replace("ARCH-LOADS", "WEIGHTS");
+    fs::write(office.path("plain.dxf"), plain).unwrap();
+    for name in DRAWINGS.into_iter().chain(["plain.dxf"]) {
+        let (status, before) = office.json(&["check", name]);
+        assert_eq!(status, 3);
+        office.run(&["list", name, "--write-job", "begun.toml"]).ends(0).says(&["begun.toml"]);
+        let (status, after) = office.json(&["check", name, "--job", "begun.toml"]);
+        assert_eq!(status, 3, "{after:#}");
+        let guesses = |document: &Value| {
+            let findings = document["runs"][0]["findings"].as_array().unwrap().clone();
+            let unchecks = findings.into_iter().filter(|f| f["unchecks"] == true);
+            unchecks.map(|f| f["check"].as_str().unwrap().to_owned()).collect::<Vec<_>>()
+        };
+        assert_eq!(guesses(&after), ["no-limit"], "{name}, before: {:?}", guesses(&before));
+        assert_eq!(before["runs"][0]["spans"][0]["loads"], after["runs"][0]["spans"][0]["loads"], "{name}");
+        // With the example limit switched on it is judged.
+        let text = fs::read_to_string(office.path("begun.toml")).unwrap();
+        fs::write(office.path("begun.toml"), text.replace("# offset", "offset")).unwrap();
+        let judged = office.run(&["check", name, "--job", "begun.toml"]);
+        assert!([0, 1].contains(&judged.status), "{}", judged.out);
+        fs::remove_file(office.path("begun.toml")).unwrap();
+    }
+}
+
+#[test]
+fn the_starter_job_overwrites_nothing() {
+    let office = Office::new();
+    let before = fs::read(office.path("thrustmark.toml")).unwrap();
+    office
+        .run(&["list", "masonry-ring.dxf", "--write-job", "thrustmark.toml"])
+        .ends(2)
+        .tells(&["thrustmark.toml", "is there already"]);
+    assert_eq!(fs::read(office.path("thrustmark.toml")).unwrap(), before);
+    office.run(&["list", "masonry-ring.dxf", "--write-job", "no/such.toml"]).ends(2).tells(&["no/such.toml"]);
+    office.run(&["list", "absent.dxf", "--write-job", "new.toml"]).ends(2);
+    assert!(!office.path("new.toml").exists());
+    office.run(&["list", "masonry-ring.dxf", "--write-job"]).ends(2);
+}

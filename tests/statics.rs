@@ -201,6 +201,50 @@ proptest! {
     }
 
     #[test]
+    fn limits_close_on_each_other_and_mirror(p in arches(), depth in 1.0..4.0_f64) {
+        let mut p = p;
+        p.depth = Some(Depth::Constant(depth));
+        // A weightless part may be left without any thrust: it counts as inside, but has no eccentricity.
+        p.weight_on_axis += 0.5;
+        p.draw = vec![LineKind::LeastThrust, LineKind::GreatestThrust];
+        p.varying = vec![0];
+        let q = mapped(&p, mirrored(&p.axis), |p| Point::new(-p.x, p.y), |f| Vec2::new(-f.x, f.y));
+        let (Ok(a), Ok(b)) = (analyse(&p), analyse(&q)) else { return Ok(()) };
+        let (s, t) = (a.safety.as_ref().unwrap(), b.safety.as_ref().unwrap());
+        let size = a.total.hypot();
+        for (m, n) in a.lines.iter().zip(&b.lines) {
+            prop_assert_eq!(m.status, n.status);
+            let (Some(u), Some(v)) = (m.left, n.right) else { continue };
+            let scale = size.max(u.horizontal.abs());
+            prop_assert!((u.horizontal - v.horizontal).abs() < 1e-6 * scale, "{u:?} {v:?}");
+            prop_assert!((u.vertical - v.vertical).abs() < 1e-6 * scale, "{:?} {u:?} {v:?}", m.kind);
+        }
+        for f in [&s.load, &s.load_least].into_iter().flatten() {
+            if let Some(proof) = f.proof {
+                prop_assert!(proof.gap < 1e-9);
+            }
+        }
+        for m in [&s.mechanism, &s.mechanism_least].into_iter().flatten() {
+            prop_assert!(m.residual < 1e-6, "{m:?}");
+        }
+        // Some line inside at the loads as they are: the geometric factor is at least one, and one lies in the interval.
+        let inside = a.lines[1].status == Status::Found;
+        if let Some(g) = s.geometric.value {
+            prop_assert!(inside == (g >= 1.0) || (g - 1.0).abs() < 1e-9, "{g} {inside}");
+        }
+        if let (Some(f), Some(g)) = (&s.load, &t.load) {
+            prop_assert_eq!(f.status, g.status);
+            if let (Some(x), Some(y)) = (f.value, g.value) {
+                close(x, y);
+                if let Some(low) = s.load_least.as_ref().and_then(|l| l.value) {
+                    prop_assert!(low <= x + 1e-9);
+                    prop_assert!(inside == (low <= 1.0 && 1.0 <= x) || (x - 1.0).abs().min((low - 1.0).abs()) < 1e-8);
+                }
+            }
+        }
+    }
+
+    #[test]
     fn national_grid_and_units_change_no_digit(p in arches(), k in 0.001..1000.0_f64) {
         let by = Vec2::new(2_600_000.0, 1_200_000.0);
         same(&p, &mapped(&p, p.axis.shifted_scaled(by, 1.0), |p| p + by, |f| f), 1.0, 1.0);
@@ -248,6 +292,44 @@ proptest! {
         if let [Some(a), Some(b), Some(c)] = reactions {
             close((a.horizontal + b.horizontal) / c.horizontal, 1.0);
             close((a.vertical + b.vertical) / c.vertical, 1.0);
+        }
+    }
+
+    #[test]
+    fn odd_input_is_answered_or_refused(
+        points in prop::collection::vec((-1e3..1e3_f64, -1e2..1e2_f64, -1.5..1.5_f64), 2..7),
+        loads in prop::collection::vec((-1e3..1e3_f64, -1e2..1e2_f64, -1e3..1e3_f64, -1e3..1e3_f64), 0..6),
+        size in -9..9_i32,
+        weight in prop_oneof![Just(0.0), 0.0..10.0_f64],
+        depth in prop_oneof![Just(None), (0.0..50.0_f64).prop_map(|d| Some(Depth::Constant(d)))],
+        kind in 0..5_usize,
+        support in 0..4_usize,
+    ) {
+        let k = 10_f64.powi(size);
+        let at = |x: f64, y: f64| Point::new(x * k, y * k);
+        let segments = points.windows(2).map(|w| Segment::bulge(at(w[0].0, w[0].1), at(w[1].0, w[1].1), w[0].2));
+        let Some(axis) = Path::new(segments) else { return Ok(()) };
+        let forces = loads.iter().map(|&(x, y, a, b)| Force { at: at(x, y), force: Vec2::new(a, b) }).collect();
+        let mut p = problem(axis, forces);
+        p.weight_on_axis = weight;
+        p.ring_weight = if depth.is_some() { weight } else { 0.0 };
+        p.depth = depth.map(|d| match d { Depth::Constant(d) => Depth::Constant(d * k), d => d });
+        p.varying = vec![0, 77];
+        let kinds = [LineKind::Closest, LineKind::Through, LineKind::LeastThrust, LineKind::GreatestThrust, LineKind::Elastic];
+        p.govern = Some(kinds[kind]);
+        p.draw = kinds.to_vec();
+        p.support = [None, Some(Support::Hingeless), Some(Support::TwoHinged), Some(Support::None)][support];
+        if let Ok(a) = analyse(&p) {
+            prop_assert!(a.residual < 1e-6, "{:e}", a.residual);
+            for line in &a.lines {
+                if let (Some(proof), LineKind::Closest) = (line.proof, line.kind) {
+                    // Without a depth the optimum is a length: the gap is measured by the axis.
+                    prop_assert!(proof.gap < 1e-9 * p.axis.length().max(1.0), "{proof:?}");
+                }
+                for s in &line.stations {
+                    prop_assert!(s.thrust.is_finite() && s.moment.is_finite());
+                }
+            }
         }
     }
 

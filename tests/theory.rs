@@ -9,6 +9,7 @@ use support::{circle, close, down, height, parabola, polyline, problem, push, so
 use thrustmark::geometry::{Point, Vec2};
 use thrustmark::statics::{
     Analysis, Depth, Force, Line, LineKind, Problem, Rule, SpanKind, Status, Support, analyse,
+    least_thickness,
 };
 
 #[test]
@@ -418,4 +419,22 @@ fn m14_crushing_of_a_flat_arch() {
     // At unlimited strength everything that acts varies: no factor.
     p.strength = None;
     assert_eq!(analyse(&p).unwrap().safety.unwrap().load.unwrap().status, Status::Refused);
+}
+
+#[test]
+fn m03_m08_least_thickness() {
+    // M03, M03b, M08 rows Milankovitch: the least thickness itself, from a ring drawn thicker, to nine digits.
+    for (degrees, thickness) in [
+        (45.0_f64, 0.00749612344837),
+        (60.0, 0.0228489099394),
+        (90.0, 0.107478038107),
+        (120.0, 0.327606507711),
+    ] {
+        let mut p = problem(circle(10.0, degrees.to_radians()), Vec::new());
+        p.ring_weight = 3.0;
+        p.depth = Some(Depth::Constant(1.0));
+        let least = least_thickness(&p).unwrap();
+        assert!(least.proof.unwrap().gap < 1e-9);
+        assert!((least.value.unwrap() / 10.0 / thickness - 1.0).abs() < 1e-9, "{degrees}: {least:?}");
+    }
 }

@@ -40,7 +40,7 @@ pub enum Command {
     Mark(MarkArgs),
     /// Check drawings and print the findings; write no drawing
     #[command(arg_required_else_help = true, after_help = CHECK_HELP)]
-    Check(CheckArgs),
+    Check(OnlyCheckArgs),
     /// Take the marks out of a marked copy again, byte for byte
     #[command(arg_required_else_help = true, after_help = UNMARK_HELP)]
     Unmark(UnmarkArgs),
@@ -78,6 +78,18 @@ pub struct MarkArgs {
 
 /// `thrustmark check`
 #[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct OnlyCheckArgs {
+    /// What is shared with `mark`.
+    #[command(flatten)]
+    pub check: CheckArgs,
+
+    /// Neither take nor keep results of unchanged drawings in the user's cache folder
+    #[arg(long)]
+    pub no_store: bool,
+}
+
+/// What `mark` and `check` share.
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
 pub struct CheckArgs {
     /// DXF drawings, and folders of them
     #[arg(required = true, value_name = "DRAWING")]
@@ -90,6 +102,22 @@ pub struct CheckArgs {
     /// Results as JSON into FILE; with - on stdout, and the summary on stderr
     #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
     pub json: Option<JsonTarget>,
+
+    /// Report to read, print on A4 and sign, one HTML file for all drawings
+    #[arg(long, value_name = "FILE.html")]
+    pub report: Option<PathBuf>,
+
+    /// Picture of elevation, offset diagram and force polygon; with several drawings a folder for SVG pictures
+    #[arg(long, value_name = "FILE.svg|FILE.png|FOLDER")]
+    pub picture: Option<PathBuf>,
+
+    /// Stations of all lines as comma-separated values
+    #[arg(long, value_name = "FILE.csv")]
+    pub csv: Option<PathBuf>,
+
+    /// Results for build servers, as JUnit XML
+    #[arg(long, value_name = "FILE.xml")]
+    pub junit: Option<PathBuf>,
 
     /// Replace existing files, even those that thrustmark did not write
     #[arg(short, long)]
@@ -130,6 +158,10 @@ pub struct ListArgs {
     /// Job file [default: the first thrustmark.toml on the way up from the drawing's folder]
     #[arg(short, long, value_name = "FILE")]
     pub job: Option<PathBuf>,
+
+    /// Write a commented job file to begin with; an existing file is left alone
+    #[arg(long, value_name = "FILE")]
+    pub write_job: Option<PathBuf>,
 }
 
 /// `thrustmark verify`
@@ -240,6 +272,7 @@ const MARK_HELP: &str = concat!(
 Examples:
   thrustmark mark bridge.dxf
   thrustmark mark bridge.dxf --output issue/bridge.dxf --json bridge.json
+  thrustmark mark bridge.dxf --report bridge.html --picture bridge.svg
   thrustmark mark set-1/ set-2/ --output marked/ --job office.toml
 
 A drawing that is marked already needs --output; its old marks are replaced.
@@ -255,6 +288,10 @@ const CHECK_HELP: &str = concat!(
 Examples:
   thrustmark check bridge.dxf
   thrustmark check drawings/ --json - > results.json
+  thrustmark check drawings/ --junit results.xml --csv stations.csv
+
+Results of unchanged drawings are kept in the user's cache folder, which may be
+deleted at any time.
 
 ",
     status!(),
@@ -277,8 +314,9 @@ when the two differ, nothing is written (with --force the latter is).
 
 const LIST_HELP: &str = concat!(
     "\
-Example:
+Examples:
   thrustmark list bridge.dxf
+  thrustmark list bridge.dxf --write-job thrustmark.toml
 
 ",
     plain_status!()

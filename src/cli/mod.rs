@@ -3,6 +3,7 @@
 pub mod args;
 mod listing;
 mod manual;
+mod outputs;
 mod paths;
 mod progress;
 mod verify;
@@ -18,13 +19,15 @@ use serde::Serialize;
 use crate::flow::{self, Environment, Target};
 use crate::job::Job;
 use crate::office::batch::{self, Event};
-use crate::office::demo;
+use crate::office::store::{self, Store};
+use crate::office::{demo, starter};
 use crate::outcome::{CONTRACT, Document, Run, Tool, Verdict};
 use crate::refusal::Refusal;
 use crate::write::file::{self, Replace};
 use crate::write::text::plain;
 use crate::write::{json, terminal};
 use args::{Args, CheckArgs, Command, DemoArgs, JsonTarget, ListArgs, UnmarkArgs};
+use outputs::Outputs;
 use progress::Progress;
 
 /// Status of a run that could not be done.
@@ -38,8 +41,13 @@ pub fn run() -> ExitCode {
         Err(error) => error.exit(),
     };
     let done = match &args.command {
-        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref())),
-        Command::Check(args) => check(args, None),
+        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref()), None),
+        Command::Check(args) => {
+            let store = if args.no_store { None } else { Store::of_user() };
+            let done = check(&args.check, None, store.as_ref());
+            store.iter().for_each(Store::tidy);
+            done
+        }
         Command::Unmark(args) => unmark(args),
         Command::List(args) => list(args),
         Command::Verify(args) => verify::verify(args),
@@ -58,7 +66,7 @@ pub fn run() -> ExitCode {
 }
 
 /// `check`, and `mark` when a place for the copies is given (which may be "beside each drawing").
-fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
+fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -> Result<u8, Refusal> {
     let environment = Environment::of_process()?;
     let named = args.job.as_deref().map(Job::load).transpose()?;
     let drawings = paths::drawings(&args.drawings)?;
@@ -66,15 +74,21 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
         Some(output) => Some(paths::targets(&args.drawings, &drawings, output)?),
         None => None,
     };
-    if let Some(JsonTarget::File(target)) = &args.json {
-        file::may_write(target, &borrowed(&drawings), &json_may_replace(args.force))?;
-    }
+    let copies: Vec<PathBuf> = match &targets {
+        Some(targets) => drawings
+            .iter()
+            .zip(targets)
+            .map(|(drawing, target)| target.clone().unwrap_or_else(|| flow::beside(drawing)))
+            .collect(),
+        None => Vec::new(),
+    };
+    let outputs = Outputs::plan(args, &drawings, &copies)?;
     let runs = all(&drawings, args.jobs, |i, drawing| match &targets {
         Some(targets) => {
             let target = Target { output: targets[i].clone(), force: args.force };
             flow::mark(drawing, named.as_ref(), &target, environment)
         }
-        None => flow::check(drawing, named.as_ref(), environment),
+        None => store::check(drawing, named.as_ref(), environment, store),
     })?;
     let document = Document {
         contract: CONTRACT,
@@ -84,16 +98,12 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
     let on_stdout = args.json != Some(JsonTarget::Stdout);
     let style = terminal::Style { width: width(on_stdout), colour: colour(on_stdout), verbose: args.verbose };
     let summary = terminal::summary(&document, &style);
-    match &args.json {
-        None => say_results(&document, &summary),
-        Some(JsonTarget::Stdout) => {
-            say(&json::to_json(&document)?);
-            tell(&summary);
-        }
-        Some(JsonTarget::File(target)) => {
-            write_json(target, &borrowed(&drawings), args.force, &json::to_json(&document)?)?;
-            say_results(&document, &summary);
-        }
+    outputs.write(&document, environment)?;
+    if on_stdout {
+        say_results(&document, &summary);
+    } else {
+        say(&json::to_json(&document)?);
+        tell(&summary);
     }
     Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
 }
@@ -147,7 +157,14 @@ fn unmark(args: &UnmarkArgs) -> Result<u8, Refusal> {
 fn list(args: &ListArgs) -> Result<u8, Refusal> {
     let named = args.job.as_deref().map(Job::load).transpose()?;
     let listing = flow::list(&args.drawing, named.as_ref())?;
+    if let Some(target) = &args.write_job {
+        starter::write(&args.drawing, named.as_ref(), &listing, Environment::of_process()?, target)?;
+    }
     say(&listing::text(&listing));
+    if let Some(target) = &args.write_job {
+        let name = plain(&target.display().to_string());
+        say(&format!("job file to begin with: {name}; read it, state a limit, then check\n"));
+    }
     Ok(0)
 }
 

@@ -1,20 +1,21 @@
 //! One drawing from its bytes: layers chosen, their entities read, everything left aside told.
 
-use std::collections::BTreeMap;
+use std::borrow::Cow;
 
 use super::entity::{Curve, PointLike, Source, Text};
 use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
 use super::roles::{self, CURVES, POINTS};
-use super::{Drawing, convert, names, unit, viewport};
+use super::space::View;
+use super::{Drawing, blocks, convert, names, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
 use crate::refusal::Refusal;
 use crate::tags::{self, Candidate, Options, Outline, Record, fold};
 use crate::tolerance;
 
-/// Curves that are not read yet.
-const UNREAD: [&str; 5] = ["SPLINE", "ELLIPSE", "HELIX", "MLINE", "CIRCLE"];
+/// Curves that make no axis.
+const UNREAD: [&str; 3] = ["HELIX", "MLINE", "CIRCLE"];
 
 /// Whether the first scan of a drawing keeps a record: everything on the layers of axis, ring lines, hinges and loads, by their patterns or, where
 /// the job names none, by words in their names.
@@ -56,8 +57,60 @@ pub fn read_outlined(
     outline: &Outline,
     settings: &Settings,
 ) -> Result<Drawing, Refusal> {
-    let notes = outline.notes.iter().cloned().map(Note::File).collect();
-    let mut reader = Reader { bytes, outline, settings, notes };
+    let mut notes: Vec<Note> = outline.notes.iter().cloned().map(Note::File).collect();
+    let outline = blocks::expanded(bytes, outline, settings, &mut notes)?;
+    let look = |view: View| read_seen(bytes, &outline, settings, view, notes.clone());
+    if let Some(view) = View::stated(settings.drawing.plane) {
+        return look(view).map_err(|e| reference::explained(e, &outline, settings));
+    }
+    match look(View::XY) {
+        Ok(drawing) => Ok(drawing),
+        Err(refusal) if matches!(refusal.check.as_str(), "not-flat" | "no-axis") => {
+            let found = upright(&outline, settings)?.into_iter().find_map(|view| {
+                let mut drawing = look(view).ok()?;
+                drawing.notes.push(Note::PlaneGuessed { plane: view.name() });
+                Some(drawing)
+            });
+            found.ok_or_else(|| reference::explained(refusal, &outline, settings))
+        }
+        Err(refusal) => Err(reference::explained(refusal, &outline, settings)),
+    }
+}
+
+/// Upright planes to look at when the axis does not lie in the drawing's x-y plane: the one it lies in where layers are named,
+/// else those along the drawing's own axes.
+fn upright(outline: &Outline, settings: &Settings) -> Result<Vec<View>, Refusal> {
+    let mut points = Vec::new();
+    for record in outline.records.iter().filter(|r| r.block.is_none() && !r.ours && !r.in_paper_space()) {
+        if CURVES.contains(&record.kind.as_str())
+            && matches!(
+                roles::role_of(settings, &record.layer)?,
+                Some(JobRole::Axis | JobRole::Intrados | JobRole::Extrados)
+            )
+        {
+            points.extend(convert::places(record, &outline.decoder)?);
+        }
+    }
+    if points.is_empty() {
+        return Ok(vec![View::XZ, View::YZ]);
+    }
+    Ok(View::through(&points).into_iter().filter(|v| *v != View::XY).collect())
+}
+
+/// Reads a drawing as it is seen in one plane.
+fn read_seen(
+    bytes: &tags::Source,
+    outline: &Outline,
+    settings: &Settings,
+    view: View,
+    notes: Vec<Note>,
+) -> Result<Drawing, Refusal> {
+    let mut seen = Cow::Borrowed(outline);
+    if view != View::XY {
+        view.look(&mut seen.to_mut().records);
+    }
+    let outline = &*seen;
+    let mut reader = Reader { bytes, outline, settings, view, notes };
     let [(intrados_layers, intrados), (extrados_layers, extrados)] = reader.ring_lines()?;
     let (axis_layers, axis) = reader.axis(!intrados.is_empty())?;
     // Where no axis is drawn, the ring lines stand for it.
@@ -71,9 +124,13 @@ pub fn read_outlined(
     reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
     reader.hidden(hinge_layers.iter());
     reader.parts_not_read()?;
-    reader.in_blocks(&axis_layers, &load_layers)?;
+    reader.not_read(&axis_layers, &load_layers);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
     reader.passed_over(Role::Extrados, &extrados_layers, &CURVES);
+    let fitted = axis.iter().chain(&intrados).chain(&extrados).filter(|c| c.fitted);
+    reader
+        .notes
+        .extend(fitted.map(|c| Note::CurveFitted { source: c.source.clone(), pieces: c.pieces.len() }));
     let number = |name| outline.header(name, 70).and_then(|v| v.parse().ok());
     let (left, right) = extent(&outline_of);
     let unit = unit::decide(
@@ -84,9 +141,11 @@ pub fn read_outlined(
         right - left,
         &mut reader.notes,
     );
-    let viewports = outline.records.iter().filter_map(viewport::viewport).collect();
+    let plane = view.plane(outline_of.first().map_or(0.0, |c| c.z));
+    let viewports = outline.records.iter().filter_map(|r| viewport::viewport(r, &plane)).collect();
     Ok(Drawing {
         unit,
+        plane,
         axis_layers,
         load_layers,
         axis,
@@ -112,6 +171,7 @@ struct Reader<'a> {
     bytes: &'a tags::Source,
     outline: &'a Outline,
     settings: &'a Settings,
+    view: View,
     notes: Vec<Note>,
 }
 
@@ -275,7 +335,9 @@ impl Reader<'_> {
     }
 
     fn rescan(&self, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
-        rescan(self.bytes, layers, kinds)
+        let mut records = rescan(self.bytes, layers, kinds)?;
+        self.view.look(&mut records);
+        Ok(records)
     }
 
     /// The curves on some layers.
@@ -326,13 +388,13 @@ impl Reader<'_> {
                 return Err(source.refuse(
                     "not-flat",
                     format!(
-                        "the {} lies at the height z = {z}, {} at z = {}: only elevations drawn flat in the x-y plane \
-                         are read",
+                        "the {} lies {z} over the {} plane through the origin, {} {}: an elevation is read in one plane",
                         source.kind,
+                        self.view.name(),
                         first.source.named(),
                         first.z
                     ),
-                    "Set the z of all entities of the elevation to the same value",
+                    "Move all entities of the elevation into one plane (in a flat drawing: the same z)",
                 ));
             }
         }
@@ -367,64 +429,10 @@ impl Reader<'_> {
         Ok(())
     }
 
-    /// Tells what stands on the layers of axis and loads and was not read: other types, paper space, blocks.
-    fn in_blocks(&mut self, axis: &[String], loads: &[String]) -> Result<(), Refusal> {
+    /// Tells what stands on the layers of axis and loads and was not read: other types, paper space.
+    fn not_read(&mut self, axis: &[String], loads: &[String]) {
         self.passed_over(Role::Axis, axis, &CURVES);
         self.passed_over(Role::Loads, loads, &[&POINTS[..], &["TEXT", "MTEXT"]].concat());
-        let mut found: BTreeMap<(usize, Role, String), u64> = BTreeMap::new();
-        for record in self.outline.records.iter().filter(|r| !r.ours) {
-            let Some(block) = record.block else {
-                continue;
-            };
-            let role = match roles::role_of(self.settings, &record.layer)? {
-                Some(JobRole::Axis) if CURVES.contains(&record.kind.as_str()) => Role::Axis,
-                Some(JobRole::Intrados) if CURVES.contains(&record.kind.as_str()) => Role::Intrados,
-                Some(JobRole::Extrados) if CURVES.contains(&record.kind.as_str()) => Role::Extrados,
-                Some(JobRole::Hinges) if POINTS.contains(&record.kind.as_str()) => Role::Hinges,
-                Some(JobRole::Loads) if POINTS.contains(&record.kind.as_str()) => Role::Loads,
-                _ => continue,
-            };
-            *found.entry((block, role, record.layer.clone())).or_default() += 1;
-        }
-        if found.is_empty() {
-            return Ok(());
-        }
-        let inserted = self.inserted_blocks()?;
-        for ((block, role, layer), count) in found {
-            let block = self.outline.blocks[block].name.clone();
-            if inserted.contains(&fold(&block)) {
-                self.notes.push(Note::InBlock { role, block, layer, count });
-            }
-        }
-        Ok(())
-    }
-
-    /// Names of all blocks that are inserted in model space, directly or by way of others, folded.
-    fn inserted_blocks(&self) -> Result<Vec<String>, Refusal> {
-        let keep = |c: &Candidate<'_>| c.kind == "INSERT";
-        let outline = tags::scan(self.bytes, &Options { keep: Some(&keep), hash: false })?;
-        let name_of =
-            |r: &Record| r.tags.first(2).map(|t| fold(self.outline.decoder.text(t.trimmed()).trim()));
-        let mut inside: BTreeMap<String, Vec<String>> = BTreeMap::new();
-        let mut open = Vec::new();
-        for record in &outline.records {
-            match (record.block, name_of(record)) {
-                (Some(block), Some(name)) => {
-                    inside.entry(fold(&outline.blocks[block].name)).or_default().push(name);
-                }
-                (None, Some(name)) if !record.in_paper_space() => open.push(name),
-                _ => {}
-            }
-        }
-        let mut seen = std::collections::BTreeSet::new();
-        while let Some(name) = open.pop() {
-            if seen.insert(name.clone())
-                && let Some(inner) = inside.get(&name)
-            {
-                open.extend(inner.iter().cloned());
-            }
-        }
-        Ok(seen.into_iter().collect())
     }
 
     fn passed_over(&mut self, role: Role, layers: &[String], read_kinds: &[&str]) {
@@ -484,10 +492,9 @@ fn not_readable(record: &Record, role: Role) -> Refusal {
     source.refuse(
         "axis-kind",
         format!(
-            "layer {} of the {} holds {} {}: it is read from LINE, ARC, LWPOLYLINE and POLYLINE only",
+            "layer {} of the {} holds a {}: it is read from LINE, ARC, LWPOLYLINE, POLYLINE, ELLIPSE and SPLINE",
             record.layer,
             role.key(),
-            if matches!(record.kind.as_str(), "ELLIPSE" | "MLINE") { "an" } else { "a" },
             record.kind
         ),
         "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",

@@ -2,21 +2,28 @@
 //!
 //! Knows layers and entities, and no mechanics.
 
+mod blocks;
 pub mod convert;
 mod ends;
 mod entity;
 mod gather;
+mod insert;
+mod lay;
 pub mod names;
 mod note;
+mod nurbs;
 pub mod ocs;
 mod outlook;
 pub mod read;
+mod reference;
 mod roles;
+mod space;
 mod suggest;
 pub mod text;
 pub mod unit;
 pub mod viewport;
 
+use crate::tags;
 pub use crate::tags::{Doubt, Note as FileNote};
 pub use ends::{clusters, near_pairs};
 pub use entity::{Attribute, Curve, PointLike, Source, Text};
@@ -30,6 +37,8 @@ pub use unit::{NoUnit, Unit, UnitSource};
 pub struct Drawing {
     /// Its unit.
     pub unit: Unit,
+    /// The plane in which the elevation lies; all coordinates below are in it.
+    pub plane: tags::marks::Plane,
     /// Layers that serve as the axis.
     pub axis_layers: Vec<String>,
     /// Layers that hold loads.
@@ -54,3 +63,5 @@ pub struct Drawing {
 
 #[cfg(test)]
 mod tests;
+#[cfg(test)]
+mod tests_space;

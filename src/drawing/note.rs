@@ -100,7 +100,7 @@ pub enum Note {
         /// How many.
         count: u64,
     },
-    /// A block that is inserted in the drawing holds entities on the layer of a role; they are not read.
+    /// A block whose references are loads themselves holds entities on the layer of a role; they are not read again.
     InBlock {
         /// The role.
         role: Role,
@@ -130,5 +130,17 @@ pub enum Note {
         source: UnitSource,
         /// Horizontal extent of the axis, drawing units, which decided.
         width: f64,
+    },
+    /// The axis lies in a plane other than the drawing's x-y plane, which the job does not state.
+    PlaneGuessed {
+        /// Its name.
+        plane: String,
+    },
+    /// Arcs stand for a curve that is none.
+    CurveFitted {
+        /// The curve.
+        source: Source,
+        /// How many.
+        pieces: usize,
     },
 }

@@ -7,7 +7,7 @@ use crate::refusal::Refusal;
 use crate::tags::{LayerCensus, Outline, fold};
 
 /// Kinds of entities that can make an axis.
-pub const CURVES: [&str; 4] = ["LINE", "ARC", "LWPOLYLINE", "POLYLINE"];
+pub const CURVES: [&str; 6] = ["LINE", "ARC", "LWPOLYLINE", "POLYLINE", "ELLIPSE", "SPLINE"];
 
 /// Kinds of entities that stand for a load.
 pub const POINTS: [&str; 3] = ["POINT", "CIRCLE", "INSERT"];
@@ -102,12 +102,12 @@ fn nothing_on(
         let place = match (count(&layer.blocks, kinds), count(&layer.paper, kinds)) {
             (0, 0) => continue,
             (0, _) => "in paper space, where nothing counts",
-            _ => "inside block definitions, which are not read yet",
+            _ => "inside blocks that are not inserted in model space",
         };
         return Refusal::new(
             "layer-elsewhere",
             format!("layer {} for `[layers] {key}` has its entities only {place}", layer.name),
-            "Explode the blocks that hold them, or draw them in model space",
+            "Insert the blocks that hold them in model space, or draw there",
         )
         .on_layer(layer.name.clone());
     }

@@ -7,6 +7,7 @@ use super::{settings_for, without_marks};
 use crate::drawing::{self, Suggestion, viewport};
 use crate::job::Job;
 use crate::refusal::Refusal;
+use crate::tags::marks::Plane;
 use crate::tags::{Outline, Source, fold};
 
 /// A drawing at a glance.
@@ -81,7 +82,12 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
         extents,
         marked: marks.is_some(),
         layers: layers(&outline),
-        viewports: outline.records.iter().filter_map(viewport::viewport).map(|v| v.scale).collect(),
+        viewports: outline
+            .records
+            .iter()
+            .filter_map(|r| viewport::viewport(r, &Plane::XY))
+            .map(|v| v.scale)
+            .collect(),
         suggestions: drawing::suggest(&source, &outline, &settings)?,
         taken,
     })

@@ -192,7 +192,15 @@ pub fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Resu
 /// The run with its refusal.
 pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -> Result<Checked, Box<Run>> {
     let mut facts = no_facts(path);
-    let in_force = settings.to_json();
+    let mut in_force = settings.to_json();
+    // Which job it was, beside what it says.
+    if let (Some(file), Some(tree)) = (&settings.origin.file, in_force.as_object_mut()) {
+        let name = file.file_name().unwrap_or_default().to_string_lossy();
+        let origin = serde_json::json!({
+            "file": name, "sha256": settings.origin.sha256, "sheets": settings.origin.sheets,
+        });
+        tree.insert("origin".into(), origin);
+    }
     stages(path, settings, environment, &mut facts, &in_force)
         .map_err(|refusal| Box::new(refused(facts, in_force, refusal)))
 }

@@ -2,16 +2,18 @@
 
 use crate::geometry::Point;
 use crate::job::{Draw, Govern, RibDepth, Settings, Support};
-use crate::model::{Case, Model, Span, cases};
+use crate::model::{Case, Forces, Model, Span, cases};
 use crate::refusal::Refusal;
-use crate::statics::{self, Depth, Force, LineKind, Problem, Unsolved};
+use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Unsolved};
 
-/// The problem of one span in one case.
+/// The problem of one span in one case. With unit loads nothing strains the rib but the loads: a change of temperature has
+/// no size beside an unknown force.
 ///
 /// # Errors
-/// When the rib's own weight is wanted without a depth.
+/// When the rib's own weight is wanted without a depth, or a key that a stated one needs is missing from the job.
 pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> Result<Problem, Refusal> {
     let rib = &settings.rib;
+    let effects = if model.forces == Forces::Kilonewtons { effects(settings)? } else { Effects::default() };
     let mut draw: Vec<LineKind> = settings.line.draw.iter().map(|d| drawn(*d)).collect();
     if settings.limits.geometric_factor.is_some() && !draw.contains(&LineKind::Closest) {
         // The factor is that of the closest line, whichever line governs.
@@ -41,6 +43,10 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
             .iter()
             .map(|load| Force { at: load.at, force: load.force * case.factor(&load.set) })
             .collect(),
+        stiffness: rib.elastic_modulus.zip(rib.width).map(|(e, b)| e * KN_PER_M2 * b / (1.0 + rib.creep)),
+        effects,
+        strength: strength(settings, model.forces)?,
+        friction: rib.friction,
         ring_weight: own,
         varying: (0..span.loads.len()).filter(|&i| case.varies(&span.loads[i].set)).collect(),
         weight_varies: case.varies(cases::OWN_WEIGHT),
@@ -66,6 +72,51 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
         draw,
         ..Problem::new(span.axis.clone())
     })
+}
+
+/// kN/m² in a MPa.
+const KN_PER_M2: f64 = 1000.0;
+
+/// What strains the rib beside its loads.
+fn effects(settings: &Settings) -> Result<Effects, Refusal> {
+    let rib = &settings.rib;
+    let thermal = match (rib.temperature, rib.expansion) {
+        (0.0, _) => 0.0,
+        (change, Some(expansion)) => change * expansion,
+        (_, None) => return Err(missing(settings, "rib.expansion", "rib.temperature")),
+    };
+    let effects =
+        Effects { strain: thermal - rib.shrinkage, left: rib.movement.left, right: rib.movement.right };
+    if effects != Effects::default() {
+        for (key, given) in [("rib.elastic_modulus", rib.elastic_modulus), ("rib.width", rib.width)] {
+            if given.is_none() {
+                return Err(missing(settings, key, "temperature, shrinkage and movement"));
+            }
+        }
+    }
+    Ok(effects)
+}
+
+/// Strength times width, kN/m; none with unit loads, which have no size beside it.
+fn strength(settings: &Settings, forces: Forces) -> Result<Option<f64>, Refusal> {
+    match (settings.rib.strength, settings.rib.width) {
+        (Some(_), _) if forces == Forces::UnitLoads => Ok(None),
+        (Some(strength), Some(width)) => Ok(Some(strength * KN_PER_M2 * width)),
+        (Some(_), None) => Err(missing(settings, "rib.width", "rib.strength")),
+        (None, _) => Ok(None),
+    }
+}
+
+fn missing(settings: &Settings, key: &str, asks: &str) -> Refusal {
+    let refusal = Refusal::new(
+        "job-missing",
+        format!("`{key}` is missing, and {asks} cannot be reckoned without it"),
+        format!("State `{key}` in the job file."),
+    );
+    match &settings.origin.file {
+        Some(file) => refusal.in_file(file),
+        None => refusal,
+    }
 }
 
 fn drawn(draw: Draw) -> LineKind {

@@ -17,7 +17,7 @@ fn source(kind: &str, handle: usize) -> Source {
 }
 
 fn curve(handle: usize, pieces: Vec<Segment>) -> Curve {
-    Curve { source: source("LINE", handle), pieces, closed: false, z: 0.0 }
+    Curve { source: source("LINE", handle), pieces, closed: false, z: 0.0, fitted: false }
 }
 
 fn line(a: (f64, f64), b: (f64, f64)) -> Segment {
@@ -54,6 +54,7 @@ fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawin
         intrados: Vec::new(),
         hinges: Vec::new(),
         extrados: Vec::new(),
+        plane: crate::tags::marks::Plane::XY,
         viewports: Vec::new(),
         unit: Unit { name: "m", metres: 1.0, source: UnitSource::Job },
         axis_layers: vec!["A".into()],

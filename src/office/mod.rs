@@ -3,4 +3,6 @@
 pub mod batch;
 pub mod compare;
 pub mod demo;
+pub mod starter;
+pub mod store;
 pub mod verify;

@@ -2,11 +2,12 @@
 
 use super::closest::{Closest, Search};
 use super::elastic::{Effects, Flexibility, Place, least_energy};
+use super::joint::{Joint, Unknowns};
 use super::limit::{Aim, Extreme, Limit};
 use super::line::{Sheet, missing};
 use super::peaks::Sampling;
 use super::rule::{Choice, choose, through_points};
-use super::span::{Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use super::through::{slack, through};
 use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, Support, Unsolved};
@@ -85,7 +86,7 @@ fn solve(
 
     let safety = closest.filter(|_| judged).map(|closest| {
         let with_factor = Subspace::with_factor(&span, &rows);
-        super::safety::safety(problem, &span, &sampling, with_factor.as_ref(), &closest)
+        super::safety::safety(problem, &span, (&sampling, &bare), with_factor.as_ref(), &closest)
     });
 
     let crown = span.joint_at(span.crown.0, true).at;
@@ -181,6 +182,7 @@ impl Work<'_> {
         let limit = Limit {
             span: self.span,
             sampling: self.sheet.sampling,
+            whole: self.sheet.bare,
             space: self.space,
             friction: self.problem.friction,
             crushing: self.span.crushing,

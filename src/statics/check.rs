@@ -1,7 +1,9 @@
 //! Self-checks of every run: each line is held against equilibrium worked out another way.
 
+use super::joint::Unknowns;
 use super::peaks::Sampling;
-use super::span::{Piece, Span, Unknowns};
+use super::piece::Piece;
+use super::span::Span;
 use super::{Problem, Reaction};
 use crate::geometry::{Point, Vec2};
 
@@ -169,8 +171,9 @@ impl<'a> Weights<'a> {
 /// edge over the point is the ray of its joint. Not at a corner, where two rays meet.
 fn height(span: &Span, vertices: &[Point], at: Point) -> Option<f64> {
     let x = at.x;
-    let near =
-        |e: &super::span::Entered| e.force.x.abs() > 0.0 || (e.at.x - x).abs() <= crate::tolerance::ONE_JOINT;
+    let near = |e: &super::joint::Entered| {
+        e.force.x.abs() > 0.0 || (e.at.x - x).abs() <= crate::tolerance::ONE_JOINT
+    };
     if span.pieces.iter().any(Piece::weighs) || span.entered.iter().any(near) {
         return None;
     }

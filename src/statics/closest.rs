@@ -8,11 +8,13 @@
 #![allow(clippy::needless_range_loop, reason = "small dense matrices read best by index")]
 
 use super::Proof;
+use super::joint::{Affine, Joint, Unknowns};
 use super::peaks::{Peak, Sampling};
-use super::quadratic::{Bound, Quadratic};
+use super::quadratic::Bound;
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
-use super::span::{Affine, Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
+use super::ties::{bending, independent};
 use crate::tolerance;
 
 /// Joints that the exchange starts with.
@@ -21,6 +23,9 @@ const START: usize = 24;
 const ROUND: usize = 8;
 /// Rounds after which the exchange must have ended.
 const ROUNDS: usize = 80;
+/// Size of the box that the unknowns start in, and how it grows.
+const FIRST_BOX: f64 = 100.0;
+const BOX_GROWTH: f64 = 100.0;
 /// Rounds of the polish, and how far from a peak (as a part of the axis) a joint is taken for its neighbour.
 const POLISH: usize = 8;
 const NEIGHBOUR: f64 = 0.02;
@@ -74,6 +79,8 @@ struct Step {
     asked: f64,
     bound: f64,
     multipliers: Vec<Multiplier>,
+    /// Largest multiplier of the box.
+    held: f64,
 }
 
 /// The multiplier of one row of the last program.
@@ -118,7 +125,7 @@ impl<'a> Search<'a> {
             space,
             sense,
             cuts: Vec::new(),
-            program: Program::new(&cost, tolerance::UNBOUNDED),
+            program: Program::new(&cost, FIRST_BOX),
             floor: 0.1 * span.crown.1.abs() / deepest,
         };
         for joint in sampling.spread(START) {
@@ -137,13 +144,30 @@ impl<'a> Search<'a> {
 
     /// Finds the closest line, starting from `first` if that pushes throughout.
     pub fn run(mut self, first: Option<Unknowns>) -> Closest {
+        // Vertices of a large box cost digits: it grows only as long as it holds the optimum.
+        let mut size = FIRST_BOX;
+        loop {
+            let (held, ended) = self.run_in_box(first, size);
+            if !held {
+                return ended;
+            }
+            if size >= tolerance::UNBOUNDED {
+                return Closest::Unbounded;
+            }
+            size *= BOX_GROWTH;
+            self.program.widen(size);
+        }
+    }
+
+    /// The closest line in the box, and whether the box holds it.
+    fn run_in_box(&mut self, first: Option<Unknowns>, size: f64) -> (bool, Closest) {
         let start = first.filter(|r| self.worst_finite(r).is_some());
         let mut r = match start.map_or_else(|| self.pushing(), Ok) {
             Ok(r) => r,
-            Err(joint) => return Closest::None(joint),
+            Err(joint) => return (false, Closest::None(joint)),
         };
         let Some(mut upper) = self.worst_finite(&r) else {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         };
         let mut best: Option<(f64, Step)> = None;
         for _ in 0..ROUNDS {
@@ -166,13 +190,16 @@ impl<'a> Search<'a> {
             }
         }
         let Some((gain, step)) = best else {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         };
+        if step.held * size > tolerance::PROOF_GAP * step.tau.max(self.floor) {
+            return (true, Closest::Unbounded);
+        }
         if gain > tolerance::PROOF_GAP * step.tau.max(self.floor) {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         }
         let step = self.polish(step);
-        self.finish(step)
+        (false, self.finish(&step))
     }
 
     /// Moves the joints of the program to the very peaks of the line, so that the multipliers belong to the places that
@@ -322,6 +349,7 @@ impl<'a> Search<'a> {
                 asked: tau,
                 bound: vertex.dual,
                 multipliers: self.multipliers(&vertex),
+                held: self.program.held(&vertex),
             };
             if done {
                 // The last program proves the line before it when rounding has made its own line the worse.
@@ -340,23 +368,22 @@ impl<'a> Search<'a> {
     }
 
     /// Chooses among equally close lines, measures the line on the whole axis, and draws up the proof.
-    fn finish(mut self, step: Step) -> Closest {
-        let holds = self.holding(&step);
+    fn finish(&mut self, step: &Step) -> Closest {
+        let holds = self.holding(step);
         let mut r = step.r;
         if holds.len() < self.space.free
-            && let Some(chosen) = self.least_bending(&step, &holds)
+            && let Some(chosen) = self.least_bending(step, &holds)
         {
             r = chosen;
-        }
-        let far = tolerance::UNBOUNDED * 0.5;
-        let sized = (r[0] * (8.0 * self.span.lever()).min(1.0)).abs().max(r[1].abs());
-        if sized > far {
-            return Closest::Unbounded;
         }
         let Some(primal) = self.worst_finite(&r) else {
             return Closest::Stalled;
         };
-        let dual = self.dual(&step, &r);
+        let dual = self.dual(step, &r);
+        if (primal - dual).abs() > tolerance::PROOF_GAP * primal.max(self.floor) {
+            // Never an optimum without its proof.
+            return Closest::Stalled;
+        }
         let gap = (primal - dual).abs() / primal.abs().max(dual.abs()).max(1.0);
         Closest::Found { r, proof: Proof { primal, dual, gap } }
     }
@@ -394,25 +421,7 @@ impl<'a> Search<'a> {
         let mut active = step.multipliers.clone();
         active.retain(|m| m.value > tolerance::MULTIPLIER * most);
         active.sort_by(|a, b| b.value.total_cmp(&a.value).then(a.cut.cmp(&b.cut)));
-        let mut held: Vec<Bound> = Vec::new();
-        let mut units: Vec<[f64; 3]> = Vec::new();
-        for m in &active {
-            let (a, b) = self.bound(&self.cuts[m.cut], m.row, step.tau);
-            let size = a.iter().map(|v| v * v).sum::<f64>().sqrt();
-            let mut rest = a.map(|v| v / size);
-            for u in &units {
-                let along: f64 = (0..n).map(|j| rest[j] * u[j]).sum();
-                for j in 0..n {
-                    rest[j] -= along * u[j];
-                }
-            }
-            let left = rest.iter().map(|v| v * v).sum::<f64>().sqrt();
-            if size > 0.0 && left > tolerance::RANK {
-                units.push(rest.map(|v| v / left));
-                held.push((a, b));
-            }
-        }
-        held
+        independent(n, active.iter().map(|m| self.bound(&self.cuts[m.cut], m.row, step.tau)))
     }
 
     /// `±M − τ d N ≤ 0` or `ε − N ≤ 0` as a row of the free unknowns.
@@ -432,7 +441,7 @@ impl<'a> Search<'a> {
 
     /// Of all lines as close as the best, the one of least `∫ M² ds`.
     fn least_bending(&mut self, step: &Step, holds: &[Bound]) -> Option<Unknowns> {
-        let aim = self.bending();
+        let aim = bending(self.span, self.whole, self.space);
         let leave = step.tau + tolerance::TIE_LEAVE * step.tau.max(self.floor);
         let known = self.cuts.len();
         let mut chosen = None;
@@ -454,30 +463,6 @@ impl<'a> Search<'a> {
         // The multipliers of the proof count the cuts that the program knew.
         self.cuts.truncate(known);
         chosen
-    }
-
-    /// `½ ∫ M² ds` in the free unknowns, by Gauss with three points between neighbouring samples.
-    fn bending(&self) -> Quadratic {
-        let mut q = Quadratic { n: self.space.free, matrix: [[0.0; 3]; 3], linear: [0.0; 3] };
-        for pair in self.whole.joints().windows(2) {
-            if pair[0].piece != pair[1].piece {
-                continue;
-            }
-            let piece = &self.span.pieces[pair[0].piece];
-            let (half, middle) = ((pair[1].s - pair[0].s) / 2.0, f64::midpoint(pair[0].s, pair[1].s));
-            let far = 0.6_f64.sqrt();
-            for (x, w) in [(-far, 5.0 / 9.0), (0.0, 8.0 / 9.0), (far, 5.0 / 9.0)] {
-                let joint = piece.joint(middle + half * x, pair[0].piece);
-                let (m, c) = self.space.row(&joint.moment_row());
-                for i in 0..q.n {
-                    for j in 0..q.n {
-                        q.matrix[i][j] += w * half * m[i] * m[j];
-                    }
-                    q.linear[i] += w * half * m[i] * c;
-                }
-            }
-        }
-        q
     }
 }
 

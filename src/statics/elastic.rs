@@ -7,9 +7,11 @@
 //! leave. For vertical loads this is the force method about the elastic centre. The stiffness is what the caller gives; the
 //! integrals run along the true axis by Gauss.
 
+use super::joint::{Affine, Joint, Unknowns};
 use super::peaks::Sampling;
+use super::piece::GAUSS_10;
 use super::quadratic::Quadratic;
-use super::span::{Affine, GAUSS_10, Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use crate::geometry::{Point, Vec2};
 

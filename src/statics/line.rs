@@ -1,7 +1,8 @@
 //! A line of thrust laid out: stations, offset, depth use, and the ends.
 
+use super::joint::{Joint, Unknowns};
 use super::peaks::{Peak, Sampling};
-use super::span::{Joint, Span, Unknowns};
+use super::span::Span;
 use super::{End, Line, LineKind, Offset, Proof, Station, Status, Support, Use};
 use crate::tolerance;
 

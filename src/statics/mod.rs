@@ -8,9 +8,12 @@ mod analyse;
 mod check;
 mod closest;
 mod elastic;
+mod joint;
 mod limit;
 mod line;
 mod peaks;
+mod piece;
+mod place;
 mod pole;
 mod quadratic;
 mod rule;
@@ -20,10 +23,13 @@ mod span;
 pub mod stress;
 mod string;
 mod subspace;
+mod thickness;
 mod through;
+mod ties;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
+pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};
 

@@ -5,7 +5,9 @@
 //! kinks and joints of pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of
 //! its slope is followed to the peak. A ring of a stated number of voussoirs has its own joints and no others.
 
-use super::span::{Joint, Piece, Span, Unknowns};
+use super::joint::{Joint, Unknowns};
+use super::piece::Piece;
+use super::span::Span;
 use crate::tolerance;
 
 /// Turning of the axis between two samples, degrees.

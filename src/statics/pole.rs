@@ -50,7 +50,7 @@ impl Fit {
 /// of the axis parallel to its tangent.
 pub(super) fn pole(span: &Span) -> Option<PoleFit> {
     let rays =
-        if span.pieces.iter().any(super::span::Piece::weighs) { tangents(span) } else { chords(span)? };
+        if span.pieces.iter().any(super::piece::Piece::weighs) { tangents(span) } else { chords(span)? };
     let mut fit = Fit::default();
     for (corner, along, weight) in &rays {
         fit.add(*corner, *along, *weight);

@@ -12,7 +12,7 @@ use crate::tolerance;
 pub(super) fn safety(
     problem: &Problem,
     span: &Span,
-    sampling: &Sampling,
+    (sampling, whole): (&Sampling, &Sampling),
     with_factor: Option<&Subspace>,
     closest: &Closest,
 ) -> Safety {
@@ -23,7 +23,7 @@ pub(super) fn safety(
         mechanism: None,
         mechanism_least: None,
     };
-    let varies = |l: &super::span::Loads| l.fx.abs() + l.fy.abs() + l.moment.abs() > 0.0;
+    let varies = |l: &super::joint::Loads| l.fx.abs() + l.fy.abs() + l.moment.abs() > 0.0;
     let any =
         span.entered.iter().any(|e| e.varies && e.force.hypot() > 0.0) || varies(&span.last().loads.varying);
     let stays =
@@ -41,7 +41,7 @@ pub(super) fn safety(
         (safety.load, safety.load_least) = (Some(all()), Some(all()));
         return safety;
     }
-    let limit = Limit { span, sampling, space, friction: problem.friction, crushing: span.crushing };
+    let limit = Limit { span, sampling, whole, space, friction: problem.friction, crushing: span.crushing };
     let (load, mechanism) = interval(&limit, Aim::GreatestFactor, problem);
     let (least, mechanism_least) = interval(&limit, Aim::LeastFactor, problem);
     safety.load = Some(load);

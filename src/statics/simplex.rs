@@ -72,6 +72,19 @@ impl Program {
         Self { unknowns, cost: c, rows, lengths, basis: None }
     }
 
+    /// Makes the box larger; the basis is kept.
+    pub fn widen(&mut self, size: f64) {
+        for row in &mut self.rows[..2 * self.unknowns] {
+            row.b = size;
+        }
+    }
+
+    /// Largest multiplier of the box at a vertex: what a unit of a larger box would bring.
+    pub fn held(&self, vertex: &Vertex) -> f64 {
+        let inside = vertex.active.iter().filter(|a| a.0 < self.box_rows());
+        inside.fold(0.0, |m, a| f64::max(m, a.1))
+    }
+
     /// Number of rows of the box.
     pub fn box_rows(&self) -> usize {
         2 * self.unknowns
@@ -115,8 +128,9 @@ impl Program {
             };
             let w = at.combination(&self.rows[enter].a, n);
             let mut leave: Option<(usize, f64)> = None;
+            let largest = w.iter().fold(0.0, |m, v| f64::max(m, v.abs()));
             for i in 0..n {
-                if w[i] <= tolerance::SIMPLEX_PIVOT {
+                if w[i] <= tolerance::SIMPLEX_PIVOT * largest {
                     continue;
                 }
                 let ratio = at.y[i].max(0.0) / w[i];

@@ -3,8 +3,10 @@
 //! Under weight along the axis the string is the curve that all rays touch: the ray of the joint at `x` touches it at
 //! `x`, on the line of action of the weight of that joint [Culmann 1866]. The polygon is cut off at the springing joints.
 
+use super::joint::{Joint, LoadSets, Unknowns, moment_about};
 use super::line::eccentricity;
-use super::span::{Joint, LoadSets, Piece, Span, Unknowns, moment_about};
+use super::piece::Piece;
+use super::span::Span;
 use crate::geometry::{Point, Vec2};
 use crate::tolerance;
 

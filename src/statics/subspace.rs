@@ -2,7 +2,8 @@
 
 #![allow(clippy::needless_range_loop, reason = "small dense matrices read best by index")]
 
-use super::span::{Affine, Span, Unknowns};
+use super::joint::{Affine, Unknowns};
+use super::span::Span;
 use crate::tolerance;
 
 /// `r = point + Σ y_k direction_k`, with the directions in sizes that suit the span.

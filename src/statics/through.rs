@@ -1,6 +1,7 @@
 //! The one line of thrust through three points.
 
-use super::span::{Joint, Span, Unknowns};
+use super::joint::{Joint, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use crate::geometry::Point;
 

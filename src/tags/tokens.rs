@@ -258,6 +258,8 @@ fn code_line(buf: &[u8], from: usize) -> CodeLine {
 fn ascii(window: &mut Window, sink: &mut impl Sink, stream: &mut Stream) -> Result<(), Refusal> {
     let mut at = if stream.utf8_mark { MARK.len() } else { 0 };
     let mut line = 1u64;
+    // Between sections, where nothing but another section or the end may follow.
+    let mut outside = false;
     'tags: loop {
         let buf = &window.buf[..window.end];
         let (code, value) = match code_line(buf, at) {
@@ -276,6 +278,10 @@ fn ascii(window: &mut Window, sink: &mut impl Sink, stream: &mut Stream) -> Resu
                     window.refill(at)?;
                     at = 0;
                 }
+                // Some programs forget the group code of the end.
+                if outside && window.done && window.buf[at..window.end].trim_ascii() == b"EOF" {
+                    break;
+                }
                 return Err(bad_code(&window.buf[at..window.end], line));
             }
         };
@@ -290,6 +296,8 @@ fn ascii(window: &mut Window, sink: &mut impl Sink, stream: &mut Stream) -> Resu
                 at = 0;
                 continue;
             }
+            // Or what stands behind it.
+            None if value == window.end && outside && code == 0 => break,
             None if value == window.end => {
                 return Err(Refusal::new(
                     "truncated",
@@ -313,8 +321,11 @@ fn ascii(window: &mut Window, sink: &mut impl Sink, stream: &mut Stream) -> Resu
                 after_crlf: if line == 1 { value >= 2 && buf[value - 2] == b'\r' } else { stream.last_crlf },
             };
             let bytes = &buf[value..value_end];
-            if code == 0 && bytes.trim_ascii() == b"EOF" {
-                stream.eof = Some(place);
+            if code == 0 {
+                outside = bytes.trim_ascii() == b"ENDSEC";
+                if bytes.trim_ascii() == b"EOF" {
+                    stream.eof = Some(place);
+                }
             }
             sink.tag(code, bytes, &place)?;
         }

@@ -1,7 +1,7 @@
 //! The stated limits, and the one built in, against what was computed.
 
 use super::{With, length, note, spans};
-use crate::job::Settings;
+use crate::job::{Settings, Support};
 use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
 use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
 use crate::tolerance;
@@ -21,7 +21,7 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
     let ring_applies = analysis.kind == SpanKind::Arch;
     let depth_use = governing.depth_use.filter(|_| ring_applies);
     match (depth_use, limits.ring) {
-        (Some(used), stated) if stated.is_some() || !settings.rib.tension => {
+        (Some(used), stated) if stated.is_some() || (!settings.rib.tension && !elastic_support(settings)) => {
             judge.ring(used.ratio * 2.0, spans::xy(used.at), stated);
         }
         (None, Some(_)) => judge.not_judged("ring", no_depth(analysis)),
@@ -32,6 +32,16 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
             Some(used) => judge.kern(used.ratio * 6.0, spans::xy(used.at), limit),
             None => judge.not_judged("kern", no_depth(analysis)),
         }
+    }
+    if let Some(used) = depth_use
+        && governing.kind == LineKind::Elastic
+        && !settings.rib.tension
+        && used.ratio * 6.0 > 1.0 + tolerance::LIMIT_MET
+    {
+        judge.cracked(spans::xy(used.at));
+    }
+    if let Some(limit) = limits.stress {
+        judge.stress(limit);
     }
     if let Some(limit) = limits.geometric_factor {
         let closest =
@@ -44,6 +54,11 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
     if let Some(limit) = limits.load_factor {
         judge.load_factor(limit);
     }
+}
+
+/// Whether the job declares a support that makes the rib an elastic arch.
+fn elastic_support(settings: &Settings) -> bool {
+    matches!(settings.rib.support, Some(Support::Hingeless | Support::TwoHinged | Support::ThreeHinged))
 }
 
 fn no_depth(analysis: &Analysis) -> &'static str {
@@ -186,6 +201,64 @@ impl Judge<'_> {
                 used / limit,
                 self.near(at)
             ));
+        }
+        self.add(finding);
+    }
+
+    /// An elastic line outside the kern of a ring without tension.
+    fn cracked(&mut self, at: Xy) {
+        let finding = note(
+            Check::NotJudged,
+            "the elastic line leaves the kern of a ring without tension: joints would open there, and the line of the \
+             uncracked rib is not valid",
+        )
+        .at(at)
+        .uncheck()
+        .remedy("judge it as a ring ([rib] support = \"none\"), or declare a section that takes tension");
+        self.add(finding);
+    }
+
+    /// The greatest edge stress over the stations of the governing line.
+    fn stress(&mut self, limit: f64) {
+        let stations = &self.span.cases[0].lines[0].stations;
+        let worst = stations
+            .iter()
+            .filter_map(|s| Some((s.stress_max?.max(-s.stress_min?), s.at)))
+            .max_by(|a, b| a.0.total_cmp(&b.0));
+        let complete = stations.iter().all(|s| s.stress_max.is_some());
+        let Some((value, at)) = worst else {
+            self.not_judged(
+                "stress",
+                "it needs forces in kN, the depth, the width, and a line inside the section",
+            );
+            return;
+        };
+        let holds = value <= limit * (1.0 + tolerance::LIMIT_MET);
+        let best = self.best_case();
+        let message = format!(
+            "{}the greatest edge stress is {value:.2} MPa; limit {limit:.2} MPa",
+            if best { "best case: " } else { "" }
+        );
+        if holds && (best || !complete) {
+            let why = if best {
+                "the closest line is the most favourable one, not the state of the rib"
+            } else {
+                "the line leaves the section, or its kern, at some joints"
+            };
+            let mut finding =
+                note(Check::NotJudged, format!("{message}. The stated limit `stress` was not judged: {why}"))
+                    .value(value, "MPa")
+                    .at(at)
+                    .uncheck();
+            finding.limit = Some(limit);
+            finding.basis = Some("[limits] stress".into());
+            self.add(finding);
+            return;
+        }
+        let mut finding =
+            self.limit(Check::Stress, "[limits] stress", value, limit, "MPa", at, holds, message);
+        if !holds {
+            finding = finding.remedy(format!("a deeper or wider section {}", self.near(at)));
         }
         self.add(finding);
     }

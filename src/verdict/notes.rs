@@ -60,12 +60,26 @@ fn drawing_note(n: &drawing::Note) -> Finding {
         Note::InBlock { role, block, layer, count } => note(
             Check::PassedOver,
             format!(
-                "block {block} holds {count} entities on layer {layer} ({}); entities inside blocks were not read",
+                "block {block} holds {count} entities on layer {layer} ({}), not read because its reference is a load itself",
                 role_name(*role)
             ),
         )
         .uncheck()
-        .remedy("explode the block in a copy of the drawing, or draw the part in model space"),
+        .remedy("insert the block on another layer when its entities are the loads, or move them to another layer"),
+        Note::PlaneGuessed { plane } => {
+            note(Check::Plane, format!("the axis does not lie in the x-y plane; the elevation was taken in the {plane} plane"))
+                .uncheck()
+                .remedy("state [drawing] plane in the job file, or allow it: [accept] assumed = [\"plane\"]")
+        }
+        Note::CurveFitted { source, pieces } => note(
+            Check::PassedOver,
+            format!(
+                "{} was read as {pieces} arcs that follow it to within {:e} of its extent",
+                source.named(),
+                tolerance::CURVE_FIT
+            ),
+        )
+        .entity(source),
         Note::PartNotRead { part, layer, count } => note(
             Check::PassedOver,
             format!("layer {layer} ({count} entities) has the name of [layers] {part}, which is not read"),

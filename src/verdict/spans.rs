@@ -4,12 +4,13 @@ use std::collections::BTreeMap;
 
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
-use crate::model::{self, Model, cases, weight};
+use crate::model::{self, Forces, Model, cases, weight};
 use crate::outcome::{
     self, Axis, Case, End, Hinge, Line, LineKind, Load, Offset, Pole, Proof, Ring, Safety, Span, Station,
     Status, Xy,
 };
-use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support};
+use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support, stress};
+use crate::tolerance;
 
 /// Puts a span together.
 pub fn span(
@@ -45,7 +46,7 @@ pub fn span(
             .zip(analyses)
             .map(|(c, analysis)| {
                 let forces = listed.iter().map(|l| l.force.map(|f| f * c.factor(&l.set))).collect();
-                case(c, analysis, forces)
+                case(c, analysis, forces, &Section::of(analysis, settings, model.forces))
             })
             .collect(),
         loads: listed,
@@ -147,11 +148,16 @@ fn load(load: &model::Load) -> Load {
     }
 }
 
-fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>) -> Case {
+fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>, section: &Section) -> Case {
     let governing = &analysis.lines[analysis.governs];
-    let mut lines: Vec<Line> = vec![line(governing)];
+    let mut lines: Vec<Line> = vec![line(governing, section)];
     lines.extend(
-        analysis.lines.iter().enumerate().filter(|(i, _)| *i != analysis.governs).map(|(_, l)| line(l)),
+        analysis
+            .lines
+            .iter()
+            .enumerate()
+            .filter(|(i, _)| *i != analysis.governs)
+            .map(|(_, l)| line(l, section)),
     );
     Case {
         name: case.name.clone(),
@@ -199,7 +205,7 @@ pub fn kind(kind: statics::LineKind) -> LineKind {
     }
 }
 
-fn line(line: &statics::Line) -> Line {
+fn line(line: &statics::Line, section: &Section) -> Line {
     Line {
         kind: kind(line.kind),
         support: line.support.and_then(|s| {
@@ -224,7 +230,7 @@ fn line(line: &statics::Line) -> Line {
             at: xy(o.at),
             rms: o.rms,
         }),
-        stations: line.stations.iter().map(station).collect(),
+        stations: line.stations.iter().map(|s| station(s, section.stress(line, s))).collect(),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
     }
 }
@@ -269,11 +275,42 @@ fn status(from: statics::Status) -> Status {
     }
 }
 
+/// The section whose stresses are told.
+struct Section {
+    /// Width, m; `None`: no stress can be told.
+    width: Option<f64>,
+    tension: bool,
+}
+
+impl Section {
+    fn of(analysis: &Analysis, settings: &Settings, forces: Forces) -> Self {
+        let applies = forces == Forces::Kilonewtons && analysis.kind == SpanKind::Arch;
+        Self { width: settings.rib.width.filter(|_| applies), tension: settings.rib.tension }
+    }
+
+    /// Greatest and least compression of a rectangle, MPa. An elastic line that leaves the kern of a ring without tension
+    /// is not valid there, and gives no stress.
+    fn stress(&self, line: &statics::Line, s: &statics::Station) -> Option<[f64; 2]> {
+        const KN_PER_M2: f64 = 1000.0;
+        let (depth, width) = (s.depth?, self.width?);
+        let cracked = s.eccentricity.is_none_or(|e| e.abs() > depth / 6.0 * (1.0 + tolerance::LIMIT_MET));
+        let edges = if self.tension {
+            stress::uncracked(s.thrust, s.moment, depth, width)?
+        } else if line.kind == statics::LineKind::Elastic && cracked {
+            return None;
+        } else {
+            stress::without_tension(s.thrust, s.moment, depth, width)?
+        };
+        let (a, b) = (edges.extrados / KN_PER_M2, edges.intrados / KN_PER_M2);
+        Some([a.max(b), a.min(b)])
+    }
+}
+
 fn end(end: statics::End) -> End {
     End { horizontal: end.horizontal, vertical: end.vertical, eccentricity: end.eccentricity }
 }
 
-fn station(s: &statics::Station) -> Station {
+fn station(s: &statics::Station, stress: Option<[f64; 2]>) -> Station {
     Station {
         at: xy(s.at),
         s: s.s,
@@ -283,7 +320,7 @@ fn station(s: &statics::Station) -> Station {
         eccentricity: s.eccentricity,
         vertical_offset: s.vertical_offset,
         depth: s.depth,
-        stress_max: None,
-        stress_min: None,
+        stress_max: stress.map(|[max, _]| max),
+        stress_min: stress.map(|[_, min]| min),
     }
 }

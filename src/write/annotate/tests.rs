@@ -259,8 +259,8 @@ fn note_block_tells_what_it_must() {
         "thrustmark 0.1.0, 2026-03-01 UTC",
         "one possible line of thrust",
         "all factors 1",
-        "5 loads as drawn, 500 kN downward",
-        "self weight",
+        "5 loads as drawn, 500.0 kN downward",
+        "The rib is taken as weightless",
         "none stated",
         "qualified engineer",
     ] {
