@@ -194,7 +194,6 @@ fn the_example_states_every_known_key() {
 #[test]
 fn what_is_not_built_is_refused_by_name() {
     for (text, key) in [
-        ("[layers]\nextrados = \"I\"", "layers.extrados"),
         ("[layers]\nposts = \"I\"", "layers.posts"),
         ("[layers]\njoints = \"I\"", "layers.joints"),
         ("[layers]\nroad = \"I\"", "layers.road"),

@@ -186,14 +186,9 @@ pub fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Resu
     }
 }
 
-/// The same with settings of the caller's.
-///
-/// # Errors
-/// The run with its refusal.
-pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -> Result<Checked, Box<Run>> {
-    let mut facts = no_facts(path);
+/// The settings in force as the results hold them: what they say, and which job they came from.
+pub fn in_force(settings: &Settings) -> serde_json::Value {
     let mut in_force = settings.to_json();
-    // Which job it was, beside what it says.
     if let (Some(file), Some(tree)) = (&settings.origin.file, in_force.as_object_mut()) {
         let name = file.file_name().unwrap_or_default().to_string_lossy();
         let origin = serde_json::json!({
@@ -201,6 +196,16 @@ pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -
         });
         tree.insert("origin".into(), origin);
     }
+    in_force
+}
+
+/// The same with settings of the caller's.
+///
+/// # Errors
+/// The run with its refusal.
+pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -> Result<Checked, Box<Run>> {
+    let mut facts = no_facts(path);
+    let in_force = in_force(&settings);
     stages(path, settings, environment, &mut facts, &in_force)
         .map_err(|refusal| Box::new(refused(facts, in_force, refusal)))
 }

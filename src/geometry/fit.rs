@@ -57,7 +57,10 @@ fn halve(
 fn biarc((p, along_p): Place, (q, along_q): Place) -> Option<[Segment; 2]> {
     let way = q - p;
     let (t0, t1) = (along_p / along_p.hypot(), along_q / along_q.hypot());
-    if !(t0.x.is_finite() && t1.x.is_finite() && way.hypot2().is_finite()) || way.dot(t0) <= 0.0 || way.dot(t1) <= 0.0 {
+    if !(t0.x.is_finite() && t1.x.is_finite() && way.hypot2().is_finite())
+        || way.dot(t0) <= 0.0
+        || way.dot(t1) <= 0.0
+    {
         return None;
     }
     // Equal lengths d of the outer legs: d²·2(1 − t0·t1) + 2d·way·(t0 + t1) − way² = 0; the root that stays good when

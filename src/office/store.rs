@@ -157,7 +157,7 @@ pub fn check(path: &Path, job: Option<&Job>, environment: Environment, store: Op
     let key = store.key(&sha256, &settings, environment);
     if let Some(mut run) = store.get(&key) {
         run.drawing.file = path.display().to_string();
-        run.settings = settings.to_json();
+        run.settings = flow::in_force(&settings);
         return run;
     }
     let run = flow::checked_with(path, settings, environment).map_or_else(|refused| *refused, |c| c.run);
