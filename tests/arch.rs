@@ -297,7 +297,7 @@ fn one_arch_in_many_ways_has_one_answer() {
         let span = &run.spans[0];
         let case = &span.cases[0];
         let line = &case.lines[0];
-        let ring = 1005.309_649_148_734;
+        let ring = 1_005.309_649_148_734;
         assert!((case.total_load[1] + 140.0 + ring).abs() < 1e-8 * ring, "{file:?}");
         let (left, right) = (line.left.as_ref().unwrap(), line.right.as_ref().unwrap());
         let mut numbers = vec![

@@ -172,6 +172,9 @@ struct LoadLayers {
     texts: Vec<Text>,
 }
 
+/// Layers with the curves on them.
+type Layered = (Vec<String>, Vec<Curve>);
+
 struct Reader<'a> {
     bytes: &'a tags::Source,
     outline: &'a Outline,
@@ -182,7 +185,7 @@ struct Reader<'a> {
 
 impl Reader<'_> {
     /// Intrados and extrados by the patterns; both or none.
-    fn ring_lines(&mut self) -> Result<[(Vec<String>, Vec<Curve>); 2], Refusal> {
+    fn ring_lines(&mut self) -> Result<[Layered; 2], Refusal> {
         let read = |role: Role| -> Result<(Vec<String>, Vec<Curve>), Refusal> {
             let layers = roles::named(self.outline, self.settings, role, &CURVES)?;
             let curves = self.curves(&layers, &self.outline.records)?;

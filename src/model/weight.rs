@@ -86,6 +86,7 @@ fn add(span: &Span, depths: &[(f64, f64)], a: f64, b: f64, area: &mut f64, momen
     // Steps of a quarter radian at most leave an error below rounding.
     let steps = (turn / 0.25).ceil().max(1.0);
     let step = (b - a) / steps;
+    #[allow(clippy::cast_possible_truncation, clippy::cast_sign_loss)] // A small count, rounded up above.
     for k in 0..steps as u32 {
         let middle = a + (f64::from(k) + 0.5) * step;
         for (x, w) in GAUSS {
