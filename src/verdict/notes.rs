@@ -3,8 +3,8 @@
 use super::{With, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Doubt, FileNote, Reason, Role};
-use crate::job::Settings;
 use crate::job::Support;
+use crate::job::{Movement, Settings};
 use crate::model;
 use crate::model::figures::NoFigure;
 use crate::model::{Forces, Model};
@@ -456,4 +456,28 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
         parts.push("stresses");
     }
     findings.push(note(Check::LeftOut, format!("left out: {}", parts.join(", "))));
+    let rib = &settings.rib;
+    if model.forces == Forces::UnitLoads {
+        let sized = [
+            (rib.strength.is_some(), "strength"),
+            (rib.temperature.abs() > 0.0, "temperature"),
+            (rib.shrinkage.abs() > 0.0, "shrinkage"),
+            (rib.movement != Movement::default(), "movement"),
+        ];
+        for (_, key) in sized.into_iter().filter(|(given, _)| *given) {
+            let message = format!("[rib] {key} was left out: beside loads of unknown size it has no measure");
+            findings.push(
+                note(Check::NotJudged, message)
+                    .uncheck()
+                    .remedy("give the loads their figures, or remove the key"),
+            );
+        }
+    }
+    if rib.friction.is_some() {
+        findings.push(note(
+            Check::LeftOut,
+            "sliding is reckoned with associated flow (joints open as they slide), so a load factor that sliding governs \
+             may be an overestimate; check the joints that slide by themselves",
+        ));
+    }
 }

@@ -57,7 +57,7 @@ pub struct Look {
     pub dash: Option<Dash>,
 }
 
-/// The look of each layer, in the order of [`Layer`].
+/// The look of each layer, in the order of `Layer`.
 pub const LOOKS: [(Layer, Look); 13] = [
     (Layer::Line, Look { class: "line", colour: [0x0b, 0x5f, 0xa5], width: 2.2, dash: None }),
     (Layer::OtherLines, Look { class: "other", colour: [0x5e, 0x5e, 0x5e], width: 1.2, dash: None }),
