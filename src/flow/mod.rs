@@ -15,7 +15,7 @@ use crate::model::{self, Model};
 use crate::outcome::{DrawingFacts, Run, Units};
 use crate::refusal::Refusal;
 use crate::statics::{self, Analysis};
-use crate::tags::{self, FoundMarks, Outline, Source};
+use crate::tags::{self, Edit, FoundMarks, Hashing, Outline, Source};
 use crate::verdict;
 use crate::write::annotate;
 use crate::write::file::{self, Replace};
@@ -65,6 +65,18 @@ pub struct Checked {
     settings: Settings,
     /// The marks that the file as it stands carries.
     marks: Option<FoundMarks>,
+    /// The hash of the source, while it is on its way into the results.
+    hashing: Option<Hashing>,
+}
+
+impl Checked {
+    /// Waits for the hash of the source and puts it into the results.
+    fn hash(&mut self) -> Result<(), Refusal> {
+        if let Some(hashing) = self.hashing.take() {
+            self.run.drawing.sha256 = Some(hashing.finish()?);
+        }
+        Ok(())
+    }
 }
 
 /// Where the marked copy goes.
@@ -79,19 +91,25 @@ pub struct Target {
 /// Reads, computes and judges one drawing. A refusal becomes a run with an error and no verdict.
 pub fn check(path: &Path, job: Option<&Job>, environment: Environment) -> Run {
     match checked(path, job, environment) {
-        Ok(checked) => checked.run,
+        Ok(mut checked) => match checked.hash() {
+            Ok(()) => checked.run,
+            Err(refusal) => refused(checked.run.drawing, checked.run.settings, refusal),
+        },
         Err(refused) => *refused,
     }
 }
 
 /// Checks one drawing and writes its marked copy. A refusal becomes a run with an error and no verdict.
 pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Environment) -> Run {
-    let checked = match checked(path, job, environment) {
+    let mut checked = match checked(path, job, environment) {
         Ok(checked) => checked,
         Err(refused) => return *refused,
     };
-    let facts = checked.run.drawing.clone();
-    let settings = checked.run.settings.clone();
+    let told = |mut checked: Checked, refusal| {
+        // Without its hash the refusal is still the one to tell.
+        let _ = checked.hash();
+        refused(checked.run.drawing, checked.run.settings, refusal)
+    };
     let output = match (&target.output, checked.marks.is_some()) {
         (Some(output), _) => output.clone(),
         (None, false) => beside(path),
@@ -101,16 +119,16 @@ pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Enviro
                 "This drawing carries marks already",
                 "Name the new copy with --output; the old marks are replaced there.",
             );
-            return refused(facts, settings, refusal);
+            return told(checked, refusal);
         }
     };
-    match write_copy(path, &checked, &output, target.force, environment) {
+    match write_copy(path, &mut checked, &output, target.force, environment) {
         Ok(()) => {
             let mut run = checked.run;
             run.output = Some(output.display().to_string());
             run
         }
-        Err(refusal) => refused(facts, settings, refusal),
+        Err(refusal) => told(checked, refusal),
     }
 }
 
@@ -153,17 +171,18 @@ fn stages(
     };
     *in_force = settings.to_json();
     let file = Source::open(path)?;
-    let (source, outline, marks) = without_marks(file, &settings)?;
-    facts.sha256.clone_from(&outline.sha256);
+    let (source, outline, marks, hashing) = without_marks(file, &settings)?;
     facts.dxf_version.clone_from(&outline.version);
     facts.form = Some(outline.form.name().into());
     facts.encoding = Some(outline.encoding().into());
-    let drawing = drawing::read_outlined(&source, &outline, &settings)?;
-    facts.unit = Some(drawing.unit.name.into());
-    facts.unit_source = Some(drawing.unit.source.name().into());
-    let model = model::build(&drawing, &(&settings).into())?;
-    let analyses = analyse(&model, &settings)?;
-    let judged = verdict::judge(&settings, &drawing.notes, &model, &analyses, environment.today);
+    let judged = judged(&source, &outline, &settings, facts, environment);
+    let (drawing, judged) = match judged {
+        Ok(judged) => judged,
+        Err(refusal) => {
+            facts.sha256 = hashing.finish().ok();
+            return Err(refusal);
+        }
+    };
     let run = Run {
         units: judged.units,
         drawing: facts.clone(),
@@ -174,22 +193,42 @@ fn stages(
         output: None,
         error: None,
     };
-    Ok(Checked { run, source, outline, drawing, settings, marks })
+    Ok(Checked { run, source, outline, drawing, settings, marks, hashing: Some(hashing) })
 }
 
-/// The drawing as it was before it was marked, with its outline, and the marks it carried.
+fn judged(
+    source: &Source,
+    outline: &Outline,
+    settings: &Settings,
+    facts: &mut DrawingFacts,
+    environment: Environment,
+) -> Result<(Drawing, verdict::Judgement), Refusal> {
+    let drawing = drawing::read_outlined(source, outline, settings)?;
+    facts.unit = Some(drawing.unit.name.into());
+    facts.unit_source = Some(drawing.unit.source.name().into());
+    let model = model::build(&drawing, &settings.into())?;
+    let analyses = analyse(&model, settings)?;
+    let judged = verdict::judge(settings, &drawing.notes, &model, &analyses, environment.today);
+    Ok((drawing, judged))
+}
+
+/// The drawing as it was before it was marked, with its outline, the marks it carried, and its hash on its way.
 fn without_marks(
     file: Source,
     settings: &Settings,
-) -> Result<(Source, Outline, Option<FoundMarks>), Refusal> {
+) -> Result<(Source, Outline, Option<FoundMarks>, Hashing), Refusal> {
+    // Most drawings carry no marks; for those the hash is under way while they are read.
+    let hashing = Hashing::start(&file);
     let mut outline = drawing::scan(&file, settings)?;
     let Some(marks) = outline.marks.take() else {
-        return Ok((file, outline, None));
+        return Ok((file, outline, None, hashing));
     };
+    drop(hashing);
     outline.marks = Some(marks.clone());
     let plain = file.spliced(&tags::unmark(&file, &outline)?)?;
+    let hashing = Hashing::start(&plain);
     let outline = drawing::scan(&plain, settings)?;
-    Ok((plain, outline, Some(marks)))
+    Ok((plain, outline, Some(marks), hashing))
 }
 
 /// The name that the source of a marked copy has when nobody renamed it: `NAME.dxf` for `NAME.thrust.dxf`; any other
@@ -215,9 +254,12 @@ fn analyse(model: &Model, settings: &Settings) -> Result<Vec<Analysis>, Refusal>
         .collect()
 }
 
+/// What stands for the hash while it is not known yet: as long as any.
+const NO_HASH: &str = "0000000000000000000000000000000000000000000000000000000000000000";
+
 fn write_copy(
     path: &Path,
-    checked: &Checked,
+    checked: &mut Checked,
     output: &Path,
     force: bool,
     environment: Environment,
@@ -226,8 +268,41 @@ fn write_copy(
     let ours = |target: &Path| Ok(carries_marks(target));
     let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
     file::may_write(output, &sources, &replace)?;
-    let sheet = sheet::sheet(path, checked, environment);
-    let marks = annotate::annotate(&checked.run, &sheet);
+    let mut sheet = sheet::sheet(path, checked, environment);
+    // A large drawing is copied while its hash is still being computed; then the digits are put in.
+    let late = checked.hashing.as_ref().is_some_and(Hashing::runs);
+    if late {
+        sheet.sha256 = NO_HASH.to_owned();
+    } else {
+        checked.hash()?;
+        sheet.sha256 = checked.run.drawing.sha256.clone().unwrap_or_default();
+    }
+    let marked = checked.source.spliced(&edits(checked, &sheet)?)?;
+    let failed = |error| {
+        Refusal::new(
+            "write",
+            format!("The marked copy could not be written: {error}"),
+            "Look at the space left and at your right to write there.",
+        )
+    };
+    file::write_whole(output, &sources, &replace, |target| {
+        marked.write_to_file(target).map_err(failed)?;
+        if late {
+            checked.hash()?;
+            sheet.sha256 = checked.run.drawing.sha256.clone().unwrap_or_default();
+            let hashed = checked.source.spliced(&edits(checked, &sheet)?)?;
+            if !hashed.rewrite(&marked, target).map_err(failed)? {
+                target.set_len(0).map_err(failed)?;
+                hashed.write_to_file(target).map_err(failed)?;
+            }
+        }
+        checked.source.unchanged()
+    })
+}
+
+/// The edits that put the marks of a sheet in.
+fn edits(checked: &Checked, sheet: &annotate::Sheet) -> Result<Vec<Edit>, Refusal> {
+    let marks = annotate::annotate(&checked.run, sheet);
     let edits = tags::mark(&checked.source, &checked.outline, &marks)?;
     let broken = tags::validate::check_inserted(&checked.source, &checked.outline, &edits)?;
     if let Some(first) = broken.first() {
@@ -242,17 +317,7 @@ fn write_copy(
             "Report this drawing; nothing was written.",
         ));
     }
-    let marked = checked.source.spliced(&edits)?;
-    file::write_whole(output, &sources, &replace, |target| {
-        marked.write_to(target).map_err(|error| {
-            Refusal::new(
-                "write",
-                format!("The marked copy could not be written: {error}"),
-                "Look at the space left and at your right to write there.",
-            )
-        })?;
-        checked.source.unchanged()
-    })
+    Ok(edits)
 }
 
 /// Whether a file is a drawing that carries marks of ours; false also when it cannot be read as a drawing.

@@ -12,15 +12,38 @@ pub(super) struct Entry {
     pub decision: Option<(Option<usize>, bool)>,
     /// In model space, in paper space, in blocks.
     counts: [u64; 3],
+    /// Type and layer byte for byte, with a line feed between them.
+    key: Vec<u8>,
 }
+
+/// Places of the small table that most pairs are found in.
+const PLACES: usize = 1 << 10;
 
 #[derive(Default)]
 pub(super) struct Census {
     entries: Vec<Entry>,
+    /// Every pair; its hashing withstands names chosen to collide, and costs more than all the rest of an entity.
     index: HashMap<Vec<u8>, usize>,
+    /// The pair last seen of those that share a place.
+    places: Vec<usize>,
     key: Vec<u8>,
-    /// The entry found last: neighbours are often alike.
-    last: Option<(Vec<u8>, usize)>,
+}
+
+/// A number that is mostly another one for another key.
+fn place(key: &[u8]) -> usize {
+    const ODD: u64 = 0x9E37_79B9_7F4A_7C15;
+    let mut chunks = key.chunks_exact(8);
+    let mut sum = key.len() as u64;
+    let mut add = |word: [u8; 8]| sum = (sum ^ u64::from_le_bytes(word)).wrapping_mul(ODD).rotate_left(29);
+    for chunk in &mut chunks {
+        add(chunk.try_into().unwrap_or_default());
+    }
+    let mut last = [0; 8];
+    for (to, from) in last.iter_mut().zip(chunks.remainder()) {
+        *to = *from;
+    }
+    add(last);
+    usize::try_from(sum.wrapping_mul(ODD) >> 32).unwrap_or(0) % PLACES
 }
 
 impl Census {
@@ -33,16 +56,16 @@ impl Census {
 
     pub fn find(&mut self, kind: &[u8], layer: &[u8]) -> Option<usize> {
         self.set_key(kind, layer);
-        match &mut self.last {
-            Some((key, index)) if *key == self.key => Some(*index),
-            last => {
-                let index = *self.index.get(&self.key)?;
-                let (key, _) = last.get_or_insert_with(Default::default);
-                key.clone_from(&self.key);
-                *last = last.take().map(|(key, _)| (key, index));
-                Some(index)
-            }
+        if self.places.is_empty() {
+            self.places = vec![usize::MAX; PLACES];
         }
+        let place = &mut self.places[place(&self.key)];
+        if self.entries.get(*place).is_some_and(|entry| entry.key == self.key) {
+            return Some(*place);
+        }
+        let index = *self.index.get(&self.key)?;
+        *place = index;
+        Some(index)
     }
 
     /// Adds a pair that [`Census::find`] does not know; the name is the layer decoded.
@@ -54,6 +77,7 @@ impl Census {
             layer: name,
             decision: None,
             counts: [0; 3],
+            key: self.key.clone(),
         });
         self.index.insert(self.key.clone(), index);
         index
