@@ -330,7 +330,8 @@ impl Reader<'_> {
         if found.is_empty() {
             return Ok(());
         }
-        let inserted = self.inserted_blocks()?;
+        // Only now is it worth going through the drawing again.
+        let inserted = tags::inserted(self.bytes, self.outline)?;
         for ((block, role, layer), count) in found {
             let block = self.outline.blocks[block].name.clone();
             if inserted.contains(&fold(&block)) {
@@ -338,34 +339,6 @@ impl Reader<'_> {
             }
         }
         Ok(())
-    }
-
-    /// Names of all blocks that are inserted in model space, directly or by way of others, folded.
-    fn inserted_blocks(&self) -> Result<Vec<String>, Refusal> {
-        let keep = |c: &Candidate<'_>| c.kind == "INSERT";
-        let outline = tags::scan(self.bytes, &Options { keep: Some(&keep), hash: false })?;
-        let name_of =
-            |r: &Record| r.tags.first(2).map(|t| fold(self.outline.decoder.text(t.trimmed()).trim()));
-        let mut inside: BTreeMap<String, Vec<String>> = BTreeMap::new();
-        let mut open = Vec::new();
-        for record in &outline.records {
-            match (record.block, name_of(record)) {
-                (Some(block), Some(name)) => {
-                    inside.entry(fold(&outline.blocks[block].name)).or_default().push(name);
-                }
-                (None, Some(name)) if !record.in_paper_space() => open.push(name),
-                _ => {}
-            }
-        }
-        let mut seen = std::collections::BTreeSet::new();
-        while let Some(name) = open.pop() {
-            if seen.insert(name.clone())
-                && let Some(inner) = inside.get(&name)
-            {
-                open.extend(inner.iter().cloned());
-            }
-        }
-        Ok(seen.into_iter().collect())
     }
 
     fn passed_over(&mut self, role: Role, layers: &[String], read_kinds: &[&str]) {

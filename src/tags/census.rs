@@ -29,20 +29,25 @@ pub(super) struct Census {
     key: Vec<u8>,
 }
 
-/// A number that is mostly another one for another key.
-fn place(key: &[u8]) -> usize {
+/// A number that is mostly another one for another pair.
+#[inline]
+fn place(kind: &[u8], layer: &[u8]) -> usize {
     const ODD: u64 = 0x9E37_79B9_7F4A_7C15;
-    let mut chunks = key.chunks_exact(8);
-    let mut sum = key.len() as u64;
-    let mut add = |word: [u8; 8]| sum = (sum ^ u64::from_le_bytes(word)).wrapping_mul(ODD).rotate_left(29);
-    for chunk in &mut chunks {
-        add(chunk.try_into().unwrap_or_default());
+    let mut sum = (kind.len() + (layer.len() << 8)) as u64;
+    for bytes in [kind, layer] {
+        let mut add =
+            |word: [u8; 8]| sum = (sum ^ u64::from_le_bytes(word)).wrapping_mul(ODD).rotate_left(29);
+        let mut rest = bytes;
+        while let Some((word, more)) = rest.split_first_chunk() {
+            add(*word);
+            rest = more;
+        }
+        let mut last = [0; 8];
+        for (to, from) in last.iter_mut().zip(rest) {
+            *to = *from;
+        }
+        add(last);
     }
-    let mut last = [0; 8];
-    for (to, from) in last.iter_mut().zip(chunks.remainder()) {
-        *to = *from;
-    }
-    add(last);
     usize::try_from(sum.wrapping_mul(ODD) >> 32).unwrap_or(0) % PLACES
 }
 
@@ -54,17 +59,22 @@ impl Census {
         self.key.extend_from_slice(layer);
     }
 
+    #[inline]
     pub fn find(&mut self, kind: &[u8], layer: &[u8]) -> Option<usize> {
-        self.set_key(kind, layer);
+        let place = place(kind, layer);
+        if let Some(&index) = self.places.get(place)
+            && let Some(Entry { key, .. }) = self.entries.get(index)
+            && let Some(rest) = key.strip_prefix(kind)
+            && rest.split_first() == Some((&b'\n', layer))
+        {
+            return Some(index);
+        }
         if self.places.is_empty() {
             self.places = vec![usize::MAX; PLACES];
         }
-        let place = &mut self.places[place(&self.key)];
-        if self.entries.get(*place).is_some_and(|entry| entry.key == self.key) {
-            return Some(*place);
-        }
+        self.set_key(kind, layer);
         let index = *self.index.get(&self.key)?;
-        *place = index;
+        self.places[place] = index;
         Some(index)
     }
 

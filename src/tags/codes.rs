@@ -15,7 +15,25 @@ pub(crate) enum Kind {
 }
 
 /// The kind of value behind a group code; `None` for a code that the format does not list.
+#[inline]
 pub(crate) fn kind(code: i32) -> Option<Kind> {
+    *usize::try_from(code).ok().and_then(|code| KINDS.get(code))?
+}
+
+/// The kinds of all codes in a table: a binary drawing is passed over by them.
+static KINDS: [Option<Kind>; 1072] = {
+    let mut kinds = [None; 1072];
+    let mut code = 0;
+    let mut index = 0;
+    while index < kinds.len() {
+        kinds[index] = listed(code);
+        code += 1;
+        index += 1;
+    }
+    kinds
+};
+
+const fn listed(code: i32) -> Option<Kind> {
     Some(match code {
         0..=9
         | 100..=105

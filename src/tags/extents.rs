@@ -212,7 +212,7 @@ mod tests {
         let text = format!(
             "0\nSECTION\n2\nBLOCKS\n0\nLINE\n8\n0\n10\n-99\n20\n-99\n0\nENDSEC\n\
              0\nSECTION\n2\nENTITIES\n{}0\nENDSEC\n0\nEOF\n",
-            entities.replace(' ', "\n").replace(';', "\n")
+            entities.replace([' ', ';'], "\n")
         );
         extents(&Source::from_bytes(text)).unwrap()
     }

@@ -15,6 +15,7 @@ mod facts;
 mod finish;
 mod handles;
 mod hashing;
+mod inserts;
 mod items;
 mod lines;
 mod machine;
@@ -37,6 +38,7 @@ pub mod validate;
 pub use extents::extents;
 pub use facts::FoundMarks;
 pub use hashing::Hashing;
+pub use inserts::inserted;
 pub use machine::{Candidate, Keep, Options};
 pub use mark::mark;
 pub use outline::{

@@ -469,7 +469,7 @@ mod tests {
             self.heard.push(format!("{code} {} {place:?}", value.escape_ascii()));
             self.all = self.all.saturating_sub(1);
             if code == 0 {
-                self.holding = value.len() % 2 == 0;
+                self.holding = value.len().is_multiple_of(2);
             }
             if code == 8 && std::mem::take(&mut self.holding) && value.ends_with(b"7") {
                 self.recalled = true;
