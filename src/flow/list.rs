@@ -60,7 +60,7 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
         Some(job) => job.for_sheet(&super::source_name(path))?,
         None => Settings::default(),
     };
-    let (source, outline, marks, _) = without_marks(Source::open(path)?, &settings)?;
+    let (source, outline, marks, _) = without_marks(Source::open(path)?, &settings, false)?;
     let spelled = |name: &str, code| outline.header(name, code).map(str::to_string);
     let units = ["$INSUNITS", "$MEASUREMENT"]
         .into_iter()

@@ -171,7 +171,7 @@ fn stages(
     };
     *in_force = settings.to_json();
     let file = Source::open(path)?;
-    let (source, outline, marks, hashing) = without_marks(file, &settings)?;
+    let (source, outline, marks, hashing) = without_marks(file, &settings, true)?;
     facts.dxf_version.clone_from(&outline.version);
     facts.form = Some(outline.form.name().into());
     facts.encoding = Some(outline.encoding().into());
@@ -179,7 +179,7 @@ fn stages(
     let (drawing, judged) = match judged {
         Ok(judged) => judged,
         Err(refusal) => {
-            facts.sha256 = hashing.finish().ok();
+            facts.sha256 = hashing.and_then(|hashing| hashing.finish().ok());
             return Err(refusal);
         }
     };
@@ -193,7 +193,7 @@ fn stages(
         output: None,
         error: None,
     };
-    Ok(Checked { run, source, outline, drawing, settings, marks, hashing: Some(hashing) })
+    Ok(Checked { run, source, outline, drawing, settings, marks, hashing })
 }
 
 fn judged(
@@ -212,13 +212,15 @@ fn judged(
     Ok((drawing, judged))
 }
 
-/// The drawing as it was before it was marked, with its outline, the marks it carried, and its hash on its way.
+/// The drawing as it was before it was marked, with its outline, the marks it carried, and, when it is wanted, its hash on
+/// its way.
 fn without_marks(
     file: Source,
     settings: &Settings,
-) -> Result<(Source, Outline, Option<FoundMarks>, Hashing), Refusal> {
+    hash: bool,
+) -> Result<(Source, Outline, Option<FoundMarks>, Option<Hashing>), Refusal> {
     // Most drawings carry no marks; for those the hash is under way while they are read.
-    let hashing = Hashing::start(&file);
+    let hashing = hash.then(|| Hashing::start(&file));
     let mut outline = drawing::scan(&file, settings)?;
     let Some(marks) = outline.marks.take() else {
         return Ok((file, outline, None, hashing));
@@ -226,7 +228,7 @@ fn without_marks(
     drop(hashing);
     outline.marks = Some(marks.clone());
     let plain = file.spliced(&tags::unmark(&file, &outline)?)?;
-    let hashing = Hashing::start(&plain);
+    let hashing = hash.then(|| Hashing::start(&plain));
     let outline = drawing::scan(&plain, settings)?;
     Ok((plain, outline, Some(marks), hashing))
 }
