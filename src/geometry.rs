@@ -3,8 +3,11 @@
 //! Points are in the elevation plane: `x` to the right, `y` upward. Lengths are in whatever unit the caller uses; the
 //! statics use metres. Arcs stay arcs: nothing here replaces one by chords or by cubics.
 
+mod affine;
 mod crossing;
+pub mod fit;
 
+pub use affine::Affine;
 pub use crossing::{Boxes, Crossing};
 pub use kurbo::{Point, Vec2};
 
@@ -287,8 +290,8 @@ impl Path {
     }
 
     /// The point farthest above the straight line from start to end, measured vertically: its length from the start and
-    /// that height. With `below`, farthest below it (the height is then negative or zero). Of a level stretch it is the
-    /// middle, so that a mirrored path gives the mirrored point.
+    /// that height. With `below`, farthest below it (the height is then negative or zero). Of a level stretch, or
+    /// of several places of one height, it is the middle, so that a mirrored path gives the mirrored point.
     pub fn farthest_from_chord(&self, below: bool) -> (f64, f64) {
         let (a, b) = (self.start(), self.end());
         let slope = if (b.x - a.x).abs() > 0.0 { (b.y - a.y) / (b.x - a.x) } else { 0.0 };
@@ -310,11 +313,9 @@ impl Path {
         places.push((self.length(), height(b)));
         let top = places.iter().fold(0.0, |m, p| f64::max(m, p.1));
         let level = |p: &(f64, f64)| top - p.1 <= self.length() * tolerance::SAME_PLACE;
-        let Some(first) = places.iter().position(level) else {
-            return (0.0, 0.0);
-        };
-        let stretch = places[first..].iter().take_while(|p| level(p)).count();
-        let s = f64::midpoint(places[first].0, places[first + stretch - 1].0);
+        let first = places.iter().find(|p| level(p)).map_or(0.0, |p| p.0);
+        let last = places.iter().rfind(|p| level(p)).map_or(0.0, |p| p.0);
+        let s = f64::midpoint(first, last);
         (s, sign * top)
     }
 }
@@ -336,7 +337,7 @@ fn swept_part(angle: f64, start_angle: f64, sweep: f64) -> Option<f64> {
 }
 
 /// Length along the piece of its point nearest to `p`, and the distance.
-fn nearest_on_segment(segment: &Segment, p: Point) -> (f64, f64) {
+pub(crate) fn nearest_on_segment(segment: &Segment, p: Point) -> (f64, f64) {
     match *segment {
         Segment::Line { start, end } => {
             let d = end - start;

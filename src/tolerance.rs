@@ -184,9 +184,9 @@ pub const SIMPLEX_TIGHT: f64 = 4e-15;
 /// The same once thousands of steps have not brought an end. Larger: optima lose digits; smaller: no end.
 pub const SIMPLEX_LOOSE: f64 = 1e-12;
 
-/// Smallest weight in a ratio test of the simplex that is not rounding. Larger: a blocking row is passed over;
+/// Smallest weight in a ratio test of the simplex, relative to the largest, that is not rounding. Larger: a blocking row is passed over;
 /// smaller: the basis becomes singular.
-pub const SIMPLEX_PIVOT: f64 = 1e-13;
+pub const SIMPLEX_PIVOT: f64 = 1e-11;
 
 /// Smallest pivot of a basis of unit rows that is not singular. Larger: thin but true corners are given up; smaller:
 /// vertices without a correct digit.
@@ -210,7 +210,7 @@ pub const UNBOUNDED: f64 = 1e6;
 
 /// Multiplier, relative to the largest, below which a joint does not hold the optimum in place. Larger: joints that
 /// hold it are let go in the tie-break; smaller: rounding errors hold it.
-pub const MULTIPLIER: f64 = 1e-9;
+pub const MULTIPLIER: f64 = 1e-7;
 
 /// Part of a unit row that must be independent of the others to count in the rank. Larger: an optimum that is unique
 /// counts as free, which the tie-break then leaves in place; smaller: neighbouring cuts at one peak count twice.
@@ -218,7 +218,7 @@ pub const RANK: f64 = 1e-5;
 
 /// Relative leave that the tie-break has over the optimum it must keep. Larger: the optimum is given away; smaller:
 /// rounding leaves no room.
-pub const TIE_LEAVE: f64 = 1e-11;
+pub const TIE_LEAVE: f64 = 1e-10;
 
 /// Part of the resultant below which its horizontal part vanishes, so that a height above the axis means nothing.
 pub const VERTICAL_THRUST: f64 = 1e-12;
@@ -240,3 +240,101 @@ pub const LABEL_CHOICES: usize = 256;
 /// Steps that pairing labels with loads may take (some seconds). A count. Larger: a hostile drawing keeps the program busy;
 /// smaller: crowded but clear drawings are refused.
 pub const PAIRING_STEPS: u64 = 100_000_000;
+/// Least thrust of the closest line in any joint, as a part of all loads. Larger: it keeps lines from parts of the arch
+/// that hardly carry; smaller: in a part that carries nothing the eccentricity is rounding over rounding.
+pub const LEAST_THRUST: f64 = 1e-4;
+
+/// Excess over a constraint of the limit analysis, in units of all forces and of the axis length, that is still rounding.
+/// Larger: factors too favourable; smaller: the exchange never ends.
+pub const LIMIT_SLACK: f64 = 2e-14;
+
+/// Part by which a peak may stay below the limit and still be the place of a hinge. Larger: hinges move to a neighbouring
+/// peak; smaller: rounding keeps a hinge off its peak.
+pub const HINGE_CONTACT: f64 = 1e-4;
+
+/// Length of axis, as a part of the whole, within which joints with multipliers are one hinge. Larger: two hinges fall
+/// together; smaller: the neighbouring joints that close in on one peak count as hinges of their own.
+pub const HINGE_PLACE: f64 = 1e-3;
+
+/// Largest eccentricity over depth that counts as none: the geometric factor is then unbounded. Larger: a true factor of
+/// hundreds of millions is called unbounded; smaller: rounding is called a factor.
+pub const FUNICULAR: f64 = 1e-9;
+
+/// Furthest a chain of arcs may stray from the true middle line of a ring, as part of the length of the line: a fifth of a
+/// micrometre over twenty metres, far below what a drawing means.
+pub const MIDDLE_LINE: f64 = 1e-8;
+
+/// Furthest the depth read from a table may stray from the true depth of a ring, as part of it: a few micrometres.
+pub const RING_DEPTH: f64 = 1e-5;
+
+/// Halvings of an eighth of a ring before its middle line is taken as it is: pieces of a thirty-thousandth of the length.
+pub const MIDDLE_HALVINGS: u32 = 12;
+
+/// Most pieces of a middle line: a survey with a point every few millimetres stays within it.
+pub const MIDDLE_PIECES: usize = 4000;
+
+/// Arcs whose centres and radii agree to this part of the length of the ring are one arc.
+pub const ONE_ARC: f64 = 1e-9;
+
+/// Depth of a ring, as part of its length, below which its two lines are taken to touch.
+pub const NO_DEPTH: f64 = 1e-6;
+
+/// Distance of a drawn axis from the middle of the ring, as part of the depth, from which on it is told.
+pub const OFF_MIDDLE: f64 = 0.005;
+
+/// Angle in radians between the drawn end of a ring and the joint normal to its axis from which on it is told: five
+/// degrees.
+pub const END_SKEW: f64 = 0.09;
+/// Offset, as a part of the span, below which a line counts as lying on the axis where offsets are drawn. Larger: small
+/// offsets get no diagram of their own; smaller: rounding is drawn thousands of times as large.
+pub const OFFSET_SHOWN: f64 = 1e-6;
+
+/// Error below which a report says only that it is smaller: the digits beyond are rounding and differ between machines.
+pub const SHOWN_ERROR: f64 = 1e-12;
+
+/// Distance, as a part of its extent, within which arcs stand for a curve that is none (spline, ellipse, arc under unequal
+/// scales). No unit. Larger: eccentricities of a fraction of a millimetre in 100 m come from the fit; smaller: thousands of
+/// arcs, and nothing that the numbers of a drawing hold.
+pub const CURVE_FIT: f64 = 1e-9;
+
+/// Places at which the distance of the arcs from the curve is measured on every part, its ends counted as one. A count.
+/// Larger: reading takes longer; smaller: a bulge between two places is missed.
+pub const FIT_PROBES: u32 = 8;
+
+/// Halvings of a curve after which it is given up (a cusp, a place where it stands still). A count. Larger: hostile splines
+/// take long; smaller: sharply bent ones are refused.
+pub const FIT_HALVINGS: u32 = 14;
+
+/// Knots and points of a spline above which it is refused. A count. Larger: reading it takes long; smaller: splines fitted
+/// to a survey are refused.
+pub const MOST_KNOTS: usize = 100_000;
+
+/// Part by which the scales of a block may differ and its arcs still stay arcs. No unit. Larger: arcs are read as circles
+/// that are none; smaller: scales rounded by the format make thousands of pieces.
+pub const EQUAL_SCALES: f64 = 1e-12;
+
+/// Depth of blocks in blocks above which they are refused. A count. Larger: hostile drawings use up the stack; smaller:
+/// deeply nested details are refused.
+pub const DEEPEST_BLOCK: usize = 64;
+
+/// Entities and references that blocks may bring into a drawing, arrays counted out. A count. Larger: blocks that hold one
+/// another many times over use up memory and minutes; smaller: large arrays of posts are refused.
+pub const MOST_PLACED: usize = 200_000;
+/// The same where the strength is finite and the law is curved. Larger: the 1e-7 owed for conic programs is lost; smaller:
+/// tangents without end.
+pub const CONE_SLACK: f64 = 1e-11;
+
+/// Logarithm of the line's share of the depth at which the search for the least thickness ends. Larger: digits of the
+/// thickness are lost; smaller: steps that only see rounding.
+pub const THICKNESS: f64 = 1e-13;
+/// Distance between two places or lengths of two revisions, m, up to which they are one. Larger: a drafter's correction
+/// goes unseen; smaller: the rounding of a program that saved the drawing again counts as a change.
+pub const REVISION_LENGTH: f64 = 1e-6;
+
+/// Difference of two figures of two revisions, relative to their size (or to the load they stand beside), up to which
+/// they are one. As above.
+pub const REVISION_RELATIVE: f64 = 1e-6;
+
+/// Part of the span up to which a load without a name of its own may have moved and still be the same load. Larger: two
+/// loads of a close row are taken for one that moved; smaller: a load pushed aside a little counts as gone and new.
+pub const REVISION_NEAR: f64 = 0.01;

@@ -17,19 +17,30 @@ fn the_definition_is_consistent() {
 
 #[test]
 fn mark_takes_all_options() {
-    let arguments = "mark a.dxf set --job j.toml --output out --json r.json --force --verbose";
-    let args = parse(&arguments.split(' ').collect::<Vec<_>>()).unwrap();
+    let arguments = "mark a.dxf set --job j.toml --output out --json r.json --force --verbose \
+                     --report r.html --picture p.svg --csv s.csv --junit j.xml";
+    let args = parse(&arguments.split_whitespace().collect::<Vec<_>>()).unwrap();
     let Command::Mark(mark) = args.command else { panic!("{args:?}") };
     assert_eq!(mark.check.drawings, [PathBuf::from("a.dxf"), PathBuf::from("set")]);
     assert_eq!(mark.check.job.as_deref(), Some(Path::new("j.toml")));
     assert_eq!(mark.output.as_deref(), Some(Path::new("out")));
     assert_eq!(mark.check.json, Some(JsonTarget::File("r.json".into())));
     assert!(mark.check.force && mark.check.verbose);
+    for (given, name) in [
+        (&mark.check.report, "r.html"),
+        (&mark.check.picture, "p.svg"),
+        (&mark.check.csv, "s.csv"),
+        (&mark.check.junit, "j.xml"),
+    ] {
+        assert_eq!(given.as_deref(), Some(Path::new(name)));
+    }
 }
 
 #[test]
 fn check_unmark_list_and_schema() {
     let Command::Check(check) = parse(&["check", "--json", "-", "a.dxf"]).unwrap().command else { panic!() };
+    assert!(!check.no_store);
+    let check = check.check;
     assert_eq!(check.json, Some(JsonTarget::Stdout));
     assert_eq!((check.job, check.force, check.verbose), (None, false, false));
     let Command::Unmark(unmark) = parse(&["unmark", "a.thrust.dxf", "-f", "-o", "a.dxf"]).unwrap().command
@@ -52,14 +63,16 @@ fn wrong_usage_is_two_on_stderr() {
         &["check"],
         &["unmark"],
         &["list"],
-        &["verify", "a.dxf"],
-        &["watch", "."],
+        &["verify"],
+        &["watch"],
+        &["compare", "a.dxf"],
         &["mark", "a.dxf", "--pdf", "x"],
         &["mark", "a.dxf", "--job"],
         &["mark", "--force"],
         &["check", "a.dxf", "--output", "b"],
         &["unmark", "a", "b"],
-        &["list", "a", "--write-job", "x"],
+        &["list", "a", "--write-job"],
+        &["mark", "a.dxf", "--no-store"],
         &["schema", "x"],
         &["mark", ""],
     ] {
@@ -74,7 +87,19 @@ fn wrong_usage_is_two_on_stderr() {
 
 #[test]
 fn help_tells_examples_status_and_caution() {
-    for command in ["mark", "check", "unmark", "list", "schema"] {
+    for command in [
+        "mark",
+        "check",
+        "unmark",
+        "list",
+        "verify",
+        "compare",
+        "watch",
+        "demo",
+        "schema",
+        "completions",
+        "manual",
+    ] {
         let help = parse(&[command, "--help"]).unwrap_err();
         assert_eq!((help.kind(), help.exit_code()), (ErrorKind::DisplayHelp, 0));
         let text = help.to_string();
@@ -92,7 +117,20 @@ fn help_tells_examples_status_and_caution() {
 #[test]
 fn examples_of_the_help_parse() {
     let mut found = 0;
-    for command in ["", "mark", "check", "unmark", "list", "schema"] {
+    for command in [
+        "",
+        "mark",
+        "check",
+        "unmark",
+        "list",
+        "verify",
+        "compare",
+        "watch",
+        "demo",
+        "schema",
+        "completions",
+        "manual",
+    ] {
         let arguments: Vec<&str> = [command, "--help"].into_iter().filter(|a| !a.is_empty()).collect();
         let text = parse(&arguments).unwrap_err().to_string();
         for line in text.lines().filter_map(|line| line.strip_prefix("  thrustmark ")) {

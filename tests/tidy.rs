@@ -41,7 +41,11 @@ const FLOW: &[(&str, &[&str])] = &[
             "write",
         ],
     ),
-    ("cli", &["refusal", "units", "outcome", "tags", "job", "drawing", "write", "flow"]),
+    (
+        "office",
+        &["tolerance", "geometry", "refusal", "units", "outcome", "tags", "job", "drawing", "write", "flow"],
+    ),
+    ("cli", &["refusal", "units", "outcome", "tags", "job", "drawing", "write", "flow", "office"]),
 ];
 
 fn sources() -> Vec<PathBuf> {
@@ -66,11 +70,10 @@ fn is_test_module(path: &Path) -> bool {
     let name = path.file_stem().unwrap().to_str().unwrap();
     let parent = path.parent().unwrap().join("mod.rs");
     fs::read_to_string(parent).is_ok_and(|text| {
-        text.lines()
-            .collect::<Vec<_>>()
-            .windows(4)
-            .any(|w| w[0] == "#[cfg(test)]" && w[1..].iter().any(|l| *l == format!("mod {name};")))
-            || text.trim_end().ends_with(&format!("#[cfg(test)]\nmod {name};"))
+        text.lines().collect::<Vec<_>>().windows(4).any(|w| {
+            w[0] == "#[cfg(test)]"
+                && w[1..].iter().any(|l| l.trim_start_matches("pub(crate) ") == format!("mod {name};"))
+        }) || text.trim_end().ends_with(&format!("#[cfg(test)]\nmod {name};"))
     })
 }
 

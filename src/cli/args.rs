@@ -4,6 +4,7 @@
 //! changes a number, a verdict or the mark is a key of the job file and never an option.
 
 use std::ffi::OsString;
+use std::num::NonZeroUsize;
 use std::path::PathBuf;
 
 use clap::builder::{OsStringValueParser, TypedValueParser};
@@ -39,16 +40,34 @@ pub enum Command {
     Mark(MarkArgs),
     /// Check drawings and print the findings; write no drawing
     #[command(arg_required_else_help = true, after_help = CHECK_HELP)]
-    Check(CheckArgs),
+    Check(OnlyCheckArgs),
     /// Take the marks out of a marked copy again, byte for byte
     #[command(arg_required_else_help = true, after_help = UNMARK_HELP)]
     Unmark(UnmarkArgs),
     /// Show what a drawing holds, and which layer could be the axis or the loads
     #[command(arg_required_else_help = true, after_help = LIST_HELP)]
     List(ListArgs),
+    /// Tell whether a marked copy still belongs to its source, its job and this version
+    #[command(arg_required_else_help = true, after_help = VERIFY_HELP)]
+    Verify(VerifyArgs),
+    /// Tell what changed between two revisions of a drawing
+    #[command(arg_required_else_help = true, after_help = COMPARE_HELP)]
+    Compare(CompareArgs),
+    /// Mark drawings of a folder again whenever they are saved
+    #[command(arg_required_else_help = true, after_help = WATCH_HELP)]
+    Watch(WatchArgs),
+    /// Write demo drawings and their job file into a folder
+    #[command(arg_required_else_help = true, after_help = DEMO_HELP)]
+    Demo(DemoArgs),
     /// Print the JSON Schema of the results
     #[command(after_help = SCHEMA_HELP)]
     Schema,
+    /// Print the completions of a shell
+    #[command(arg_required_else_help = true, after_help = COMPLETIONS_HELP)]
+    Completions(CompletionsArgs),
+    /// Print the manual page
+    #[command(after_help = MANUAL_HELP)]
+    Manual,
 }
 
 /// `thrustmark mark`
@@ -65,6 +84,18 @@ pub struct MarkArgs {
 
 /// `thrustmark check`
 #[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct OnlyCheckArgs {
+    /// What is shared with `mark`.
+    #[command(flatten)]
+    pub check: CheckArgs,
+
+    /// Neither take nor keep results of unchanged drawings in the user's cache folder
+    #[arg(long)]
+    pub no_store: bool,
+}
+
+/// What `mark` and `check` share.
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
 pub struct CheckArgs {
     /// DXF drawings, and folders of them
     #[arg(required = true, value_name = "DRAWING")]
@@ -78,6 +109,22 @@ pub struct CheckArgs {
     #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
     pub json: Option<JsonTarget>,
 
+    /// Report to read, print on A4 and sign, one HTML file for all drawings
+    #[arg(long, value_name = "FILE.html")]
+    pub report: Option<PathBuf>,
+
+    /// Picture of elevation, offset diagram and force polygon; with several drawings a folder for SVG pictures
+    #[arg(long, value_name = "FILE.svg|FILE.png|FOLDER")]
+    pub picture: Option<PathBuf>,
+
+    /// Stations of all lines as comma-separated values
+    #[arg(long, value_name = "FILE.csv")]
+    pub csv: Option<PathBuf>,
+
+    /// Results for build servers, as JUnit XML
+    #[arg(long, value_name = "FILE.xml")]
+    pub junit: Option<PathBuf>,
+
     /// Replace existing files, even those that thrustmark did not write
     #[arg(short, long)]
     pub force: bool,
@@ -85,6 +132,10 @@ pub struct CheckArgs {
     /// Print every figure with the entity it was read from
     #[arg(short, long)]
     pub verbose: bool,
+
+    /// Drawings worked on at a time; the results are the same [default: one for each processor]
+    #[arg(long, value_name = "N")]
+    pub jobs: Option<NonZeroUsize>,
 }
 
 /// `thrustmark unmark`
@@ -113,6 +164,90 @@ pub struct ListArgs {
     /// Job file [default: the first thrustmark.toml on the way up from the drawing's folder]
     #[arg(short, long, value_name = "FILE")]
     pub job: Option<PathBuf>,
+
+    /// Write a commented job file to begin with; an existing file is left alone
+    #[arg(long, value_name = "FILE")]
+    pub write_job: Option<PathBuf>,
+}
+
+/// `thrustmark verify`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct VerifyArgs {
+    /// Marked copy
+    #[arg(value_name = "MARKED")]
+    pub marked: PathBuf,
+
+    /// Drawing that was marked [default: the copy is held against the hash that it carries]
+    #[arg(value_name = "SOURCE")]
+    pub source: Option<PathBuf>,
+
+    /// Job file [default: the first thrustmark.toml on the way up from SOURCE's folder, or else MARKED's]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+
+    /// Result as JSON into FILE; with - on stdout, and the words on stderr
+    #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
+    pub json: Option<JsonTarget>,
+
+    /// Replace an existing file under the name of --json
+    #[arg(short, long)]
+    pub force: bool,
+}
+
+/// `thrustmark compare`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct CompareArgs {
+    /// The old drawing
+    #[arg(value_name = "OLD")]
+    pub old: PathBuf,
+
+    /// The new drawing
+    #[arg(value_name = "NEW")]
+    pub new: PathBuf,
+
+    /// Job file for both [default: the first thrustmark.toml on the way up from each drawing's folder]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+
+    /// Changes as JSON into FILE; with - on stdout, and the words on stderr
+    #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
+    pub json: Option<JsonTarget>,
+
+    /// Copy of NEW with the changes drawn on layer THRUST-CHANGES
+    #[arg(short, long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
+
+    /// Replace existing files, even those that thrustmark did not write
+    #[arg(short, long)]
+    pub force: bool,
+}
+
+/// `thrustmark watch`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct WatchArgs {
+    /// Folder of drawings; folders in it are not watched
+    #[arg(value_name = "FOLDER")]
+    pub folder: PathBuf,
+
+    /// Job file [default: the first thrustmark.toml on the way up from the folder]
+    #[arg(short, long, value_name = "FILE")]
+    pub job: Option<PathBuf>,
+}
+
+/// `thrustmark demo`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct DemoArgs {
+    /// Folder to write into; it is made when it is not there
+    #[arg(value_name = "FOLDER")]
+    pub folder: PathBuf,
+}
+
+/// `thrustmark completions`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct CompletionsArgs {
+    /// Shell
+    #[arg(value_name = "SHELL")]
+    pub shell: clap_complete::Shell,
 }
 
 /// Where the JSON results go.
@@ -174,7 +309,7 @@ drawing or in a folder above it.
 
 ",
     status!(),
-    "\n  list, unmark and schema end in 0 or 2.\n\n",
+    "\n  verify: 0 current, 1 stale, 2 neither. The other commands: 0, or 2 when it\n  could not be done.\n\n",
     caution!()
 );
 
@@ -183,6 +318,7 @@ const MARK_HELP: &str = concat!(
 Examples:
   thrustmark mark bridge.dxf
   thrustmark mark bridge.dxf --output issue/bridge.dxf --json bridge.json
+  thrustmark mark bridge.dxf --report bridge.html --picture bridge.svg
   thrustmark mark set-1/ set-2/ --output marked/ --job office.toml
 
 A drawing that is marked already needs --output; its old marks are replaced.
@@ -198,6 +334,10 @@ const CHECK_HELP: &str = concat!(
 Examples:
   thrustmark check bridge.dxf
   thrustmark check drawings/ --json - > results.json
+  thrustmark check drawings/ --junit results.xml --csv stations.csv
+
+Results of unchanged drawings are kept in the user's cache folder, which may be
+deleted at any time.
 
 ",
     status!(),
@@ -220,8 +360,9 @@ when the two differ, nothing is written (with --force the latter is).
 
 const LIST_HELP: &str = concat!(
     "\
-Example:
+Examples:
   thrustmark list bridge.dxf
+  thrustmark list bridge.dxf --write-job thrustmark.toml
 
 ",
     plain_status!()
@@ -235,3 +376,68 @@ Example:
 ",
     plain_status!()
 );
+
+const VERIFY_HELP: &str = "\
+Examples:
+  thrustmark verify bridge.thrust.dxf bridge.dxf
+  thrustmark verify bridge.thrust.dxf --json verified.json
+
+A mark is stale when the source, the job file, the settings for this drawing or
+the version of thrustmark differ from those that it was made with, and when marks
+were edited or taken out: the drawing is marked again in memory and compared.
+
+Exit status:
+  0  current    marking the drawing again would give this copy
+  1  stale      it would not
+  2             it could not be told: a file cannot be read, or carries no mark";
+
+const DEMO_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark demo demo
+
+Writes four drawings and thrustmark.toml, and never over a file that is there.
+
+",
+    plain_status!()
+);
+
+const COMPLETIONS_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark completions bash > ~/.local/share/bash-completion/completions/thrustmark
+
+",
+    plain_status!()
+);
+
+const MANUAL_HELP: &str = concat!(
+    "\
+Example:
+  thrustmark manual > thrustmark.1
+
+",
+    plain_status!()
+);
+
+const COMPARE_HELP: &str = "\
+Examples:
+  thrustmark compare bridge-a.dxf bridge-b.dxf
+  thrustmark compare bridge-a.dxf bridge-b.dxf --output bridge-changes.dxf
+
+Compares what is computed from the drawings, not their bytes: axis, ring, loads
+(matched by place and label), results, verdicts and the settings in force.
+
+Exit status:
+  0  same
+  1  different
+  2  a drawing could not be read or checked, or the copy could not be written";
+
+const WATCH_HELP: &str = "\
+Example:
+  thrustmark watch drawings
+
+Whenever a drawing or its job file is saved, the marked copy beside the drawing is
+written again, and what changed since the last save is told. Copies are not marked.
+
+Exit status: 0 when it is interrupted, 2 when the folder cannot be watched.";

@@ -4,6 +4,7 @@ use std::collections::BTreeMap;
 use std::fmt::Write;
 
 use crate::drawing::Reason;
+use crate::drawing::viewport::Shown;
 use crate::flow::Listing;
 use crate::write::text::plain as escape;
 
@@ -39,8 +40,20 @@ pub fn text(listing: &Listing) -> String {
         ));
     }
     if !listing.viewports.is_empty() {
-        let scales: Vec<String> = listing.viewports.iter().map(|s| format!("{s:.6}")).collect();
-        line(format!("viewports: {} (paper units per drawing unit)", scales.join(", ")));
+        let views: Vec<String> = listing
+            .viewports
+            .iter()
+            .map(|(scale, shown)| {
+                let words = match shown {
+                    Some(Shown::Whole) => " shows the axis, and the marks about it",
+                    Some(Shown::Part) => " shows a part of the axis",
+                    Some(Shown::Nothing) => " shows nothing of the axis",
+                    None => "",
+                };
+                format!("{scale:.6}{words}")
+            })
+            .collect();
+        line(format!("viewports: {} (paper units per drawing unit)", views.join(", ")));
     }
     line(String::new());
     let width = listing.layers.iter().map(|l| escape(&l.name).chars().count()).max().unwrap_or(0).min(40);

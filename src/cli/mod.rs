@@ -1,38 +1,86 @@
 //! The command line: parses, runs, prints, and gives the exit status. The only place that prints.
 
 pub mod args;
+mod compare;
 mod listing;
+mod manual;
+mod outputs;
 mod paths;
+mod progress;
+mod verify;
+mod watch;
 
 use std::io::{self, IsTerminal, Write};
+use std::num::NonZeroUsize;
 use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
 use clap::Parser;
+use serde::Serialize;
 
 use crate::flow::{self, Environment, Target};
 use crate::job::Job;
+use crate::office::batch::{self, Event};
+use crate::office::store::{self, Store};
+use crate::office::{demo, starter};
 use crate::outcome::{CONTRACT, Document, Run, Tool, Verdict};
 use crate::refusal::Refusal;
 use crate::write::file::{self, Replace};
 use crate::write::text::plain;
 use crate::write::{json, terminal};
-use args::{Args, CheckArgs, Command, JsonTarget, ListArgs, UnmarkArgs};
+use args::{Args, CheckArgs, Command, DemoArgs, JsonTarget, ListArgs, UnmarkArgs};
+use outputs::Outputs;
+use progress::Progress;
 
 /// Status of a run that could not be done.
 const REFUSED: u8 = 2;
 
+/// Prints a result that is no run in words, and puts its JSON where it was asked for: with JSON on stdout the words go to
+/// stderr.
+fn deliver(
+    target: Option<&JsonTarget>,
+    sources: &[&Path],
+    force: bool,
+    words: &str,
+    json: &str,
+) -> Result<(), Refusal> {
+    match target {
+        None => say(words),
+        Some(JsonTarget::Stdout) => {
+            say(json);
+            tell(words);
+        }
+        Some(JsonTarget::File(target)) => {
+            write_json(target, sources, force, json)?;
+            say(words);
+        }
+    }
+    Ok(())
+}
+
 /// Runs the program with the arguments of the process.
 pub fn run() -> ExitCode {
+    batch::keep_panics();
     let args = match Args::try_parse() {
         Ok(args) => args,
         Err(error) => error.exit(),
     };
     let done = match &args.command {
-        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref())),
-        Command::Check(args) => check(args, None),
+        Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref()), None),
+        Command::Check(args) => {
+            let store = if args.no_store { None } else { Store::of_user() };
+            let done = check(&args.check, None, store.as_ref());
+            store.iter().for_each(Store::tidy);
+            done
+        }
         Command::Unmark(args) => unmark(args),
         Command::List(args) => list(args),
+        Command::Verify(args) => verify::verify(args),
+        Command::Compare(args) => compare::compare(args),
+        Command::Watch(args) => watch::watch(args),
+        Command::Demo(args) => demo(args),
+        Command::Completions(args) => Ok(manual::completions(args.shell)),
+        Command::Manual => manual::manual(),
         Command::Schema => json::schema().map(|schema| {
             say(&schema);
             0
@@ -45,7 +93,7 @@ pub fn run() -> ExitCode {
 }
 
 /// `check`, and `mark` when a place for the copies is given (which may be "beside each drawing").
-fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
+fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -> Result<u8, Refusal> {
     let environment = Environment::of_process()?;
     let named = args.job.as_deref().map(Job::load).transpose()?;
     let drawings = paths::drawings(&args.drawings)?;
@@ -53,45 +101,63 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>) -> Result<u8, Refusal> {
         Some(output) => Some(paths::targets(&args.drawings, &drawings, output)?),
         None => None,
     };
-    if let Some(JsonTarget::File(target)) = &args.json {
-        file::may_write(target, &borrowed(&drawings), &json_may_replace(args.force))?;
-    }
-    let runs: Vec<Run> = drawings
-        .iter()
-        .enumerate()
-        .map(|(i, drawing)| match &targets {
-            Some(targets) => {
-                let target = Target { output: targets[i].clone(), force: args.force };
-                flow::mark(drawing, named.as_ref(), &target, environment)
-            }
-            None => flow::check(drawing, named.as_ref(), environment),
-        })
-        .collect();
-    let document = Document {
-        contract: CONTRACT,
-        tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
-        runs,
+    let copies: Vec<PathBuf> = match &targets {
+        Some(targets) => drawings
+            .iter()
+            .zip(targets)
+            .map(|(drawing, target)| target.clone().unwrap_or_else(|| flow::beside(drawing)))
+            .collect(),
+        None => Vec::new(),
     };
+    let outputs = Outputs::plan(args, &drawings, &copies)?;
+    let runs = all(&drawings, args.jobs, |i, drawing| match &targets {
+        Some(targets) => {
+            let target = Target { output: targets[i].clone(), force: args.force };
+            flow::mark(drawing, named.as_ref(), &target, environment)
+        }
+        None => store::check(drawing, named.as_ref(), environment, store),
+    })?;
+    let document = document(runs);
     let on_stdout = args.json != Some(JsonTarget::Stdout);
     let style = terminal::Style { width: width(on_stdout), colour: colour(on_stdout), verbose: args.verbose };
     let summary = terminal::summary(&document, &style);
-    match &args.json {
-        None => say_results(&document, &summary),
-        Some(JsonTarget::Stdout) => {
-            say(&json::to_json(&document)?);
-            tell(&summary);
-        }
-        Some(JsonTarget::File(target)) => {
-            let text = json::to_json(&document)?;
-            file::write_whole(target, &borrowed(&drawings), &json_may_replace(args.force), |out| {
-                out.write_all(text.as_bytes()).map_err(|error| {
-                    Refusal::new("write", format!("{}: {error}", target.display()), "Look at the space left.")
-                })
-            })?;
-            say_results(&document, &summary);
-        }
+    outputs.write(&document, environment)?;
+    if on_stdout {
+        say_results(&document, &summary);
+    } else {
+        say(&json::to_json(&document)?);
+        tell(&summary);
     }
     Ok(document.runs.iter().map(status).max_by_key(|s| severity(*s)).unwrap_or(REFUSED))
+}
+
+fn document(runs: Vec<Run>) -> Document {
+    Document {
+        contract: CONTRACT,
+        tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
+        runs,
+    }
+}
+
+/// The runs of all drawings, in their order, with the progress told on the way.
+fn all(
+    drawings: &[PathBuf],
+    jobs: Option<NonZeroUsize>,
+    one: impl Fn(usize, &Path) -> Run + Sync,
+) -> Result<Vec<Run>, Refusal> {
+    let mut progress = Progress::new(drawings.len());
+    let runs = batch::in_order(
+        drawings.len(),
+        jobs.unwrap_or_else(batch::processors),
+        |i| one(i, &drawings[i]),
+        |i, refusal| flow::refused_unread(&drawings[i], refusal),
+        |event| match event {
+            Event::Done(run) => progress.step(run.error.is_some()),
+            Event::Tick => progress.tick(),
+        },
+    );
+    progress.end();
+    runs
 }
 
 /// Results go to stdout; a run that was refused is told on stderr.
@@ -122,7 +188,24 @@ fn unmark(args: &UnmarkArgs) -> Result<u8, Refusal> {
 fn list(args: &ListArgs) -> Result<u8, Refusal> {
     let named = args.job.as_deref().map(Job::load).transpose()?;
     let listing = flow::list(&args.drawing, named.as_ref())?;
+    if let Some(target) = &args.write_job {
+        starter::write(&args.drawing, named.as_ref(), &listing, Environment::of_process()?, target)?;
+    }
     say(&listing::text(&listing));
+    if let Some(target) = &args.write_job {
+        let name = plain(&target.display().to_string());
+        say(&format!("job file to begin with: {name}; read it, state a limit, then check\n"));
+    }
+    Ok(0)
+}
+
+fn demo(args: &DemoArgs) -> Result<u8, Refusal> {
+    let written = demo::write(&args.folder)?;
+    for file in &written {
+        say(&format!("{}\n", plain(&file.display().to_string())));
+    }
+    let folder = plain(&args.folder.display().to_string());
+    say(&format!("Next: thrustmark check {folder}\n"));
     Ok(0)
 }
 
@@ -144,6 +227,35 @@ fn severity(status: u8) -> u8 {
         1 => 2,
         _ => 3,
     }
+}
+
+fn write_json(target: &Path, sources: &[&Path], force: bool, text: &str) -> Result<(), Refusal> {
+    file::write_whole(target, sources, &json_may_replace(force), |out| {
+        out.write_all(text.as_bytes()).map_err(|error| {
+            Refusal::new("write", format!("{}: {error}", target.display()), "Look at the space left.")
+        })
+    })
+}
+
+/// A document of one result that is no run: contract and tool as in the results, then the result under its name, or the
+/// error.
+fn document_of(name: &str, result: Result<&impl Serialize, &Refusal>) -> Result<String, Refusal> {
+    let value = |v: Result<serde_json::Value, serde_json::Error>| {
+        v.map_err(|e| {
+            Refusal::new("json", format!("the result could not be written as JSON: {e}"), "Please report it.")
+        })
+    };
+    let (result, error) = match result {
+        Ok(result) => (value(serde_json::to_value(result))?, serde_json::Value::Null),
+        Err(refusal) => (serde_json::Value::Null, value(serde_json::to_value(refusal))?),
+    };
+    let document = serde_json::json!({
+        "contract": CONTRACT,
+        "tool": {"name": env!("CARGO_PKG_NAME"), "version": env!("CARGO_PKG_VERSION")},
+        name: result,
+        "error": error,
+    });
+    Ok(format!("{document:#}\n"))
 }
 
 /// A results file may replace another JSON document of this tool, and anything with `--force`.

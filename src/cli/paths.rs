@@ -97,6 +97,19 @@ pub fn targets(
                 "Mark them in two runs, with an --output of their own.",
             ));
         }
+        // A copy that is read by the same run as a drawing would be read before or after it is written.
+        let read = drawings.iter().find(|other| same_file::is_same_file(other, &target).unwrap_or(false));
+        if let Some(other) = read {
+            return Err(Refusal::new(
+                "output-is-source",
+                format!(
+                    "The marked copy of {} would be written over {}, which is read in the same run",
+                    drawing.display(),
+                    other.display()
+                ),
+                "Leave one of them out, or name another place with --output.",
+            ));
+        }
     }
     Ok(targets)
 }

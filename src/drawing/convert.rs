@@ -1,4 +1,6 @@
-//! Typed entities of the `dxf` crate to curves, points and texts in the plane of the drawing.
+//! Typed entities of the `dxf` crate to curves, points and texts in the plane that is looked at.
+
+use std::f64::consts::TAU;
 
 use dxf::entities::{Entity, EntityType};
 use dxf::enums::{
@@ -6,9 +8,11 @@ use dxf::enums::{
 };
 
 use super::entity::{Attribute, Curve, PointLike, Source, Text};
+use super::lay::{self, Laid};
+use super::nurbs::Nurbs;
 use super::ocs::Frame;
 use super::{read, text};
-use crate::geometry::{Point, Segment, Vec2};
+use crate::geometry::{Affine, Point, Segment, Vec2};
 use crate::refusal::Refusal;
 use crate::tags::{Decoder, Record};
 use crate::tolerance;
@@ -20,42 +24,62 @@ pub fn source(record: &Record) -> Source {
         kind: record.kind.clone(),
         layer: record.layer.clone(),
         line: record.line,
-        path: Vec::new(),
+        path: record.placement.as_ref().map_or_else(Vec::new, |p| p.path.clone()),
     }
+}
+
+/// How a record lies in what it is read for.
+fn placement(record: &Record) -> Affine {
+    record.placement.as_ref().map_or(Affine::IDENTITY, |p| p.map)
 }
 
 /// The curve that a record draws; `None` when it is none (a mesh, a point).
 ///
 /// # Errors
-/// When it cannot be read or does not lie flat in the x-y plane of the drawing.
+/// When it cannot be read or does not lie flat in the plane that is looked at.
 pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusal> {
     let entity = read::entity(record, decoder)?;
     let source = source(record);
-    let (pieces, closed, z) = match &entity.specific {
+    let place = placement(record);
+    let (laid, closed) = match &entity.specific {
         EntityType::Line(line) => {
-            let z = level(&source, [line.p1.z, line.p2.z], &flat(&line.p1), &flat(&line.p2))?;
-            (vec![Segment::line(flat(&line.p1), flat(&line.p2))], false, z)
+            (lay::chain(&source, &[place.point(xyz(&line.p1)), place.point(xyz(&line.p2))])?, false)
         }
         EntityType::Arc(arc) => {
-            let frame = frame(&source, &arc.normal)?;
+            let map = place.after(&frame(&source, &arc.normal)?.map());
             let sweep = (arc.end_angle - arc.start_angle).rem_euclid(360.0);
             let closed = sweep <= 0.0;
             let sweep = if closed { 360.0 } else { sweep };
             let piece = circle(&source, &arc.center, arc.radius, arc.start_angle, sweep)?;
-            (lay(&source, &frame, &[piece])?, closed, frame.world(xyz(&arc.center))[2])
+            (lay::flat(&source, &map, arc.center.z, &[piece])?, closed)
         }
-        EntityType::Circle(circle_entity) => {
-            let frame = frame(&source, &circle_entity.normal)?;
-            let piece = circle(&source, &circle_entity.center, circle_entity.radius, 0.0, 360.0)?;
-            (lay(&source, &frame, &[piece])?, true, frame.world(xyz(&circle_entity.center))[2])
+        EntityType::Circle(round) => {
+            let map = place.after(&frame(&source, &round.normal)?.map());
+            let piece = circle(&source, &round.center, round.radius, 0.0, 360.0)?;
+            (lay::flat(&source, &map, round.center.z, &[piece])?, true)
+        }
+        EntityType::Ellipse(ellipse) => {
+            let sweep = (ellipse.end_parameter - ellipse.start_parameter).rem_euclid(TAU);
+            let closed = sweep <= tolerance::SAME_ANGLE || TAU - sweep <= tolerance::SAME_ANGLE;
+            let map = place.after(&unit_circle(&source, ellipse)?);
+            let arc = Segment::Arc {
+                centre: Point::ORIGIN,
+                radius: 1.0,
+                start_angle: ellipse.start_parameter,
+                sweep: if closed { TAU } else { sweep },
+            };
+            (lay::flat(&source, &map, 0.0, &[arc])?, closed)
+        }
+        EntityType::Spline(spline) => {
+            let nurbs = Nurbs::new(&source, spline, &place)?;
+            (nurbs.laid(&source)?, nurbs.closes())
         }
         EntityType::LwPolyline(poly) => {
-            let frame = frame(&source, &poly.extrusion_direction)?;
+            let map = place.after(&frame(&source, &poly.extrusion_direction)?.map());
             let vertices: Vec<(Point, f64)> =
                 poly.vertices.iter().map(|v| (Point::new(v.x, v.y), v.bulge)).collect();
-            let pieces = lay(&source, &frame, &bulged(&vertices, poly.is_closed()))?;
-            let z = frame.world([0.0, 0.0, entity.common.elevation])[2];
-            (pieces, poly.is_closed(), z)
+            let pieces = bulged(&vertices, poly.is_closed());
+            (lay::flat(&source, &map, entity.common.elevation, &pieces)?, poly.is_closed())
         }
         EntityType::Polyline(poly) => {
             if poly.is_3d_polygon_mesh() || poly.is_polyface_mesh() {
@@ -63,22 +87,24 @@ pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusa
             }
             // Control points of a fitted spline are only its frame.
             let vertices: Vec<_> = poly.vertices().filter(|v| !v.is_spline_frame_control_point()).collect();
-            let places: Vec<(Point, f64)> = vertices.iter().map(|v| (flat(&v.location), v.bulge)).collect();
             if poly.is_3d_polyline() {
-                let mut z = vertices.first().map_or(0.0, |v| v.location.z);
-                for pair in vertices.windows(2) {
-                    let (a, b) = (&pair[0].location, &pair[1].location);
-                    z = level(&source, [a.z, b.z], &flat(a), &flat(b))?;
+                let mut points: Vec<[f64; 3]> =
+                    vertices.iter().map(|v| place.point(xyz(&v.location))).collect();
+                if poly.is_closed() && points.len() > 1 {
+                    points.extend(points.first().copied());
                 }
-                (bulged(&places, poly.is_closed()), poly.is_closed(), z)
+                (lay::chain(&source, &points)?, poly.is_closed())
             } else {
-                let frame = frame(&source, &poly.normal)?;
-                let pieces = lay(&source, &frame, &bulged(&places, poly.is_closed()))?;
-                (pieces, poly.is_closed(), frame.world([0.0, 0.0, poly.location.z])[2])
+                let places: Vec<(Point, f64)> =
+                    vertices.iter().map(|v| (flat(&v.location), v.bulge)).collect();
+                let map = place.after(&frame(&source, &poly.normal)?.map());
+                let pieces = bulged(&places, poly.is_closed());
+                (lay::flat(&source, &map, poly.location.z, &pieces)?, poly.is_closed())
             }
         }
         _ => return Ok(None),
     };
+    let Laid { pieces, z, fitted } = laid;
     if pieces.iter().any(|p| !p.length().is_finite()) {
         return Err(source.refuse(
             "entity-number",
@@ -86,7 +112,65 @@ pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusa
             "Redraw the entity",
         ));
     }
-    Ok(Some(Curve { source, pieces, closed, z }))
+    Ok(Some(Curve { source, pieces, closed, z, fitted }))
+}
+
+/// Some points of the curve that a record draws, in space, enough of them to tell its plane; none for what is no curve.
+///
+/// # Errors
+/// When it cannot be read.
+pub fn places(record: &Record, decoder: &Decoder) -> Result<Vec<[f64; 3]>, Refusal> {
+    let entity = read::entity(record, decoder)?;
+    let source = source(record);
+    let place = placement(record);
+    let round = |map: &Affine, centre: &dxf::Point, radius: f64, start: f64, sweep: f64| -> Vec<[f64; 3]> {
+        let at = |part: f64| {
+            let angle = start + sweep * part;
+            map.point([centre.x + radius * angle.cos(), centre.y + radius * angle.sin(), centre.z])
+        };
+        vec![at(0.0), at(0.5), at(1.0)]
+    };
+    Ok(match &entity.specific {
+        EntityType::Line(line) => vec![place.point(xyz(&line.p1)), place.point(xyz(&line.p2))],
+        EntityType::Arc(arc) => {
+            let map = place.after(&frame(&source, &arc.normal)?.map());
+            let sweep = (arc.end_angle - arc.start_angle).rem_euclid(360.0).to_radians();
+            round(&map, &arc.center, arc.radius, arc.start_angle.to_radians(), sweep)
+        }
+        EntityType::Ellipse(ellipse) => {
+            let map = place.after(&unit_circle(&source, ellipse)?);
+            let sweep = ellipse.end_parameter - ellipse.start_parameter;
+            round(&map, &dxf::Point::origin(), 1.0, ellipse.start_parameter, sweep)
+        }
+        EntityType::Spline(spline) => spline.control_points.iter().map(|p| place.point(xyz(p))).collect(),
+        EntityType::LwPolyline(poly) => {
+            let map = place.after(&frame(&source, &poly.extrusion_direction)?.map());
+            poly.vertices.iter().map(|v| map.point([v.x, v.y, entity.common.elevation])).collect()
+        }
+        EntityType::Polyline(poly) => {
+            let map =
+                if poly.is_3d_polyline() { place } else { place.after(&frame(&source, &poly.normal)?.map()) };
+            let height = |v: &dxf::entities::Vertex| {
+                if poly.is_3d_polyline() { v.location.z } else { poly.location.z }
+            };
+            let vertices = poly.vertices().filter(|v| !v.is_spline_frame_control_point());
+            vertices.map(|v| map.point([v.location.x, v.location.y, height(v)])).collect()
+        }
+        _ => Vec::new(),
+    })
+}
+
+/// The map that makes the ellipse of a circle of radius 1 about the origin.
+fn unit_circle(source: &Source, ellipse: &dxf::entities::Ellipse) -> Result<Affine, Refusal> {
+    let major = [ellipse.major_axis.x, ellipse.major_axis.y, ellipse.major_axis.z];
+    // Its own axes only for the direction of the normal; the major axis is given in the drawing's.
+    let normal = frame(source, &ellipse.normal)?.map().vector([0.0, 0.0, 1.0]);
+    let minor = cross(normal, major).map(|c| c * ellipse.minor_axis_ratio);
+    Ok(Affine { offset: xyz(&ellipse.center), ..Affine::of_columns(major, minor, normal) })
+}
+
+fn cross(a: [f64; 3], b: [f64; 3]) -> [f64; 3] {
+    [a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]]
 }
 
 /// The point that a record stands for; `None` when it stands for none.
@@ -96,16 +180,19 @@ pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusa
 pub fn point(record: &Record, decoder: &Decoder) -> Result<Option<PointLike>, Refusal> {
     let entity = read::entity(record, decoder)?;
     let source = source(record);
+    let place = placement(record);
     let mut attributes = Vec::new();
     let at = match &entity.specific {
-        EntityType::ModelPoint(point) => xyz(&point.location),
-        EntityType::Circle(circle) => frame(&source, &circle.normal)?.world(xyz(&circle.center)),
+        EntityType::ModelPoint(point) => place.point(xyz(&point.location)),
+        EntityType::Circle(circle) => {
+            place.point(frame(&source, &circle.normal)?.map().point(xyz(&circle.center)))
+        }
         EntityType::Insert(insert) => {
             attributes.extend(insert.attributes().map(|a| Attribute {
                 tag: a.attribute_tag.trim().to_owned(),
                 value: text::plain_line(&a.value).trim().to_owned(),
             }));
-            frame(&source, &insert.extrusion_direction)?.world(xyz(&insert.location))
+            place.point(frame(&source, &insert.extrusion_direction)?.map().point(xyz(&insert.location)))
         }
         _ => return Ok(None),
     };
@@ -131,7 +218,7 @@ fn line_text(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
     let EntityType::Text(t) = &entity.specific else {
         return Err(source.refuse("entity", "it is no text", "Redraw the entity"));
     };
-    let frame = frame(&source, &t.normal)?;
+    let map = placement(record).after(&frame(&source, &t.normal)?.map());
     let says = text::plain_line(&t.value);
     let height = t.text_height.abs();
     let factor = if t.relative_x_scale_factor > 0.0 { t.relative_x_scale_factor } else { 1.0 };
@@ -140,7 +227,7 @@ fn line_text(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
         && (t.horizontal_text_justification != Across::Left
             || t.vertical_text_justification != Upright::Baseline);
     let place = if aligned { &t.second_alignment_point } else { &t.location };
-    let at = frame.world(xyz(place));
+    let at = map.point(xyz(place));
     let across = match t.horizontal_text_justification {
         _ if !aligned => (0.0, width),
         Across::Left => (0.0, width),
@@ -149,7 +236,7 @@ fn line_text(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
         // Fitted between its two points; the second one is the anchor.
         Across::Aligned | Across::Fit => ((flat(&t.second_alignment_point) - flat(&t.location)).hypot(), 0.0),
     };
-    let mut upright = match (aligned, t.horizontal_text_justification, t.vertical_text_justification) {
+    let upright = match (aligned, t.horizontal_text_justification, t.vertical_text_justification) {
         (true, Across::Middle, _) | (true, _, Upright::Middle) => (height / 2.0, height / 2.0),
         (true, _, Upright::Top) => (height, 0.0),
         _ => (0.0, height),
@@ -160,12 +247,9 @@ fn line_text(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
         }
         _ => t.rotation.to_radians(),
     };
-    let along = direction(&source, &frame, angle)?;
-    // Seen from behind, up lies on the other side of the direction of writing.
-    if frame.facing() == Some(-1.0) {
-        upright = (upright.1, upright.0);
-    }
-    Ok(Text { source, text: says, anchor: Point::new(at[0], at[1]), height, along, across, upright })
+    let laid =
+        Writing::new(&source, &map, [angle.cos(), angle.sin(), 0.0], [-angle.sin(), angle.cos(), 0.0])?;
+    Ok(laid.text(source, says, Point::new(at[0], at[1]), height, across, upright))
 }
 
 fn paragraph(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
@@ -195,30 +279,73 @@ fn paragraph(entity: &Entity, record: &Record) -> Result<Text, Refusal> {
         A::MiddleLeft | A::MiddleCenter | A::MiddleRight => (tall / 2.0, tall / 2.0),
         A::BottomLeft | A::BottomCenter | A::BottomRight => (0.0, tall),
     };
-    // Place and direction of a paragraph are given in drawing coordinates, unlike those of a text.
-    frame(&source, &t.extrusion_direction)?;
-    let direction = Vec2::new(t.x_axis_direction.x, t.x_axis_direction.y);
-    let along = if record.tags.first(11).is_some() && direction.hypot() > 0.0 && t.rotation_angle.abs() <= 0.0
-    {
-        direction.normalize()
+    // The place of a paragraph is given in drawing coordinates, unlike that of a text; so is its direction, while an angle
+    // is measured in its own plane.
+    let own = frame(&source, &t.extrusion_direction)?.map();
+    let place = placement(record);
+    let direction = [t.x_axis_direction.x, t.x_axis_direction.y, t.x_axis_direction.z];
+    let length = direction.iter().map(|c| c * c).sum::<f64>().sqrt();
+    let along = if record.tags.first(11).is_some() && length > 0.0 && t.rotation_angle.abs() <= 0.0 {
+        direction.map(|c| c / length)
     } else {
-        Vec2::from_angle(t.rotation_angle.to_radians())
+        let angle = t.rotation_angle.to_radians();
+        own.vector([angle.cos(), angle.sin(), 0.0])
     };
-    Ok(Text { source, text: says, anchor: flat(&t.insertion_point), height, along, across, upright })
+    let up = cross(own.vector([0.0, 0.0, 1.0]), along);
+    let laid = Writing::new(&source, &place, along, up)?;
+    let at = place.point(xyz(&t.insertion_point));
+    Ok(laid.text(source, says, Point::new(at[0], at[1]), height, across, upright))
+}
+
+/// How the letters of a text lie in the plane that is looked at.
+struct Writing {
+    along: Vec2,
+    /// By how much letters are wider, and higher.
+    stretch: [f64; 2],
+    /// Seen from behind, up lies on the other side of the direction of writing.
+    behind: bool,
+}
+
+impl Writing {
+    fn new(source: &Source, map: &Affine, along: [f64; 3], up: [f64; 3]) -> Result<Self, Refusal> {
+        let (a, u) = (map.vector(along), map.vector(up));
+        let (flat_a, flat_u) = (Vec2::new(a[0], a[1]), Vec2::new(u[0], u[1]));
+        let wide = flat_a.hypot();
+        let area = flat_a.cross(flat_u);
+        let tilt = lay::STEEPEST * wide.max(flat_u.hypot());
+        if a[2].abs() > tilt || u[2].abs() > tilt || area == 0.0 || !area.is_finite() {
+            return Err(lay::not_flat(source));
+        }
+        let along = if wide.to_bits() == 1.0f64.to_bits() { flat_a } else { flat_a / wide };
+        Ok(Self { along, stretch: [wide, area.abs() / wide], behind: area < 0.0 })
+    }
+
+    fn text(
+        &self,
+        source: Source,
+        text: String,
+        anchor: Point,
+        height: f64,
+        across: (f64, f64),
+        upright: (f64, f64),
+    ) -> Text {
+        let [wide, high] = self.stretch;
+        let upright = if self.behind { (upright.1, upright.0) } else { upright };
+        Text {
+            source,
+            text,
+            anchor,
+            height: height * high,
+            along: self.along,
+            across: (across.0 * wide, across.1 * wide),
+            upright: (upright.0 * high, upright.1 * high),
+        }
+    }
 }
 
 /// Letters of a line, each in units of the height.
 fn letters(line: &str) -> f64 {
     line.chars().count() as f64 * tolerance::LETTER_WIDTH
-}
-
-/// Direction of a text in the drawing.
-fn direction(source: &Source, frame: &Frame, angle: f64) -> Result<Vec2, Refusal> {
-    if frame.facing().is_none() {
-        return Err(not_flat(source));
-    }
-    let d = frame.world([angle.cos(), angle.sin(), 0.0]);
-    Ok(Vec2::new(d[0], d[1]).normalize())
 }
 
 fn flat(p: &dxf::Point) -> Point {
@@ -229,39 +356,15 @@ fn xyz(p: &dxf::Point) -> [f64; 3] {
     [p.x, p.y, p.z]
 }
 
-/// The entity's own axes, when it lies flat in the drawing.
+/// The entity's own axes.
 fn frame(source: &Source, normal: &dxf::Vector) -> Result<Frame, Refusal> {
-    let frame = Frame::of_normal([normal.x, normal.y, normal.z]).ok_or_else(|| {
+    Frame::of_normal([normal.x, normal.y, normal.z]).ok_or_else(|| {
         source.refuse(
             "entity-number",
             format!("the normal of the {} has no length", source.kind),
             "Redraw the entity",
         )
-    })?;
-    match frame.facing() {
-        Some(_) => Ok(frame),
-        None => Err(not_flat(source)),
-    }
-}
-
-fn not_flat(source: &Source) -> Refusal {
-    source.refuse(
-        "not-flat",
-        format!(
-            "the {} does not lie in the x-y plane of the drawing: only elevations drawn in that plane are read",
-            source.kind
-        ),
-        "Draw the elevation flat, x to the right and y upward",
-    )
-}
-
-/// Height of a straight piece above the x-y plane, which must be the same at both ends.
-fn level(source: &Source, z: [f64; 2], a: &Point, b: &Point) -> Result<f64, Refusal> {
-    let rise = (z[1] - z[0]).abs();
-    if rise > tolerance::FLAT * (*b - *a).hypot().hypot(rise) {
-        return Err(not_flat(source));
-    }
-    Ok(z[0])
+    })
 }
 
 /// A circular piece, angles in degrees.
@@ -298,8 +401,4 @@ fn bulged(vertices: &[(Point, f64)], closed: bool) -> Vec<Segment> {
 
 fn bend(start: Point, end: Point, bulge: f64) -> Segment {
     if (end - start).hypot() > 0.0 { Segment::bulge(start, end, bulge) } else { Segment::line(start, end) }
-}
-
-fn lay(source: &Source, frame: &Frame, pieces: &[Segment]) -> Result<Vec<Segment>, Refusal> {
-    pieces.iter().map(|p| frame.flat_segment(p).ok_or_else(|| not_flat(source))).collect()
 }

@@ -26,6 +26,9 @@ impl Source {
         let mut refusal =
             Refusal::new(check, message, remedy).at_handle(self.handle.clone()).on_layer(self.layer.clone());
         refusal.line = self.line;
+        if !self.path.is_empty() {
+            refusal.message = format!("{} (in block {})", refusal.message, self.path.join(" in "));
+        }
         refusal
     }
 
@@ -50,8 +53,10 @@ pub struct Curve {
     pub pieces: Vec<Segment>,
     /// Whether the entity closes on itself (a closed polyline, a circle).
     pub closed: bool,
-    /// Height of its plane above the drawing's x-y plane.
+    /// Height of its plane above the plane through the drawing's origin that it is read in.
     pub z: f64,
+    /// Whether its arcs stand for a curve that is none, to [`crate::tolerance::CURVE_FIT`].
+    pub fitted: bool,
 }
 
 /// A thing that stands for a point.
@@ -61,7 +66,7 @@ pub struct PointLike {
     pub source: Source,
     /// The point: of a POINT its place, of a CIRCLE its centre, of an INSERT its insertion point.
     pub at: Point,
-    /// Height above the drawing's x-y plane.
+    /// Height above the plane through the drawing's origin that it is read in.
     pub z: f64,
     /// Attributes of an INSERT.
     pub attributes: Vec<Attribute>,

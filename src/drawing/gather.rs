@@ -1,22 +1,23 @@
 //! One drawing from its bytes: layers chosen, their entities read, everything left aside told.
 
-use std::collections::BTreeMap;
+use std::borrow::Cow;
 
 use super::entity::{Curve, PointLike, Source, Text};
 use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
 use super::roles::{self, CURVES, POINTS};
-use super::{Drawing, convert, names, unit, viewport};
+use super::space::View;
+use super::{Drawing, blocks, convert, names, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
 use crate::refusal::Refusal;
 use crate::tags::{self, Candidate, Options, Outline, Record, fold};
 use crate::tolerance;
 
-/// Curves that are not read yet.
-const UNREAD: [&str; 5] = ["SPLINE", "ELLIPSE", "HELIX", "MLINE", "CIRCLE"];
+/// Curves that make no axis.
+const UNREAD: [&str; 3] = ["HELIX", "MLINE", "CIRCLE"];
 
-/// Whether the first scan of a drawing keeps a record: everything on the layers of axis and loads, by their patterns or, where
+/// Whether the first scan of a drawing keeps a record: everything on the layers of axis, ring lines, hinges and loads, by their patterns or, where
 /// the job names none, by words in their names.
 pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     let stated = |role: Role| settings.states(&format!("layers.{}", role.key()));
@@ -24,7 +25,10 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
         return true;
     }
     match settings.layers.role_of(candidate.layer) {
-        Ok(Some(JobRole::Axis | JobRole::Loads)) | Err(_) => true,
+        Ok(Some(
+            JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+        ))
+        | Err(_) => true,
         Ok(_) => {
             candidate.block.is_none()
                 && ((!stated(Role::Axis)
@@ -53,16 +57,82 @@ pub fn read_outlined(
     outline: &Outline,
     settings: &Settings,
 ) -> Result<Drawing, Refusal> {
-    let notes = outline.notes.iter().cloned().map(Note::File).collect();
-    let mut reader = Reader { bytes, outline, settings, notes };
-    let (axis_layers, axis) = reader.axis()?;
-    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, &axis)?;
-    reader.one_plane(&axis, &points)?;
-    reader.hidden(axis_layers.iter().chain(&load_layers));
+    let mut notes: Vec<Note> = outline.notes.iter().cloned().map(Note::File).collect();
+    let outline = blocks::expanded(bytes, outline, settings, &mut notes)?;
+    let look = |view: View| read_seen(bytes, &outline, settings, view, notes.clone());
+    if let Some(view) = View::stated(settings.drawing.plane) {
+        return look(view).map_err(|e| reference::explained(e, &outline, settings));
+    }
+    match look(View::XY) {
+        Ok(drawing) => Ok(drawing),
+        Err(refusal) if matches!(refusal.check.as_str(), "not-flat" | "no-axis") => {
+            let found = upright(&outline, settings)?.into_iter().find_map(|view| {
+                let mut drawing = look(view).ok()?;
+                drawing.notes.push(Note::PlaneGuessed { plane: view.name() });
+                Some(drawing)
+            });
+            found.ok_or_else(|| reference::explained(refusal, &outline, settings))
+        }
+        Err(refusal) => Err(reference::explained(refusal, &outline, settings)),
+    }
+}
+
+/// Upright planes to look at when the axis does not lie in the drawing's x-y plane: the one it lies in where layers are named,
+/// else those along the drawing's own axes.
+fn upright(outline: &Outline, settings: &Settings) -> Result<Vec<View>, Refusal> {
+    let mut points = Vec::new();
+    for record in outline.records.iter().filter(|r| r.block.is_none() && !r.ours && !r.in_paper_space()) {
+        if CURVES.contains(&record.kind.as_str())
+            && matches!(
+                roles::role_of(settings, &record.layer)?,
+                Some(JobRole::Axis | JobRole::Intrados | JobRole::Extrados)
+            )
+        {
+            points.extend(convert::places(record, &outline.decoder)?);
+        }
+    }
+    if points.is_empty() {
+        return Ok(vec![View::XZ, View::YZ]);
+    }
+    Ok(View::through(&points).into_iter().filter(|v| *v != View::XY).collect())
+}
+
+/// Reads a drawing as it is seen in one plane.
+fn read_seen(
+    bytes: &tags::Source,
+    outline: &Outline,
+    settings: &Settings,
+    view: View,
+    notes: Vec<Note>,
+) -> Result<Drawing, Refusal> {
+    let mut seen = Cow::Borrowed(outline);
+    if view != View::XY {
+        view.look(&mut seen.to_mut().records);
+    }
+    let outline = &*seen;
+    let mut reader = Reader { bytes, outline, settings, view, notes };
+    let [(intrados_layers, intrados), (extrados_layers, extrados)] = reader.ring_lines()?;
+    let (axis_layers, axis) = reader.axis(!intrados.is_empty())?;
+    // Where no axis is drawn, the ring lines stand for it.
+    let outline_of = if axis.is_empty() { [&intrados[..], &extrados[..]].concat() } else { axis.clone() };
+    let at = if axis.is_empty() { &intrados } else { &axis };
+    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, at)?;
+    reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points)?;
+    reader.hidden(axis_layers.iter().chain(&load_layers).chain(&intrados_layers).chain(&extrados_layers));
+    let hinge_layers = roles::named(outline, settings, Role::Hinges, &POINTS)?;
+    let (hinges, _) = reader.points(&hinge_layers, &outline.records)?;
+    reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
+    reader.hidden(hinge_layers.iter());
     reader.parts_not_read()?;
-    reader.in_blocks(&axis_layers, &load_layers)?;
+    reader.not_read(&axis_layers, &load_layers);
+    reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
+    reader.passed_over(Role::Extrados, &extrados_layers, &CURVES);
+    let fitted = axis.iter().chain(&intrados).chain(&extrados).filter(|c| c.fitted);
+    reader
+        .notes
+        .extend(fitted.map(|c| Note::CurveFitted { source: c.source.clone(), pieces: c.pieces.len() }));
     let number = |name| outline.header(name, 70).and_then(|v| v.parse().ok());
-    let (left, right) = extent(&axis);
+    let (left, right) = extent(&outline_of);
     let unit = unit::decide(
         settings.drawing.unit,
         settings.drawing.scale,
@@ -71,8 +141,27 @@ pub fn read_outlined(
         right - left,
         &mut reader.notes,
     );
-    let viewports = outline.records.iter().filter_map(viewport::viewport).collect();
-    Ok(Drawing { unit, axis_layers, load_layers, axis, points, texts, viewports, notes: reader.notes })
+    let plane = view.plane(outline_of.first().map_or(0.0, |c| c.z));
+    let viewports: Vec<_> = outline.records.iter().filter_map(|r| viewport::viewport(r, &plane)).collect();
+    let (low, high) = corners(&outline_of);
+    if !viewports.is_empty() && !viewports.iter().any(|v| v.shows(low, high) == viewport::Shown::Whole) {
+        let part = viewports.iter().filter(|v| v.shows(low, high) == viewport::Shown::Part).count();
+        reader.notes.push(Note::NotInLayouts { viewports: viewports.len(), part });
+    }
+    Ok(Drawing {
+        unit,
+        plane,
+        axis_layers,
+        load_layers,
+        axis,
+        intrados,
+        extrados,
+        points,
+        hinges,
+        texts,
+        viewports,
+        notes: reader.notes,
+    })
 }
 
 /// The layers of the loads with what they hold.
@@ -83,21 +172,53 @@ struct LoadLayers {
     texts: Vec<Text>,
 }
 
+/// Layers with the curves on them.
+type Layered = (Vec<String>, Vec<Curve>);
+
 struct Reader<'a> {
     bytes: &'a tags::Source,
     outline: &'a Outline,
     settings: &'a Settings,
+    view: View,
     notes: Vec<Note>,
 }
 
 impl Reader<'_> {
-    /// The axis: by the patterns, else guessed by name and content, else by content.
-    fn axis(&mut self) -> Result<(Vec<String>, Vec<Curve>), Refusal> {
+    /// Intrados and extrados by the patterns; both or none.
+    fn ring_lines(&mut self) -> Result<[Layered; 2], Refusal> {
+        let read = |role: Role| -> Result<(Vec<String>, Vec<Curve>), Refusal> {
+            let layers = roles::named(self.outline, self.settings, role, &CURVES)?;
+            let curves = self.curves(&layers, &self.outline.records)?;
+            self.refuse_unread(&layers, role)?;
+            Ok((layers, curves))
+        };
+        let lines = [read(Role::Intrados)?, read(Role::Extrados)?];
+        match &lines {
+            [(inner, _), (outer, _)] if inner.is_empty() != outer.is_empty() => {
+                let (have, lack) =
+                    if outer.is_empty() { ("intrados", "extrados") } else { ("extrados", "intrados") };
+                let layer = inner.iter().chain(outer).next().cloned().unwrap_or_default();
+                Err(Refusal::new(
+                    "ring-half",
+                    format!("layer {layer} holds the {have}, and no layer holds the {lack}: a ring has both"),
+                    format!("Draw the {lack}, or name its layer with `[layers] {lack}`"),
+                )
+                .on_layer(layer))
+            }
+            _ => Ok(lines),
+        }
+    }
+
+    /// The axis: by the patterns, else (without ring lines) guessed by name and content, else by content.
+    fn axis(&mut self, ring: bool) -> Result<(Vec<String>, Vec<Curve>), Refusal> {
         let layers = roles::named(self.outline, self.settings, Role::Axis, &CURVES)?;
         if !layers.is_empty() {
             let curves = self.curves(&layers, &self.outline.records)?;
-            self.refuse_unread(&layers)?;
+            self.refuse_unread(&layers, Role::Axis)?;
             return Ok((layers, curves));
+        }
+        if ring {
+            return Ok((Vec::new(), Vec::new()));
         }
         // The best names first; among equals the one layer that holds a line from springing to springing.
         let by_name = roles::axis_by_name(self.outline);
@@ -222,7 +343,9 @@ impl Reader<'_> {
     }
 
     fn rescan(&self, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
-        rescan(self.bytes, layers, kinds)
+        let mut records = rescan(self.bytes, layers, kinds)?;
+        self.view.look(&mut records);
+        Ok(records)
     }
 
     /// The curves on some layers.
@@ -236,10 +359,10 @@ impl Reader<'_> {
         Ok(curves)
     }
 
-    /// Refuses curves on the layers of the axis that cannot be read: without them it would be another axis.
-    fn refuse_unread(&self, layers: &[String]) -> Result<(), Refusal> {
+    /// Refuses curves on the layers of axis or ring line that cannot be read: without them it would be another one.
+    fn refuse_unread(&self, layers: &[String], role: Role) -> Result<(), Refusal> {
         match in_model(&self.outline.records, layers).find(|r| UNREAD.contains(&r.kind.as_str())) {
-            Some(record) => Err(not_an_axis(record)),
+            Some(record) => Err(not_readable(record, role)),
             None => Ok(()),
         }
     }
@@ -273,13 +396,13 @@ impl Reader<'_> {
                 return Err(source.refuse(
                     "not-flat",
                     format!(
-                        "the {} lies at the height z = {z}, {} at z = {}: only elevations drawn flat in the x-y plane \
-                         are read",
+                        "the {} lies {z} over the {} plane through the origin, {} {}: an elevation is read in one plane",
                         source.kind,
+                        self.view.name(),
                         first.source.named(),
                         first.z
                     ),
-                    "Set the z of all entities of the elevation to the same value",
+                    "Move all entities of the elevation into one plane (in a flat drawing: the same z)",
                 ));
             }
         }
@@ -301,7 +424,10 @@ impl Reader<'_> {
         for layer in &self.outline.census {
             let count: u64 = layer.model.values().sum();
             let part = match roles::role_of(self.settings, &layer.name)? {
-                Some(role) if role != JobRole::Axis && role != JobRole::Loads => role.name(),
+                Some(
+                    JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+                ) => continue,
+                Some(role) => role.name(),
                 _ => continue,
             };
             if count > 0 {
@@ -311,34 +437,10 @@ impl Reader<'_> {
         Ok(())
     }
 
-    /// Tells what stands on the layers of axis and loads and was not read: other types, paper space, blocks.
-    fn in_blocks(&mut self, axis: &[String], loads: &[String]) -> Result<(), Refusal> {
+    /// Tells what stands on the layers of axis and loads and was not read: other types, paper space.
+    fn not_read(&mut self, axis: &[String], loads: &[String]) {
         self.passed_over(Role::Axis, axis, &CURVES);
         self.passed_over(Role::Loads, loads, &[&POINTS[..], &["TEXT", "MTEXT"]].concat());
-        let mut found: BTreeMap<(usize, Role, String), u64> = BTreeMap::new();
-        for record in self.outline.records.iter().filter(|r| !r.ours) {
-            let Some(block) = record.block else {
-                continue;
-            };
-            let role = match roles::role_of(self.settings, &record.layer)? {
-                Some(JobRole::Axis) if CURVES.contains(&record.kind.as_str()) => Role::Axis,
-                Some(JobRole::Loads) if POINTS.contains(&record.kind.as_str()) => Role::Loads,
-                _ => continue,
-            };
-            *found.entry((block, role, record.layer.clone())).or_default() += 1;
-        }
-        if found.is_empty() {
-            return Ok(());
-        }
-        // Only now is it worth going through the drawing again.
-        let inserted = tags::inserted(self.bytes, self.outline)?;
-        for ((block, role, layer), count) in found {
-            let block = self.outline.blocks[block].name.clone();
-            if inserted.contains(&fold(&block)) {
-                self.notes.push(Note::InBlock { role, block, layer, count });
-            }
-        }
-        Ok(())
     }
 
     fn passed_over(&mut self, role: Role, layers: &[String], read_kinds: &[&str]) {
@@ -393,31 +495,37 @@ pub(super) fn in_model<'r>(records: &'r [Record], layers: &[String]) -> impl Ite
     })
 }
 
-fn not_an_axis(record: &Record) -> Refusal {
+fn not_readable(record: &Record, role: Role) -> Refusal {
     let source: Source = convert::source(record);
     source.refuse(
         "axis-kind",
         format!(
-            "layer {} of the axis holds {} {}: the axis is read from LINE, ARC, LWPOLYLINE and POLYLINE only",
+            "layer {} of the {} holds a {}: it is read from LINE, ARC, LWPOLYLINE, POLYLINE, ELLIPSE and SPLINE",
             record.layer,
-            if matches!(record.kind.as_str(), "ELLIPSE" | "MLINE") { "an" } else { "a" },
+            role.key(),
             record.kind
         ),
-        "Draw the axis with lines, arcs and polylines, or move what is no part of it to another layer",
+        "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",
     )
 }
 
 /// Least and greatest x of the pieces' ends and middles.
 fn extent(curves: &[Curve]) -> (f64, f64) {
-    let mut low = f64::INFINITY;
-    let mut high = f64::NEG_INFINITY;
+    let (low, high) = corners(curves);
+    (low.x, high.x)
+}
+
+/// Corners of the box about the pieces' ends and middles.
+pub(super) fn corners(curves: &[Curve]) -> (Point, Point) {
+    let mut low = Point::new(f64::INFINITY, f64::INFINITY);
+    let mut high = Point::new(f64::NEG_INFINITY, f64::NEG_INFINITY);
     for piece in curves.iter().flat_map(|c| &c.pieces) {
         for p in [piece.start(), piece.point_at(piece.length() / 2.0), piece.end()] {
-            low = low.min(p.x);
-            high = high.max(p.x);
+            low = Point::new(low.x.min(p.x), low.y.min(p.y));
+            high = Point::new(high.x.max(p.x), high.y.max(p.y));
         }
     }
-    if low <= high { (low, high) } else { (0.0, 0.0) }
+    if low.x <= high.x { (low, high) } else { (Point::ORIGIN, Point::ORIGIN) }
 }
 
 /// Whether a point stands over an arch (hangs under a cable), or on it.

@@ -2,21 +2,28 @@
 //!
 //! Knows layers and entities, and no mechanics.
 
+mod blocks;
 pub mod convert;
 mod ends;
 mod entity;
 mod gather;
+mod insert;
+mod lay;
 pub mod names;
 mod note;
+mod nurbs;
 pub mod ocs;
 mod outlook;
 pub mod read;
+mod reference;
 mod roles;
+mod space;
 mod suggest;
 pub mod text;
 pub mod unit;
 pub mod viewport;
 
+use crate::tags;
 pub use crate::tags::{Doubt, Note as FileNote};
 pub use ends::{clusters, near_pairs};
 pub use entity::{Attribute, Curve, PointLike, Source, Text};
@@ -30,14 +37,22 @@ pub use unit::{NoUnit, Unit, UnitSource};
 pub struct Drawing {
     /// Its unit.
     pub unit: Unit,
+    /// The plane in which the elevation lies; all coordinates below are in it.
+    pub plane: tags::marks::Plane,
     /// Layers that serve as the axis.
     pub axis_layers: Vec<String>,
     /// Layers that hold loads.
     pub load_layers: Vec<String>,
-    /// Curves on the axis layers, in the order of the file.
+    /// Curves on the axis layers, in the order of the file; empty where ring lines stand for it.
     pub axis: Vec<Curve>,
+    /// Curves of the inner line of the ring, in the order of the file.
+    pub intrados: Vec<Curve>,
+    /// Curves of its outer line, in the order of the file.
+    pub extrados: Vec<Curve>,
     /// Points on the load layers, in the order of the file.
     pub points: Vec<PointLike>,
+    /// Points on the hinge layers, in the order of the file.
+    pub hinges: Vec<PointLike>,
     /// Texts on the load layers, in the order of the file.
     pub texts: Vec<Text>,
     /// Viewports of the layouts.
@@ -46,5 +61,18 @@ pub struct Drawing {
     pub notes: Vec<Note>,
 }
 
+impl Drawing {
+    /// Corners of the box about the axis, or the ring lines that stand for it: least and greatest coordinates of the ends
+    /// and middles of their pieces.
+    pub fn axis_box(&self) -> (crate::geometry::Point, crate::geometry::Point) {
+        if self.axis.is_empty() {
+            return gather::corners(&[&self.intrados[..], &self.extrados].concat());
+        }
+        gather::corners(&self.axis)
+    }
+}
+
 #[cfg(test)]
 mod tests;
+#[cfg(test)]
+mod tests_space;

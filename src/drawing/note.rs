@@ -12,6 +12,12 @@ pub enum Role {
     Axis,
     /// Loads and their labels.
     Loads,
+    /// The inner line of the ring.
+    Intrados,
+    /// The outer line of the ring.
+    Extrados,
+    /// Hinges of the rib.
+    Hinges,
 }
 
 impl Role {
@@ -20,6 +26,9 @@ impl Role {
         match self {
             Self::Axis => "axis",
             Self::Loads => "loads",
+            Self::Intrados => "intrados",
+            Self::Extrados => "extrados",
+            Self::Hinges => "hinges",
         }
     }
 }
@@ -91,7 +100,7 @@ pub enum Note {
         /// How many.
         count: u64,
     },
-    /// A block that is inserted in the drawing holds entities on the layer of a role; they are not read.
+    /// A block whose references are loads themselves holds entities on the layer of a role; they are not read again.
     InBlock {
         /// The role.
         role: Role,
@@ -121,5 +130,24 @@ pub enum Note {
         source: UnitSource,
         /// Horizontal extent of the axis, drawing units, which decided.
         width: f64,
+    },
+    /// The axis lies in a plane other than the drawing's x-y plane, which the job does not state.
+    PlaneGuessed {
+        /// Its name.
+        plane: String,
+    },
+    /// Arcs stand for a curve that is none.
+    CurveFitted {
+        /// The curve.
+        source: Source,
+        /// How many.
+        pieces: usize,
+    },
+    /// The layouts have viewports, and none shows the whole axis: the marks are seen in model space.
+    NotInLayouts {
+        /// Viewports square onto the elevation.
+        viewports: usize,
+        /// Those of them that show a part of the axis.
+        part: usize,
     },
 }

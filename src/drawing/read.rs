@@ -36,6 +36,13 @@ fn groups(kind: &str) -> Option<Groups> {
         }
         "POLYLINE" => Groups { integers: &[(70, ANY.0, ANY.1)], ..groups(POINT, &[]) },
         "VERTEX" => Groups { integers: &[(70, ANY.0, ANY.1)], ..groups(&[10, 20, 30, 42], &[10, 20]) },
+        "ELLIPSE" => {
+            groups(&[10, 20, 30, 11, 21, 31, 40, 41, 42, 210, 220, 230], &[10, 20, 11, 21, 40, 41, 42])
+        }
+        "SPLINE" => Groups {
+            integers: &[(70, ANY.0, ANY.1), (71, 0, 1000)],
+            ..groups(&[10, 20, 30, 11, 21, 31, 40, 41, 210, 220, 230], &[71])
+        },
         "INSERT" => Groups { texts: &[2], ..groups(POINT, &[10, 20]) },
         "ATTRIB" => Groups { texts: &[1, 2], ..groups(POINT, &[]) },
         "TEXT" => Groups {
@@ -112,6 +119,8 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
         out.push_str(" 66\n1\n");
     }
     let turned_last = record.tags.own().filter(|t| t.code == 11 || t.code == 50).map(|t| t.code).last();
+    // The crate drops points of a spline that have no height.
+    let flat_spline = kind == "SPLINE" && record.tags.first(30).is_none();
     let mut seen = Vec::new();
     let mut columns = false;
     for tag in record.tags.own() {
@@ -129,6 +138,8 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
                 }
             }
             // Groups of a vertex mean nothing before the first one, and the crate does not expect them there.
+            // The points that a spline was fitted through say nothing that its control points do not.
+            "SPLINE" if matches!(code, 11 | 21 | 31) && record.tags.first(10).is_some() => continue,
             "LWPOLYLINE" if matches!(code, 20 | 42) && !seen.contains(&10) => {
                 return Err(misplaced(record, &tag));
             }
@@ -137,6 +148,9 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
         if groups.reals.contains(&code) {
             let value = real(record, &tag)?;
             let _ = write!(out, "{code:>3}\n{value:?}\n");
+            if flat_spline && code == 20 {
+                out.push_str(" 30\n0.0\n");
+            }
         } else if let Some(&(_, low, high)) = groups.integers.iter().find(|g| g.0 == code) {
             let value = integer(record, &tag)?;
             // A setting that the format does not know changes nothing that is read here: its default counts.
@@ -152,10 +166,13 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
         }
         seen.push(code);
     }
-    if kind == "LWPOLYLINE" {
+    if kind == "LWPOLYLINE" || kind == "SPLINE" {
         let count = |code| seen.iter().filter(|&&c| c == code).count();
         if count(10) != count(20) {
             return Err(missing(record, 20));
+        }
+        if kind == "SPLINE" && count(30) > 0 && count(30) != count(10) {
+            return Err(missing(record, 30));
         }
     }
     match groups.needed.iter().find(|code| !seen.contains(code)) {

@@ -7,7 +7,7 @@ use crate::refusal::Refusal;
 use crate::tags::{LayerCensus, Outline, fold};
 
 /// Kinds of entities that can make an axis.
-pub const CURVES: [&str; 4] = ["LINE", "ARC", "LWPOLYLINE", "POLYLINE"];
+pub const CURVES: [&str; 6] = ["LINE", "ARC", "LWPOLYLINE", "POLYLINE", "ELLIPSE", "SPLINE"];
 
 /// Kinds of entities that stand for a load.
 pub const POINTS: [&str; 3] = ["POINT", "CIRCLE", "INSERT"];
@@ -35,6 +35,9 @@ pub fn named(
     let wanted = match role {
         Role::Axis => JobRole::Axis,
         Role::Loads => JobRole::Loads,
+        Role::Intrados => JobRole::Intrados,
+        Role::Extrados => JobRole::Extrados,
+        Role::Hinges => JobRole::Hinges,
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();
@@ -49,7 +52,9 @@ pub fn named(
         }
     }
     let path = format!("layers.{}", role.key());
-    if found.is_empty() && (settings.states(&path) || role == Role::Axis && !unusable.is_empty()) {
+    if found.is_empty()
+        && (settings.states(&path) || !matches!(role, Role::Loads | Role::Hinges) && !unusable.is_empty())
+    {
         return Err(nothing_on(outline, settings, role, wanted, kinds, &unusable));
     }
     Ok(found)
@@ -84,7 +89,7 @@ fn nothing_on(
         return Refusal::new(
             "layer-unusable",
             format!("layer {} for `[layers] {key}` holds nothing of type {}: only {}", layer.name, kinds.join(", "), holds.join(", ")),
-            "Draw the axis with lines, arcs and polylines and the loads with points, circles and blocks, or name another layer",
+            "Draw axis and ring lines with lines, arcs and polylines and the loads with points, circles and blocks, or name another layer",
         )
         .on_layer(layer.name.clone());
     }
@@ -97,12 +102,12 @@ fn nothing_on(
         let place = match (count(&layer.blocks, kinds), count(&layer.paper, kinds)) {
             (0, 0) => continue,
             (0, _) => "in paper space, where nothing counts",
-            _ => "inside block definitions, which are not read yet",
+            _ => "inside blocks that are not inserted in model space",
         };
         return Refusal::new(
             "layer-elsewhere",
             format!("layer {} for `[layers] {key}` has its entities only {place}", layer.name),
-            "Explode the blocks that hold them, or draw them in model space",
+            "Insert the blocks that hold them in model space, or draw there",
         )
         .on_layer(layer.name.clone());
     }

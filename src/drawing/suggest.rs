@@ -45,6 +45,12 @@ pub fn suggest(
         let curves: Vec<_> = curves.unwrap_or_default().into_iter().flatten().collect();
         let reason = match roles::role_of(settings, layer)? {
             Some(JobRole::Axis) => Some(None),
+            Some(ring @ (JobRole::Intrados | JobRole::Extrados)) if !curves.is_empty() => {
+                let role = if ring == JobRole::Intrados { Role::Intrados } else { Role::Extrados };
+                found.push(Suggestion { role, layer: layer.clone(), reason: None });
+                lines.extend(outlook::one_line(&curves).map(|line| (curves, line)));
+                continue;
+            }
             Some(_) => None,
             None => outlook::one_line(&curves)
                 .map(|line| Some(Reason::OneLine { span: line.span, rise: line.rise }))

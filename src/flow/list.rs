@@ -3,10 +3,12 @@
 use std::collections::BTreeMap;
 use std::path::Path;
 
-use super::{job_for, without_marks};
-use crate::drawing::{self, Suggestion, viewport};
-use crate::job::{Job, Settings};
+use super::{settings_for, without_marks};
+use crate::drawing::viewport::{self, Shown};
+use crate::drawing::{self, Suggestion};
+use crate::job::Job;
 use crate::refusal::Refusal;
+use crate::tags::marks::Plane;
 use crate::tags::{Outline, Source, fold};
 
 /// A drawing at a glance.
@@ -28,8 +30,9 @@ pub struct Listing {
     pub marked: bool,
     /// Its layers, in the order of the drawing.
     pub layers: Vec<LayerLine>,
-    /// Layouts' viewports: paper units per drawing unit.
-    pub viewports: Vec<f64>,
+    /// Layouts' viewports that look square onto the elevation (onto the x-y plane where none could be read): paper units per
+    /// drawing unit, and how much of the axis each shows, around which the marks are drawn.
+    pub viewports: Vec<(f64, Option<Shown>)>,
     /// Layers that could serve as axis or loads.
     pub suggestions: Vec<Suggestion>,
     /// What a check would take: the axis layers and the load layers; or why it would refuse.
@@ -56,10 +59,7 @@ pub struct LayerLine {
 /// # Errors
 /// When it cannot be read as a drawing, or the job file is wrong.
 pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
-    let settings = match job_for(path, job)? {
-        Some(job) => job.for_sheet(&super::source_name(path))?,
-        None => Settings::default(),
-    };
+    let settings = settings_for(path, job)?;
     let (source, outline, marks, _) = without_marks(Source::open(path)?, &settings, false)?;
     let spelled = |name: &str, code| outline.header(name, code).map(str::to_string);
     let units = ["$INSUNITS", "$MEASUREMENT"]
@@ -74,7 +74,18 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
             spelled("$EXTMAX", 20)?,
         ])
     })();
-    let taken = drawing::read_outlined(&source, &outline, &settings).map(|d| (d.axis_layers, d.load_layers));
+    let read = drawing::read_outlined(&source, &outline, &settings);
+    let viewports = match &read {
+        Ok(drawing) => {
+            let (low, high) = drawing.axis_box();
+            drawing.viewports.iter().map(|v| (v.scale, Some(v.shows(low, high)))).collect()
+        }
+        Err(_) => {
+            let all = outline.records.iter().filter_map(|r| viewport::viewport(r, &Plane::XY));
+            all.map(|v| (v.scale, None)).collect()
+        }
+    };
+    let taken = read.map(|d| (d.axis_layers, d.load_layers));
     Ok(Listing {
         file: path.display().to_string(),
         version: outline.version.clone(),
@@ -84,7 +95,7 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
         extents,
         marked: marks.is_some(),
         layers: layers(&outline),
-        viewports: outline.records.iter().filter_map(viewport::viewport).map(|v| v.scale).collect(),
+        viewports,
         suggestions: drawing::suggest(&source, &outline, &settings)?,
         taken,
     })

@@ -5,6 +5,7 @@ mod problem;
 mod sheet;
 mod unmark;
 
+use std::io::Read;
 use std::path::{Path, PathBuf};
 
 use jiff::civil::Date;
@@ -15,7 +16,8 @@ use crate::model::{self, Model};
 use crate::outcome::{DrawingFacts, Run, Units};
 use crate::refusal::Refusal;
 use crate::statics::{self, Analysis};
-use crate::tags::{self, Edit, FoundMarks, Hashing, Outline, Source};
+use crate::tags::marks::Marks;
+use crate::tags::{self, FoundMarks, Hashing, Outline, Source};
 use crate::verdict;
 use crate::write::annotate;
 use crate::write::file::{self, Replace};
@@ -65,17 +67,27 @@ pub struct Checked {
     settings: Settings,
     /// The marks that the file as it stands carries.
     marks: Option<FoundMarks>,
-    /// The hash of the source, while it is on its way into the results.
-    hashing: Option<Hashing>,
 }
 
 impl Checked {
-    /// Waits for the hash of the source and puts it into the results.
-    fn hash(&mut self) -> Result<(), Refusal> {
-        if let Some(hashing) = self.hashing.take() {
-            self.run.drawing.sha256 = Some(hashing.finish()?);
-        }
-        Ok(())
+    /// The marks that the file as it stands carries.
+    pub fn marks(&self) -> Option<&FoundMarks> {
+        self.marks.as_ref()
+    }
+
+    /// The drawing without marks of ours.
+    pub fn source(&self) -> &Source {
+        &self.source
+    }
+
+    /// The settings in force.
+    pub fn settings(&self) -> &Settings {
+        &self.settings
+    }
+
+    /// What the marks need to know of the sheet.
+    pub fn sheet(&self, path: &Path, environment: Environment) -> annotate::Sheet {
+        sheet::sheet(path, self, environment)
     }
 }
 
@@ -91,25 +103,19 @@ pub struct Target {
 /// Reads, computes and judges one drawing. A refusal becomes a run with an error and no verdict.
 pub fn check(path: &Path, job: Option<&Job>, environment: Environment) -> Run {
     match checked(path, job, environment) {
-        Ok(mut checked) => match checked.hash() {
-            Ok(()) => checked.run,
-            Err(refusal) => refused(checked.run.drawing, checked.run.settings, refusal),
-        },
+        Ok(checked) => checked.run,
         Err(refused) => *refused,
     }
 }
 
 /// Checks one drawing and writes its marked copy. A refusal becomes a run with an error and no verdict.
 pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Environment) -> Run {
-    let mut checked = match checked(path, job, environment) {
+    let checked = match checked(path, job, environment) {
         Ok(checked) => checked,
         Err(refused) => return *refused,
     };
-    let told = |mut checked: Checked, refusal| {
-        // Without its hash the refusal is still the one to tell.
-        let _ = checked.hash();
-        refused(checked.run.drawing, checked.run.settings, refusal)
-    };
+    let facts = checked.run.drawing.clone();
+    let settings = checked.run.settings.clone();
     let output = match (&target.output, checked.marks.is_some()) {
         (Some(output), _) => output.clone(),
         (None, false) => beside(path),
@@ -119,16 +125,16 @@ pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Enviro
                 "This drawing carries marks already",
                 "Name the new copy with --output; the old marks are replaced there.",
             );
-            return told(checked, refusal);
+            return refused(facts, settings, refusal);
         }
     };
-    match write_copy(path, &mut checked, &output, target.force, environment) {
+    match write_copy(path, &checked, &output, target.force, environment) {
         Ok(()) => {
             let mut run = checked.run;
             run.output = Some(output.display().to_string());
             run
         }
-        Err(refusal) => told(checked, refusal),
+        Err(refusal) => refused(facts, settings, refusal),
     }
 }
 
@@ -150,39 +156,77 @@ pub fn job_for(path: &Path, named: Option<&Job>) -> Result<Option<Job>, Refusal>
     }
 }
 
-fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Box<Run>> {
+/// The settings in force for a drawing; the built-in ones where there is no job file.
+///
+/// # Errors
+/// As [`Job::load`] and [`Job::for_sheet`].
+pub fn settings_for(path: &Path, named: Option<&Job>) -> Result<Settings, Refusal> {
+    settings_as(path, &source_name(path), named)
+}
+
+/// The settings for a drawing that the job's sheets know by another name.
+///
+/// # Errors
+/// As [`settings_for`].
+pub fn settings_as(path: &Path, name: &Path, named: Option<&Job>) -> Result<Settings, Refusal> {
+    match job_for(path, named)? {
+        Some(job) => job.for_sheet(name),
+        None => Ok(Settings::default()),
+    }
+}
+
+/// Reads, computes and judges one drawing, and keeps what a mark needs.
+///
+/// # Errors
+/// The run with its refusal.
+pub fn checked(path: &Path, job: Option<&Job>, environment: Environment) -> Result<Checked, Box<Run>> {
+    match settings_for(path, job) {
+        Ok(settings) => checked_with(path, settings, environment),
+        Err(refusal) => Err(Box::new(refused(no_facts(path), serde_json::Value::Null, refusal))),
+    }
+}
+
+/// The settings in force as the results hold them: what they say, and which job they came from.
+pub fn in_force(settings: &Settings) -> serde_json::Value {
+    let mut in_force = settings.to_json();
+    if let (Some(file), Some(tree)) = (&settings.origin.file, in_force.as_object_mut()) {
+        let name = file.file_name().unwrap_or_default().to_string_lossy();
+        let origin = serde_json::json!({
+            "file": name, "sha256": settings.origin.sha256, "sheets": settings.origin.sheets,
+        });
+        tree.insert("origin".into(), origin);
+    }
+    in_force
+}
+
+/// The same with settings of the caller's.
+///
+/// # Errors
+/// The run with its refusal.
+pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -> Result<Checked, Box<Run>> {
     let mut facts = no_facts(path);
-    let mut in_force = serde_json::Value::Null;
-    stages(path, job, environment, &mut facts, &mut in_force)
+    let in_force = in_force(&settings);
+    stages(path, settings, environment, &mut facts, &in_force)
         .map_err(|refusal| Box::new(refused(facts, in_force, refusal)))
 }
 
-/// The stages in order; what is known so far is left in `facts` and `in_force` for a refusal.
+/// The stages in order; what is known so far is left in `facts` for a refusal.
 fn stages(
     path: &Path,
-    job: Option<&Job>,
+    settings: Settings,
     environment: Environment,
     facts: &mut DrawingFacts,
-    in_force: &mut serde_json::Value,
+    in_force: &serde_json::Value,
 ) -> Result<Checked, Refusal> {
-    let settings = match job_for(path, job)? {
-        Some(job) => job.for_sheet(&source_name(path))?,
-        None => Settings::default(),
-    };
-    *in_force = settings.to_json();
     let file = Source::open(path)?;
     let (source, outline, marks, hashing) = without_marks(file, &settings, true)?;
     facts.dxf_version.clone_from(&outline.version);
     facts.form = Some(outline.form.name().into());
     facts.encoding = Some(outline.encoding().into());
     let judged = judged(&source, &outline, &settings, facts, environment);
-    let (drawing, judged) = match judged {
-        Ok(judged) => judged,
-        Err(refusal) => {
-            facts.sha256 = hashing.and_then(|hashing| hashing.finish().ok());
-            return Err(refusal);
-        }
-    };
+    // The hash was on its way beside all that; it is told of a refused drawing too.
+    facts.sha256 = hashing.map(Hashing::finish).transpose()?;
+    let (drawing, judged) = judged?;
     let run = Run {
         units: judged.units,
         drawing: facts.clone(),
@@ -193,7 +237,7 @@ fn stages(
         output: None,
         error: None,
     };
-    Ok(Checked { run, source, outline, drawing, settings, marks, hashing })
+    Ok(Checked { run, source, outline, drawing, settings, marks })
 }
 
 fn judged(
@@ -207,8 +251,11 @@ fn judged(
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
     let model = model::build(&drawing, &settings.into())?;
-    let analyses = analyse(&model, settings)?;
-    let judged = verdict::judge(settings, &drawing.notes, &model, &analyses, environment.today);
+    own_weight_stated(settings)?;
+    let cases = model::cases::cases(&model, settings)?;
+    let analyses = analyse(&model, &cases, settings)?;
+    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses };
+    let judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
     Ok((drawing, judged))
 }
 
@@ -245,67 +292,76 @@ fn source_name(path: &Path) -> PathBuf {
     }
 }
 
-fn analyse(model: &Model, settings: &Settings) -> Result<Vec<Analysis>, Refusal> {
+/// For every span, in every case.
+fn analyse(model: &Model, cases: &[model::Case], settings: &Settings) -> Result<Vec<Vec<Analysis>>, Refusal> {
     model
         .spans
         .iter()
         .map(|span| {
-            let problem = problem::problem(span, settings);
-            statics::analyse(&problem).map_err(|unsolved| problem::refusal(span, &unsolved))
+            cases
+                .iter()
+                .map(|case| {
+                    let problem = problem::problem(model, span, case, settings)?;
+                    statics::analyse(&problem).map_err(|unsolved| problem::refusal(span, case, &unsolved))
+                })
+                .collect()
         })
         .collect()
 }
 
-/// What stands for the hash while it is not known yet: as long as any.
-const NO_HASH: &str = "0000000000000000000000000000000000000000000000000000000000000000";
+/// Refuses a unit weight without a width: no weight follows from it.
+fn own_weight_stated(settings: &Settings) -> Result<(), Refusal> {
+    if settings.rib.unit_weight.is_some_and(|w| w > 0.0) && settings.rib.width.is_none() {
+        let mut refusal = Refusal::new(
+            "own-weight",
+            "`rib.unit_weight` is given and `rib.width` is not: the weight of the rib cannot be told",
+            "Add `width` to [rib], in metres",
+        );
+        refusal.line = settings.line_of("rib.unit_weight");
+        if let Some(file) = &settings.origin.file {
+            refusal = refusal.in_file(file);
+        }
+        return Err(refusal);
+    }
+    Ok(())
+}
 
 fn write_copy(
     path: &Path,
-    checked: &mut Checked,
+    checked: &Checked,
     output: &Path,
     force: bool,
     environment: Environment,
 ) -> Result<(), Refusal> {
-    let sources = [path];
-    let ours = |target: &Path| Ok(carries_marks(target));
-    let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
-    file::may_write(output, &sources, &replace)?;
-    let mut sheet = sheet::sheet(path, checked, environment);
-    // A large drawing is copied while its hash is still being computed; then the digits are put in.
-    let late = checked.hashing.as_ref().is_some_and(Hashing::runs);
-    if late {
-        sheet.sha256 = NO_HASH.to_owned();
-    } else {
-        checked.hash()?;
-        sheet.sha256 = checked.run.drawing.sha256.clone().unwrap_or_default();
-    }
-    let marked = checked.source.spliced(&edits(checked, &sheet)?)?;
-    let failed = |error| {
-        Refusal::new(
-            "write",
-            format!("The marked copy could not be written: {error}"),
-            "Look at the space left and at your right to write there.",
-        )
-    };
-    file::write_whole(output, &sources, &replace, |target| {
-        marked.write_to_file(target).map_err(failed)?;
-        if late {
-            checked.hash()?;
-            sheet.sha256 = checked.run.drawing.sha256.clone().unwrap_or_default();
-            let hashed = checked.source.spliced(&edits(checked, &sheet)?)?;
-            if !hashed.rewrite(&marked, target).map_err(failed)? {
-                target.set_len(0).map_err(failed)?;
-                hashed.write_to_file(target).map_err(failed)?;
-            }
-        }
-        checked.source.unchanged()
-    })
+    may_write_copy(path, output, force)?;
+    write_marked(path, checked, &marked(path, checked, environment)?, output, force)
 }
 
-/// The edits that put the marks of a sheet in.
-fn edits(checked: &Checked, sheet: &annotate::Sheet) -> Result<Vec<Edit>, Refusal> {
-    let marks = annotate::annotate(&checked.run, sheet);
-    let edits = tags::mark(&checked.source, &checked.outline, &marks)?;
+/// Looks whether a marked copy may be written, before any work is done: over nothing, over a copy of ours, or by force.
+///
+/// # Errors
+/// As [`file::may_write`].
+pub fn may_write_copy(path: &Path, output: &Path, force: bool) -> Result<(), Refusal> {
+    let ours = |target: &Path| Ok(carries_marks(target));
+    let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
+    file::may_write(output, &[path], &replace)
+}
+
+/// The marked copy of a checked drawing, in memory.
+///
+/// # Errors
+/// When the drawing cannot take the marks.
+pub fn marked(path: &Path, checked: &Checked, environment: Environment) -> Result<Source, Refusal> {
+    let sheet = sheet::sheet(path, checked, environment);
+    with_marks(checked, &annotate::annotate(&checked.run, &sheet))
+}
+
+/// A checked drawing with marks of the caller's in it, in memory. Marks that it carried are gone.
+///
+/// # Errors
+/// When the drawing cannot take the marks.
+pub fn with_marks(checked: &Checked, marks: &Marks) -> Result<Source, Refusal> {
+    let edits = tags::mark(&checked.source, &checked.outline, marks)?;
     let broken = tags::validate::check_inserted(&checked.source, &checked.outline, &edits)?;
     if let Some(first) = broken.first() {
         return Err(Refusal::new(
@@ -319,16 +375,70 @@ fn edits(checked: &Checked, sheet: &annotate::Sheet) -> Result<Vec<Edit>, Refusa
             "Report this drawing; nothing was written.",
         ));
     }
-    Ok(edits)
+    checked.source.spliced(&edits)
+}
+
+/// Writes a marked copy that was made in memory.
+///
+/// # Errors
+/// As [`may_write_copy`]; when the copy cannot be written; when another program wrote to the source meanwhile.
+pub fn write_marked(
+    path: &Path,
+    checked: &Checked,
+    marked: &Source,
+    output: &Path,
+    force: bool,
+) -> Result<(), Refusal> {
+    let ours = |target: &Path| Ok(carries_marks(target));
+    let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
+    file::write_whole(output, &[path], &replace, |target| {
+        marked.write_to_file(target).map_err(|error| {
+            Refusal::new(
+                "write",
+                format!("The marked copy could not be written: {error}"),
+                "Look at the space left and at your right to write there.",
+            )
+        })?;
+        checked.source.unchanged()
+    })
 }
 
 /// Whether a file is a drawing that carries marks of ours; false also when it cannot be read as a drawing.
 pub fn carries_marks(path: &Path) -> bool {
     let look = || -> Result<bool, Refusal> {
         let source = Source::open(path)?;
+        // A scan is dearer than a search, and most drawings of a set carry no marks.
+        if !holds_name(&mut source.reader()).unwrap_or(true) {
+            return Ok(false);
+        }
         Ok(tags::scan(&source, &tags::Options { keep: None, hash: false })?.marks.is_some())
     };
     look().unwrap_or(false)
+}
+
+/// Whether the name of our application stands anywhere in the bytes, in capitals or not.
+fn holds_name(reader: &mut impl Read) -> std::io::Result<bool> {
+    const CHUNK: usize = 1 << 18;
+    let name = tags::APPLICATION.as_bytes();
+    let first = name.first().copied().unwrap_or_default();
+    let mut buffer = vec![0; CHUNK];
+    // Bytes at the start of the buffer that were there before: a name may lie across two chunks.
+    let mut kept = 0;
+    loop {
+        let read = reader.read(&mut buffer[kept..])?;
+        if read == 0 {
+            return Ok(false);
+        }
+        let filled = &buffer[..kept + read];
+        let found = memchr::memchr2_iter(first, first.to_ascii_lowercase(), filled)
+            .any(|at| filled.get(at..at + name.len()).is_some_and(|part| part.eq_ignore_ascii_case(name)));
+        if found {
+            return Ok(true);
+        }
+        let tail = filled.len().saturating_sub(name.len() - 1)..filled.len();
+        kept = tail.len();
+        buffer.copy_within(tail, 0);
+    }
 }
 
 fn no_facts(path: &Path) -> DrawingFacts {
@@ -362,4 +472,36 @@ pub fn refused(facts: DrawingFacts, settings: serde_json::Value, refusal: Refusa
 /// A run for a drawing that was refused before it was opened.
 pub fn refused_unread(path: &Path, refusal: Refusal) -> Run {
     refused(no_facts(path), serde_json::Value::Null, refusal)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Gives a few bytes at a time.
+    struct Slow<'a>(&'a [u8], usize);
+
+    impl Read for Slow<'_> {
+        fn read(&mut self, buf: &mut [u8]) -> std::io::Result<usize> {
+            let count = self.1.min(self.0.len()).min(buf.len());
+            buf[..count].copy_from_slice(&self.0[..count]);
+            self.0 = &self.0[count..];
+            Ok(count)
+        }
+    }
+
+    #[test]
+    fn the_name_is_found_across_chunks() {
+        for step in [1, 3, 7, 100] {
+            for (text, found) in [
+                ("  1\nTHRUSTMARK\n", true),
+                ("tTtthrustMark", true),
+                ("THRUSTMAR", false),
+                ("", false),
+                ("THRUST MARK THRUSTMAR K", false),
+            ] {
+                assert_eq!(holds_name(&mut Slow(text.as_bytes(), step)).unwrap(), found, "{text} by {step}");
+            }
+        }
+    }
 }

@@ -9,7 +9,6 @@ use crate::geometry::Point;
 use crate::job;
 use crate::outcome::Xy;
 use crate::tags;
-use crate::tags::marks::Plane;
 use crate::tolerance;
 use crate::write::annotate::{Extents, Sheet, TextHeight};
 
@@ -31,7 +30,7 @@ pub fn sheet(path: &Path, checked: &Checked, environment: Environment) -> Sheet 
     let english = checked.outline.header("$MEASUREMENT", 70) == Some("0");
     Sheet {
         metres_per_unit: metres,
-        plane: Plane::XY,
+        plane: drawing.plane,
         elevation,
         model_space: model_extents(checked, metres),
         occupied: labels,
@@ -64,28 +63,34 @@ fn in_metres(corners: [Point; 4], metres: f64) -> Extents {
 const MOST_TO_MEASURE: u64 = 50 << 20;
 
 /// What model space fills, in metres: `$EXTMIN` and `$EXTMAX` where they make sense, else what the entities say. The
-/// variables may be stale; they only keep the marks clear of other parts. None for a drawing of more than 50 MB whose
+/// variables are seen in the plane of the elevation, and may be stale; they only keep the marks clear of other parts. None for a drawing of more than 50 MB whose
 /// variables make no sense.
 fn model_extents(checked: &Checked, metres: f64) -> Option<Extents> {
-    let read = |name: &str| -> Option<Xy> {
+    let read = |name: &str| -> Option<[f64; 3]> {
         let number = |code| checked.outline.header(name, code)?.parse::<f64>().ok();
-        Some([number(10)?, number(20)?])
+        Some([number(10)?, number(20)?, number(30).unwrap_or(0.0)])
     };
-    let sane = |low: Xy, high: Xy| {
+    let sane = |low: [f64; 3], high: [f64; 3]| {
         let plain = low.iter().chain(&high).all(|v| v.abs() < tolerance::GREATEST_NUMBER);
         plain && low[0] < high[0] && low[1] < high[1]
     };
     let stated = read("$EXTMIN").zip(read("$EXTMAX")).filter(|(low, high)| sane(*low, *high));
+    let plane = checked.drawing.plane;
     let (low, high) = match stated {
         Some(stated) => stated,
         // A drawing that was scanned once is scanned again without error; were it not, the marks would only lack room.
-        None if checked.source.len() <= MOST_TO_MEASURE => {
+        None if plane.is_flat() && checked.source.len() <= MOST_TO_MEASURE => {
             let [low, high] = tags::extents(&checked.source).ok().flatten()?;
-            (low, high)
+            ([low[0], low[1], 0.0], [high[0], high[1], 0.0])
         }
         None => return None,
     };
-    Some(Extents { low: low.map(|v| v * metres), high: high.map(|v| v * metres) })
+    let corners = (0..8).map(|i| {
+        let corner: [f64; 3] =
+            std::array::from_fn(|axis| if i >> axis & 1 == 0 { low[axis] } else { high[axis] });
+        [plane.right, plane.up].map(|d| d.iter().zip(corner).map(|(d, c)| d * c).sum::<f64>() * metres)
+    });
+    Extents::round(corners)
 }
 
 /// The median height of the texts that were read.

@@ -6,7 +6,7 @@ use super::note::Note;
 use super::{Forces, Load, MagnitudeFrom};
 use crate::drawing::{PointLike, Text, clusters};
 use crate::geometry::Vec2;
-use crate::job::{Decimal, Settings};
+use crate::job::{Decimal, RibDepth, Settings};
 use crate::refusal::Refusal;
 use crate::tolerance;
 use crate::units::ForceUnit;
@@ -20,11 +20,15 @@ pub struct LoadSettings {
     pub unlabelled: Option<f64>,
     /// How fractions are marked.
     pub decimal: Decimal,
+    /// Whether the rib has a weight of its own, in kN.
+    pub weighs: bool,
+    /// Depth of the rib where no ring is drawn, m.
+    pub depth: Option<RibDepth>,
 }
 
 impl Default for LoadSettings {
     fn default() -> Self {
-        Self { unit: None, unlabelled: None, decimal: Decimal::Auto }
+        Self { unit: None, unlabelled: None, decimal: Decimal::Auto, weighs: false, depth: None }
     }
 }
 
@@ -34,6 +38,8 @@ impl From<&Settings> for LoadSettings {
             unit: settings.loads.unit,
             unlabelled: settings.loads.unlabelled_kn(),
             decimal: settings.loads.decimal,
+            depth: settings.rib.depth,
+            weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0),
         }
     }
 }
@@ -109,7 +115,7 @@ pub fn loads(
     }
     let kept = once_each(points, &found, notes);
     let figures = kept.iter().filter(|&&i| found[i].is_some()).count();
-    if figures == 0 && settings.unlabelled.is_none() {
+    if figures == 0 && settings.unlabelled.is_none() && !(kept.is_empty() && settings.weighs) {
         none_out_of_reach(&labels, texts)?;
         if !kept.is_empty() {
             notes.push(Note::LoadsEqual { count: kept.len() });

@@ -2,22 +2,29 @@
 //!
 //! Knows layers only as names of load sets; knows no mechanics.
 
+pub mod cases;
 pub mod chain;
 pub mod figures;
 pub mod labels;
 pub mod loads;
 pub mod matching;
+pub mod middle;
 pub mod note;
 pub mod pieces;
 pub mod piers;
+pub mod ring;
+pub mod weight;
 
 use crate::drawing::{Drawing, Source};
 use crate::geometry::{Path, Point, Vec2};
+use crate::job::{RibDepth, Settings};
 use crate::refusal::Refusal;
 use crate::tolerance;
 
+pub use cases::Case;
 pub use loads::LoadSettings;
 pub use note::Note;
+pub use ring::Ring;
 
 /// Everything that is computed of one drawing.
 #[derive(Debug, Clone, PartialEq)]
@@ -30,6 +37,18 @@ pub struct Model {
     pub off_span: Vec<Load>,
     /// What was noticed.
     pub notes: Vec<Note>,
+}
+
+impl Model {
+    /// Weight of the rib per area of the elevation, kN/m²: unit weight times width. `None` where it is not given, or
+    /// forces are multiples of an unknown load.
+    pub fn own_weight(&self, settings: &Settings) -> Option<f64> {
+        if self.forces == Forces::UnitLoads {
+            return None;
+        }
+        let weight = settings.rib.unit_weight.filter(|w| *w > 0.0)?;
+        Some(weight * settings.rib.width?)
+    }
 }
 
 /// What forces are given in.
@@ -48,8 +67,12 @@ pub struct Span {
     pub name: String,
     /// Its axis from the left springing to the right one, m, in the drawing's origin.
     pub axis: Path,
-    /// The entities of the axis, left to right.
+    /// The entities of the axis, left to right; of the ring lines where the axis runs midway between them.
     pub sources: Vec<Source>,
+    /// Its ring, where its lines are drawn.
+    pub ring: Option<Ring>,
+    /// Its drawn hinges, left to right, m.
+    pub hinges: Vec<Point>,
     /// Its loads, left to right.
     pub loads: Vec<Load>,
 }
@@ -96,26 +119,8 @@ pub enum MagnitudeFrom {
 pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusal> {
     let metres = drawing.unit.metres;
     let mut notes = Vec::new();
-    let chains = chain::chains(&drawing.axis)?;
-    notes.extend(chains.doubles.into_iter().map(|(source, kept)| Note::DrawnTwice { source, kept }));
-    notes.extend(chains.lengthless.into_iter().map(|source| Note::NoLength { source }));
-    let mut spans = Vec::new();
-    for (i, chain) in chains.chains.into_iter().enumerate() {
-        let name = format!("span {}", i + 1);
-        for gap in &chain.gaps {
-            notes.push(Note::GapClosed {
-                span: name.clone(),
-                size: gap.size * metres,
-                at: (gap.at.to_vec2() * metres).to_point(),
-            });
-        }
-        let axis = chain.path.shifted_scaled(Vec2::ZERO, metres);
-        let size = axis.end().x - axis.start().x;
-        if !(tolerance::LEAST_SPAN..=tolerance::GREATEST_SPAN).contains(&size) {
-            notes.push(Note::SizeUnlikely { span: name.clone(), size });
-        }
-        spans.push(Span { name, axis, sources: chain.sources, loads: Vec::new() });
-    }
+    let mut spans = spans(drawing, &mut notes)?;
+    hinges(drawing, &mut spans, settings.depth, &mut notes);
     let (loads, forces) = loads::loads(&drawing.points, &drawing.texts, settings, metres, &mut notes)?;
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
@@ -124,8 +129,99 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
         at: load.at,
         force: -load.force.y,
     }));
-    notes.extend(spans.iter().filter(|s| s.loads.is_empty()).map(|s| Note::NoLoads { span: s.name.clone() }));
+    let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
+    notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
     Ok(Model { spans, forces, off_span, notes })
+}
+
+/// Gives each drawn hinge to the span on whose rib it stands: within half the depth (`stated`, m, where no ring is drawn)
+/// of the axis, or within the reach of a gap where no depth is known.
+fn hinges(drawing: &Drawing, spans: &mut [Span], stated: Option<RibDepth>, notes: &mut Vec<Note>) {
+    let mut points: Vec<_> = drawing
+        .hinges
+        .iter()
+        .map(|h| ((h.at.to_vec2() * drawing.unit.metres).to_point(), &h.source))
+        .collect();
+    points.sort_by(|a, b| a.0.x.total_cmp(&b.0.x).then(a.0.y.total_cmp(&b.0.y)));
+    for (at, source) in points {
+        let owner = spans.iter_mut().find_map(|span| {
+            let (s, distance) = span.axis.nearest(at);
+            let slack = span.axis.length() * tolerance::GAP;
+            let half = weight::depths(span, stated).map_or(0.0, |d| weight::depth_at(&d, s) / 2.0);
+            (distance <= half + slack).then_some(span)
+        });
+        match owner {
+            Some(span) => {
+                notes.push(Note::HingeRead { span: span.name.clone(), source: source.clone(), at });
+                span.hinges.push(at);
+            }
+            None => notes.push(Note::HingeOff { source: source.clone(), at }),
+        }
+    }
+}
+
+/// The spans with their axes and rings, without loads.
+fn spans(drawing: &Drawing, notes: &mut Vec<Note>) -> Result<Vec<Span>, Refusal> {
+    let metres = drawing.unit.metres;
+    let mut rings = ring::lines(&drawing.intrados, &drawing.extrados, metres, notes)?;
+    let mut spans = Vec::new();
+    if drawing.axis.is_empty() && !rings.is_empty() {
+        for (i, lines) in rings.into_iter().enumerate() {
+            let name = format!("span {}", i + 1);
+            let (axis, ring) = lines.midway(&name, notes)?;
+            spans.push(Span {
+                name,
+                axis,
+                sources: ring.sources.clone(),
+                ring: Some(ring),
+                hinges: Vec::new(),
+                loads: Vec::new(),
+            });
+        }
+    } else {
+        let chains = chain::chains(&drawing.axis)?;
+        notes.extend(chains.doubles.into_iter().map(|(source, kept)| Note::DrawnTwice { source, kept }));
+        notes.extend(chains.lengthless.into_iter().map(|source| Note::NoLength { source }));
+        if !rings.is_empty() && rings.len() != chains.chains.len() {
+            let source = drawing.intrados.first().map(|c| c.source.clone()).unwrap_or_default();
+            return Err(source.refuse(
+                "ring-spans",
+                format!("the axis has {} spans and the ring {}", chains.chains.len(), rings.len()),
+                "Draw axis and both ring lines for every span, or leave the axis out: it is then found midway",
+            ));
+        }
+        for (i, chain) in chains.chains.into_iter().enumerate() {
+            let name = format!("span {}", i + 1);
+            for gap in &chain.gaps {
+                notes.push(Note::GapClosed {
+                    line: "axis",
+                    span: name.clone(),
+                    size: gap.size * metres,
+                    at: (gap.at.to_vec2() * metres).to_point(),
+                });
+            }
+            let axis = chain.path.shifted_scaled(Vec2::ZERO, metres);
+            let ring = match rings.is_empty() {
+                true => None,
+                false => Some(rings.remove(0).about(&name, &axis, notes)?),
+            };
+            spans.push(Span {
+                name,
+                axis,
+                sources: chain.sources,
+                ring,
+                hinges: Vec::new(),
+                loads: Vec::new(),
+            });
+        }
+    }
+    for span in &spans {
+        let size = span.axis.end().x - span.axis.start().x;
+        if !(tolerance::LEAST_SPAN..=tolerance::GREATEST_SPAN).contains(&size) {
+            notes.push(Note::SizeUnlikely { span: span.name.clone(), size });
+        }
+    }
+    Ok(spans)
 }
 
 /// Gives each load to its span, in order from the left, and numbers those without a name; gives back the rest.

@@ -8,13 +8,40 @@ use crate::units::ForceUnit;
 /// One thing noticed. Points and lengths in m, in the drawing's origin, unless a field says otherwise.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Note {
-    /// A gap in the axis was closed with a straight piece.
+    /// A gap in the axis or a ring line was closed with a straight piece.
     GapClosed {
+        /// The line: axis, intrados or extrados.
+        line: &'static str,
         /// Name of the span.
         span: String,
         /// Its width, m.
         size: f64,
         /// Its left end, m.
+        at: Point,
+    },
+    /// The axis was found midway between the ring lines.
+    AxisMidway {
+        /// Name of the span.
+        span: String,
+        /// Pieces of the axis.
+        pieces: usize,
+        /// Furthest that they were found to stray from the true middle line, m.
+        stray: f64,
+    },
+    /// The ring ends in a face that is not square to its axis; its end joint was taken square.
+    EndsSkew {
+        /// Name of the span.
+        span: String,
+        /// Greatest angle between face and joint, radians.
+        angle: f64,
+    },
+    /// The drawn axis does not run midway in the ring; the depth counts to the nearer line.
+    AxisOffMiddle {
+        /// Name of the span.
+        span: String,
+        /// Greatest distance from the middle, m.
+        by: f64,
+        /// Where, m.
         at: Point,
     },
     /// An axis curve was drawn over another one, which was kept.
@@ -107,6 +134,22 @@ pub enum Note {
         at: Point,
         /// Its force, downward positive, kN or unit loads.
         force: f64,
+    },
+    /// A hinge of a span.
+    HingeRead {
+        /// Name of the span.
+        span: String,
+        /// The entity.
+        source: Source,
+        /// Where, m.
+        at: Point,
+    },
+    /// A point on the hinge layer that stands on no rib.
+    HingeOff {
+        /// The entity.
+        source: Source,
+        /// Where, m.
+        at: Point,
     },
     /// A span over which no load stands.
     NoLoads {

@@ -17,7 +17,7 @@ fn source(kind: &str, handle: usize) -> Source {
 }
 
 fn curve(handle: usize, pieces: Vec<Segment>) -> Curve {
-    Curve { source: source("LINE", handle), pieces, closed: false, z: 0.0 }
+    Curve { source: source("LINE", handle), pieces, closed: false, z: 0.0, fitted: false }
 }
 
 fn line(a: (f64, f64), b: (f64, f64)) -> Segment {
@@ -51,6 +51,10 @@ fn text(handle: usize, x: f64, y: f64, says: &str) -> Text {
 
 fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawing {
     Drawing {
+        intrados: Vec::new(),
+        hinges: Vec::new(),
+        extrados: Vec::new(),
+        plane: crate::tags::marks::Plane::XY,
         viewports: Vec::new(),
         unit: Unit { name: "m", metres: 1.0, source: UnitSource::Job },
         axis_layers: vec!["A".into()],
@@ -129,7 +133,7 @@ fn gaps_are_closed_and_told() {
     left[15] = line(p[15], (p[16].0 - 0.02, p[16].1));
     let model = built(&drawing(vec![curve(2, right.clone()), curve(1, left.clone())], vec![], vec![]));
     assert_eq!(model.spans.len(), 1);
-    let Note::GapClosed { span, size, at } = &model.notes[0] else { panic!("{:?}", model.notes) };
+    let Note::GapClosed { span, size, at, .. } = &model.notes[0] else { panic!("{:?}", model.notes) };
     assert_eq!(span, "span 1");
     assert!((size - 0.02).abs() < 1e-12 && (*at - Point::new(19.98, 8.0)).hypot() < 1e-12);
     // Ten times as wide: refused, with its place.

@@ -168,6 +168,9 @@ pub struct Ring {
     pub depth_max: f64,
     /// Width across the bridge; null when not given.
     pub width: Option<f64>,
+    /// The entities of intrados and extrados it was read from; empty where the depth comes from the job.
+    #[serde(default)]
+    pub entities: Vec<Source>,
 }
 
 /// Where the magnitude of a load came from. A closed list.

@@ -1,13 +1,16 @@
 //! From a problem to its lines of thrust.
 
 use super::closest::{Closest, Search};
+use super::elastic::{Effects, Flexibility, Place, least_energy};
+use super::joint::{Joint, Unknowns};
+use super::limit::{Aim, Extreme, Limit};
 use super::line::{Sheet, missing};
 use super::peaks::Sampling;
 use super::rule::{Choice, choose, through_points};
-use super::span::{Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use super::through::{slack, through};
-use super::{Analysis, Line, LineKind, Placed, Problem, SpanKind, Status, Unsolved};
+use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, Support, Unsolved};
 
 /// Computes the governing line of thrust of a span and those wanted beside it.
 ///
@@ -16,19 +19,48 @@ use super::{Analysis, Line, LineKind, Placed, Problem, SpanKind, Status, Unsolve
 /// # Errors
 ///
 /// [`Unsolved`] says why: no load, an axis without rise or one that crosses itself, hinges that contradict each other, a
-/// cable that would have to push, numbers that are not finite, a line that is not built. An optimum that does not exist
+/// cable that would have to push, numbers that are not finite. An optimum that does not exist
 /// is no error but a [`Status`] of its line.
 pub fn analyse(problem: &Problem) -> Result<Analysis, Unsolved> {
+    solve(problem, None)
+}
+
+/// As [`analyse`], with the elastic line among its lines worked out for a stiffness that is given along the axis, where
+/// [`analyse`] takes the rectangle of the drawn depth.
+///
+/// # Errors
+///
+/// As [`analyse`].
+pub fn elastic(problem: &Problem, flexibility: &dyn Fn(&Place) -> Flexibility) -> Result<Analysis, Unsolved> {
+    solve(problem, Some(flexibility))
+}
+
+fn solve(
+    problem: &Problem,
+    flexibility: Option<&dyn Fn(&Place) -> Flexibility>,
+) -> Result<Analysis, Unsolved> {
     let span = Span::new(problem)?;
     let choice = choose(problem, &span)?;
     let sense = if choice.kind == SpanKind::Cable { -1.0 } else { 1.0 };
-    let sampling = Sampling::new(&span, sense);
+    let sampling = match problem.voussoirs {
+        Some(count) => Sampling::voussoirs(&span, sense, count),
+        None => Sampling::new(&span, sense),
+    };
     let shallow = span.with_unit_depth();
     let bare = Sampling::new(&shallow, sense);
+    let rows: Vec<_> = choice.hinges.iter().map(|&p| span.hinge_row(p)).collect();
+    let Some(space) = Subspace::lines(&span, &rows) else {
+        return Err(Unsolved::Hinges(
+            "the drawn hinges lie on one straight line or in one place: no single line of thrust passes through them"
+                .into(),
+        ));
+    };
     let work = Work {
         problem,
         span: &span,
         choice: &choice,
+        space: &space,
+        flexibility,
         sense,
         sheet: Sheet { span: &span, sampling: &sampling, bare: &bare },
     };
@@ -41,14 +73,21 @@ pub fn analyse(problem: &Problem) -> Result<Analysis, Unsolved> {
     }
     let mut lines = Vec::with_capacity(kinds.len());
     let mut residual = 0.0_f64;
+    let judged = span.has_depth && !problem.tension && choice.kind == SpanKind::Arch;
+    let closest = (judged || kinds.contains(&LineKind::Closest)).then(|| work.search());
     for kind in kinds {
-        let (line, r) = work.line(kind)?;
+        let (line, r) = work.line(kind, closest.as_ref())?;
         if let Some(r) = r {
-            let found = super::check::residual(problem, &span, &sampling, &r, &line.vertices);
+            let found = super::check::residual(problem, &span, &bare, &r, &line.vertices);
             residual = residual.max(found);
         }
         lines.push(line);
     }
+
+    let safety = closest.filter(|_| judged).map(|closest| {
+        let with_factor = Subspace::with_factor(&span, &rows);
+        super::safety::safety(problem, &span, (&sampling, &bare), with_factor.as_ref(), &closest)
+    });
 
     let crown = span.joint_at(span.crown.0, true).at;
     Ok(Analysis {
@@ -63,6 +102,7 @@ pub fn analyse(problem: &Problem) -> Result<Analysis, Unsolved> {
         governs: 0,
         rule: choice.rule,
         lines,
+        safety,
         residual,
     })
 }
@@ -72,18 +112,99 @@ struct Work<'a> {
     problem: &'a Problem,
     span: &'a Span,
     choice: &'a Choice,
+    /// Lines through all hinges.
+    space: &'a Subspace,
+    flexibility: Option<&'a dyn Fn(&Place) -> Flexibility>,
     sense: f64,
     sheet: Sheet<'a>,
 }
 
 impl Work<'_> {
-    fn line(&self, kind: LineKind) -> Result<(Line, Option<Unknowns>), Unsolved> {
-        match kind {
-            LineKind::Through => self.through(),
-            LineKind::Closest => self.closest(),
-            LineKind::LeastThrust => not_built("least-thrust"),
-            LineKind::GreatestThrust => not_built("greatest-thrust"),
-            LineKind::Elastic => not_built("elastic"),
+    fn line(&self, kind: LineKind, closest: Option<&Closest>) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        match (kind, closest) {
+            (LineKind::Through, _) => self.through(),
+            (LineKind::Closest, Some(closest)) => self.closest(closest),
+            (LineKind::LeastThrust, _) => self.extreme(kind, Aim::LeastPush),
+            (LineKind::GreatestThrust, _) => self.extreme(kind, Aim::GreatestPush),
+            (LineKind::Closest | LineKind::Elastic, _) => self.elastic(),
+        }
+    }
+
+    /// Least complementary energy.
+    fn elastic(&self) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let kind = LineKind::Elastic;
+        let support = self.choice.support;
+        let refuse = |reason: &str| Ok((missing(kind, support, Status::Refused, reason.into()), None));
+        if self.choice.kind == SpanKind::Cable {
+            return refuse("a cable has no bending stiffness");
+        }
+        if support.is_none_or(|s| s == Support::None) {
+            return refuse("the elastic line needs a support: hingeless, two-hinged or three-hinged");
+        }
+        let effects = self.problem.effects;
+        if self.flexibility.is_none() {
+            if !self.span.has_depth {
+                return refuse("the elastic line needs the depth of the rib");
+            }
+            if effects != Effects::default() && self.problem.stiffness.is_none() {
+                return refuse(
+                    "temperature, shrinkage and movement need the modulus of elasticity and the width",
+                );
+            }
+        }
+        let modulus = self.problem.stiffness.unwrap_or(1.0);
+        let rectangle = |p: &Place| {
+            let d = p.depth.unwrap_or(1.0);
+            Flexibility { bending: 12.0 / (modulus * d.powi(3)), axial: 1.0 / (modulus * d) }
+        };
+        let flexibility = self.flexibility.unwrap_or(&rectangle);
+        let whole = self.sheet.bare;
+        let Some(r) = least_energy(self.span, whole, self.space, flexibility, &effects) else {
+            return refuse("the stiffness along the axis is no positive number");
+        };
+        match slack(whole.least_thrust(&r)) {
+            Some(joint) => self.no_line(kind, "the elastic line", &joint),
+            None => Ok((self.sheet.found(kind, support, &r, None), Some(r))),
+        }
+    }
+
+    /// Least or greatest push with the line inside the ring.
+    fn extreme(&self, kind: LineKind, aim: Aim) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let name = if aim == Aim::LeastPush { "least-thrust" } else { "greatest-thrust" };
+        let support = self.choice.support;
+        let refuse = |reason: String| Ok((missing(kind, support, Status::Refused, reason), None));
+        if !self.span.has_depth {
+            return refuse(format!("the line {name} lies inside the ring: it needs a depth"));
+        }
+        if self.choice.kind == SpanKind::Cable {
+            return refuse(format!("a cable has no ring that the line {name} could lie in"));
+        }
+        let limit = Limit {
+            span: self.span,
+            sampling: self.sheet.sampling,
+            whole: self.sheet.bare,
+            space: self.space,
+            friction: self.problem.friction,
+            crushing: self.span.crushing,
+        };
+        match limit.solve(aim) {
+            Extreme::Found { r, primal, dual, .. } => {
+                let (primal, dual) = (primal * self.span.load, dual * self.span.load);
+                let gap = (primal - dual).abs() / primal.abs().max(dual.abs()).max(1.0);
+                Ok((self.sheet.found(kind, support, &r, Some(Proof { primal, dual, gap })), Some(r)))
+            }
+            Extreme::Unbounded => {
+                let reason = "the push can grow without end with the line inside the ring: a straight line fits into it";
+                Ok((missing(kind, support, Status::Unbounded, reason.into()), None))
+            }
+            Extreme::None(leans) => {
+                let why = super::safety::contradiction(self.span, &leans, self.problem);
+                let reason = format!("no line of thrust lies inside the ring{why}");
+                Ok((missing(kind, support, Status::None, reason), None))
+            }
+            Extreme::Stalled => {
+                refuse(format!("the program of the line {name} did not end within its accuracy"))
+            }
         }
     }
 
@@ -96,30 +217,32 @@ impl Work<'_> {
                     .into(),
             ));
         };
-        match slack(self.sheet.sampling.least_thrust(&r)) {
+        match slack(self.sheet.bare.least_thrust(&r)) {
             Some(joint) => self.no_line(kind, "the line through its three points", &joint),
             None => Ok((self.sheet.found(kind, self.choice.support, &r, None), Some(r))),
         }
     }
 
-    fn closest(&self) -> Result<(Line, Option<Unknowns>), Unsolved> {
-        let kind = LineKind::Closest;
-        let rows: Vec<_> = self.choice.hinges.iter().map(|&p| self.span.hinge_row(p)).collect();
-        let Some(space) = Subspace::new(self.span, &rows) else {
-            return Err(Unsolved::Hinges(
-                "the drawn hinges lie on one straight line or in one place: no single line of thrust passes through them"
-                    .into(),
-            ));
-        };
+    fn search(&self) -> Closest {
         let start = through_points(self.problem, self.span, self.choice)
             .ok()
             .and_then(|points| through(self.span, &points))
             .filter(|_| self.problem.through.is_none());
-        let search = Search::new(self.span, self.sheet.sampling, &space, self.sense);
+        Search::new(self.span, self.sheet.sampling, self.sheet.bare, self.space, self.sense).run(start)
+    }
+
+    fn closest(&self, closest: &Closest) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let kind = LineKind::Closest;
         let support = self.choice.support;
-        match search.run(start) {
-            Closest::Found { r, proof } => Ok((self.sheet.found(kind, support, &r, Some(proof)), Some(r))),
-            Closest::None(joint) => self.no_line(kind, "every line", &joint),
+        match closest {
+            Closest::Found { r, proof } => {
+                // Without a depth the optimum is a length.
+                let unit = if self.span.has_depth { 1.0 } else { self.span.length };
+                let (primal, dual) = (proof.primal * unit, proof.dual * unit);
+                let gap = (primal - dual).abs() / primal.max(dual).max(1.0);
+                Ok((self.sheet.found(kind, support, r, Some(Proof { primal, dual, gap })), Some(*r)))
+            }
+            Closest::None(joint) => self.no_line(kind, "every line", joint),
             Closest::Unbounded => {
                 let reason = "the line comes closer to the axis the greater the push is, without end: the loads do not \
                               act as a load on an arch of this shape";
@@ -158,8 +281,4 @@ impl Work<'_> {
         let reason = format!("{which} has no compression left {place}{load}");
         Ok((missing(kind, self.choice.support, Status::None, reason), None))
     }
-}
-
-fn not_built<T>(name: &str) -> Result<T, Unsolved> {
-    Err(Unsolved::NotBuilt(format!("the line `{name}` is not built yet")))
 }

@@ -1,7 +1,9 @@
 //! Self-checks of every run: each line is held against equilibrium worked out another way.
 
+use super::joint::Unknowns;
 use super::peaks::Sampling;
-use super::span::{Span, Unknowns};
+use super::piece::Piece;
+use super::span::Span;
 use super::{Problem, Reaction};
 use crate::geometry::{Point, Vec2};
 
@@ -34,8 +36,10 @@ pub(super) fn residual(
     for pair in sampling.joints().windows(2).step_by(stride).filter(|p| p[0].piece == p[1].piece) {
         let piece = &span.pieces[pair[0].piece];
         let (half, middle) = ((pair[1].s - pair[0].s) / 2.0, f64::midpoint(pair[0].s, pair[1].s));
-        let sum: f64 =
-            RULE.iter().map(|(x, w)| w * half * piece.joint(middle + half * x, pair[0].piece).shear(r)).sum();
+        let sum: f64 = RULE
+            .iter()
+            .map(|(x, w)| w * half * piece.moment_slope(&piece.joint(middle + half * x, pair[0].piece), r))
+            .sum();
         worst = worst.max((pair[1].moment(r) - pair[0].moment(r) - sum).abs() / size);
     }
 
@@ -44,8 +48,10 @@ pub(super) fn residual(
     let scale = size * span.load * span.length;
     // Over an axis that leans outward there are two joints at one abscissa.
     let upright = sampling.joints().iter().all(|j| j.tangent.x > 0.0);
+    let weights = Weights::new(problem, span);
     for joint in sampling.spread(JOINTS) {
-        let summed = moment_summed(problem, span, &reaction, joint.s, joint.piece, span.drawn(joint.at));
+        let summed =
+            moment_summed(problem, span, &weights, &reaction, (joint.s, joint.piece), span.drawn(joint.at));
         worst = worst.max((joint.moment(r) * span.load * span.length - summed).abs() / scale);
         if let Some(v) = height(span, vertices, joint.at).filter(|_| upright) {
             let ray = joint.resultant(r);
@@ -60,14 +66,22 @@ pub(super) fn residual(
     for e in &span.entered {
         sum += problem.forces[e.index].force;
     }
-    sum.y -= problem.weight_on_axis * span.length;
+    sum.y -= weights.before(1.0).0;
     worst = worst.max(sum.hypot() / (force * span.load));
-    let whole = moment_summed(problem, span, &reaction, 1.0, span.pieces.len(), problem.axis.end());
+    let whole =
+        moment_summed(problem, span, &weights, &reaction, (1.0, span.pieces.len()), problem.axis.end());
     worst.max((whole - last.moment(r) * span.load * span.length).abs() / scale)
 }
 
 /// `M_0 + V (x − x_0) − H (y − y_0) + Σ [(x − x_i) F_y − (y − y_i) F_x]` over the loads before the joint at `s`.
-fn moment_summed(problem: &Problem, span: &Span, reaction: &Reaction, s: f64, piece: usize, p: Point) -> f64 {
+fn moment_summed(
+    problem: &Problem,
+    span: &Span,
+    weights: &Weights,
+    reaction: &Reaction,
+    (s, piece): (f64, usize),
+    p: Point,
+) -> f64 {
     let from = p - span.origin;
     let mut moment = reaction.moment + reaction.vertical * from.x - reaction.horizontal * from.y;
     let starts = span.pieces.get(piece).is_some_and(|q| q.s0 >= s && piece > 0);
@@ -82,33 +96,85 @@ fn moment_summed(problem: &Problem, span: &Span, reaction: &Reaction, s: f64, pi
             moment += arm.x * f.force.y - arm.y * f.force.x;
         }
     }
-    if problem.weight_on_axis > 0.0 {
-        // By Gauss along the drawn axis, piece by piece of at most a twentieth of a turn.
+    let (weight, about) = weights.before(s);
+    moment - weight * p.x + about
+}
+
+/// The weight along the axis summed anew: over the area of the ring in strips across and along, and along the drawn axis.
+struct Weights<'a> {
+    problem: &'a Problem,
+    span: &'a Span,
+    /// Weight before each piece, kN, and the sum of its parts times their abscissae in the drawing, kN·m.
+    starts: Vec<(f64, f64)>,
+}
+
+impl<'a> Weights<'a> {
+    fn new(problem: &'a Problem, span: &'a Span) -> Self {
+        let mut weights = Self { problem, span, starts: Vec::new() };
+        if span.pieces.iter().any(Piece::weighs) {
+            let (mut weight, mut about) = (0.0, 0.0);
+            for piece in &span.pieces {
+                weights.starts.push((weight, about));
+                let (w, a) = weights.part(piece, piece.s1);
+                (weight, about) = (weight + w, about + a);
+            }
+            weights.starts.push((weight, about));
+        }
+        weights
+    }
+
+    /// Weight before the joint at `s`, and its sum of weight times abscissa.
+    fn before(&self, s: f64) -> (f64, f64) {
+        let Some(&all) = self.starts.last() else {
+            return (0.0, 0.0);
+        };
+        let i = self.span.pieces.partition_point(|p| p.s1 < s);
+        let Some(piece) = self.span.pieces.get(i) else {
+            return all;
+        };
+        let ((weight, about), (w, a)) = (self.starts[i], self.part(piece, s));
+        (weight + w, about + a)
+    }
+
+    /// By Gauss with three points along and two across, which is exact across, on steps of at most a fiftieth of a radian.
+    fn part(&self, piece: &Piece, until: f64) -> (f64, f64) {
+        let (span, problem) = (self.span, self.problem);
+        let turn = (piece.curvature * (until - piece.s0)).abs();
+        let parts = (1..1000).find(|&n| f64::from(n) * 0.02 >= turn).unwrap_or(1000);
+        let step = (until - piece.s0) / f64::from(parts);
         let far = 0.6_f64.sqrt();
-        for q in span.pieces.iter().filter(|q| q.s0 < s) {
-            let (a, b) = (q.s0, q.s1.min(s));
-            let parts =
-                (1..1000).find(|&n| f64::from(n) * 0.03 >= (q.curvature * (b - a)).abs()).unwrap_or(1000);
-            let step = (b - a) / f64::from(parts);
-            for k in 0..parts {
-                let middle = a + step * (f64::from(k) + 0.5);
-                for (x, w) in [(-far, 5.0 / 18.0), (0.0, 8.0 / 18.0), (far, 5.0 / 18.0)] {
-                    let at = span.drawn(q.joint(middle + step / 2.0 * x, 0).at);
-                    moment -= w * step * span.length * problem.weight_on_axis * (p.x - at.x);
+        let across = 1.0 / 12.0_f64.sqrt();
+        let (mut weight, mut about) = (0.0, 0.0);
+        for k in 0..parts {
+            let middle = piece.s0 + step * (f64::from(k) + 0.5);
+            for (x, w) in [(-far, 5.0 / 18.0), (0.0, 8.0 / 18.0), (far, 5.0 / 18.0)] {
+                let joint = piece.joint(middle + step / 2.0 * x, 0);
+                let length = w * step * span.length;
+                let here = length * problem.weight_on_axis;
+                weight += here;
+                about += here * span.drawn(joint.at).x;
+                let depth = piece.ring_depth(joint.s);
+                for side in [-across, across] {
+                    let off = side * depth;
+                    let area = length * (1.0 - piece.curvature * off) * depth * span.length / 2.0;
+                    let here = area * problem.ring_weight;
+                    weight += here;
+                    about += here * span.drawn(joint.at + joint.normal() * off).x;
                 }
             }
         }
+        (weight, about)
     }
-    moment
 }
 
 /// Height of the drawn line above a point of the axis, in local units, when its loads are vertical: then the polygon's
 /// edge over the point is the ray of its joint. Not at a corner, where two rays meet.
 fn height(span: &Span, vertices: &[Point], at: Point) -> Option<f64> {
     let x = at.x;
-    let near =
-        |e: &super::span::Entered| e.force.x.abs() > 0.0 || (e.at.x - x).abs() <= crate::tolerance::ONE_JOINT;
-    if span.weight > 0.0 || span.entered.iter().any(near) {
+    let near = |e: &super::joint::Entered| {
+        e.force.x.abs() > 0.0 || (e.at.x - x).abs() <= crate::tolerance::ONE_JOINT
+    };
+    if span.pieces.iter().any(Piece::weighs) || span.entered.iter().any(near) {
         return None;
     }
     let local = |p: Point| span.local(p);

@@ -8,11 +8,13 @@
 #![allow(clippy::needless_range_loop, reason = "small dense matrices read best by index")]
 
 use super::Proof;
+use super::joint::{Affine, Joint, Unknowns};
 use super::peaks::{Peak, Sampling};
-use super::quadratic::{Bound, Quadratic};
+use super::quadratic::Bound;
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
-use super::span::{Joint, Span, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
+use super::ties::{bending, independent};
 use crate::tolerance;
 
 /// Joints that the exchange starts with.
@@ -21,6 +23,15 @@ const START: usize = 24;
 const ROUND: usize = 8;
 /// Rounds after which the exchange must have ended.
 const ROUNDS: usize = 80;
+/// Size of the box that the unknowns start in, and how it grows.
+const FIRST_BOX: f64 = 100.0;
+const BOX_GROWTH: f64 = 100.0;
+/// Rounds of the polish, and how far from a peak (as a part of the axis) a joint is taken for its neighbour.
+const POLISH: usize = 8;
+const NEIGHBOUR: f64 = 0.02;
+/// Peaks lower than the highest by less than this part may touch too; no more than so many are looked at.
+const CONTACT: f64 = 0.001;
+const MOST_CONTACTS: usize = 64;
 /// Linear programs for one set of joints.
 const STEPS: usize = 40;
 
@@ -41,15 +52,17 @@ pub(super) enum Closest {
 #[derive(Debug, Clone, Copy)]
 struct Cut {
     joint: Joint,
-    moment: ([f64; 3], f64),
+    moment: Affine,
     /// Depth times thrust in its own sense.
-    room: ([f64; 3], f64),
+    room: Affine,
 }
 
 /// One problem on its way.
 pub(super) struct Search<'a> {
     span: &'a Span,
     sampling: &'a Sampling<'a>,
+    /// The whole axis, where `sampling` may be single joints.
+    whole: &'a Sampling<'a>,
     space: &'a Subspace,
     sense: f64,
     cuts: Vec<Cut>,
@@ -66,6 +79,8 @@ struct Step {
     asked: f64,
     bound: f64,
     multipliers: Vec<Multiplier>,
+    /// Largest multiplier of the box.
+    held: f64,
 }
 
 /// The multiplier of one row of the last program.
@@ -73,23 +88,44 @@ struct Step {
 struct Multiplier {
     /// Index of the cut.
     cut: usize,
-    /// Whether of `M ≤ τ d N` or of `−M ≤ τ d N`.
-    upper: bool,
+    row: RowKind,
     value: f64,
 }
 
+/// The rows of a cut.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum RowKind {
+    /// `M ≤ τ d N`
+    Upper,
+    /// `−M ≤ τ d N`
+    Lower,
+    /// `N ≥ ε`: without it no thrust at all would count as close.
+    Thrust,
+}
+
+impl RowKind {
+    const ALL: [Self; 3] = [Self::Upper, Self::Lower, Self::Thrust];
+}
+
 impl<'a> Search<'a> {
-    pub fn new(span: &'a Span, sampling: &'a Sampling<'a>, space: &'a Subspace, sense: f64) -> Self {
+    pub fn new(
+        span: &'a Span,
+        sampling: &'a Sampling<'a>,
+        whole: &'a Sampling<'a>,
+        space: &'a Subspace,
+        sense: f64,
+    ) -> Self {
         let mut cost = vec![0.0; space.free];
         cost.push(1.0);
         let deepest = sampling.joints().iter().fold(0.0, |m, j| f64::max(m, j.depth));
         let mut search = Self {
             span,
             sampling,
+            whole,
             space,
             sense,
             cuts: Vec::new(),
-            program: Program::new(&cost, tolerance::UNBOUNDED),
+            program: Program::new(&cost, FIRST_BOX),
             floor: 0.1 * span.crown.1.abs() / deepest,
         };
         for joint in sampling.spread(START) {
@@ -108,13 +144,30 @@ impl<'a> Search<'a> {
 
     /// Finds the closest line, starting from `first` if that pushes throughout.
     pub fn run(mut self, first: Option<Unknowns>) -> Closest {
+        // Vertices of a large box cost digits: it grows only as long as it holds the optimum.
+        let mut size = FIRST_BOX;
+        loop {
+            let (held, ended) = self.run_in_box(first, size);
+            if !held {
+                return ended;
+            }
+            if size >= tolerance::UNBOUNDED {
+                return Closest::Unbounded;
+            }
+            size *= BOX_GROWTH;
+            self.program.widen(size);
+        }
+    }
+
+    /// The closest line in the box, and whether the box holds it.
+    fn run_in_box(&mut self, first: Option<Unknowns>, size: f64) -> (bool, Closest) {
         let start = first.filter(|r| self.worst_finite(r).is_some());
         let mut r = match start.map_or_else(|| self.pushing(), Ok) {
             Ok(r) => r,
-            Err(joint) => return Closest::None(joint),
+            Err(joint) => return (false, Closest::None(joint)),
         };
         let Some(mut upper) = self.worst_finite(&r) else {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         };
         let mut best: Option<(f64, Step)> = None;
         for _ in 0..ROUNDS {
@@ -137,12 +190,72 @@ impl<'a> Search<'a> {
             }
         }
         let Some((gain, step)) = best else {
-            return Closest::Stalled;
+            return (false, Closest::Stalled);
         };
-        if gain > tolerance::PROOF_GAP * step.tau.max(self.floor) {
-            return Closest::Stalled;
+        if step.held * size > tolerance::PROOF_GAP * step.tau.max(self.floor) {
+            return (true, Closest::Unbounded);
         }
-        self.finish(step)
+        if gain > tolerance::PROOF_GAP * step.tau.max(self.floor) {
+            return (false, Closest::Stalled);
+        }
+        let step = self.polish(step);
+        (false, self.finish(&step))
+    }
+
+    /// Moves the joints of the program to the very peaks of the line, so that the multipliers belong to the places that
+    /// the line touches and not to their neighbours. Each round squares the distance, as in Newton's method.
+    fn polish(&mut self, mut step: Step) -> Step {
+        for _ in 0..POLISH {
+            let Some(before) = self.worst_finite(&step.r) else {
+                break;
+            };
+            let peaks = self.sampling.peaks(&step.r, step.tau * (1.0 - CONTACT));
+            let known = self.cuts.clone();
+            let inner = |j: &Joint| {
+                let piece = &self.span.pieces[j.piece];
+                j.s > piece.s0 && j.s < piece.s1
+            };
+            let (inside, ends): (Vec<_>, Vec<_>) =
+                peaks.iter().take(MOST_CONTACTS).map(|p| p.joint).partition(|j| inner(j));
+            let mut moved = 0.0_f64;
+            for joint in &inside {
+                let near = known.iter().filter(|c| c.joint.piece == joint.piece && inner(&c.joint));
+                let nearest = near.map(|c| (c.joint.s - joint.s).abs()).fold(f64::INFINITY, f64::min);
+                moved = moved.max(nearest.min(NEIGHBOUR));
+            }
+            if moved <= tolerance::PEAK_PLACE {
+                break;
+            }
+            self.cuts.retain(|c| {
+                let near = |j: &Joint| c.joint.piece == j.piece && (c.joint.s - j.s).abs() < NEIGHBOUR;
+                !(inner(&c.joint) && inside.iter().any(near))
+            });
+            for joint in inside {
+                self.add(joint);
+            }
+            for joint in ends {
+                let same = |c: &Cut| {
+                    c.joint.piece == joint.piece && (c.joint.s - joint.s).abs() <= tolerance::PEAK_PLACE
+                };
+                if !self.cuts.iter().any(same) {
+                    self.add(joint);
+                }
+            }
+            let next = self.least(&step.r, before);
+            let after = next.as_ref().and_then(|n| self.worst_finite(&n.r));
+            match (next, after) {
+                (Some(next), Some(after))
+                    if after <= before + tolerance::EXCHANGE_GAIN * before.max(self.floor) =>
+                {
+                    step = next;
+                }
+                _ => {
+                    self.cuts = known;
+                    break;
+                }
+            }
+        }
+        step
     }
 
     /// Adds the highest peaks above `tau`; gives how many.
@@ -211,16 +324,16 @@ impl<'a> Search<'a> {
         let mut last: Option<Step> = None;
         for _ in 0..STEPS {
             let rows = self.cuts.iter().zip(&weights).flat_map(|(cut, w)| {
-                [1.0, -1.0].map(|side| {
+                RowKind::ALL.map(|kind| {
+                    let (bound, b) = self.bound(cut, kind, tau);
                     let mut a = [0.0; MOST];
-                    for i in 0..n {
-                        a[i] = side * cut.moment.0[i] - tau * cut.room.0[i];
-                    }
-                    a[n] = -w.max(f64::MIN_POSITIVE);
-                    Row { a, b: tau * cut.room.1 - side * cut.moment.1 }
+                    a[..n].copy_from_slice(&bound[..n]);
+                    a[n] = if kind == RowKind::Thrust { 0.0 } else { -w.max(f64::MIN_POSITIVE) };
+                    Row { a, b }
                 })
             });
-            self.program.replace(rows);
+            let rows: Vec<Row> = rows.collect();
+            self.program.replace(rows.into_iter());
             let Outcome::Best(vertex) = self.program.solve() else {
                 return last;
             };
@@ -229,49 +342,48 @@ impl<'a> Search<'a> {
             let Some(reached) = self.ratio(&y) else {
                 return last;
             };
-            let gain = tau - reached;
-            let step = Step {
+            let done = tau - reached <= 4.0 * f64::EPSILON * tau.max(self.floor);
+            let mut step = Step {
                 r: self.space.unknowns(&y),
                 tau: reached,
                 asked: tau,
                 bound: vertex.dual,
                 multipliers: self.multipliers(&vertex),
+                held: self.program.held(&vertex),
             };
-            let done = gain <= 4.0 * f64::EPSILON * tau.max(self.floor);
-            if !done {
-                tau = reached;
-                for (w, cut) in weights.iter_mut().zip(&self.cuts) {
-                    *w = value(&cut.room, &y);
-                }
-            }
-            if last.as_ref().is_none_or(|l| reached <= l.tau || !done) {
-                last = Some(step);
-            }
             if done {
-                break;
+                // The last program proves the line before it when rounding has made its own line the worse.
+                if let Some(l) = last.filter(|l| l.tau < reached) {
+                    (step.r, step.tau) = (l.r, l.tau);
+                }
+                return Some(step);
             }
+            tau = reached;
+            for (w, cut) in weights.iter_mut().zip(&self.cuts) {
+                *w = value(&cut.room, &y);
+            }
+            last = Some(step);
         }
         last
     }
 
     /// Chooses among equally close lines, measures the line on the whole axis, and draws up the proof.
-    fn finish(mut self, step: Step) -> Closest {
-        let holds = self.holding(&step);
+    fn finish(&mut self, step: &Step) -> Closest {
+        let holds = self.holding(step);
         let mut r = step.r;
         if holds.len() < self.space.free
-            && let Some(chosen) = self.least_bending(&step, &holds)
+            && let Some(chosen) = self.least_bending(step, &holds)
         {
             r = chosen;
-        }
-        let far = tolerance::UNBOUNDED * 0.5;
-        let sized = (r[0] * (8.0 * self.span.crown.1.abs()).min(1.0)).abs().max(r[1].abs());
-        if sized > far {
-            return Closest::Unbounded;
         }
         let Some(primal) = self.worst_finite(&r) else {
             return Closest::Stalled;
         };
-        let dual = self.dual(&step, &r);
+        let dual = self.dual(step, &r);
+        if (primal - dual).abs() > tolerance::PROOF_GAP * primal.max(self.floor) {
+            // Never an optimum without its proof.
+            return Closest::Stalled;
+        }
         let gap = (primal - dual).abs() / primal.abs().max(dual.abs()).max(1.0);
         Closest::Found { r, proof: Proof { primal, dual, gap } }
     }
@@ -282,6 +394,7 @@ impl<'a> Search<'a> {
         let room: f64 = step
             .multipliers
             .iter()
+            .filter(|m| m.row != RowKind::Thrust)
             .map(|m| {
                 let joint = &self.cuts[m.cut].joint;
                 m.value * joint.thrust(r) * self.sense * joint.depth
@@ -294,8 +407,8 @@ impl<'a> Search<'a> {
         let first = self.program.box_rows();
         let cuts = vertex.active.iter().filter(|a| a.0 >= first);
         cuts.map(|&(i, value)| Multiplier {
-            cut: (i - first) / 2,
-            upper: (i - first).is_multiple_of(2),
+            cut: (i - first) / RowKind::ALL.len(),
+            row: RowKind::ALL[(i - first) % RowKind::ALL.len()],
             value,
         })
         .collect()
@@ -308,49 +421,33 @@ impl<'a> Search<'a> {
         let mut active = step.multipliers.clone();
         active.retain(|m| m.value > tolerance::MULTIPLIER * most);
         active.sort_by(|a, b| b.value.total_cmp(&a.value).then(a.cut.cmp(&b.cut)));
-        let mut held: Vec<Bound> = Vec::new();
-        let mut units: Vec<[f64; 3]> = Vec::new();
-        for m in &active {
-            let (a, b) = self.bound(&self.cuts[m.cut], m.upper, step.tau);
-            let size = a.iter().map(|v| v * v).sum::<f64>().sqrt();
-            let mut rest = a.map(|v| v / size);
-            for u in &units {
-                let along: f64 = (0..n).map(|j| rest[j] * u[j]).sum();
-                for j in 0..n {
-                    rest[j] -= along * u[j];
-                }
-            }
-            let left = rest.iter().map(|v| v * v).sum::<f64>().sqrt();
-            if size > 0.0 && left > tolerance::RANK {
-                units.push(rest.map(|v| v / left));
-                held.push((a, b));
-            }
-        }
-        held
+        independent(n, active.iter().map(|m| self.bound(&self.cuts[m.cut], m.row, step.tau)))
     }
 
-    /// `±M − τ d N ≤ 0` as a row of the free unknowns.
-    fn bound(&self, cut: &Cut, upper: bool, tau: f64) -> Bound {
-        let side = if upper { 1.0 } else { -1.0 };
+    /// `±M − τ d N ≤ 0` or `ε − N ≤ 0` as a row of the free unknowns.
+    fn bound(&self, cut: &Cut, kind: RowKind, tau: f64) -> Bound {
+        let (side, room) = match kind {
+            RowKind::Upper => (1.0, tau),
+            RowKind::Lower => (-1.0, tau),
+            RowKind::Thrust => (0.0, 1.0 / cut.joint.depth),
+        };
+        let least = if kind == RowKind::Thrust { tolerance::LEAST_THRUST } else { 0.0 };
         let mut a = [0.0; 3];
         for (i, v) in a.iter_mut().enumerate().take(self.space.free) {
-            *v = side * cut.moment.0[i] - tau * cut.room.0[i];
+            *v = side * cut.moment.0[i] - room * cut.room.0[i];
         }
-        (a, tau * cut.room.1 - side * cut.moment.1)
+        (a, room * cut.room.1 - side * cut.moment.1 - least)
     }
 
     /// Of all lines as close as the best, the one of least `∫ M² ds`.
     fn least_bending(&mut self, step: &Step, holds: &[Bound]) -> Option<Unknowns> {
-        let aim = self.bending();
+        let aim = bending(self.span, self.whole, self.space);
         let leave = step.tau + tolerance::TIE_LEAVE * step.tau.max(self.floor);
         let known = self.cuts.len();
         let mut chosen = None;
         for _ in 0..ROUNDS {
-            let rows: Vec<Bound> = self
-                .cuts
-                .iter()
-                .flat_map(|c| [self.bound(c, true, leave), self.bound(c, false, leave)])
-                .collect();
+            let rows: Vec<Bound> =
+                self.cuts.iter().flat_map(|c| RowKind::ALL.map(|kind| self.bound(c, kind, leave))).collect();
             let y = aim.least(holds, &rows)?;
             let r = self.space.unknowns(&y);
             let peaks = self.sampling.peaks(&r, leave);
@@ -367,32 +464,8 @@ impl<'a> Search<'a> {
         self.cuts.truncate(known);
         chosen
     }
-
-    /// `½ ∫ M² ds` in the free unknowns, by Gauss with three points between neighbouring samples.
-    fn bending(&self) -> Quadratic {
-        let mut q = Quadratic { n: self.space.free, matrix: [[0.0; 3]; 3], linear: [0.0; 3] };
-        for pair in self.sampling.joints().windows(2) {
-            if pair[0].piece != pair[1].piece {
-                continue;
-            }
-            let piece = &self.span.pieces[pair[0].piece];
-            let (half, middle) = ((pair[1].s - pair[0].s) / 2.0, f64::midpoint(pair[0].s, pair[1].s));
-            let far = 0.6_f64.sqrt();
-            for (x, w) in [(-far, 5.0 / 9.0), (0.0, 8.0 / 9.0), (far, 5.0 / 9.0)] {
-                let joint = piece.joint(middle + half * x, pair[0].piece);
-                let (m, c) = self.space.row(&joint.moment_row());
-                for i in 0..q.n {
-                    for j in 0..q.n {
-                        q.matrix[i][j] += w * half * m[i] * m[j];
-                    }
-                    q.linear[i] += w * half * m[i] * c;
-                }
-            }
-        }
-        q
-    }
 }
 
-fn value(row: &([f64; 3], f64), y: &[f64; 3]) -> f64 {
+fn value(row: &Affine, y: &[f64; 3]) -> f64 {
     row.0[0] * y[0] + row.0[1] * y[1] + row.0[2] * y[2] + row.1
 }

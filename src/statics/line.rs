@@ -1,7 +1,8 @@
 //! A line of thrust laid out: stations, offset, depth use, and the ends.
 
+use super::joint::{Joint, Unknowns};
 use super::peaks::{Peak, Sampling};
-use super::span::{Joint, Span, Unknowns};
+use super::span::Span;
 use super::{End, Line, LineKind, Offset, Proof, Station, Status, Support, Use};
 use crate::tolerance;
 
@@ -32,8 +33,6 @@ impl Sheet<'_> {
         let reaction = span.reaction(r);
         let (first, last) = (span.first(), span.last());
         let end = last.resultant(r) * span.load;
-        // Without a depth the optimum is a length.
-        let unit = if span.has_depth { 1.0 } else { span.length };
         Line {
             kind,
             support,
@@ -58,11 +57,7 @@ impl Sheet<'_> {
                 s: p.joint.s * span.length,
             }),
             stations: self.stations(worst.iter().chain(&used), r),
-            proof: proof.map(|p| Proof {
-                primal: p.primal * unit,
-                dual: p.dual * unit,
-                gap: (p.primal - p.dual).abs() * unit / (p.primal.max(p.dual) * unit).max(1.0),
-            }),
+            proof,
         }
     }
 
@@ -87,7 +82,7 @@ impl Sheet<'_> {
             (0.861_136_311_594_052_6, 0.347_854_845_137_453_85),
         ];
         let mut sum = 0.0;
-        for pair in self.sampling.joints().windows(2).filter(|p| p[0].piece == p[1].piece) {
+        for pair in self.bare.joints().windows(2).filter(|p| p[0].piece == p[1].piece) {
             let piece = &self.span.pieces[pair[0].piece];
             let (half, middle) = ((pair[1].s - pair[0].s) / 2.0, f64::midpoint(pair[0].s, pair[1].s));
             for (x, w) in RULE {
@@ -109,7 +104,7 @@ impl Sheet<'_> {
             joints.push(span.joint_at(e.foot, false));
         }
         joints.extend((1..EVEN).map(|k| span.joint_at(f64::from(k) / f64::from(EVEN), true)));
-        // Found anew, because the joints of the bare sampling carry no depth of the ring.
+        // The place alone: the joint may be one without depth.
         joints.extend(worst.map(|p| span.pieces[p.joint.piece].joint(p.joint.s, p.joint.piece)));
         joints.sort_by(|a, b| a.s.total_cmp(&b.s).then(a.piece.cmp(&b.piece)));
         // A joint at the end of one piece and at the start of the next is one, unless a load or a kink is between.

@@ -7,18 +7,29 @@
 mod analyse;
 mod check;
 mod closest;
+mod elastic;
+mod joint;
+mod limit;
 mod line;
 mod peaks;
+mod piece;
+mod place;
 mod pole;
 mod quadratic;
 mod rule;
+mod safety;
 mod simplex;
 mod span;
+pub mod stress;
 mod string;
 mod subspace;
+mod thickness;
 mod through;
+mod ties;
 
-pub use analyse::analyse;
+pub use analyse::{analyse, elastic};
+pub use elastic::{Effects, Flexibility, Place};
+pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};
 
@@ -84,8 +95,28 @@ pub struct Problem {
     pub forces: Vec<Force>,
     /// Uniform downward weight per metre of axis, acting on the axis, kN/m; 0 for a weightless rib.
     pub weight_on_axis: f64,
+    /// Unit weight times width of the ring, kN per square metre of elevation: the weight of its true pieces between
+    /// normals, at their own centroids. Needs a depth; 0 for a weightless ring.
+    pub ring_weight: f64,
+    /// Forces that enter the ring at a stated place: index, and length along the axis, m. A weight enters the piece that it
+    /// was cut for; all other forces enter where their line of action meets the axis first.
+    pub entering: Vec<(usize, f64)>,
+    /// Indices of the forces that a load factor multiplies.
+    pub varying: Vec<usize>,
+    /// Whether a load factor multiplies the weight of the rib too.
+    pub weight_varies: bool,
     /// Depth of the rib or ring; `None` where only the axis is known.
     pub depth: Option<Depth>,
+    /// Number of equal pieces of the ring along the axis; `None`: a continuous ring.
+    pub voussoirs: Option<usize>,
+    /// Coefficient of friction between the pieces; `None`: nothing slides.
+    pub friction: Option<f64>,
+    /// Strength in compression times width, kN/m, of a uniform block of stress; `None`: unlimited.
+    pub strength: Option<f64>,
+    /// Modulus of elasticity times width, kN/m (lowered for creep); only what strains the rib beside its loads needs it.
+    pub stiffness: Option<f64>,
+    /// What strains an elastic rib beside its loads.
+    pub effects: Effects,
     /// Whether the section can take tension.
     pub tension: bool,
     /// How the span is held; `None` when nothing was said.
@@ -98,6 +129,33 @@ pub struct Problem {
     pub govern: Option<LineKind>,
     /// Lines wanted beside the governing one.
     pub draw: Vec<LineKind>,
+}
+
+impl Problem {
+    /// A weightless axis without loads, depth, support or wishes: to be filled in.
+    pub fn new(axis: Path) -> Self {
+        Self {
+            axis,
+            forces: Vec::new(),
+            weight_on_axis: 0.0,
+            ring_weight: 0.0,
+            entering: Vec::new(),
+            varying: Vec::new(),
+            weight_varies: false,
+            depth: None,
+            voussoirs: None,
+            friction: None,
+            strength: None,
+            stiffness: None,
+            effects: Effects::default(),
+            tension: false,
+            support: None,
+            hinges: Vec::new(),
+            through: None,
+            govern: None,
+            draw: Vec::new(),
+        }
+    }
 }
 
 /// Whether the span pushes or pulls.
@@ -232,6 +290,73 @@ pub struct Line {
     pub proof: Option<Proof>,
 }
 
+/// A factor of safety.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Factor {
+    /// Whether there is one; `Unbounded` is an answer.
+    pub status: Status,
+    /// The factor, when it was found.
+    pub value: Option<f64>,
+    /// Why not, when it was not.
+    pub reason: Option<String>,
+    /// Proof of optimality.
+    pub proof: Option<Proof>,
+}
+
+/// Where a hinge of a mechanism forms.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum HingeSide {
+    /// On the outer edge.
+    Extrados,
+    /// On the inner edge.
+    Intrados,
+    /// No hinge: the ring slides in this joint.
+    Slip,
+}
+
+/// A hinge of a mechanism.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Hinge {
+    /// Where it turns: on the edge of the ring, inside where the edge crushes, m.
+    pub at: Point,
+    /// Length of its joint along the axis, m.
+    pub s: f64,
+    /// Which edge.
+    pub side: HingeSide,
+    /// Size of its rotation, rad per kN·m of work of the varying loads (a slip: m per kN·m).
+    pub rotation: f64,
+}
+
+/// The mechanism that an end of the load factor's interval belongs to.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Mechanism {
+    /// Its hinges, from left to right.
+    pub hinges: Vec<Hinge>,
+    /// Virtual work of the loads that stay, with the varying ones doing one unit at factor 1.
+    pub work_fixed: f64,
+    /// Virtual work of the varying loads at factor 1: one, or minus one at the lower end.
+    pub work_varying: f64,
+    /// What crushing at finite strength takes of it.
+    pub work_crushing: f64,
+    /// What is left of the work of all loads at the factor found, relative to its parts.
+    pub residual: f64,
+}
+
+/// Factors of safety of a ring without tension: with unlimited strength, on abutments that take the push.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Safety {
+    /// Largest `g` with some line at `|e| ≤ d / (2 g)` everywhere; the loads are unchanged.
+    pub geometric: Factor,
+    /// Largest factor on the varying loads for which a line lies inside the ring; `None` when nothing varies.
+    pub load: Option<Factor>,
+    /// Least such factor.
+    pub load_least: Option<Factor>,
+    /// The mechanism of the largest factor.
+    pub mechanism: Option<Mechanism>,
+    /// The mechanism of the least factor, when that is not zero.
+    pub mechanism_least: Option<Mechanism>,
+}
+
 /// The fitted pole of the graphic method.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct PoleFit {
@@ -296,6 +421,8 @@ pub struct Analysis {
     pub rule: Rule,
     /// All lines, the governing one first.
     pub lines: Vec<Line>,
+    /// Factors of safety; `None` for a cable, where no depth is known, and for a section that takes tension.
+    pub safety: Option<Safety>,
     /// Largest relative residual of the equilibrium self-checks over all lines found.
     pub residual: f64,
 }

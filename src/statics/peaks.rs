@@ -1,10 +1,13 @@
 //! Where a constraint's own function is worst on the continuous axis.
 //!
-//! The function is `|M| / (d N)` for a line of thrust: eccentricity over depth. Between loads, kinks and joints of
-//! pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of its slope is
-//! followed to the peak.
+//! The function is `|M| / (d N)` for a line of thrust, eccentricity over depth, `|S| / N` for sliding, or the like for
+//! crushing. Between loads,
+//! kinks and joints of pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of
+//! its slope is followed to the peak. A ring of a stated number of voussoirs has its own joints and no others.
 
-use super::span::{Joint, Piece, Span, Unknowns};
+use super::joint::{Joint, Unknowns};
+use super::piece::Piece;
+use super::span::Span;
 use crate::tolerance;
 
 /// Turning of the axis between two samples, degrees.
@@ -12,11 +15,22 @@ const SAMPLE_TURN: f64 = 3.0;
 /// Samples of a straight piece under its own weight.
 const SAMPLES_STRAIGHT: usize = 4;
 
+/// What is measured in a joint.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) enum Measure {
+    /// `|M| / (d N)`
+    Eccentricity,
+    /// `|S| / N`
+    Sliding,
+    /// `|M| / (N d / 2 − c N²)` with this `c`
+    Crushing(f64),
+}
+
 /// A joint where the function has a peak or an end.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Peak {
     pub joint: Joint,
-    /// `|M| / (d N)`; infinite where the thrust vanishes or has the wrong sense.
+    /// `|M| / (d N)` or `|S| / N`; infinite where the thrust vanishes or has the wrong sense.
     pub value: f64,
     /// Thrust in its own sense over the load: orders the peaks that are infinite.
     thrust: f64,
@@ -28,6 +42,8 @@ pub(super) struct Sampling<'a> {
     /// 1 for compression, −1 for a cable.
     sense: f64,
     joints: Vec<Joint>,
+    /// The joints are all there are.
+    separate: bool,
 }
 
 impl<'a> Sampling<'a> {
@@ -44,7 +60,21 @@ impl<'a> Sampling<'a> {
                 joints.push(piece.joint(piece.s1, i));
             }
         }
-        Self { span, sense, joints }
+        Self { span, sense, joints, separate: false }
+    }
+
+    /// The joints of a ring of `count` equal pieces along the axis, on both sides of a load or kink.
+    pub fn voussoirs(span: &'a Span, sense: f64, count: usize) -> Self {
+        let mut joints = Vec::with_capacity(count + 1);
+        for k in 0..=count {
+            let s = k as f64 / count as f64;
+            let (before, after) = (span.joint_at(s, true), span.joint_at(s, false));
+            joints.push(before);
+            if after.loads != before.loads || after.tangent != before.tangent {
+                joints.push(after);
+            }
+        }
+        Self { span, sense, joints, separate: true }
     }
 
     pub fn joints(&self) -> &[Joint] {
@@ -70,29 +100,42 @@ impl<'a> Sampling<'a> {
         least
     }
 
-    fn peak(&self, joint: &Joint, r: &Unknowns) -> Peak {
-        let (moment, thrust) = (joint.moment(r), joint.thrust(r) * self.sense);
+    fn peak(&self, what: Measure, joint: &Joint, r: &Unknowns) -> Peak {
+        let thrust = joint.thrust(r) * self.sense;
         let value = if thrust > tolerance::NO_THRUST {
-            moment.abs() / (joint.depth * thrust)
-        } else if moment.abs() <= tolerance::NO_THRUST && thrust > -tolerance::NO_THRUST {
-            // Neither thrust nor moment: nothing passes through this joint.
-            0.0
+            match what {
+                Measure::Eccentricity => joint.moment(r).abs() / (joint.depth * thrust),
+                Measure::Sliding => joint.shear(r).abs() / thrust,
+                Measure::Crushing(c) => {
+                    let room = thrust * (joint.depth / 2.0 - c * thrust);
+                    if room > 0.0 { joint.moment(r).abs() / room } else { f64::INFINITY }
+                }
+            }
         } else {
             f64::INFINITY
         };
         Peak { joint: *joint, value, thrust }
     }
 
-    /// All ends and peaks at least as high as `floor`, highest first.
+    /// All ends and peaks of the eccentricity over depth at least as high as `floor`, highest first.
     pub fn peaks(&self, r: &Unknowns, floor: f64) -> Vec<Peak> {
+        self.peaks_of(Measure::Eccentricity, r, floor)
+    }
+
+    /// All ends and peaks at least as high as `floor`, highest first.
+    pub fn peaks_of(&self, what: Measure, r: &Unknowns, floor: f64) -> Vec<Peak> {
         let mut found: Vec<Peak> = Vec::new();
         let mut best = floor;
         let mut k = 0;
         while k < self.joints.len() {
             let piece = self.joints[k].piece;
             let end = k + self.joints[k..].iter().take_while(|j| j.piece == piece).count();
-            for i in [k, end - 1] {
-                let peak = self.peak(&self.joints[i], r);
+            let ends = [k, end - 1];
+            for i in k..end {
+                if !(self.separate || ends.contains(&i)) {
+                    continue;
+                }
+                let peak = self.peak(what, &self.joints[i], r);
                 if peak.value >= floor {
                     best = best.max(if peak.value.is_finite() { peak.value } else { best });
                     found.push(peak);
@@ -100,41 +143,10 @@ impl<'a> Sampling<'a> {
             }
             k = end;
         }
-        let mut before: Option<(&Joint, f64)> = None;
-        for joint in &self.joints {
-            let piece = &self.span.pieces[joint.piece];
-            if piece.is_plain() {
-                before = None;
-                continue;
-            }
-            if joint.thrust(r) * self.sense <= tolerance::NO_THRUST {
-                let peak = self.peak(joint, r);
-                if peak.value.is_infinite() {
-                    found.push(peak);
-                }
-                before = None;
-                continue;
-            }
-            let slope = self.slope(piece, joint, r);
-            if let Some((from, earlier)) = before
-                && from.piece == joint.piece
-                && earlier * slope < 0.0
-            {
-                // No peak between two samples is higher than this.
-                let reach = |j: &Joint, slope: f64| {
-                    let d = j.depth * j.thrust(r);
-                    (j.moment(r) / d).abs() + (slope / (d * d)).abs() * (joint.s - from.s)
-                };
-                if reach(from, earlier).max(reach(joint, slope)) >= floor.max(0.5 * best) {
-                    let top = self.summit(piece, (from.s, earlier), (joint.s, slope), joint.piece, r);
-                    let peak = self.peak(&top, r);
-                    if peak.value >= floor {
-                        found.push(peak);
-                    }
-                }
-            }
-            before = Some((joint, slope));
+        if !self.separate {
+            self.inner_peaks(what, r, floor, best, &mut found);
         }
+        found.retain(|p| p.value >= floor);
         found.sort_by(|a, b| {
             b.value
                 .total_cmp(&a.value)
@@ -144,29 +156,88 @@ impl<'a> Sampling<'a> {
         found
     }
 
+    /// The peaks between the ends.
+    fn inner_peaks(&self, what: Measure, r: &Unknowns, floor: f64, best: f64, found: &mut Vec<Peak>) {
+        let mut before: Option<(&Joint, f64)> = None;
+        for joint in &self.joints {
+            let piece = &self.span.pieces[joint.piece];
+            if piece.is_plain() {
+                before = None;
+                continue;
+            }
+            if joint.thrust(r) * self.sense <= tolerance::NO_THRUST {
+                let peak = self.peak(what, joint, r);
+                if peak.value.is_infinite() {
+                    found.push(peak);
+                }
+                before = None;
+                continue;
+            }
+            let slope = self.slope(what, piece, joint, r);
+            if slope.abs() <= 0.0 {
+                // The sample is the peak itself.
+                found.push(self.peak(what, joint, r));
+            }
+            if let Some((from, earlier)) = before
+                && from.piece == joint.piece
+                && earlier * slope < 0.0
+            {
+                // No peak between two samples is higher than this.
+                let reach = |j: &Joint, slope: f64| {
+                    let (over, under) = fraction(what, j, r);
+                    (over / under).abs() + (slope / (under * under)).abs() * (joint.s - from.s)
+                };
+                if reach(from, earlier).max(reach(joint, slope)) >= floor.max(0.5 * best) {
+                    let top = self.summit(what, (from.s, earlier), (joint.s, slope), joint.piece, r);
+                    let peak = self.peak(what, &top, r);
+                    if peak.value >= floor {
+                        found.push(peak);
+                    }
+                }
+            }
+            before = Some((joint, slope));
+        }
+    }
+
     /// The highest peak of all.
     pub fn worst(&self, r: &Unknowns) -> Option<Peak> {
         self.peaks(r, 0.0).first().copied()
     }
 
-    /// `M' D − M D'` with `D = d N`: the slope of `M / D` but for a positive factor. `M' = S`.
-    fn slope(&self, piece: &Piece, joint: &Joint, r: &Unknowns) -> f64 {
-        let (m, n, s) = (joint.moment(r), joint.thrust(r), joint.shear(r));
-        s * joint.depth * n - m * (piece.depth_slope * n + joint.depth * piece.thrust_slope(joint, r))
+    /// `A' B − A B'` for the fraction `A / B`: its slope but for a positive factor. With `D = d N`, `N' = κ S − w t_y`,
+    /// `S' = −κ N − w t_x`.
+    fn slope(&self, what: Measure, piece: &Piece, joint: &Joint, r: &Unknowns) -> f64 {
+        let (over, under) = fraction(what, joint, r);
+        let thrust = piece.thrust_slope(joint, r);
+        let (rise, base) = match what {
+            Measure::Eccentricity => {
+                (piece.moment_slope(joint, r), piece.depth_slope * joint.thrust(r) + joint.depth * thrust)
+            }
+            Measure::Sliding => (piece.shear_slope(joint, r), thrust),
+            Measure::Crushing(c) => {
+                let n = joint.thrust(r);
+                let room = thrust * (joint.depth / 2.0 - 2.0 * c * n) + n * piece.depth_slope / 2.0;
+                (piece.moment_slope(joint, r), room)
+            }
+        };
+        rise * under - over * base
     }
 
     /// Where the slope vanishes between two joints at which it has opposite signs: regula falsi, halving the weight of
     /// an end that stays [Dowell and Jarratt 1971, the Illinois rule].
-    fn summit(&self, piece: &Piece, from: (f64, f64), to: (f64, f64), index: usize, r: &Unknowns) -> Joint {
+    fn summit(&self, what: Measure, from: (f64, f64), to: (f64, f64), index: usize, r: &Unknowns) -> Joint {
+        let piece = &self.span.pieces[index];
         let ((mut a, mut fa), (mut b, mut fb)) = (from, to);
         let mut joint = piece.joint(f64::midpoint(a, b), index);
         let mut moved = 0.0;
+        let mut last = f64::INFINITY;
         for _ in 0..80 {
             let c = (a * fb - b * fa) / (fb - fa);
             let c = if c > a && c < b { c } else { f64::midpoint(a, b) };
-            let step = (c - joint.s).abs();
+            let step = (c - last).abs();
+            last = c;
             joint = piece.joint(c, index);
-            let fc = self.slope(piece, &joint, r);
+            let fc = self.slope(what, piece, &joint, r);
             if step <= tolerance::PEAK_PLACE || fc.abs() <= f64::MIN_POSITIVE {
                 break;
             }
@@ -185,6 +256,16 @@ impl<'a> Sampling<'a> {
             moved = side;
         }
         joint
+    }
+}
+
+/// What stands above and below the line of the fraction.
+fn fraction(what: Measure, joint: &Joint, r: &Unknowns) -> (f64, f64) {
+    let thrust = joint.thrust(r);
+    match what {
+        Measure::Eccentricity => (joint.moment(r), joint.depth * thrust),
+        Measure::Sliding => (joint.shear(r), thrust),
+        Measure::Crushing(c) => (joint.moment(r), thrust * (joint.depth / 2.0 - c * thrust)),
     }
 }
 

@@ -49,7 +49,8 @@ impl Fit {
 /// neighbouring load feet. With weight along the axis: the same in the limit of many small loads, a ray at every place
 /// of the axis parallel to its tangent.
 pub(super) fn pole(span: &Span) -> Option<PoleFit> {
-    let rays = if span.weight > 0.0 { tangents(span) } else { chords(span)? };
+    let rays =
+        if span.pieces.iter().any(super::piece::Piece::weighs) { tangents(span) } else { chords(span)? };
     let mut fit = Fit::default();
     for (corner, along, weight) in &rays {
         fit.add(*corner, *along, *weight);
@@ -109,7 +110,8 @@ fn tangents(span: &Span) -> Vec<Ray> {
             let middle = piece.s0 + step * (f64::from(k) + 0.5);
             for (x, w) in [(-far, 5.0 / 18.0), (0.0, 8.0 / 18.0), (far, 5.0 / 18.0)] {
                 let joint = piece.joint(middle + step / 2.0 * x, i);
-                rays.push((Vec2::new(joint.loads.fx, joint.loads.fy), joint.tangent, w * step));
+                let loads = joint.loads.times(1.0);
+                rays.push((Vec2::new(loads.fx, loads.fy), joint.tangent, w * step));
             }
         }
     }

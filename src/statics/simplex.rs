@@ -49,6 +49,8 @@ pub(super) struct Vertex {
     pub x: [f64; MOST],
     /// Row and multiplier (not negative, of the row as it was given) of each basic row.
     pub active: Vec<(usize, f64)>,
+    /// `c · x`
+    pub cost: f64,
     /// The bound that the multipliers give: `−Σ y_i b_i`.
     pub dual: f64,
 }
@@ -68,6 +70,19 @@ impl Program {
         }
         let lengths = vec![1.0; rows.len()];
         Self { unknowns, cost: c, rows, lengths, basis: None }
+    }
+
+    /// Makes the box larger; the basis is kept.
+    pub fn widen(&mut self, size: f64) {
+        for row in &mut self.rows[..2 * self.unknowns] {
+            row.b = size;
+        }
+    }
+
+    /// Largest multiplier of the box at a vertex: what a unit of a larger box would bring.
+    pub fn held(&self, vertex: &Vertex) -> f64 {
+        let inside = vertex.active.iter().filter(|a| a.0 < self.box_rows());
+        inside.fold(0.0, |m, a| f64::max(m, a.1))
     }
 
     /// Number of rows of the box.
@@ -113,8 +128,9 @@ impl Program {
             };
             let w = at.combination(&self.rows[enter].a, n);
             let mut leave: Option<(usize, f64)> = None;
+            let largest = w.iter().fold(0.0, |m, v| f64::max(m, v.abs()));
             for i in 0..n {
-                if w[i] <= tolerance::SIMPLEX_PIVOT {
+                if w[i] <= tolerance::SIMPLEX_PIVOT * largest {
                     continue;
                 }
                 let ratio = at.y[i].max(0.0) / w[i];
@@ -226,7 +242,8 @@ impl Program {
         let scaled = || (0..self.unknowns).map(|i| (at.basis[i], at.y[i].max(0.0)));
         let dual = -scaled().map(|(i, y)| y * self.rows[i].b).sum::<f64>();
         let active = scaled().map(|(i, y)| (i, y / self.lengths[i])).collect();
-        Vertex { x: at.x, active, dual }
+        let cost = self.cost.iter().zip(&at.x).map(|(c, x)| c * x).sum();
+        Vertex { x: at.x, active, cost, dual }
     }
 }
 

@@ -3,8 +3,10 @@
 //! Under weight along the axis the string is the curve that all rays touch: the ray of the joint at `x` touches it at
 //! `x`, on the line of action of the weight of that joint [Culmann 1866]. The polygon is cut off at the springing joints.
 
+use super::joint::{Joint, LoadSets, Unknowns, moment_about};
 use super::line::eccentricity;
-use super::span::{Joint, Loads, Span, Unknowns, moment_about};
+use super::piece::Piece;
+use super::span::Span;
 use crate::geometry::{Point, Vec2};
 use crate::tolerance;
 
@@ -13,9 +15,8 @@ const HALVINGS: u32 = 12;
 
 /// The vertices in the drawing, m.
 pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
-    // Each corner with the loads before it, which give the ray that leads to it.
-    let mut corners: Vec<(Point, Loads)> = Vec::new();
-    let mut loads = Loads::default();
+    let mut corners: Vec<Corner> = Vec::new();
+    let mut loads = LoadSets::default();
     let mut next = 0;
     for (i, piece) in span.pieces.iter().enumerate() {
         while let Some(e) = span.entered.get(next)
@@ -23,25 +24,17 @@ pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
             && (piece.s1 > piece.s0 || i > 0)
         {
             let before = loads;
-            loads.fx += e.force.x;
-            loads.fy += e.force.y;
-            loads.moment += e.at.x * e.force.y - e.at.y * e.force.x;
-            if let Some(corner) = corner(e.at, e.force, &before, r) {
-                corners.push((corner, before));
-            }
+            loads.enter(e);
+            corners.extend(meeting(e.at, e.force, &before, r).map(|at| Corner { at, before, after: loads }));
             next += 1;
         }
-        if piece.weight > 0.0 && piece.s1 > piece.s0 {
+        if piece.weighs() && piece.s1 > piece.s0 {
             let (a, b) = (piece.joint(piece.s0, i), piece.joint(piece.s1, i));
-            let touch = |j: &Joint| touch(j, r);
-            if let (Some(p), Some(q)) = (touch(&a), touch(&b)) {
-                corners.push((p, a.loads));
-                let middle = |s: f64| {
-                    let joint = piece.joint(s, i);
-                    touch(&joint).map(|p| (p, joint.loads))
-                };
-                refine(&middle, (piece.s0, p), (piece.s1, q), HALVINGS, &mut corners);
-                corners.push((q, b.loads));
+            if let (Some(p), Some(q)) = (touch(piece, &a, r), touch(piece, &b, r)) {
+                corners.push(p);
+                let middle = |s: f64| touch(piece, &piece.joint(s, i), r);
+                refine(&middle, (piece.s0, p.at), (piece.s1, q.at), HALVINGS, &mut corners);
+                corners.push(q);
             }
         }
         if piece.s1 > piece.s0 {
@@ -50,84 +43,111 @@ pub(super) fn string(span: &Span, r: &Unknowns) -> Vec<Point> {
     }
     for e in span.entered.iter().skip(next) {
         let before = loads;
-        loads.fx += e.force.x;
-        loads.fy += e.force.y;
-        loads.moment += e.at.x * e.force.y - e.at.y * e.force.x;
-        if let Some(corner) = corner(e.at, e.force, &before, r) {
-            corners.push((corner, before));
-        }
+        loads.enter(e);
+        corners.extend(meeting(e.at, e.force, &before, r).map(|at| Corner { at, before, after: loads }));
     }
-    corners.dedup_by(|b, a| (b.0 - a.0).hypot() <= tolerance::ONE_JOINT);
+    corners.dedup_by(|b, a| {
+        let one = (b.at - a.at).hypot() <= tolerance::ONE_JOINT;
+        if one {
+            a.after = b.after;
+        }
+        one
+    });
     cut_off(span, r, &corners, &loads).into_iter().map(|p| span.drawn(p)).collect()
 }
 
+/// A corner with the loads before and after it, which give the rays that lead to it and away from it.
+#[derive(Clone, Copy)]
+struct Corner {
+    at: Point,
+    before: LoadSets,
+    after: LoadSets,
+}
+
 /// Where the ray before a load meets the load's line of action.
-fn corner(at: Point, force: Vec2, before: &Loads, r: &Unknowns) -> Option<Point> {
+fn meeting(at: Point, force: Vec2, before: &LoadSets, r: &Unknowns) -> Option<Point> {
     if force.hypot() == 0.0 {
         return None;
     }
     let f = force.normalize();
-    let ray = Vec2::new(r[0] + before.fx, r[1] + before.fy);
+    let loads = before.times(r[3]);
+    let ray = Vec2::new(r[0] + loads.fx, r[1] + loads.fy);
     let rate = ray.y * f.x - ray.x * f.y;
     // A load along the ray only lengthens it.
     (rate.abs() > tolerance::VERTICAL_THRUST * ray.hypot())
         .then(|| at - f * (moment_about(at, before, r) / rate))
 }
 
-/// Where the ray of a joint touches the string of the distributed weight.
-fn touch(joint: &Joint, r: &Unknowns) -> Option<Point> {
+/// Where the ray of a joint touches the string of the distributed weight: on the line of action of its own weight.
+fn touch(piece: &Piece, joint: &Joint, r: &Unknowns) -> Option<Corner> {
     let ray = joint.resultant(r);
-    (ray.x.abs() > tolerance::ONE_JOINT * ray.hypot())
-        .then(|| joint.at + Vec2::new(0.0, joint.moment(r) / ray.x))
+    let x = piece.weight_offset(joint, r);
+    (ray.x.abs() > tolerance::ONE_JOINT * ray.hypot()).then(|| Corner {
+        at: joint.at + Vec2::new(x, (joint.moment(r) + ray.y * x) / ray.x),
+        before: joint.loads,
+        after: joint.loads,
+    })
 }
 
 fn refine(
-    middle: &impl Fn(f64) -> Option<(Point, Loads)>,
+    middle: &impl Fn(f64) -> Option<Corner>,
     (s, p): (f64, Point),
     (t, q): (f64, Point),
     depth: u32,
-    out: &mut Vec<(Point, Loads)>,
+    out: &mut Vec<Corner>,
 ) {
     let half = f64::midpoint(s, t);
-    let Some((m, loads)) = middle(half) else {
+    let Some(m) = middle(half) else {
         return;
     };
     let chord = q - p;
-    let off = if chord.hypot() > 0.0 { (m - p).cross(chord).abs() / chord.hypot() } else { (m - p).hypot() };
+    let off =
+        if chord.hypot() > 0.0 { (m.at - p).cross(chord).abs() / chord.hypot() } else { (m.at - p).hypot() };
     if depth == 0 || off <= 0.5 * tolerance::LINE_POLYGON {
         return;
     }
-    refine(middle, (s, p), (half, m), depth - 1, out);
-    out.push((m, loads));
-    refine(middle, (half, m), (t, q), depth - 1, out);
+    refine(middle, (s, p), (half, m.at), depth - 1, out);
+    out.push(m);
+    refine(middle, (half, m.at), (t, q), depth - 1, out);
 }
 
-/// The polygon between the two springing joints: corners behind a joint are left out, and the ray that crosses the joint
-/// ends in it.
-fn cut_off(span: &Span, r: &Unknowns, corners: &[(Point, Loads)], all: &Loads) -> Vec<Point> {
+/// The polygon between the two springing joints: corners behind a joint are left out, and the side that crosses the
+/// joint ends in it.
+fn cut_off(span: &Span, r: &Unknowns, corners: &[Corner], all: &LoadSets) -> Vec<Point> {
     let (first, last) = (span.first(), span.last());
     let slack = tolerance::ONE_JOINT;
-    let behind = |c: &(Point, Loads)| (c.0 - first.at).dot(first.tangent) < slack;
-    let beyond = |c: &(Point, Loads)| (c.0 - last.at).dot(last.tangent) > -slack;
-    let from = corners.iter().take_while(|c| behind(c)).count();
-    let to = corners.len() - corners.iter().rev().take_while(|c| beyond(c)).count();
+    let behind = |c: &&Corner| (c.at - first.at).dot(first.tangent) < slack;
+    let beyond = |c: &&Corner| (c.at - last.at).dot(last.tangent) > -slack;
+    let from = corners.iter().take_while(behind).count();
+    let to = corners.len() - corners.iter().rev().take_while(beyond).count();
+    let mut points = Vec::with_capacity(to.saturating_sub(from) + 2);
     if from >= to {
         // Nothing between the joints: only the end rays are left.
-        let ends = [meet(&first, &first.loads, r), meet(&last, &last.loads, r)];
-        return ends.into_iter().flatten().collect();
+        points.extend(meet(&first, &first.loads, r));
+        points.extend(meet(&last, all, r));
+        return points;
     }
-    let entering = corners[from].1;
-    let leaving = corners.get(to).map_or(*all, |c| c.1);
-    let mut points = Vec::with_capacity(to - from + 2);
-    points.extend(meet(&first, &entering, r));
-    points.extend(corners[from..to].iter().map(|c| c.0));
-    points.extend(meet(&last, &leaving, r));
+    points.extend(match from.checked_sub(1) {
+        Some(i) => crossing(&first, corners[i].at, corners[from].at),
+        None => meet(&first, &corners[0].before, r),
+    });
+    points.extend(corners[from..to].iter().map(|c| c.at));
+    points.extend(match corners.get(to) {
+        Some(next) => crossing(&last, corners[to - 1].at, next.at),
+        None => meet(&last, &corners[to - 1].after, r),
+    });
     points.dedup_by(|b, a| (*b - *a).hypot() <= slack);
     points
 }
 
 /// Where a ray crosses a joint.
-fn meet(joint: &Joint, loads: &Loads, r: &Unknowns) -> Option<Point> {
+fn meet(joint: &Joint, loads: &LoadSets, r: &Unknowns) -> Option<Point> {
     let joint = Joint { loads: *loads, ..*joint };
     Some(joint.at + joint.normal() * eccentricity(&joint, r)?)
+}
+
+/// Where a side of the polygon crosses a joint.
+fn crossing(joint: &Joint, p: Point, q: Point) -> Option<Point> {
+    let (a, b) = ((p - joint.at).dot(joint.tangent), (q - joint.at).dot(joint.tangent));
+    ((b - a).abs() > 0.0).then(|| p + (q - p) * (a / (a - b)))
 }

@@ -1,13 +1,14 @@
 //! The one line of thrust through three points.
 
-use super::span::{Joint, Span, Unknowns};
+use super::joint::{Joint, Unknowns};
+use super::span::Span;
 use super::subspace::Subspace;
 use crate::geometry::Point;
 
 /// The line with no moment about three points (local units); `None` when they lie on one straight line.
 pub(super) fn through(span: &Span, points: &[Point; 3]) -> Option<Unknowns> {
     let rows = points.map(|p| span.hinge_row(p));
-    let space = Subspace::new(span, &rows)?;
+    let space = Subspace::lines(span, &rows)?;
     Some(space.unknowns(&[]))
 }
 

@@ -71,7 +71,7 @@ pub(super) fn binary<S: Sink>(
     stream: &mut Stream,
     wide: bool,
 ) -> Result<(), Refusal> {
-    let mut walk = Walk { at: SENTINEL.len(), line: 0, held: None };
+    let mut walk = Walk { at: SENTINEL.len(), line: 0, held: None, outside: false };
     let mut scratch = Vec::new();
     loop {
         let buf = window.bytes();

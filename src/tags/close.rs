@@ -152,6 +152,7 @@ impl Machine<'_> {
             ours: self.current.ours,
             tags: self.tags.clone(),
             children: Vec::new(),
+            placement: None,
         }
     }
 }

@@ -285,6 +285,7 @@ fn entities(
             role: &mark.role,
             colour: mark.colour,
             line_type: mark.line_type.map(|i| marks.line_types[i].name.as_str()),
+            width: mark.width.unwrap_or(0.0),
             frame,
         };
         pen.shape(&mark.shape, &entity);

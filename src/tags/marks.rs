@@ -19,6 +19,12 @@ pub struct Plane {
 impl Plane {
     /// The ordinary elevation: x to the right, y upward, at z = 0.
     pub const XY: Self = Self { right: [1.0, 0.0, 0.0], up: [0.0, 1.0, 0.0], origin: [0.0, 0.0, 0.0] };
+
+    /// Whether marks lie in the drawing's own x-y plane, the right way up (at any height).
+    #[allow(clippy::float_cmp)] // Either it was never turned, and is this to the bit, or it is another plane.
+    pub fn is_flat(&self) -> bool {
+        self.right == Self::XY.right && self.up == Self::XY.up
+    }
 }
 
 /// A line type of dashes, gaps and dots.
@@ -119,6 +125,9 @@ pub struct Mark {
     pub colour: Option<u8>,
     /// Line type when it differs from the layer's: an index into [`Marks::line_types`].
     pub line_type: Option<usize>,
+    /// Constant width of a polyline, drawing units, for versions and viewers without line weights; other shapes, and
+    /// polylines that do not lie level in x and y, have none.
+    pub width: Option<f64>,
 }
 
 /// All that is added to a drawing in one go.

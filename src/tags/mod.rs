@@ -23,6 +23,7 @@ mod mark;
 pub mod marks;
 mod outline;
 mod place;
+mod placement;
 mod plane;
 mod record;
 mod scan;
@@ -45,6 +46,7 @@ pub use outline::{
     Anchor, Block, HandleState, HeaderValue, HeaderVariable, Layer, LayerCensus, Newline, Note, Outline,
     Section, Table, fold,
 };
+pub use placement::Placement;
 pub use record::{Record, Tag, Tags};
 pub use scan::scan;
 pub use source::{Edit, Reader, Source};

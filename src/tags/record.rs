@@ -2,6 +2,7 @@
 
 use crate::refusal::Refusal;
 use crate::tags::codes;
+use crate::tags::placement::Placement;
 
 /// One group code with its value.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -149,6 +150,8 @@ pub struct Record {
     pub tags: Tags,
     /// The VERTEX … SEQEND run of a POLYLINE, the ATTRIB … SEQEND run of an INSERT.
     pub children: Vec<Record>,
+    /// How it lies in what it is read for; none as scanned, where its coordinates are those of its block or the drawing.
+    pub placement: Option<Box<Placement>>,
 }
 
 impl Record {
@@ -160,6 +163,9 @@ impl Record {
         }
         if self.line.is_none() && refusal.line.is_none() {
             refusal.message = format!("{} (byte {})", refusal.message, self.start);
+        }
+        if let Some(path) = self.placement.as_ref().map(|p| &p.path).filter(|path| !path.is_empty()) {
+            refusal.message = format!("{} (in block {})", refusal.message, path.join(" in "));
         }
         refusal
     }

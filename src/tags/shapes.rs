@@ -65,6 +65,8 @@ pub(super) struct Entity<'a> {
     pub role: &'a str,
     pub colour: Option<u8>,
     pub line_type: Option<&'a str>,
+    /// Constant width of a polyline; 0 for the layer's line weight.
+    pub width: f64,
     pub frame: &'a Frame,
 }
 
@@ -197,7 +199,7 @@ impl Pen<'_> {
             self.marker("AcDbPolyline");
             self.emit.int(90, i64::try_from(points.len()).unwrap_or(i64::MAX));
             self.emit.int(70, flag);
-            self.emit.real(43, 0.0);
+            self.emit.real(43, entity.width);
             if elevation.abs() > 0.0 {
                 self.emit.real(38, elevation);
             }
@@ -218,6 +220,10 @@ impl Pen<'_> {
         self.emit.int(66, 1);
         self.emit.point(10, [0.0, 0.0, elevation]);
         self.emit.int(70, flag);
+        if entity.width > 0.0 {
+            self.emit.real(40, entity.width);
+            self.emit.real(41, entity.width);
+        }
         self.extrusion(entity);
         self.tail(entity);
         for (point, bulge) in points {

@@ -57,7 +57,7 @@ pub(super) fn ascii<S: Sink>(
     first: usize,
     way: Way,
 ) -> Result<(), Refusal> {
-    let mut walk = Walk { at: first, line: 1, held: None };
+    let mut walk = Walk { at: first, line: 1, held: None, outside: false };
     let leap = leaper::<S>(way);
     while step(window, sink, stream, &mut walk)? && stream.eof.is_none() {
         if let Some(leap) = leap
@@ -111,6 +111,8 @@ fn step<S: Sink>(
                 window.more(sink, walk)?;
                 continue;
             }
+            // A lone group code of the end, whose value was forgotten.
+            None if value == buf.len() && walk.outside && code == 0 => return Ok(false),
             None if value == buf.len() => {
                 return Err(Refusal::new(
                     "truncated",
@@ -160,6 +162,10 @@ fn step<S: Sink>(
 fn only_filling(window: &mut Window, sink: &impl Sink, walk: &mut Walk) -> Result<bool, Refusal> {
     loop {
         let rest = &window.bytes()[walk.at..];
+        // Some programs forget the group code of the end.
+        if walk.outside && window.done && rest.trim_ascii() == b"EOF" {
+            return Ok(false);
+        }
         if !rest.iter().all(is_filling) {
             return Err(bad_code(rest, walk.line));
         }

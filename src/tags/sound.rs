@@ -97,7 +97,7 @@ pub(super) fn marks(outline: &Outline, marks: &Marks) -> Result<Frame, Refusal> 
         if mark.role.is_empty() || mark.role.len() > LONGEST_STRING || !mark.role.bytes().all(ascii) {
             return Err(bad(format!("\u{201c}{}\u{201d} is no role of a mark", mark.role)));
         }
-        if !finite(&mark.shape) {
+        if !finite(&mark.shape) || !mark.width.is_none_or(|w| w.is_finite() && w >= 0.0) {
             return Err(bad(format!("the mark {} has a coordinate that is no number", mark.role)));
         }
     }

@@ -120,6 +120,8 @@ pub(super) struct Walk {
     pub line: u64,
     /// Place in the window, and line, of the second tag of the record that is held.
     pub held: Option<(usize, u64)>,
+    /// Between sections, where nothing but another section or the end may follow.
+    pub outside: bool,
 }
 
 /// A part of the file.
@@ -208,6 +210,7 @@ pub(super) fn deliver<S: Sink>(
     let [start, end] = ends;
     if code == 0 {
         settle(sink, walk.held.take(), start, &again)?;
+        walk.outside = value.trim_ascii() == b"ENDSEC";
         if value.trim_ascii() == b"EOF" {
             stream.eof = Some(*place);
         }

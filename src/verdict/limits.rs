@@ -1,12 +1,12 @@
 //! The stated limits, and the one built in, against what was computed.
 
 use super::{With, length, note, spans};
-use crate::job::Settings;
+use crate::job::{Settings, Support};
 use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
 use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
 use crate::tolerance;
 
-/// Judges one span; there is one case so far.
+/// Judges one span in one case; the findings get the case's name afterwards.
 pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
     let limits = &settings.limits;
     let governing = &analysis.lines[analysis.governs];
@@ -21,7 +21,7 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
     let ring_applies = analysis.kind == SpanKind::Arch;
     let depth_use = governing.depth_use.filter(|_| ring_applies);
     match (depth_use, limits.ring) {
-        (Some(used), stated) if stated.is_some() || !settings.rib.tension => {
+        (Some(used), stated) if stated.is_some() || (!settings.rib.tension && !elastic_support(settings)) => {
             judge.ring(used.ratio * 2.0, spans::xy(used.at), stated);
         }
         (None, Some(_)) => judge.not_judged("ring", no_depth(analysis)),
@@ -33,6 +33,16 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
             None => judge.not_judged("kern", no_depth(analysis)),
         }
     }
+    if let Some(used) = depth_use
+        && governing.kind == LineKind::Elastic
+        && !settings.rib.tension
+        && used.ratio * 6.0 > 1.0 + tolerance::LIMIT_MET
+    {
+        judge.cracked(spans::xy(used.at));
+    }
+    if let Some(limit) = limits.stress {
+        judge.stress(limit);
+    }
     if let Some(limit) = limits.geometric_factor {
         let closest =
             analysis.lines.iter().find(|l| l.kind == LineKind::Closest && l.status == Status::Found);
@@ -41,6 +51,14 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
             None => judge.not_judged("geometric_factor", no_depth(analysis)),
         }
     }
+    if let Some(limit) = limits.load_factor {
+        judge.load_factor(limit);
+    }
+}
+
+/// Whether the job declares a support that makes the rib an elastic arch.
+fn elastic_support(settings: &Settings) -> bool {
+    matches!(settings.rib.support, Some(Support::Hingeless | Support::TwoHinged | Support::ThreeHinged))
 }
 
 fn no_depth(analysis: &Analysis) -> &'static str {
@@ -57,11 +75,9 @@ struct Judge<'a> {
 }
 
 impl Judge<'_> {
-    /// Adds a finding that belongs to this span and its case.
+    /// Adds a finding that belongs to this span.
     fn add(&mut self, finding: Finding) {
-        let mut finding = finding.of(&self.span.name);
-        finding.case = Some(spans::DRAWN.into());
-        self.findings.push(finding);
+        self.findings.push(finding.of(&self.span.name));
     }
 
     /// True when the governing line is only the most favourable one, and so not the state of the rib.
@@ -189,6 +205,64 @@ impl Judge<'_> {
         self.add(finding);
     }
 
+    /// An elastic line outside the kern of a ring without tension.
+    fn cracked(&mut self, at: Xy) {
+        let finding = note(
+            Check::NotJudged,
+            "the elastic line leaves the kern of a ring without tension: joints would open there, and the line of the \
+             uncracked rib is not valid",
+        )
+        .at(at)
+        .uncheck()
+        .remedy("judge it as a ring ([rib] support = \"none\"), or declare a section that takes tension");
+        self.add(finding);
+    }
+
+    /// The greatest edge stress over the stations of the governing line.
+    fn stress(&mut self, limit: f64) {
+        let stations = &self.span.cases[0].lines[0].stations;
+        let worst = stations
+            .iter()
+            .filter_map(|s| Some((s.stress_max?.max(-s.stress_min?), s.at)))
+            .max_by(|a, b| a.0.total_cmp(&b.0));
+        let complete = stations.iter().all(|s| s.stress_max.is_some());
+        let Some((value, at)) = worst else {
+            self.not_judged(
+                "stress",
+                "it needs forces in kN, the depth, the width, and a line inside the section",
+            );
+            return;
+        };
+        let holds = value <= limit * (1.0 + tolerance::LIMIT_MET);
+        let best = self.best_case();
+        let message = format!(
+            "{}the greatest edge stress is {value:.2} MPa; limit {limit:.2} MPa",
+            if best { "best case: " } else { "" }
+        );
+        if holds && (best || !complete) {
+            let why = if best {
+                "the closest line is the most favourable one, not the state of the rib"
+            } else {
+                "the line leaves the section, or its kern, at some joints"
+            };
+            let mut finding =
+                note(Check::NotJudged, format!("{message}. The stated limit `stress` was not judged: {why}"))
+                    .value(value, "MPa")
+                    .at(at)
+                    .uncheck();
+            finding.limit = Some(limit);
+            finding.basis = Some("[limits] stress".into());
+            self.add(finding);
+            return;
+        }
+        let mut finding =
+            self.limit(Check::Stress, "[limits] stress", value, limit, "MPa", at, holds, message);
+        if !holds {
+            finding = finding.remedy(format!("a deeper or wider section {}", self.near(at)));
+        }
+        self.add(finding);
+    }
+
     /// The geometric factor is one over twice the use of the depth by the closest line; the limit is a least value.
     fn geometric_factor(&mut self, ratio: f64, at: Xy, limit: f64) {
         if ratio <= tolerance::FUNICULAR_USE {
@@ -218,6 +292,73 @@ impl Judge<'_> {
             ));
         }
         self.add(finding);
+    }
+
+    /// The limit holds when the loads as drawn stand (the interval begins at or below 1) and its upper end reaches the
+    /// limit.
+    fn load_factor(&mut self, limit: f64) {
+        let Some(safety) = &self.analysis.safety else {
+            let why = match self.analysis.kind {
+                SpanKind::Cable => "a cable has no load factor",
+                SpanKind::Arch => "it needs a ring without tension whose depth is known",
+            };
+            return self.not_judged("load_factor", why);
+        };
+        let (Some(upper), Some(least)) = (&safety.load, &safety.load_least) else {
+            return self.not_judged(
+                "load_factor",
+                "nothing varies; name what varies in the case: vary = [\"LAYER\"]",
+            );
+        };
+        let stands = matches!(least.status, Status::Found)
+            && least.value.is_some_and(|v| v <= 1.0 + tolerance::LIMIT_MET);
+        let at = safety
+            .mechanism
+            .as_ref()
+            .and_then(|m| m.hinges.first())
+            .map_or(spans::xy(self.analysis.crown), |h| spans::xy(h.at));
+        let basis = "[limits] load_factor";
+        match (upper.status, upper.value) {
+            (Status::Found, Some(value)) => {
+                let holds = stands && value >= limit * (1.0 - tolerance::LIMIT_MET);
+                let least = least.value.unwrap_or(0.0);
+                let message = format!(
+                    "the varying loads can be multiplied by {least:.2} to {value:.2} before the ring becomes a \
+                     mechanism; up to at least {limit:.2} is wanted"
+                );
+                let mut finding = self.limit(Check::LoadFactor, basis, value, limit, "1", at, holds, message);
+                if !holds {
+                    finding = finding
+                        .remedy("a deeper ring, an axis nearer to the line of thrust, or less varying load");
+                }
+                self.add(finding);
+            }
+            (Status::Unbounded, _) => {
+                let mut finding = note(
+                    Check::LoadFactor,
+                    format!("the varying loads can grow without end inside the ring; limit {limit:.2}"),
+                );
+                finding.verdict = if stands { FindingVerdict::Within } else { FindingVerdict::Outside };
+                finding.limit = Some(limit);
+                finding.unit = Some("1".into());
+                finding.basis = Some(basis.into());
+                self.add(finding);
+            }
+            (Status::None, _) => {
+                let reason = upper.reason.clone().unwrap_or_default();
+                let mut finding =
+                    note(Check::LoadFactor, format!("no load factor: {reason}; limit {limit:.2}"));
+                finding.verdict = FindingVerdict::Outside;
+                finding.limit = Some(limit);
+                finding.unit = Some("1".into());
+                finding.basis = Some(basis.into());
+                self.add(finding);
+            }
+            (Status::Refused | Status::Found, _) => {
+                let reason = upper.reason.clone().unwrap_or_else(|| "it was not found".into());
+                self.not_judged("load_factor", &reason);
+            }
+        }
     }
 
     #[allow(clippy::too_many_arguments)]

@@ -11,7 +11,7 @@ use jiff::civil::Date;
 use crate::drawing;
 use crate::job::Assumption;
 use crate::job::Settings;
-use crate::model::{Forces, Model};
+use crate::model::{Case, Forces, Model};
 use crate::outcome::{Check, Finding, FindingVerdict, Source, Span, Units, Verdict, Xy};
 use crate::statics::Analysis;
 
@@ -28,15 +28,26 @@ pub struct Judgement {
     pub verdict: Verdict,
 }
 
-/// Judges the analyses of a model, one for each of its spans in order. `today` decides whether an accepted exception has
+/// What was computed of a drawing.
+#[derive(Debug, Clone, Copy)]
+pub struct Computed<'a> {
+    /// The spans with their loads.
+    pub model: &'a Model,
+    /// The load cases.
+    pub cases: &'a [Case],
+    /// Of each span, in order, one analysis for each case, in order.
+    pub analyses: &'a [Vec<Analysis>],
+}
+
+/// Judges what was computed. `today` decides whether an accepted exception has
 /// run out.
 pub fn judge(
     settings: &Settings,
     noticed: &[drawing::Note],
-    model: &Model,
-    analyses: &[Analysis],
+    computed: &Computed<'_>,
     today: Date,
 ) -> Judgement {
+    let Computed { model, cases, analyses } = *computed;
     let units = match model.forces {
         Forces::Kilonewtons => Units::si(),
         Forces::UnitLoads => Units::unit_loads(),
@@ -45,16 +56,27 @@ pub fn judge(
         .spans
         .iter()
         .zip(analyses)
-        .map(|(span, analysis)| spans::span(span, analysis, settings, model.forces))
+        .map(|(span, analyses)| spans::span(model, span, cases, analyses, settings))
         .collect();
     let mut findings = Vec::new();
-    notes::drawing(noticed, &mut findings);
+    notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
-    for (analysis, span) in analyses.iter().zip(&spans) {
-        notes::analysis(analysis, span, settings, &units, &mut findings);
-        limits::span(analysis, span, settings, &mut findings);
+    for (analyses, span) in analyses.iter().zip(&spans) {
+        for (i, (analysis, case)) in analyses.iter().zip(cases).enumerate() {
+            let mut about = Vec::new();
+            if i == 0 {
+                notes::shape(analysis, span, settings, &mut about);
+            }
+            notes::analysis(analysis, span, &units, &mut about);
+            limits::span(analysis, span, settings, &mut about);
+            findings.extend(about.into_iter().map(|mut finding| {
+                finding.case = Some(case.name.clone());
+                finding
+            }));
+        }
     }
-    notes::left_out(settings, model.forces, &mut findings);
+    notes::cases(cases, &mut findings);
+    notes::left_out(model, settings, &mut findings);
     allow_assumptions(&settings.accept.assumed, &mut findings);
     accept::exceptions(&settings.accept.finding, today, &mut findings);
     let verdict = verdict(&mut findings);

@@ -3,18 +3,25 @@
 use super::{With, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Doubt, FileNote, Reason, Role};
-use crate::job::Settings;
 use crate::job::Support;
+use crate::job::{Movement, Settings};
 use crate::model;
-use crate::model::Forces;
 use crate::model::figures::NoFigure;
-use crate::outcome::{Check, Finding, Span, Units};
+use crate::model::{Forces, Model};
+use crate::outcome::{Check, Finding, MagnitudeFrom, Span, Units};
 use crate::statics::{Analysis, SpanKind};
 use crate::tolerance;
 
 /// Notes of the reader.
-pub fn drawing(notes: &[drawing::Note], findings: &mut Vec<Finding>) {
-    findings.extend(notes.iter().map(drawing_note));
+pub fn drawing(notes: &[drawing::Note], settings: &Settings, findings: &mut Vec<Finding>) {
+    findings.extend(notes.iter().map(|n| {
+        let finding = drawing_note(n);
+        // Cases say what acts; where they name no load layer, none is missing.
+        if matches!(n, drawing::Note::NoLoadLayer) && !settings.case.is_empty() {
+            return Finding { unchecks: false, ..finding };
+        }
+        finding
+    }));
 }
 
 fn drawing_note(n: &drawing::Note) -> Finding {
@@ -53,12 +60,33 @@ fn drawing_note(n: &drawing::Note) -> Finding {
         Note::InBlock { role, block, layer, count } => note(
             Check::PassedOver,
             format!(
-                "block {block} holds {count} entities on layer {layer} ({}); entities inside blocks were not read",
+                "block {block} holds {count} entities on layer {layer} ({}), not read because its reference is a load itself",
                 role_name(*role)
             ),
         )
         .uncheck()
-        .remedy("explode the block in a copy of the drawing, or draw the part in model space"),
+        .remedy("insert the block on another layer when its entities are the loads, or move them to another layer"),
+        Note::PlaneGuessed { plane } => {
+            note(Check::Plane, format!("the axis does not lie in the x-y plane; the elevation was taken in the {plane} plane"))
+                .uncheck()
+                .remedy("state [drawing] plane in the job file, or allow it: [accept] assumed = [\"plane\"]")
+        }
+        Note::NotInLayouts { viewports, part } => note(
+            Check::PassedOver,
+            format!(
+                "none of the {viewports} viewports of the layouts shows the whole axis ({part} show a part): the marks are seen \
+                 in model space"
+            ),
+        ),
+        Note::CurveFitted { source, pieces } => note(
+            Check::PassedOver,
+            format!(
+                "{} was read as {pieces} arcs that follow it to within {:e} of its extent",
+                source.named(),
+                tolerance::CURVE_FIT
+            ),
+        )
+        .entity(source),
         Note::PartNotRead { part, layer, count } => note(
             Check::PassedOver,
             format!("layer {layer} ({count} entities) has the name of [layers] {part}, which is not read"),
@@ -134,6 +162,9 @@ fn role_name(role: Role) -> &'static str {
     match role {
         Role::Axis => "axis",
         Role::Loads => "loads",
+        Role::Intrados => "intrados",
+        Role::Extrados => "extrados",
+        Role::Hinges => "hinges",
     }
 }
 
@@ -157,14 +188,43 @@ pub fn model(notes: &[model::Note], units: &Units, findings: &mut Vec<Finding>) 
 fn model_note(n: &model::Note, units: &Units) -> Finding {
     use model::Note;
     match n {
-        Note::GapClosed { span, size, at } => {
-            note(Check::Gaps, format!("a gap of {} in the axis was closed", small_length(*size)))
+        Note::GapClosed { line, span, size, at } => {
+            note(Check::Gaps, format!("a gap of {} in the {line} was closed", small_length(*size)))
                 .value(*size, "m")
                 .at(spans::xy(*at))
                 .of(span)
                 .uncheck()
                 .remedy("join the ends in the drawing, or allow it: [accept] assumed = [\"gaps\"]")
         }
+        Note::AxisMidway { span, pieces, stray } => note(
+            Check::Layers,
+            format!(
+                "no axis is drawn; it was found midway between intrados and extrados, in {pieces} arcs that stray at most \
+                 {} from the true middle line",
+                tiny_length(*stray)
+            ),
+        )
+        .of(span),
+        Note::EndsSkew { span, angle } => note(
+            Check::LeftOut,
+            format!(
+                "the ring ends in a face {:.1}° off the joint square to its axis; the end joint was taken square",
+                angle.to_degrees()
+            ),
+        )
+        .value(angle.to_degrees(), "°")
+        .of(span),
+        Note::AxisOffMiddle { span, by, at } => note(
+            Check::Layers,
+            format!(
+                "the drawn axis runs up to {} beside the middle of the ring; at each joint the depth was taken as twice \
+                 the distance to the nearer ring line",
+                small_length(*by)
+            ),
+        )
+        .value(*by, "m")
+        .at(spans::xy(*at))
+        .of(span),
         Note::DrawnTwice { source, kept } => note(
             Check::PassedOver,
             format!("{} lies on {} and was passed over as drawn twice", source.named(), kept.named()),
@@ -231,6 +291,26 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
         .entity(source)
         .uncheck()
         .remedy("move it over the span, or to another layer"),
+        Note::HingeRead { span, source, at } => note(
+            Check::Support,
+            format!("{} was read as a hinge of the rib at ({:.3}, {:.3}) m", source.named(), at.x, at.y),
+        )
+        .at(spans::xy(*at))
+        .entity(source)
+        .of(span),
+        Note::HingeOff { source, at } => note(
+            Check::Support,
+            format!(
+                "{} on the hinge layer stands at ({:.3}, {:.3}) m, off every rib, and is left out",
+                source.named(),
+                at.x,
+                at.y
+            ),
+        )
+        .at(spans::xy(*at))
+        .entity(source)
+        .uncheck()
+        .remedy("move it onto the rib, or to another layer"),
         Note::NoLoads { span } => note(Check::Loads, "no load stands over this span").of(span).uncheck(),
         Note::SizeUnlikely { span, size } => note(
             Check::Unit,
@@ -259,8 +339,13 @@ fn small_length(metres: f64) -> String {
     if metres < 0.001 { format!("{:.3} mm", metres * 1000.0) } else { format!("{:.1} mm", metres * 1000.0) }
 }
 
-/// What the statics of a span found worth saying beside the limits.
-pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, findings: &mut Vec<Finding>) {
+/// A length far below what is drawn, in words.
+fn tiny_length(metres: f64) -> String {
+    if metres < 0.000_001 { "1 µm".into() } else { small_length(metres) }
+}
+
+/// What the statics of a span in one case found worth saying beside the limits.
+pub fn analysis(a: &Analysis, span: &Span, units: &Units, findings: &mut Vec<Finding>) {
     let mut add = |finding: Finding| findings.push(finding.of(&span.name));
     let residual = note(Check::Equilibrium, "equilibrium of every line closes").value(a.residual, "1");
     if a.residual > tolerance::EQUILIBRIUM {
@@ -271,6 +356,30 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
     } else {
         add(residual);
     }
+    for &i in &a.off_span {
+        add(note(
+            Check::OffSpan,
+            format!("the line of action of load {} does not meet the axis; it is left out", i + 1),
+        )
+        .uncheck());
+    }
+    if let Some(pole) = a.pole {
+        let mut text = format!(
+            "the rays of the graphic method scatter by {:.4} {} about their pole",
+            pole.scatter, units.force
+        );
+        if let Some(ratio) = pole.scatter_ratio {
+            text.push_str(&format!(" ({:.2} % of the push)", ratio * 100.0));
+        }
+        let mut finding = note(Check::Offset, text).value(pole.scatter, &units.force);
+        finding.basis = Some("the drawn axis against a funicular of the drawn loads".into());
+        add(finding);
+    }
+}
+
+/// What is worth saying of a span whatever the case.
+pub fn shape(a: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
+    let mut add = |finding: Finding| findings.push(finding.of(&span.name));
     if a.kind == SpanKind::Arch && settings.rib.support.is_none() {
         add(note(
             Check::Support,
@@ -296,24 +405,8 @@ pub fn analysis(a: &Analysis, span: &Span, settings: &Settings, units: &Units, f
         )
         .value(uneven.1 / uneven.0, "1"));
     }
-    for &i in &a.off_span {
-        add(note(
-            Check::OffSpan,
-            format!("the line of action of load {} does not meet the axis; it is left out", i + 1),
-        )
-        .uncheck());
-    }
-    if let Some(pole) = a.pole {
-        let mut text = format!(
-            "the rays of the graphic method scatter by {:.4} {} about their pole",
-            pole.scatter, units.force
-        );
-        if let Some(ratio) = pole.scatter_ratio {
-            text.push_str(&format!(" ({:.2} % of the push)", ratio * 100.0));
-        }
-        let mut finding = note(Check::Offset, text).value(pole.scatter, &units.force);
-        finding.basis = Some("the drawn axis against a funicular of the drawn loads".into());
-        add(finding);
+    if settings.rib.depth.is_some() && span.ring.as_ref().is_some_and(|r| !r.entities.is_empty()) {
+        add(note(Check::Layers, "the depth was read from the ring lines; [rib] depth was not needed"));
     }
 }
 
@@ -326,16 +419,65 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
         (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
-    uneven(span.loads.iter().map(|l| l.at[0]).collect())
+    let drawn = span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight);
+    uneven(drawn.map(|l| l.at[0]).collect())
+}
+
+/// What each case leaves out, and what it names in vain.
+pub fn cases(cases: &[model::Case], findings: &mut Vec<Finding>) {
+    for case in cases {
+        let mut add = |message: String, uncheck: bool| {
+            let mut finding = note(Check::LeftOut, message);
+            finding.case = Some(case.name.clone());
+            findings.push(if uncheck {
+                finding.uncheck().remedy("correct the name in the job file, or the layer in the drawing")
+            } else {
+                finding
+            });
+        };
+        if !case.left_out.is_empty() {
+            add(format!("case {} leaves out: {}", case.name, case.left_out.join(", ")), false);
+        }
+        if !case.unknown.is_empty() {
+            let names = case.unknown.join(", ");
+            add(format!("case {} names {names}, and nothing of that name acts here", case.name), true);
+        }
+    }
 }
 
 /// What the computation leaves out.
-pub fn left_out(settings: &Settings, forces: Forces, findings: &mut Vec<Finding>) {
-    let mut parts =
-        vec!["the rib's own weight", "fill", "traffic", "everything out of the plane of the elevation"];
-    if forces == Forces::UnitLoads {
+pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>) {
+    let mut parts = Vec::new();
+    if model.own_weight(settings).is_none() {
+        parts.push("the rib's own weight");
+    }
+    parts.extend(["fill", "traffic", "everything out of the plane of the elevation"]);
+    if model.forces == Forces::UnitLoads {
         parts.push("stresses");
     }
-    let _ = settings;
     findings.push(note(Check::LeftOut, format!("left out: {}", parts.join(", "))));
+    let rib = &settings.rib;
+    if model.forces == Forces::UnitLoads {
+        let sized = [
+            (rib.strength.is_some(), "strength"),
+            (rib.temperature.abs() > 0.0, "temperature"),
+            (rib.shrinkage.abs() > 0.0, "shrinkage"),
+            (rib.movement != Movement::default(), "movement"),
+        ];
+        for (_, key) in sized.into_iter().filter(|(given, _)| *given) {
+            let message = format!("[rib] {key} was left out: beside loads of unknown size it has no measure");
+            findings.push(
+                note(Check::NotJudged, message)
+                    .uncheck()
+                    .remedy("give the loads their figures, or remove the key"),
+            );
+        }
+    }
+    if rib.friction.is_some() {
+        findings.push(note(
+            Check::LeftOut,
+            "sliding is reckoned with associated flow (joints open as they slide), so a load factor that sliding governs \
+             may be an overestimate; check the joints that slide by themselves",
+        ));
+    }
 }

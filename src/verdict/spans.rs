@@ -1,39 +1,55 @@
 //! A span and its analysis as the results hold them.
 
+use std::collections::BTreeMap;
+
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
-use crate::model::{self, Forces};
+use crate::model::{self, Forces, Model, cases, weight};
 use crate::outcome::{
-    self, Axis, Case, End, Line, LineKind, Load, Offset, Pole, Proof, Ring, Span, Station, Status, Xy,
+    self, Axis, Case, End, Hinge, Line, LineKind, Load, Offset, Pole, Proof, Ring, Safety, Span, Station,
+    Status, Xy,
 };
-use crate::statics::{self, Analysis, Rule, SpanKind, Support};
-
-/// The name of the one case that a job without cases has.
-pub const DRAWN: &str = "drawn";
+use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support, stress};
+use crate::tolerance;
 
 /// Puts a span together.
-pub fn span(span: &model::Span, analysis: &Analysis, settings: &Settings, forces: Forces) -> Span {
+pub fn span(
+    model: &Model,
+    span: &model::Span,
+    cases: &[model::Case],
+    analyses: &[Analysis],
+    settings: &Settings,
+) -> Span {
     let axis = &span.axis;
+    let first = &analyses[0];
+    let listed = listed(model, span, first, settings);
     Span {
         name: span.name.clone(),
-        kind: match analysis.kind {
+        kind: match first.kind {
             SpanKind::Arch => "arch",
             SpanKind::Cable => "cable",
         }
         .into(),
         axis: Axis {
-            span: analysis.span,
-            rise: analysis.rise,
+            span: first.span,
+            rise: first.rise,
             length: axis.length(),
             left: xy(axis.start()),
             right: xy(axis.end()),
-            crown: xy(analysis.crown),
+            crown: xy(first.crown),
             entities: span.sources.iter().map(super::source).collect(),
             curve: curve(axis),
         },
-        ring: ring(analysis, settings),
-        loads: loads(span, analysis),
-        cases: vec![case(analysis, forces)],
+        ring: ring(span, settings),
+        cases: cases
+            .iter()
+            .zip(analyses)
+            .map(|(c, analysis)| {
+                let forces = listed.iter().map(|l| l.force.map(|f| f * c.factor(&l.set))).collect();
+                case(c, analysis, forces, &Section::of(analysis, settings, model.forces))
+            })
+            .collect(),
+        loads: listed,
     }
 }
 
@@ -60,49 +76,93 @@ fn curve(axis: &Path) -> Vec<[f64; 3]> {
     out
 }
 
-fn ring(analysis: &Analysis, settings: &Settings) -> Option<Ring> {
-    let depths = analysis.lines.iter().flat_map(|l| &l.stations).filter_map(|s| s.depth);
-    let (low, high) = depths.fold((f64::INFINITY, 0.0_f64), |(low, high), d| (low.min(d), high.max(d)));
-    (high > 0.0).then_some(Ring { depth_min: low, depth_max: high, width: settings.rib.width })
+fn ring(span: &model::Span, settings: &Settings) -> Option<Ring> {
+    let depths = weight::depths(span, settings.rib.depth)?;
+    let (low, high) =
+        depths.iter().fold((f64::INFINITY, 0.0_f64), |(low, high), d| (low.min(d.1), high.max(d.1)));
+    Some(Ring {
+        depth_min: low,
+        depth_max: high,
+        width: settings.rib.width,
+        entities: span.ring.iter().flat_map(|r| &r.sources).map(super::source).collect(),
+    })
 }
 
-fn loads(span: &model::Span, analysis: &Analysis) -> Vec<Load> {
-    let letters = outcome::bow::spaces(analysis.order.len());
-    analysis
-        .order
-        .iter()
-        .zip(letters)
-        .map(|(placed, space)| {
-            let load = &span.loads[placed.force];
-            Load {
-                label: load.label.clone(),
-                space,
-                at: xy(load.at),
-                force: [load.force.x, load.force.y],
-                set: load.set.clone(),
-                source: super::source(&load.source),
-                magnitude_from: match load.magnitude_from {
-                    model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
-                    model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
-                    model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
-                    model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
+/// Pieces of the ring that are listed where no load stands between the springings.
+const BARE_PIECES: u32 = 10;
+
+/// The loads in their order along the ring, with the pieces of the rib's own weight between them.
+fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Settings) -> Vec<Load> {
+    let mut all: Vec<(f64, Load)> =
+        analysis.order.iter().map(|placed| (placed.foot, load(&span.loads[placed.force]))).collect();
+    let depths = weight::depths(span, settings.rib.depth);
+    if let (Some(own), Some(depths)) = (model.own_weight(settings), depths) {
+        let whole = span.axis.length();
+        let hair = whole * crate::tolerance::ONE_JOINT;
+        let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
+        cuts.dedup_by(|b, a| *b - *a <= hair);
+        if cuts.is_empty() {
+            cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
+        }
+        for (i, piece) in weight::pieces(span, &depths, &cuts).iter().enumerate() {
+            let middle = f64::midpoint(piece.between.0, piece.between.1);
+            all.push((
+                middle,
+                Load {
+                    label: format!("ring {}", i + 1),
+                    space: Default::default(),
+                    at: xy(piece.centroid),
+                    force: [0.0, -own * piece.area],
+                    set: cases::OWN_WEIGHT.into(),
+                    source: span
+                        .sources
+                        .first()
+                        .map(super::source)
+                        .unwrap_or_else(|| super::source(&Default::default())),
+                    magnitude_from: outcome::MagnitudeFrom::SelfWeight,
+                    text: None,
                 },
-                text: load.text.clone(),
-            }
-        })
-        .collect()
+            ));
+        }
+        all.sort_by(|a, b| a.0.total_cmp(&b.0));
+    }
+    let letters = outcome::bow::spaces(all.len());
+    all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
 }
 
-fn case(analysis: &Analysis, _forces: Forces) -> Case {
+fn load(load: &model::Load) -> Load {
+    Load {
+        label: load.label.clone(),
+        space: Default::default(),
+        at: xy(load.at),
+        force: [load.force.x, load.force.y],
+        set: load.set.clone(),
+        source: super::source(&load.source),
+        magnitude_from: match load.magnitude_from {
+            model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
+            model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
+            model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
+            model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
+        },
+        text: load.text.clone(),
+    }
+}
+
+fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>, section: &Section) -> Case {
     let governing = &analysis.lines[analysis.governs];
-    let mut lines: Vec<Line> = vec![line(governing)];
+    let mut lines: Vec<Line> = vec![line(governing, section)];
     lines.extend(
-        analysis.lines.iter().enumerate().filter(|(i, _)| *i != analysis.governs).map(|(_, l)| line(l)),
+        analysis
+            .lines
+            .iter()
+            .enumerate()
+            .filter(|(i, _)| *i != analysis.governs)
+            .map(|(_, l)| line(l, section)),
     );
     Case {
-        name: DRAWN.into(),
+        name: case.name.clone(),
         total_load: [analysis.total.x, analysis.total.y],
-        forces: Vec::new(),
+        forces,
         pole: analysis.pole.map(|p| Pole {
             horizontal: p.horizontal,
             vertical: p.vertical,
@@ -113,7 +173,7 @@ fn case(analysis: &Analysis, _forces: Forces) -> Case {
         governs_why: why(analysis.rule).into(),
         lines,
         traffic: Vec::new(),
-        safety: None,
+        safety: analysis.safety.as_ref().map(safety),
         residual: analysis.residual,
     }
 }
@@ -145,7 +205,7 @@ pub fn kind(kind: statics::LineKind) -> LineKind {
     }
 }
 
-fn line(line: &statics::Line) -> Line {
+fn line(line: &statics::Line, section: &Section) -> Line {
     Line {
         kind: kind(line.kind),
         support: line.support.and_then(|s| {
@@ -161,12 +221,7 @@ fn line(line: &statics::Line) -> Line {
         }),
         left: line.left.map(end),
         right: line.right.map(end),
-        status: match line.status {
-            statics::Status::Found => Status::Found,
-            statics::Status::None => Status::None,
-            statics::Status::Unbounded => Status::Unbounded,
-            statics::Status::Refused => Status::Refused,
-        },
+        status: status(line.status),
         reason: line.reason.clone(),
         vertices: line.vertices.iter().copied().map(xy).collect(),
         offset: line.offset.map(|o| Offset {
@@ -175,8 +230,79 @@ fn line(line: &statics::Line) -> Line {
             at: xy(o.at),
             rms: o.rms,
         }),
-        stations: line.stations.iter().map(station).collect(),
+        stations: line.stations.iter().map(|s| station(s, section.stress(line, s))).collect(),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn safety(from: &statics::Safety) -> Safety {
+    let mut found = BTreeMap::new();
+    let mut value = |name: &str, factor: Option<&statics::Factor>| {
+        found.insert(name.to_string(), factor.map_or(Status::NotAsked, |f| status(f.status)));
+        factor.and_then(|f| f.value)
+    };
+    let geometric_factor = value("geometric_factor", Some(&from.geometric));
+    let load_factor = value("load_factor", from.load.as_ref());
+    let load_factor_least = value("load_factor_least", from.load_least.as_ref());
+    let least_depth = value("least_depth", None);
+    let proof = from.load.as_ref().and_then(|f| f.proof).or(from.geometric.proof);
+    Safety {
+        geometric_factor,
+        load_factor,
+        load_factor_least,
+        least_depth,
+        status: found,
+        hinges: from.mechanism.iter().flat_map(|m| &m.hinges).map(hinge).collect(),
+        proof: proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
+    }
+}
+
+fn hinge(from: &statics::Hinge) -> Hinge {
+    let side = match from.side {
+        HingeSide::Extrados => "extrados",
+        HingeSide::Intrados => "intrados",
+        HingeSide::Slip => "slip",
+    };
+    Hinge { at: xy(from.at), side: side.into() }
+}
+
+fn status(from: statics::Status) -> Status {
+    match from {
+        statics::Status::Found => Status::Found,
+        statics::Status::None => Status::None,
+        statics::Status::Unbounded => Status::Unbounded,
+        statics::Status::Refused => Status::Refused,
+    }
+}
+
+/// The section whose stresses are told.
+struct Section {
+    /// Width, m; `None`: no stress can be told.
+    width: Option<f64>,
+    tension: bool,
+}
+
+impl Section {
+    fn of(analysis: &Analysis, settings: &Settings, forces: Forces) -> Self {
+        let applies = forces == Forces::Kilonewtons && analysis.kind == SpanKind::Arch;
+        Self { width: settings.rib.width.filter(|_| applies), tension: settings.rib.tension }
+    }
+
+    /// Greatest and least compression of a rectangle, MPa. An elastic line that leaves the kern of a ring without tension
+    /// is not valid there, and gives no stress.
+    fn stress(&self, line: &statics::Line, s: &statics::Station) -> Option<[f64; 2]> {
+        const KN_PER_M2: f64 = 1000.0;
+        let (depth, width) = (s.depth?, self.width?);
+        let cracked = s.eccentricity.is_none_or(|e| e.abs() > depth / 6.0 * (1.0 + tolerance::LIMIT_MET));
+        let edges = if self.tension {
+            stress::uncracked(s.thrust, s.moment, depth, width)?
+        } else if line.kind == statics::LineKind::Elastic && cracked {
+            return None;
+        } else {
+            stress::without_tension(s.thrust, s.moment, depth, width)?
+        };
+        let (a, b) = (edges.extrados / KN_PER_M2, edges.intrados / KN_PER_M2);
+        Some([a.max(b), a.min(b)])
     }
 }
 
@@ -184,7 +310,7 @@ fn end(end: statics::End) -> End {
     End { horizontal: end.horizontal, vertical: end.vertical, eccentricity: end.eccentricity }
 }
 
-fn station(s: &statics::Station) -> Station {
+fn station(s: &statics::Station, stress: Option<[f64; 2]>) -> Station {
     Station {
         at: xy(s.at),
         s: s.s,
@@ -194,7 +320,7 @@ fn station(s: &statics::Station) -> Station {
         eccentricity: s.eccentricity,
         vertical_offset: s.vertical_offset,
         depth: s.depth,
-        stress_max: None,
-        stress_min: None,
+        stress_max: stress.map(|[max, _]| max),
+        stress_min: stress.map(|[_, min]| min),
     }
 }

@@ -4,10 +4,14 @@
 //! Knows results and neutral marks only: no bytes of a drawing, no mechanics.
 
 pub mod annotate;
+pub mod csv;
 pub mod file;
 pub mod json;
+pub mod junit;
+pub mod picture;
+pub mod report;
 #[cfg(test)]
 #[allow(clippy::unwrap_used, missing_docs)]
-mod sample;
+pub(crate) mod sample;
 pub mod terminal;
 pub mod text;

@@ -255,7 +255,12 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                 entities: vec![source("LWPOLYLINE", "2A")],
                 curve,
             },
-            ring: sample.depth.map(|d| Ring { depth_min: d, depth_max: d, width: Some(4.0) }),
+            ring: sample.depth.map(|d| Ring {
+                depth_min: d,
+                depth_max: d,
+                width: Some(4.0),
+                entities: Vec::new(),
+            }),
             loads,
             cases,
         });

@@ -4,7 +4,7 @@
 use crate::outcome::{Check, Document, Finding, FindingVerdict, Line, Load, Run, Span, Verdict};
 use crate::write::annotate::{CAUTION, check_name, governing, heading, kind_name, worst_case};
 use crate::write::text::{
-    self, against_limit, columns, force, metres, millimetres, plain, three_digits, wrap,
+    self, against_limit, columns, force, four_digits, metres, millimetres, plain, wrap,
 };
 
 /// How the summary is set.
@@ -315,8 +315,8 @@ fn span_lines(run: &Run, span: &Span, out: &mut Page) {
         words.push_str(&format!(
             "; H {}, V {} left, {} right",
             force(left.horizontal, &run.units),
-            three_digits(left.vertical),
-            three_digits(right.vertical)
+            four_digits(left.vertical),
+            four_digits(right.vertical)
         ));
     }
     out.entry(&span.name, None, &words);
@@ -389,7 +389,7 @@ fn load_words(run: &Run, load: &Load) -> String {
     } else {
         words.push_str(&format!(
             "{} right, {} up",
-            three_digits(load.force[0]),
+            four_digits(load.force[0]),
             force(load.force[1], &run.units)
         ));
     }

@@ -16,11 +16,25 @@ pub fn three_digits(value: f64) -> String {
     significant(value, 3)
 }
 
+/// A force or moment to four significant digits.
+///
+/// ```
+/// use thrustmark::write::text::four_digits;
+/// assert_eq!(four_digits(332.5), "332.5");
+/// assert_eq!(four_digits(332.5 - 1e-12), "332.5");
+/// assert_eq!(four_digits(12345.6), "12350");
+/// ```
+pub fn four_digits(value: f64) -> String {
+    significant(value, 4)
+}
+
 /// A number to so many significant digits; trailing zeros after the point stay, so that columns tell their precision.
 fn significant(value: f64, digits: usize) -> String {
     if value == 0.0 || !value.is_finite() {
         return if value.is_finite() { "0".into() } else { "-".into() };
     }
+    // Twelve digits first: values that differ by rounding alone (332.5 and 332.49999999999994) read the same.
+    let value = format!("{value:.11e}").parse().unwrap_or(value);
     let rounded = format!("{:.*e}", digits.saturating_sub(1), value);
     let (Some(exponent), Ok(number)) =
         (rounded.split_once('e').and_then(|(_, e)| e.parse::<i64>().ok()), rounded.parse::<f64>())
@@ -30,7 +44,8 @@ fn significant(value: f64, digits: usize) -> String {
     if !(-6..9).contains(&exponent) {
         return rounded;
     }
-    let decimals = usize::try_from(2 - exponent).unwrap_or(0);
+    let last = i64::try_from(digits).unwrap_or(0) - 1;
+    let decimals = usize::try_from(last - exponent).unwrap_or(0);
     format!("{number:.decimals$}")
 }
 
@@ -84,7 +99,7 @@ pub fn metres(value: f64) -> String {
 
 /// A force with its unit.
 pub fn force(value: f64, units: &Units) -> String {
-    format!("{} {}", three_digits(value), force_unit(units))
+    format!("{} {}", four_digits(value), force_unit(units))
 }
 
 /// The force unit, ASCII, in the plural where it is a word.
@@ -102,7 +117,8 @@ pub fn quantity(value: f64, unit: Option<&str>) -> String {
     match unit {
         Some("m") => format!("{} mm", millimetres(value)),
         Some("mm") => format!("{} mm", millimetres(value / 1000.0)),
-        Some("-" | "") | None => three_digits(value),
+        Some("-" | "" | "1") | None => three_digits(value),
+        Some(unit @ ("kN" | "unit load")) => format!("{} {unit}", four_digits(value)),
         Some(unit) => format!("{} {unit}", three_digits(value)),
     }
 }

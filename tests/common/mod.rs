@@ -67,6 +67,7 @@ pub fn marks(plane: Plane) -> Marks {
                 shape,
                 colour: (i == last).then_some(2),
                 line_type: (i == 1).then_some(1),
+                width: (i == 2).then_some(0.25),
             })
             .collect(),
         facts: vec![

@@ -14,8 +14,16 @@ const TALL: f64 = 7.0;
 /// A curve over a span: x in drawing units, offset in metres.
 type Curve = Vec<(f64, f64)>;
 
-/// Draws the diagrams of all spans under their spans, below `corner`. Gives back the height of the lowest thing drawn.
-pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, right: f64) -> f64 {
+/// Draws the diagrams of all spans under their spans, below `corner`; `hidden` is how many figures the elevation has no
+/// room for. Gives back the height of the lowest thing drawn.
+pub fn draw(
+    run: &Run,
+    spans: &[Shown],
+    canvas: &mut Canvas,
+    corner: Point,
+    right: f64,
+    hidden: usize,
+) -> f64 {
     let h = canvas.h;
     let curves: Vec<Curve> = spans.iter().map(offsets).collect();
     if curves.iter().all(Vec::is_empty) {
@@ -24,8 +32,11 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, righ
     let limit = offset_limit(run);
     let largest = curves.iter().flatten().map(|p| p.1.abs()).fold(0.0, f64::max);
     // A limit far beyond the line would flatten the diagram; it is then told and not drawn.
-    let drawn_limit = limit.filter(|l| *l <= 6.0 * largest);
-    let reach = drawn_limit.unwrap_or(0.0).max(largest);
+    // A line on the axis to within rounding has no shape of its own to show: then the limit alone gives the scale.
+    let longest = spans.iter().map(|s| s.span.axis.span).fold(0.0, f64::max);
+    let negligible = largest <= crate::tolerance::OFFSET_SHOWN * longest;
+    let drawn_limit = limit.filter(|l| negligible || *l <= 6.0 * largest);
+    let reach = drawn_limit.unwrap_or(0.0).max(if negligible { 0.0 } else { largest });
     let factor = exaggeration(reach, h, spans.first().map_or(1.0, |s| s.unit));
 
     let mut title = if factor > 1.0 {
@@ -42,6 +53,10 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, righ
             title.push_str(&format!("; limit {} mm lies outside the diagram", text::millimetres(l)))
         }
         (None, _) => {}
+    }
+    if hidden > 0 {
+        let figures = if hidden == 1 { "figure" } else { "figures" };
+        title.push_str(&format!("; {hidden} {figures} not shown on the elevation"));
     }
     let columns = columns_between(corner.x, right, h);
     let mut lines = text::wrap("OFFSET OF THE LINE OF THRUST FROM THE AXIS", columns);
@@ -81,16 +96,15 @@ fn offset_limit(run: &Run) -> Option<f64> {
         .min_by(f64::total_cmp)
 }
 
-/// The offset along the span, at the stations; without stations, at the loads and the ends.
+/// Steps of the curve along a span, beside its stations.
+const STEPS: u32 = 160;
+
+/// The offset along the span, at the stations, the loads and evenly between.
 fn offsets(shown: &Shown) -> Curve {
-    let Some(line) = shown.line else { return Vec::new() };
-    let stations: Curve =
-        line.stations.iter().filter_map(|t| t.eccentricity.map(|e| (t.at[0] * shown.unit, e))).collect();
-    if stations.len() > 1 {
-        return stations;
-    }
-    let Some(path) = &shown.path else { return Vec::new() };
-    let mut lengths = vec![0.0, path.length()];
+    let (Some(line), Some(path)) = (shown.line, &shown.path) else { return Vec::new() };
+    let mut lengths: Vec<f64> =
+        (0..=STEPS).map(|i| path.length() * f64::from(i) / f64::from(STEPS)).collect();
+    lengths.extend(line.stations.iter().map(|t| t.s * shown.unit));
     lengths.extend(&shown.feet);
     lengths.extend(shown.worst().map(|w| w.0));
     lengths.sort_by(f64::total_cmp);
@@ -103,8 +117,7 @@ fn exaggeration(reach: f64, h: f64, unit: f64) -> f64 {
     if !wanted.is_finite() || wanted <= 1.0 {
         return 1.0;
     }
-    // A line on the axis to within rounding needs no microscope.
-    round_down(wanted).min(10_000.0)
+    round_down(wanted)
 }
 
 /// The largest of 1, 2, 2.5, 5, 10 … that is not larger than the value (positive).
@@ -257,7 +270,6 @@ mod tests {
     #[test]
     fn nothing_to_exaggerate() {
         assert!((exaggeration(0.0, 1.0, 1.0) - 1.0).abs() < f64::EPSILON);
-        assert!((exaggeration(1e-15, 1.0, 1.0) - 10_000.0).abs() < 1e-9);
         assert!((exaggeration(0.05, 0.25, 1.0) - 25.0).abs() < 1e-9);
     }
 }

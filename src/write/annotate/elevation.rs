@@ -8,14 +8,16 @@ use crate::tags::marks::{Across, Along};
 use crate::tolerance;
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Leader, Words};
 use crate::write::annotate::place::width;
+use crate::write::annotate::ring;
 use crate::write::annotate::shown::{Shown, governing, kind_name, point};
 use crate::write::text;
 
-/// Draws all spans. What texts must keep off is drawn first, then texts from the one that matters most.
-pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
+/// Draws all spans. What texts must keep off is drawn first, then texts from the one that matters most. Gives back how
+/// many figures found no room.
+pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas) -> usize {
     for shown in spans {
         canvas.taken.keep_off(&shown.chords);
-        kern(shown, canvas);
+        ring::draw(run, shown, canvas);
         other_lines(shown, canvas);
         line(shown, canvas);
         for s in joints(shown) {
@@ -35,10 +37,12 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas) {
             reaction(run, shown, arrow, spans.len() > 1, canvas);
         }
     }
+    let mut hidden = 0;
     for shown in spans {
-        figures(shown, canvas);
+        hidden += figures(shown, canvas);
         labels(shown, canvas);
     }
+    hidden
 }
 
 /// The line type of a kind of line that does not govern.
@@ -79,7 +83,7 @@ pub fn beside<'a>(shown: &Shown<'a>) -> Vec<(String, Dash, &'a Line)> {
 }
 
 fn line(shown: &Shown, canvas: &mut Canvas) {
-    canvas.chain(Layer::Line, "line", &shown.vertices, None);
+    canvas.heavy(Layer::Line, "line", &shown.vertices);
     canvas.taken.keep_off(&shown.vertices);
 }
 
@@ -116,27 +120,8 @@ fn labels(shown: &Shown, canvas: &mut Canvas) {
     }
 }
 
-/// The middle third, where it is wide enough to be seen.
-fn kern(shown: &Shown, canvas: &mut Canvas) {
-    let Some(line) = shown.line else { return };
-    let depths: Vec<(f64, f64)> =
-        line.stations.iter().filter_map(|t| t.depth.map(|d| (t.s * shown.unit, d * shown.unit))).collect();
-    let widest = depths.iter().map(|d| d.1).fold(0.0, f64::max);
-    if widest / 3.0 < 0.4 * canvas.h {
-        return;
-    }
-    for side in [1.0, -1.0] {
-        let edge: Vec<Point> = depths
-            .iter()
-            .filter_map(|&(s, d)| shown.joint(s).map(|(p, n)| p + n * (side * d / 6.0)))
-            .collect();
-        canvas.chain(Layer::Kern, "kern", &edge, Some(Dash::Dots));
-        canvas.taken.keep_off(&edge);
-    }
-}
-
 /// Joints that get a tick: under every load, and where the line strays most.
-fn joints(shown: &Shown) -> Vec<f64> {
+pub fn joints(shown: &Shown) -> Vec<f64> {
     let mut out = shown.feet.clone();
     out.extend(shown.worst().map(|w| w.0));
     out.sort_by(f64::total_cmp);
@@ -192,25 +177,45 @@ fn figure_places(shown: &Shown, s: f64, e: f64, words: &str, h: f64, far: u32) -
 fn worst_figure(shown: &Shown, canvas: &mut Canvas) {
     let Some((s, e)) = shown.worst() else { return };
     let words = format!("max {} mm", text::signed_millimetres(e));
-    figure(shown, s, e, &words, 24, canvas);
+    if !figure(shown, s, e, &words, 24, canvas) {
+        below_all(shown, s, e, &words, canvas);
+    }
     if let Some((at, normal)) = shown.joint(s) {
         canvas.circle(Layer::Offsets, "worst", at + normal * (e * shown.unit), 0.45 * canvas.h);
     }
 }
 
-fn figure(shown: &Shown, s: f64, e: f64, words: &str, far: u32, canvas: &mut Canvas) {
+/// The worst figure is never left out: where the elevation has no room, it stands below it on a leader.
+fn below_all(shown: &Shown, s: f64, e: f64, words: &str, canvas: &mut Canvas) {
+    let Some((joint, normal)) = shown.joint(s) else { return };
+    let h = canvas.h;
+    let tip = joint + normal * (e * shown.unit);
+    let low = canvas.extent().map_or(tip.y, |(corner, _)| corner.y.min(tip.y));
+    let places = (0..400).map(|k| {
+        let at = Point::new(tip.x, low - (2.0 + 0.5 * f64::from(k)) * h);
+        (Words::new(words, at, h).centred(), None)
+    });
+    if let Some((placed, _)) = canvas.place(Layer::Offsets, "offset", places) {
+        canvas.line(Layer::Offsets, "offset-leader", tip, placed.at + Vec2::new(0.0, 0.9 * h));
+    }
+}
+
+/// Whether the figure found room.
+fn figure(shown: &Shown, s: f64, e: f64, words: &str, far: u32, canvas: &mut Canvas) -> bool {
     let places = figure_places(shown, s, e, words, canvas.h, far);
-    if let Some((_, Some((a, b)))) = canvas.place(Layer::Offsets, "offset", places) {
+    let placed = canvas.place(Layer::Offsets, "offset", places);
+    if let Some((_, Some((a, b)))) = placed {
         canvas.line(Layer::Offsets, "offset-leader", a, b);
     }
+    placed.is_some()
 }
 
 /// No more figures than fit along a long span; looking for room for thousands would only take time.
 const MOST_FIGURES: usize = 300;
 
-/// Figures at the loads, the larger first; one that finds no room near its tick is left out (the offset diagram and the
-/// results hold them all).
-fn figures(shown: &Shown, canvas: &mut Canvas) {
+/// Figures at the loads, the larger first; one that finds no room near its tick is left out (the results hold them all)
+/// and counted. Gives back how many.
+fn figures(shown: &Shown, canvas: &mut Canvas) -> usize {
     let worst = shown.worst().map(|w| w.0);
     let near = shown.path.as_ref().map_or(0.0, |p| p.length()) * tolerance::SAME_JOINT;
     let mut list: Vec<(f64, f64)> = joints(shown)
@@ -219,10 +224,13 @@ fn figures(shown: &Shown, canvas: &mut Canvas) {
         .filter_map(|s| shown.eccentricity(s).map(|e| (s, e)))
         .collect();
     list.sort_by(|a, b| b.1.abs().total_cmp(&a.1.abs()));
+    let mut hidden = list.len().saturating_sub(MOST_FIGURES);
     list.truncate(MOST_FIGURES);
     for (s, e) in list {
-        figure(shown, s, e, &text::signed_millimetres(e), 6, canvas);
+        let placed = figure(shown, s, e, &text::signed_millimetres(e), 6, canvas);
+        hidden += usize::from(!placed);
     }
+    hidden
 }
 
 /// Bow's letters, one in each space between the lines of action, on the side of the loads.
@@ -311,7 +319,7 @@ fn reaction(run: &Run, shown: &Shown, arrow: &Arrow, several: bool, canvas: &mut
     lines.push(format!("H {}", text::force(end.horizontal, &run.units)));
     lines.push(format!("V {}", text::force(end.vertical, &run.units)));
     if let Some(moment) = springing_moment(shown, arrow.left) {
-        lines.push(format!("M {} {}", text::three_digits(moment), text::moment_unit(&run.units)));
+        lines.push(format!("M {} {}", text::four_digits(moment), text::moment_unit(&run.units)));
     }
     lines.push(format!("angle {} deg", thrust_angle(end.horizontal, end.vertical)));
     let (outward, across) = if arrow.left { (-1.0, Across::Right) } else { (1.0, Across::Left) };

@@ -12,6 +12,7 @@
 //! | --- | --- | --- | --- | --- |
 //! | `LINE` | governing line of thrust | 142 blue | continuous | 0.50 |
 //! | `OTHER-LINES` | other lines and cases, each with its own line type | 252 grey | by line: long or short dashes, dash and dots | 0.25 |
+//! | `RING` | ring lines and joints of the depth computed with | 8 grey | continuous | 0.09 |
 //! | `KERN` | middle third of the rib | 8 grey | dots | 0.13 |
 //! | `OFFSETS` | ticks from the axis to the line along the joint, figures in mm | 213 purple | continuous | 0.13 |
 //! | `OFFSET-DIAGRAM` | offset along the span, exaggerated, limits dashed | 142 blue | continuous, limits short dashes | 0.25 |
@@ -24,20 +25,23 @@
 //! Of several cases the governing line of the worst one is drawn heavy (most limits that do not hold, then the largest
 //! offset); the others stand beside it on `OTHER-LINES` and all are listed in the note block.
 
-mod diagram;
-mod elevation;
-mod note;
-mod pen;
+pub(super) mod diagram;
+pub(super) mod elevation;
+pub(super) mod note;
+pub(super) mod pen;
 mod place;
-mod polygon;
-mod shown;
+pub(super) mod polygon;
+mod ring;
+pub(super) mod shown;
 
 pub use crate::outcome::bow::{MOST_LETTERED, letter, spaces};
 pub use elevation::check_name;
 pub use note::{CAUTION, heading};
 pub use shown::{governing, kind_name, worst_case};
 
-use crate::geometry::Point;
+use sha2::{Digest, Sha256};
+
+use crate::geometry::{self, Point};
 use crate::outcome::{Run, Verdict, Xy};
 use crate::tags::APPLICATION;
 use crate::tags::marks::{Marks, Plane};
@@ -126,17 +130,23 @@ pub struct Sheet {
 pub fn annotate(run: &Run, sheet: &Sheet) -> Marks {
     let unit = 1.0 / sheet.metres_per_unit;
     let spans: Vec<Shown> = run.spans.iter().map(|span| Shown::new(run, span, unit)).collect();
-    let content = content(run, sheet);
+    let content = content(run, sheet.elevation);
     let h = text_height(sheet, content, unit);
     let mut canvas = Canvas::new(h);
     for e in sheet.occupied.iter().filter(|e| e.is_finite()) {
         canvas.taken.boxes.push(Box2::upright(shown::point(e.low, unit), shown::point(e.high, unit)));
     }
-    elevation::draw(run, &spans, &mut canvas);
+    // The symbols of the loads, whose size is not known here, are taken as half a text height large.
+    for load in run.spans.iter().flat_map(|s| &s.loads).filter(|l| l.at.iter().all(|c| c.is_finite())) {
+        let (at, half) = (shown::point(load.at, unit), 0.25 * h);
+        let corner = geometry::Vec2::new(half, half);
+        canvas.taken.boxes.push(Box2::upright(at - corner, at + corner));
+    }
+    let hidden = elevation::draw(run, &spans, &mut canvas);
 
     let (left, right) = (content.low[0] * unit, content.high[0] * unit);
     let mut y = free_below(sheet, content, &canvas, unit) - 3.0 * h;
-    y = diagram::draw(run, &spans, &mut canvas, Point::new(left, y), right) - 3.0 * h;
+    y = diagram::draw(run, &spans, &mut canvas, Point::new(left, y), right, hidden) - 3.0 * h;
     let corner = Point::new(left, y);
     let polygons_right = polygon::draw(run, &spans, &mut canvas, corner, right);
     note::draw(run, sheet, &spans, &mut canvas, corner, polygons_right, right);
@@ -168,12 +178,34 @@ fn facts(run: &Run, sheet: &Sheet) -> Vec<(String, String)> {
     if let Some(hash) = &sheet.job_hash {
         facts.push(("job".to_owned(), hash.clone()));
     }
+    // Tells a job file that changed for this sheet from one that changed for others only.
+    facts.push(("settings".to_owned(), settings_hash(&run.settings)));
     facts
 }
 
+/// Where there is room below the elevation for other marks of ours: the upper left corner, and the text height, both in
+/// drawing units.
+pub fn free_corner(run: &Run, sheet: &Sheet) -> (Point, f64) {
+    let unit = 1.0 / sheet.metres_per_unit;
+    let content = content(run, sheet.elevation);
+    let h = text_height(sheet, content, unit);
+    (Point::new(content.low[0] * unit, free_below(sheet, content, &Canvas::new(h), unit) - 3.0 * h), h)
+}
+
+/// SHA-256 of settings in force, lower-case hexadecimal.
+///
+/// Which file they came from does not count: a job file that moved asks for the same.
+pub fn settings_hash(settings: &serde_json::Value) -> String {
+    let mut settings = settings.clone();
+    if let Some(tree) = settings.as_object_mut() {
+        tree.remove("origin");
+    }
+    Sha256::digest(settings.to_string()).iter().map(|byte| format!("{byte:02x}")).collect()
+}
+
 /// Extents of axis, loads and lines, m.
-fn content(run: &Run, sheet: &Sheet) -> Extents {
-    let given = sheet.elevation.filter(Extents::is_finite).map(|e| [e.low, e.high]);
+pub(super) fn content(run: &Run, elevation: Option<Extents>) -> Extents {
+    let given = elevation.filter(Extents::is_finite).map(|e| [e.low, e.high]);
     let axes = run.spans.iter().flat_map(|s| {
         let a = &s.axis;
         [a.left, a.right, a.crown]

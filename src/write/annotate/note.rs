@@ -60,7 +60,7 @@ pub fn draw(
     }
     y -= 0.4 * h;
     canvas.line(layer, "rule", Point::new(x, y), Point::new(x + width, y));
-    let key_low = key(spans, canvas, Point::new(x + pad, y));
+    let key_low = key(spans, canvas, Point::new(x + pad, y), &[]);
     let signs_low = signs(canvas, Point::new(x + width - 29.0 * h, y));
     y = key_low.min(signs_low) - 0.6 * h;
     canvas.line(layer, "rule", Point::new(x, y), Point::new(x + width, y));
@@ -111,7 +111,7 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
         row("Case", words);
     }
     row("Loads", loads_words(run, spans));
-    row("Left out", omitted(run, spans));
+    row("Left out", omitted(run));
     for words in limits(run) {
         row("Limit", words);
     }
@@ -186,8 +186,8 @@ fn span_words(run: &Run, shown: &Shown) -> String {
         words.push_str(&format!(
             "; H {}{pull}, V {} left, {} right",
             text::force(left.horizontal, &run.units),
-            text::three_digits(left.vertical),
-            text::three_digits(right.vertical)
+            text::four_digits(left.vertical),
+            text::four_digits(right.vertical)
         ));
     }
     words
@@ -280,7 +280,7 @@ fn loads_words(run: &Run, spans: &[Shown]) -> String {
     if x.abs() > y.abs() * crate::tolerance::NO_FORCE {
         words.push_str(&format!(
             ", {} to the {}",
-            text::three_digits(x.abs()),
+            text::four_digits(x.abs()),
             if x > 0.0 { "right" } else { "left" }
         ));
     }
@@ -293,28 +293,17 @@ fn loads_words(run: &Run, spans: &[Shown]) -> String {
     words
 }
 
-/// What the loads do not hold: self weight and weighed areas unless some load comes from them, and what the findings say.
-fn omitted(run: &Run, spans: &[Shown]) -> String {
-    let from =
-        |what: MagnitudeFrom| spans.iter().flat_map(|s| &s.span.loads).any(|l| l.magnitude_from == what);
-    let mut out = Vec::new();
-    if !from(MagnitudeFrom::SelfWeight) {
-        out.push("self weight".to_owned());
-    }
-    if !from(MagnitudeFrom::Area) {
-        out.push("fill and other areas".to_owned());
-    }
-    if spans.iter().flat_map(|s| &s.span.cases).all(|c| c.traffic.is_empty()) {
-        out.push("traffic other than drawn".to_owned());
-    }
-    let mut words = out.join(", ");
+/// What the loads do not hold, as the findings say it, each thing once.
+pub fn omitted(run: &Run) -> String {
+    let mut out: Vec<&str> = Vec::new();
     for finding in run.findings.iter().filter(|f| matches!(f.check, Check::LeftOut | Check::OffSpan)) {
-        if !words.is_empty() {
-            words.push_str("; ");
+        let words = finding.message.trim_end_matches('.');
+        let words = words.strip_prefix("left out: ").unwrap_or(words);
+        if !out.contains(&words) {
+            out.push(words);
         }
-        words.push_str(finding.message.trim_end_matches('.'));
     }
-    words
+    out.join("; ")
 }
 
 /// One line for each limit that was stated.
@@ -412,14 +401,23 @@ fn other_kinds(spans: &[Shown]) -> Vec<(String, Option<Dash>)> {
     out
 }
 
-/// Samples of the lines drawn. Gives back the height below the last.
-fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
+/// Samples of the lines drawn, those of `more` first. Gives back the height below the last.
+pub fn key(
+    spans: &[Shown],
+    canvas: &mut Canvas,
+    corner: Point,
+    more: &[(Layer, Option<Dash>, String)],
+) -> f64 {
     let h = canvas.h;
-    let mut samples = vec![
+    let mut samples = more.to_vec();
+    samples.extend([
         (Layer::Line, None, "line of thrust".to_owned()),
         (Layer::Offsets, None, "offset, mm".to_owned()),
-    ];
+    ]);
     samples.extend(other_kinds(spans).into_iter().map(|(name, dash)| (Layer::OtherLines, dash, name)));
+    if canvas.marks.iter().any(|m| m.role == "ring") {
+        samples.push((Layer::Ring, None, "ring, joints".into()));
+    }
     if canvas.marks.iter().any(|m| m.layer == Layer::Kern as usize) {
         samples.push((Layer::Kern, Some(Dash::Dots), "middle third".into()));
     }
@@ -431,7 +429,7 @@ fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
         let middle = y + h / 2.0;
         let (a, b) = (Point::new(corner.x, middle), Point::new(corner.x + 6.0 * h, middle));
         match layer {
-            Layer::Reactions => canvas.arrow(layer, "key", a, b),
+            Layer::Reactions | Layer::Loads => canvas.arrow(layer, "key", a, b),
             Layer::Letters => canvas.text(layer, "key", &Words::new("a b c", a.midpoint(b), h).centred()),
             _ => canvas.dashed(layer, "key", a, b, dash),
         }
@@ -441,7 +439,7 @@ fn key(spans: &[Shown], canvas: &mut Canvas, corner: Point) -> f64 {
 }
 
 /// A piece of rib with the senses in which figures count as positive. Gives back the height below it.
-fn signs(canvas: &mut Canvas, corner: Point) -> f64 {
+pub fn signs(canvas: &mut Canvas, corner: Point) -> f64 {
     let h = canvas.h;
     let layer = Layer::Notes;
     let y = corner.y - 5.6 * h;

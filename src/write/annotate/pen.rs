@@ -12,6 +12,8 @@ pub enum Layer {
     Line,
     /// Other lines of thrust.
     OtherLines,
+    /// Ring lines and joints of the depth that was computed with.
+    Ring,
     /// The middle third.
     Kern,
     /// Offset ticks and their figures.
@@ -28,13 +30,18 @@ pub enum Layer {
     Flags,
     /// Note block, key and sign sketch.
     Notes,
+    /// The axis; drawn in pictures only, a marked copy has its own.
+    Axis,
+    /// The loads; drawn in pictures only, as the axis.
+    Loads,
 }
 
 /// Name after the prefix, colour, line type, weight in hundredths of a millimetre. The module docs of `annotate` tell
 /// the colours by name.
-const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 10] = [
+const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 11] = [
     (Layer::Line, "LINE", 142, None, 50),
     (Layer::OtherLines, "OTHER-LINES", 252, None, 25),
+    (Layer::Ring, "RING", 8, None, 9),
     (Layer::Kern, "KERN", 8, Some(Dash::Dots), 13),
     (Layer::Offsets, "OFFSETS", 213, None, 13),
     (Layer::OffsetDiagram, "OFFSET-DIAGRAM", 142, None, 25),
@@ -62,13 +69,17 @@ pub enum Dash {
 
 /// Name after the prefix, description, and pattern in text heights. Dots are short dashes: viewers differ on dots of no
 /// length.
-const DASHES: [(Dash, &str, &str, &[f64]); 5] = [
+pub const DASHES: [(Dash, &str, &str, &[f64]); 5] = [
     (Dash::Long, "LONG", "Long dashes", &[2.4, -0.8]),
     (Dash::Short, "SHORT", "Short dashes", &[0.9, -0.6]),
     (Dash::Dot, "DOT", "Dash and dot", &[2.0, -0.5, 0.2, -0.5]),
     (Dash::TwoDots, "TWODOTS", "Dash and two dots", &[2.0, -0.5, 0.2, -0.5, 0.2, -0.5]),
     (Dash::Dots, "DOTS", "Dots", &[0.2, -0.5]),
 ];
+
+/// Width of the governing line in text heights: 0.4 mm on a plot with text of 2.5 mm, between an ordinary line and the
+/// 0.5 mm of its layer's line weight, which viewers that know line widths take in its place.
+const HEAVY: f64 = 0.16;
 
 /// The layers to be made.
 pub fn layers(prefix: &str, frozen: bool) -> Vec<MarkLayer> {
@@ -106,6 +117,8 @@ pub struct Canvas {
     pub marks: Vec<Mark>,
     /// What is taken.
     pub taken: Taken,
+    /// Whether lengths can be told in drawing units, as in a drawing; a picture has none.
+    pub has_units: bool,
     low: Point,
     high: Point,
 }
@@ -117,6 +130,7 @@ impl Canvas {
             h,
             marks: Vec::new(),
             taken: Taken::default(),
+            has_units: true,
             low: Point::new(f64::INFINITY, f64::INFINITY),
             high: Point::new(f64::NEG_INFINITY, f64::NEG_INFINITY),
         }
@@ -141,6 +155,7 @@ impl Canvas {
             shape,
             colour: None,
             line_type: dash.map(|d| d as usize),
+            width: None,
         });
     }
 
@@ -170,6 +185,14 @@ impl Canvas {
         let points = points.into_iter().map(|p| (p, 0.0)).collect();
         let shape = Shape::Polyline { points, closed: false };
         self.push(layer, role, shape, dash);
+    }
+
+    /// The same with a width, which stands for the line weight where there is none.
+    pub fn heavy(&mut self, layer: Layer, role: &str, points: &[Point]) {
+        let before = self.marks.len();
+        self.chain(layer, role, points, None);
+        let width = HEAVY * self.h;
+        self.marks.iter_mut().skip(before).for_each(|mark| mark.width = Some(width));
     }
 
     /// A frame by two corners.

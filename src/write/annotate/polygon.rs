@@ -50,7 +50,7 @@ pub fn draw(run: &Run, spans: &[Shown], canvas: &mut Canvas, corner: Point, righ
     let (mut x, mut top, mut edge) = (corner.x, corner.y, corner.x);
     let mut row_low = top;
     for ((shown, polygon), scale) in spans.iter().zip(&polygons).zip(scales) {
-        let title = title(run, shown, scale, spans.len() > 1);
+        let title = title(run, shown, scale.filter(|_| canvas.has_units), spans.len() > 1);
         let width = cell_width(polygon, &title, scale, h);
         if x > corner.x && x + width > limit {
             (x, top) = (corner.x, row_low - 3.0 * h);
@@ -344,7 +344,7 @@ fn dimensions(
     {
         let (a, b) = (Point::new(x, from), Point::new(x, to));
         dimension(canvas, a, b, Vec2::new(1.0, 0.0));
-        let words = format!("{name} {}", text::three_digits(value));
+        let words = format!("{name} {}", text::four_digits(value));
         let middle = f64::midpoint(from, to);
         // Beside its dimension; where that is short, wherever there is room along it.
         let places = (0..60).flat_map(|k| {

@@ -83,14 +83,18 @@ impl<'a> Shown<'a> {
         Some((path.point_at(s), path.normal_at(s, true)))
     }
 
-    /// Eccentricity of the governing line at a length along the axis, in metres: that of the station there, else where
-    /// the joint meets the drawn line nearest to the axis.
+    /// Eccentricity of the governing line at a length along the axis, in metres: that of the station there (at a corner of
+    /// the axis, which has two joints, the larger), else where the joint meets the drawn line nearest to the axis.
     pub fn eccentricity(&self, s: f64) -> Option<f64> {
         let line = self.line?;
         let path = self.path.as_ref()?;
         let near = path.length() * tolerance::SAME_JOINT;
-        let station =
-            line.stations.iter().filter(|t| (t.s * self.unit - s).abs() <= near).find_map(|t| t.eccentricity);
+        let station = line
+            .stations
+            .iter()
+            .filter(|t| (t.s * self.unit - s).abs() <= near)
+            .filter_map(|t| t.eccentricity)
+            .max_by(|a, b| a.abs().total_cmp(&b.abs()));
         if station.is_some() {
             return station;
         }

@@ -259,8 +259,8 @@ fn note_block_tells_what_it_must() {
         "thrustmark 0.1.0, 2026-03-01 UTC",
         "one possible line of thrust",
         "all factors 1",
-        "5 loads as drawn, 500 kN downward",
-        "self weight",
+        "5 loads as drawn, 500.0 kN downward",
+        "The rib is taken as weightless",
         "none stated",
         "qualified engineer",
     ] {
@@ -351,7 +351,7 @@ fn layers_carry_the_prefix_and_the_frost() {
     assert!(marks.layers.iter().all(|l| l.name.starts_with("T_") && l.frozen));
     assert!(marks.line_types.iter().all(|l| l.name.starts_with("T_")));
     let facts: Vec<&str> = marks.facts.iter().map(|f| f.0.as_str()).collect();
-    assert_eq!(facts, ["sha256", "source", "tool", "verdict", "date", "job"]);
+    assert_eq!(facts, ["sha256", "source", "tool", "verdict", "date", "job", "settings"]);
 }
 
 #[test]
