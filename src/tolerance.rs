@@ -338,3 +338,11 @@ pub const REVISION_RELATIVE: f64 = 1e-6;
 /// Part of the span up to which a load without a name of its own may have moved and still be the same load. Larger: two
 /// loads of a close row are taken for one that moved; smaller: a load pushed aside a little counts as gone and new.
 pub const REVISION_NEAR: f64 = 0.01;
+
+/// How far the rise of a suggested axis may miss that of the drawn one, relative to the span. Larger: the suggestion is not
+/// the funicular of the stated rise; smaller: leaning loads take more steps than rounding allows.
+pub const SUGGESTED_RISE: f64 = 1e-10;
+
+/// Relative accuracy of the least depth that meets the limits. Larger: more depth is suggested than is needed; smaller: more
+/// runs of the whole check.
+pub const SUGGESTED_DEPTH: f64 = 1e-3;

@@ -210,7 +210,6 @@ fn what_is_not_built_is_refused_by_name() {
             "[[accept.finding]]\ncheck = \"dimension\"\nup_to = \"12 mm\"\nreason = \"r\"\nby = \"b\"",
             "accept.finding.check",
         ),
-        ("[mark]\nsuggest = true", "mark.suggest"),
         ("[title]\nsheet = \"NO\"", "title.sheet"),
         ("[title]\nrevision = \"NO\"", "title.revision"),
         ("[report]\nunits = \"us\"", "report.units"),

@@ -3,6 +3,7 @@
 mod list;
 mod problem;
 mod sheet;
+mod suggest;
 mod unmark;
 
 use std::io::Read;
@@ -232,7 +233,16 @@ fn stages(
     let cases = model::cases::cases(&model, &settings)?;
     let analyses = analyse(&model, &cases, &settings)?;
     let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses };
-    let judged = verdict::judge(&settings, &drawing.notes, &computed, environment.today);
+    let mut judged = verdict::judge(&settings, &drawing.notes, &computed, environment.today);
+    if settings.mark.suggest {
+        for (i, span) in model.spans.iter().enumerate() {
+            let told = &mut judged.spans[i];
+            let suggestion =
+                suggest::suggest(&model, span, &cases, &analyses[i], &settings, told, environment.today)?;
+            told.suggestion = Some(suggestion);
+        }
+        verdict::add_suggestions(&mut judged);
+    }
     let run = Run {
         units: judged.units,
         drawing: facts.clone(),

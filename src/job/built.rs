@@ -150,7 +150,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("until", All),
         ],
     ),
-    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", Later)]),
+    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", All)]),
     ("title", &[("sheet", Later), ("revision", Later)]),
     ("report", &[("units", Only(&["si"]))]),
 ];

@@ -4,6 +4,9 @@
 //! plane in metres, in the drawing's own origin.
 
 pub mod bow;
+mod suggestion;
+
+pub use suggestion::{Move, SuggestedAxis, SuggestedDepth, Suggestion};
 
 use std::collections::BTreeMap;
 
@@ -136,6 +139,9 @@ pub struct Span {
     pub loads: Vec<Load>,
     /// The load cases.
     pub cases: Vec<Case>,
+    /// What would suit the loads better; null unless `[mark] suggest` asks for it.
+    #[serde(default)]
+    pub suggestion: Option<Suggestion>,
 }
 
 /// The axis of a span.
@@ -446,6 +452,8 @@ pub enum Check {
     NoLimit,
     /// What the computation leaves out.
     LeftOut,
+    /// An axis or a depth that would suit the loads better.
+    Suggestion,
 }
 
 /// What became of a check.

@@ -23,12 +23,14 @@ mod span;
 pub mod stress;
 mod string;
 mod subspace;
+mod suggest;
 mod thickness;
 mod through;
 mod ties;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
+pub use suggest::{Funicular, funicular};
 pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};

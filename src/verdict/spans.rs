@@ -50,6 +50,7 @@ pub fn span(
             })
             .collect(),
         loads: listed,
+        suggestion: None,
     }
 }
 

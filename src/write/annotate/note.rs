@@ -5,7 +5,7 @@ use crate::outcome::{Check, Finding, FindingVerdict, MagnitudeFrom, Run, Status,
 use crate::tags::marks::{Across, Along};
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
 use crate::write::annotate::shown::{Shown, governing, kind_name};
-use crate::write::annotate::{Sheet, elevation};
+use crate::write::annotate::{Sheet, elevation, suggested};
 use crate::write::text;
 
 /// Columns of the names and of what stands beside them.
@@ -118,6 +118,13 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
     row("Verdict", verdict_words(run));
     for shown in spans {
         row("Worst", worst_words(shown, several));
+    }
+    for words in
+        told_once(spans.iter().map(|s| {
+            (s, suggested::words(s, &format!("{}SUGGESTED-AXIS", sheet.prefix.to_ascii_uppercase())))
+        }))
+    {
+        row("Suggested", words);
     }
     let mut last = String::new();
     for (name, _) in &mut rows {
@@ -420,6 +427,9 @@ pub fn key(
     }
     if canvas.marks.iter().any(|m| m.layer == Layer::Kern as usize) {
         samples.push((Layer::Kern, Some(Dash::Dots), "middle third".into()));
+    }
+    if canvas.marks.iter().any(|m| m.layer == Layer::Suggested as usize) {
+        samples.push((Layer::Notes, Some(Dash::TwoDots), "suggested axis, off".into()));
     }
     samples.push((Layer::Reactions, None, "thrust on the rib".into()));
     samples.push((Layer::Letters, None, "spaces between loads".into()));

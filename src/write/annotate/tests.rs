@@ -419,6 +419,22 @@ fn worst_case_is_drawn_heavy() {
 }
 
 #[test]
+fn suggested_axis_stands_on_a_layer_that_is_off() {
+    let run = sample::suggested();
+    let marks = assert_calm(&run, &sheet());
+    let layer = marks.layers.iter().position(|l| l.name == "THRUST-SUGGESTED-AXIS").unwrap();
+    assert!(marks.layers[layer].off);
+    assert_eq!(marks.layers.iter().filter(|l| l.off).count(), 1);
+    let drawn: Vec<_> = marks.marks.iter().filter(|m| m.layer == layer).map(|m| m.role.as_str()).collect();
+    assert_eq!(drawn.iter().filter(|r| **r == "suggested-axis").count(), 1, "{drawn:?}");
+    assert!(drawn.contains(&"suggested-name"), "{drawn:?}");
+    let words = texts(&marks).into_iter().map(|t| t.0).collect::<Vec<_>>().join(" ");
+    assert!(words.contains("Suggested") && words.contains("1.20 times the depth"), "{words}");
+    let plain = annotate(&arch(3, 24.0, 6.0).run(), &sheet());
+    assert!(plain.layers.iter().all(|l| !l.off && !l.name.contains("SUGGESTED")));
+}
+
+#[test]
 fn control_characters_of_names_do_not_reach_the_drawing() {
     let mut run = arch(5, 30.0, 6.0).run();
     run.spans[0].loads[0].set = "L\u{1b}\n0".into();

@@ -5,6 +5,7 @@ mod hand;
 mod html;
 mod sections;
 mod stations;
+mod suggestion;
 
 use crate::outcome::{Document, Run, Verdict};
 use crate::write::annotate::note::{CAUTION, heading};
@@ -104,6 +105,7 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     sections::polygon(run, page);
     hand::block(run, page);
     sections::findings(run, page);
+    suggestion::section(run, page);
     stations::tables(run, page);
     sections::offsets(run, page);
     sections::proofs(run, page);
