@@ -21,25 +21,31 @@ const STEP: f64 = 1.25;
 /// Parts of the span at which moves are told where no load stands.
 const PARTS: u32 = 10;
 
-/// The suggestions for one span, `judged` in all its cases.
+/// Adds suggestions to what was judged, where the job asks for them.
 ///
 /// # Errors
 /// As the check of a drawing.
-pub fn suggest(
-    model: &Model,
-    span: &Span,
-    cases: &[Case],
-    analyses: &[Analysis],
+pub fn add(
+    computed: &verdict::Computed<'_>,
     settings: &Settings,
-    judged: &outcome::Span,
+    judged: &mut verdict::Judgement,
     today: Date,
-) -> Result<Suggestion, Refusal> {
-    let mut axes = Vec::new();
-    for (case, analysis) in cases.iter().zip(analyses) {
-        let problem = problem::problem(model, span, case, settings)?;
-        axes.push(axis(span, case, judged, &statics::funicular(&problem, analysis)));
+) -> Result<(), Refusal> {
+    if !settings.mark.suggest {
+        return Ok(());
     }
-    Ok(Suggestion { axes, depth: depth(model, span, cases, settings, judged, today)? })
+    let verdict::Computed { model, cases, analyses } = *computed;
+    for ((span, analyses), told) in model.spans.iter().zip(analyses).zip(&mut judged.spans) {
+        let mut axes = Vec::new();
+        for (case, analysis) in cases.iter().zip(analyses) {
+            let problem = problem::problem(model, span, case, settings)?;
+            axes.push(axis(span, case, told, &statics::funicular(&problem, analysis)));
+        }
+        let depth = depth(model, span, cases, settings, told, today)?;
+        told.suggestion = Some(Suggestion { axes, depth });
+    }
+    verdict::add_suggestions(judged);
+    Ok(())
 }
 
 fn axis(
