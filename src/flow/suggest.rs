@@ -8,7 +8,7 @@ use crate::job::{RibDepth, Settings};
 use crate::model::{Case, Model, Span};
 use crate::outcome::{self, Check, FindingVerdict, Move, Status, SuggestedAxis, SuggestedDepth, Suggestion};
 use crate::refusal::Refusal;
-use crate::statics::{self, Analysis};
+use crate::statics;
 use crate::tolerance;
 use crate::verdict;
 
