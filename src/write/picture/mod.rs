@@ -83,6 +83,11 @@ pub fn look(mark: &Mark) -> Look {
     LOOKS[mark.layer.min(LOOKS.len() - 1)].1
 }
 
+/// The colour of a class, black for one that there is not.
+pub fn look_of(class: &str) -> [u8; 3] {
+    LOOKS.iter().find(|l| l.1.class == class).map_or([0; 3], |l| l.1.colour)
+}
+
 /// Elevation, offset diagram, force polygons, key and caution on one sheet.
 pub fn whole(run: &Run) -> Picture {
     let spans = spans(run);

@@ -2,7 +2,7 @@
 
 use serde_json::Value;
 
-use super::html::{self, Page, figures, words};
+use super::page::{Block, Page, figures, sentence, words};
 use crate::outcome::{Check, Finding, FindingVerdict, Load, MagnitudeFrom, Run, Source, Status};
 use crate::refusal::Refusal;
 use crate::write::annotate::note::omitted;
@@ -64,7 +64,7 @@ pub fn summary(run: &Run, page: &mut Page) {
         if span.cases.len() > 1 {
             told.push_str(&format!(" Worst case of {}: {}.", span.cases.len(), case.name));
         }
-        page.paragraph(&html::sentence(&told));
+        page.paragraph(&sentence(&told));
     }
     page.end();
 }
@@ -165,7 +165,7 @@ pub fn elevation(run: &Run, page: &mut Page) {
         1 => caption.push_str(" 1 figure is not shown; the tables hold all."),
         n => caption.push_str(&format!(" {n} figures are not shown; the tables hold all.")),
     }
-    page.figure(&picture, &caption);
+    page.figure(picture, &caption);
     page.end();
 }
 
@@ -237,7 +237,7 @@ pub fn polygon(run: &Run, page: &mut Page) {
     let Some(picture) = picture::polygons(run) else { return };
     page.section("Force polygon", "picture");
     page.figure(
-        &picture,
+        picture,
         "Load line by Bow's letters, pole O of the governing line and its rays. Each ray is parallel to the piece of the \
          line of thrust in the space of the same letter.",
     );
@@ -287,7 +287,7 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
     if let Some(source) = &finding.entity {
         place.push(entity(source));
     }
-    let mut said = html::sentence(&finding.message);
+    let mut said = sentence(&finding.message);
     if let Some(accepted) = &finding.accepted {
         said.push_str(&format!(". Accepted by {}: {}", accepted.by, accepted.reason));
         if let Some(until) = &accepted.until {
@@ -314,7 +314,7 @@ pub fn offsets(run: &Run, page: &mut Page) {
     let Some(picture) = picture::offsets(run) else { return };
     page.section("Offset diagram", "picture");
     page.figure(
-        &picture,
+        picture,
         "Offset of the governing line from the axis along the span, with the stated limit.",
     );
     page.end();
@@ -389,15 +389,9 @@ pub fn assumptions(run: &Run, page: &mut Page) {
     if !omitted.is_empty() {
         lines.push(format!("Left out: {omitted}."));
     }
-    page.raw("<ul>\n");
-    for line in lines {
-        page.raw("<li>");
-        page.text(&html::sentence(&line));
-        page.raw("</li>\n");
-    }
-    page.raw("</ul>\n");
+    page.blocks.push(Block::Bullets(lines.iter().map(|line| sentence(line)).collect()));
     page.figure(
-        &picture::signs(),
+        picture::signs(),
         "Signs: offsets toward the extrados, compression, and moments that go with a positive offset are positive; H is \
          the push of an abutment inward, V its upward reaction; x runs to the right and y upward from the origin of the \
          drawing.",
@@ -441,14 +435,7 @@ fn flatten(path: &str, value: &Value, out: &mut Vec<(String, String)>) {
 /// Places for those who prepared and checked the sheet.
 pub fn signatures(page: &mut Page) {
     page.section("Prepared and checked", "signatures");
-    page.raw("<dl class=\"sign\">\n");
-    for role in ["Prepared by", "Checked by"] {
-        page.raw(&format!(
-            "<div><dt>{role}</dt><dd><span class=\"line\">Name</span><span class=\"line\">Signature</span>\
-             <span class=\"line\">Date</span></dd></div>\n"
-        ));
-    }
-    page.raw("</dl>\n");
+    page.blocks.push(Block::Signatures(&["Prepared by", "Checked by"]));
     page.end();
 }
 

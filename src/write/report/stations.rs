@@ -1,6 +1,6 @@
 //! Forces in the joints of the governing lines.
 
-use super::html::{Page, figures};
+use super::page::{Page, figures};
 use super::sections::offset;
 use crate::outcome::{Line, Run, Station};
 use crate::tolerance;

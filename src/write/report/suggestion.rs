@@ -1,6 +1,6 @@
 //! What would suit the loads better: the suggested axis as coordinates, and the least depth that would meet the limits.
 
-use super::html::{Page, figures, sentence, words};
+use super::page::{Page, figures, sentence, words};
 use crate::outcome::{Check, Run, Status};
 use crate::write::text::{self, four_digits, metres, signed_millimetres};
 
