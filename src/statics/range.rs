@@ -216,8 +216,8 @@ mod tests {
                 x[0]
             }
         });
-        assert_eq!(worst.value, f64::NEG_INFINITY);
+        assert!(worst.value < 0.0 && worst.value.is_infinite());
         assert_eq!(worst.at, [1.0]);
-        assert_eq!(best.value, f64::INFINITY);
+        assert!(best.value > 0.0 && best.value.is_infinite());
     }
 }
