@@ -34,7 +34,7 @@ pub fn add(
     if !settings.mark.suggest {
         return Ok(());
     }
-    let verdict::Computed { model, cases, analyses } = *computed;
+    let verdict::Computed { model, cases, analyses, .. } = *computed;
     for ((span, analyses), told) in model.spans.iter().zip(analyses).zip(&mut judged.spans) {
         let mut axes = Vec::new();
         for (case, analysis) in cases.iter().zip(analyses) {
@@ -166,7 +166,9 @@ fn holds(
     });
     let alone = Model { spans: vec![span], forces: model.forces, off_span: Vec::new(), notes: Vec::new() };
     let analyses = analyse(&alone, cases, &settings)?;
-    let computed = verdict::Computed { model: &alone, cases, analyses: &analyses };
+    // What takes more than one analysis decides no limit.
+    let extras = [vec![verdict::Extra::default(); cases.len()]];
+    let computed = verdict::Computed { model: &alone, cases, analyses: &analyses, extras: &extras };
     let judged = verdict::judge(&settings, &[], &computed, today);
     let depends =
         [Check::Ring, Check::Kern, Check::Stress, Check::GeometricFactor, Check::LoadFactor, Check::NoLine];

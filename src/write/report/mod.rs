@@ -1,6 +1,7 @@
 //! The report: one file that holds everything, as a page for browsers (no network, no script) or as a PDF, set as a
 //! calculation sheet on A4 paper for those who prepare and check it to sign.
 
+mod factors;
 mod hand;
 mod html;
 mod page;
@@ -114,6 +115,7 @@ fn drawing(run: &Run, page: &mut Page) {
     sections::loads(run, page);
     sections::polygon(run, page);
     hand::block(run, page);
+    factors::block(run, page);
     sections::findings(run, page);
     suggestion::section(run, page);
     stations::tables(run, page);
