@@ -1,6 +1,6 @@
 //! Factors of a ring without tension: what they are, the mechanism of the load factor, and what ranges make of them.
 
-use super::html::{Page, figures, words};
+use super::page::{Page, figures, words};
 use crate::outcome::{RangedValue, Ranges, Run, Safety, Span, Status};
 use crate::write::text::{four_digits, metres};
 
@@ -124,7 +124,7 @@ mod tests {
         let mut run = sample::arch(5, 30.0, 6.0).run();
         let mut page = Page::default();
         block(&run, &mut page);
-        assert!(page.out.is_empty(), "no factors, no section");
+        assert!(page.blocks.is_empty(), "no factors, no section");
         let value = |v: Option<f64>, found: &str| RangedValue {
             status: if v.is_some() { Status::Found } else { Status::None },
             value: v,
@@ -151,6 +151,7 @@ mod tests {
             }],
         });
         block(&run, &mut page);
+        let told = format!("{:?}", page.blocks);
         for words in [
             "2.345",
             "without bound",
@@ -161,7 +162,7 @@ mod tests {
             "rib.strength = 4.5",
             "sampled",
         ] {
-            assert!(page.out.contains(words), "{words}: {}", page.out);
+            assert!(told.contains(words), "{words}: {told}");
         }
     }
 }

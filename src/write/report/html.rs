@@ -15,20 +15,14 @@ pub fn html(head: &Head, blocks: &[Block]) -> String {
     page.raw(&format!("{GENERATOR} {}\">\n", escape(&head.version)));
     page.raw("<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n");
     page.raw("<meta name=\"color-scheme\" content=\"light dark\">\n");
-    page.raw(&format!(
-        "<title>{}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n",
-        escape(&head.title)
-    ));
+    page.raw(&format!("<title>{}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n", escape(&head.title)));
     page.raw("<a class=\"skip\" href=\"#main\">To the results</a>\n");
     page.raw(&format!(
         "<header class=\"sheet-head\">\n<p class=\"kind\">{}</p>\n<h1>{}</h1>\n",
         super::KIND,
         super::HEADING
     ));
-    page.raw(&format!(
-        "<p class=\"made\">{}</p>\n</header>\n<main id=\"main\">\n",
-        escape(&head.made)
-    ));
+    page.raw(&format!("<p class=\"made\">{}</p>\n</header>\n<main id=\"main\">\n", escape(&head.made)));
     for block in blocks {
         page.block(block);
     }

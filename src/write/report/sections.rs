@@ -313,10 +313,7 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
 pub fn offsets(run: &Run, page: &mut Page) {
     let Some(picture) = picture::offsets(run) else { return };
     page.section("Offset diagram", "picture");
-    page.figure(
-        picture,
-        "Offset of the governing line from the axis along the span, with the stated limit.",
-    );
+    page.figure(picture, "Offset of the governing line from the axis along the span, with the stated limit.");
     page.end();
 }
 

@@ -3,10 +3,10 @@
 use std::collections::BTreeMap;
 use std::num::NonZeroU16;
 
+use krilla::destination::XyzDestination;
 use krilla::geom::{PathBuilder, Point};
 use krilla::metadata::{DateTime, Metadata};
 use krilla::outline::{Outline, OutlineNode};
-use krilla::destination::XyzDestination;
 use krilla::page::PageSettings;
 use krilla::paint::{Stroke, StrokeDash};
 use krilla::surface::Surface;
@@ -33,7 +33,11 @@ const HEAVIER: f64 = 0.035;
 /// When the PDF library fails, a fault of the program.
 pub fn emit(head: &Head, lettering: &Lettering, flow: Flow) -> Result<Vec<u8>, Refusal> {
     let failed = |what: String| {
-        Refusal::new("report", format!("The report could not be made as PDF: {what}"), "Ask for an .html file.")
+        Refusal::new(
+            "report",
+            format!("The report could not be made as PDF: {what}"),
+            "Ask for an .html file.",
+        )
     };
     let mut document = Document::new_with(SerializeSettings::default());
     let count = flow.sheets.len();
@@ -67,7 +71,13 @@ fn metadata(head: &Head) -> Metadata {
     if let (Some(year), Some(month), Some(day)) = (part(0, 4), part(5, 7), part(8, 10)) {
         let small = |n: u16| u8::try_from(n).unwrap_or(1);
         data = data.creation_date(
-            DateTime::new(year).month(small(month)).day(small(day)).hour(0).minute(0).second(0).utc_offset_hour(0),
+            DateTime::new(year)
+                .month(small(month))
+                .day(small(day))
+                .hour(0)
+                .minute(0)
+                .second(0)
+                .utc_offset_hour(0),
         );
     }
     data
@@ -121,7 +131,8 @@ fn group(
     children: &[Vec<usize>],
     leaves: &mut BTreeMap<usize, Vec<Identifier>>,
 ) -> Option<TagGroup> {
-    let mut nodes: Vec<Node> = leaves.remove(&index).unwrap_or_default().into_iter().map(Node::from).collect();
+    let mut nodes: Vec<Node> =
+        leaves.remove(&index).unwrap_or_default().into_iter().map(Node::from).collect();
     for &child in &children[index] {
         nodes.extend(group(child, parts, children, leaves).map(Node::from));
     }

@@ -265,7 +265,13 @@ impl<'a> Flow<'a> {
         let count = lines.len();
         for (i, line) in lines.iter().enumerate() {
             // The first two lines stay together, and so do the last one and what follows.
-            let follows = if i + 1 == count { keep } else if i == 0 { face.leading } else { 0.0 };
+            let follows = if i + 1 == count {
+                keep
+            } else if i == 0 {
+                face.leading
+            } else {
+                0.0
+            };
             self.room(face.leading + follows);
             self.line(owner, (left, self.y + face.size), face, line);
             self.y += face.leading;

@@ -20,7 +20,8 @@ impl Lettering {
     /// # Errors
     /// When it cannot be read, a fault of the program.
     pub fn new() -> Result<Self, Refusal> {
-        let failed = || Refusal::new("report", "The font of the report cannot be read", "Ask for an .html file.");
+        let failed =
+            || Refusal::new("report", "The font of the report cannot be read", "Ask for an .html file.");
         let face = Face::parse(FONT, 0).map_err(|_| failed())?;
         let font = Font::new(FONT.into(), 0).ok_or_else(failed)?;
         Ok(Self { face, font })
@@ -43,7 +44,8 @@ impl Lettering {
 
     fn advance(&self, c: char) -> f64 {
         let glyph = self.face.glyph_index(c).unwrap_or_default();
-        f64::from(self.face.glyph_hor_advance(glyph).unwrap_or_default()) / f64::from(self.face.units_per_em())
+        f64::from(self.face.glyph_hor_advance(glyph).unwrap_or_default())
+            / f64::from(self.face.units_per_em())
     }
 
     /// Width of a text, in units of its size.

@@ -17,13 +17,7 @@ use crate::write::picture::{Picture, look};
 const PIECE: f64 = std::f64::consts::FRAC_PI_4;
 
 /// Draws a picture with its upper left corner at `at`, `scale` points for each of its pixels.
-pub fn draw(
-    picture: &Picture,
-    at: (f64, f64),
-    scale: f64,
-    lettering: &Lettering,
-    surface: &mut Surface,
-) {
+pub fn draw(picture: &Picture, at: (f64, f64), scale: f64, lettering: &Lettering, surface: &mut Surface) {
     let easel = Easel { picture, at, scale, lettering };
     for mark in &picture.marks {
         easel.mark(mark, surface);

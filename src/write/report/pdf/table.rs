@@ -96,11 +96,8 @@ fn lines(
 ) {
     let (left, width) = layout.columns[column];
     for (k, line) in cell.iter().enumerate() {
-        let inset = if columns[column].figures {
-            width - flow.lettering.width(line) * face.size
-        } else {
-            0.0
-        };
+        let inset =
+            if columns[column].figures { width - flow.lettering.width(line) * face.size } else { 0.0 };
         let baseline = top + k as f64 * face.leading + face.size;
         flow.line(part, (left + inset.max(0.0), baseline), face, line);
     }

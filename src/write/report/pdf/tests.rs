@@ -14,7 +14,8 @@ fn runs() -> Vec<Run> {
     let mut cases = sample::Sample { depth: Some(0.6), others: true, ..arch(9, 30.0, 5.0) }.limited(0.3);
     cases.case = vec![("dead".into(), 0.0), ("traffic left".into(), 0.3), ("traffic right".into(), -0.25)];
     let mut hostile = arch(3, 20.0, 5.0).run();
-    hostile.drawing.file = "a-rather-long-name-without-any-blank-as-offices-like-them-0001-rev-c-".repeat(3) + ".dxf";
+    hostile.drawing.file =
+        "a-rather-long-name-without-any-blank-as-offices-like-them-0001-rev-c-".repeat(3) + ".dxf";
     hostile.spans[0].loads[0].set = "桥\u{1b}".repeat(40);
     hostile.findings[0].message = "word ".repeat(900);
     let long = serde_json::json!({ "rib": { "depth": 0.4 }, "layers": { "axis": "X".repeat(200) } });
@@ -26,7 +27,10 @@ fn runs() -> Vec<Run> {
         sample::suggested(),
         cases.run(),
         sample::refused(),
-        sample::run_of(vec![arch(6, 30.0, 6.0).limited(0.02), sample::Sample { x: 34.0, ..arch(3, 18.0, 5.0) }]),
+        sample::run_of(vec![
+            arch(6, 30.0, 6.0).limited(0.02),
+            sample::Sample { x: 34.0, ..arch(3, 18.0, 5.0) },
+        ]),
         hostile,
     ]
 }
@@ -69,7 +73,11 @@ fn nothing_leaves_the_sheet_or_lies_on_anything() {
                     };
                     let inside = left >= MARGIN - 0.1 && right <= WIDTH - MARGIN + 0.4;
                     assert!(inside, "sheet {}: '{text}' {left:.1} to {right:.1}", number + 1);
-                    assert!(top > 20.0 && low < BOTTOM + 3.0, "sheet {}: '{text}' {top:.1} to {low:.1}", number + 1);
+                    assert!(
+                        top > 20.0 && low < BOTTOM + 3.0,
+                        "sheet {}: '{text}' {top:.1} to {low:.1}",
+                        number + 1
+                    );
                     for b in &boxes {
                         let apart = left >= b.1 - 0.3 || b.0 >= right - 0.3 || top >= b.3 || b.2 >= low;
                         assert!(apart, "sheet {}: '{text}' lies on '{}'", number + 1, b.4);
