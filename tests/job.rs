@@ -210,7 +210,6 @@ fn what_is_not_built_is_refused_by_name() {
         ),
         ("[title]\nsheet = \"NO\"", "title.sheet"),
         ("[title]\nrevision = \"NO\"", "title.revision"),
-        ("[report]\nunits = \"us\"", "report.units"),
         ("[[sheet]]\nmatch = \"b*\"\nrib.deck_inertia = 2", "rib.deck_inertia"),
     ] {
         let refusal = refusal(text);

@@ -96,6 +96,8 @@ fn moves(drawn: &Path, suggested: &Path, judged: &outcome::Span) -> Vec<Move> {
         .filter_map(|(load, place)| {
             let foot = meet(drawn, place)?;
             let by = meet(suggested, foot)?.y - foot.y;
+            // A move by rounding alone is none.
+            let by = if by.abs() <= tolerance::OFFSET_SHOWN * judged.axis.span { 0.0 } else { by };
             Some(Move { load, at: [foot.x, foot.y], by })
         })
         .collect()

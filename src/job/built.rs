@@ -152,7 +152,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
     ),
     ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", All)]),
     ("title", &[("sheet", Later), ("revision", Later)]),
-    ("report", &[("units", Only(&["si"]))]),
+    ("report", &[("units", All)]),
 ];
 
 /// The keys of the table with this path; empty for a table whose keys the user chooses (`case.factors`).

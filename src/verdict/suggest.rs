@@ -43,7 +43,7 @@ fn about(axis: &SuggestedAxis, units: &Units) -> Finding {
         }
         (Some(up), None) => format!("would lie up to {} higher than the drawn one", size(up)),
         (None, Some(down)) => format!("would lie up to {} lower than the drawn one", size(down)),
-        (None, None) => "is the drawn one".to_owned(),
+        (None, None) => "meets the drawn one at every load".to_owned(),
     };
     let force = if units.force == "kN" { "kN" } else { "unit loads" };
     let message = format!(

@@ -419,7 +419,11 @@ pub fn key(
     let mut samples = more.to_vec();
     samples.extend([
         (Layer::Line, None, "line of thrust".to_owned()),
-        (Layer::Offsets, None, "offset, mm".to_owned()),
+        (
+            Layer::Offsets,
+            None,
+            format!("offset, {}", spans.first().map_or("mm", |s| text::length_units(s.units).1)),
+        ),
     ]);
     samples.extend(other_kinds(spans).into_iter().map(|(name, dash)| (Layer::OtherLines, dash, name)));
     if canvas.marks.iter().any(|m| m.role == "ring") {

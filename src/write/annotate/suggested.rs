@@ -57,8 +57,11 @@ pub fn words(shown: &Shown, layer: &str) -> String {
         };
         let (up, down) = axis.extremes();
         let moves: Vec<String> = up.into_iter().chain(down).map(at).collect();
-        let moved =
-            if moves.is_empty() { "as drawn".to_owned() } else { format!("moved {}", moves.join(", ")) };
+        let moved = if moves.is_empty() {
+            "as drawn at every load".to_owned()
+        } else {
+            format!("moved {}", moves.join(", "))
+        };
         out.push(format!("axis as funicular of the loads: {moved}; {layer}, switched off"));
     }
     match suggestion.depth.as_ref().map(|d| (d.status, d.factor)) {

@@ -216,10 +216,11 @@ fn lower_heading(run: &Run) -> String {
 
 fn description(run: &Run) -> String {
     let mut words: Vec<String> = Vec::new();
+    let (m, mm) = text::length_units(&run.units);
     for shown in spans(run) {
         let span = &shown.span;
         let mut told = format!(
-            "{}: {} of span {} m, {} {} m, {} loads",
+            "{}: {} of span {} {m}, {} {} {m}, {} loads",
             span.name,
             span.kind,
             text::metres(span.axis.span),
@@ -230,8 +231,8 @@ fn description(run: &Run) -> String {
         if let Some(offset) = shown.line.and_then(|l| l.offset.as_ref()) {
             let toward = if offset.signed < 0.0 { "intrados" } else { "extrados" };
             told.push_str(&format!(
-                "; the line of thrust strays {} mm at most from the axis, toward the {toward}",
-                text::millimetres(offset.max_abs)
+                "; the line of thrust strays {} {mm} at most from the axis, toward the {toward}",
+                text::small(offset.max_abs, &run.units)
             ));
         }
         words.push(told);

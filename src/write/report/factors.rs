@@ -44,7 +44,7 @@ pub fn block(run: &Run, page: &mut Page) {
             figures("Geometric factor"),
             figures("Load factor from"),
             figures("up to"),
-            figures("Least depth, m"),
+            figures(format!("Least depth, {}", run.units.length)),
             figures("of"),
         ],
         &factors,
@@ -52,7 +52,12 @@ pub fn block(run: &Run, page: &mut Page) {
     if !hinges.is_empty() {
         page.table(
             "Mechanism of the greatest load factor: where the ring turns (or slips), from left to right",
-            &[words("Hinge"), words("Edge"), figures("x, m"), figures("y, m")],
+            &[
+                words("Hinge"),
+                words("Edge"),
+                figures(format!("x, {}", run.units.length)),
+                figures(format!("y, {}", run.units.length)),
+            ],
             &hinges,
         );
     }

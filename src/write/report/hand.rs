@@ -92,7 +92,10 @@ pub fn block(run: &Run, page: &mut Page) {
              of the simple beam at the crown and f the rise. Another line has another push; the last column compares.",
         );
         page.table(
-            &format!("Simple beam under the loads; forces in {force}, moments in {moment}, lengths in m"),
+            &format!(
+                "Simple beam under the loads; forces in {force}, moments in {moment}, lengths in {}",
+                run.units.length
+            ),
             &[
                 words("Case"),
                 figures("Total load"),

@@ -13,8 +13,8 @@ mod suggestion;
 use crate::outcome::{Document, Run, Verdict};
 use crate::refusal::Refusal;
 use crate::write::annotate::note::heading;
-use crate::write::picture;
 use crate::write::text::plain;
+use crate::write::{picture, us};
 use page::{Block, Headed, Page};
 
 /// What the head of every page says of its maker.
@@ -42,6 +42,7 @@ struct Head {
 
 /// The report on all drawings of a run as a page for browsers. `date` is the UTC day, `YYYY-MM-DD`.
 pub fn html(document: &Document, date: &str) -> String {
+    let document = &*us::told(document);
     html::html(&head(document, date), &blocks(document))
 }
 
@@ -50,6 +51,7 @@ pub fn html(document: &Document, date: &str) -> String {
 /// # Errors
 /// When the font or the PDF library fails, faults of the program.
 pub fn pdf(document: &Document, date: &str) -> Result<Vec<u8>, Refusal> {
+    let document = &*us::told(document);
     pdf::pdf(&head(document, date), &blocks(document))
 }
 

@@ -3,13 +3,13 @@
 use serde_json::Value;
 
 use super::page::{Block, Page, figures, sentence, words};
-use crate::outcome::{Check, Finding, FindingVerdict, Load, MagnitudeFrom, Run, Source, Status};
+use crate::outcome::{Check, Finding, FindingVerdict, Load, MagnitudeFrom, Run, Source, Status, Units};
 use crate::refusal::Refusal;
 use crate::write::annotate::note::omitted;
 use crate::write::annotate::shown::Shown;
 use crate::write::annotate::{check_name, governing, kind_name, worst_case};
 use crate::write::picture;
-use crate::write::text::{self, four_digits, metres, millimetres, signed_millimetres};
+use crate::write::text::{self, four_digits, metres, signed_small};
 
 /// Why a drawing was refused, and what would mend it.
 pub fn refusal(error: &Refusal, page: &mut Page) {
@@ -32,10 +32,11 @@ pub fn refusal(error: &Refusal, page: &mut Page) {
 /// The result in a few lines.
 pub fn summary(run: &Run, page: &mut Page) {
     page.section("Result", "plain");
+    let (m, mm) = text::length_units(&run.units);
     for span in &run.spans {
         let Some(case) = worst_case(run, span) else { continue };
         let mut told = format!(
-            "{}: {} of span {} m and {} {} m. ",
+            "{}: {} of span {} {m} and {} {} {m}. ",
             span.name,
             span.kind,
             metres(span.axis.span),
@@ -52,8 +53,8 @@ pub fn summary(run: &Run, page: &mut Page) {
                 if let Some(offset) = &line.offset {
                     let toward = if offset.signed < 0.0 { "intrados" } else { "extrados" };
                     told.push_str(&format!(
-                        "It strays {} mm at most from the axis, toward the {toward}, at x {} m, y {} m.",
-                        millimetres(offset.max_abs),
+                        "It strays {} {mm} at most from the axis, toward the {toward}, at x {} {m}, y {} {m}.",
+                        text::small(offset.max_abs, &run.units),
                         metres(offset.at[0]),
                         metres(offset.at[1])
                     ));
@@ -126,7 +127,7 @@ pub fn checked(run: &Run, page: &mut Page) {
         .collect();
     if !axes.is_empty() {
         page.table(
-            "Axis as read, lengths in m",
+            &format!("Axis as read, lengths in {}", run.units.length),
             &[
                 words("Span"),
                 figures("l"),
@@ -156,10 +157,12 @@ fn entity(source: &Source) -> String {
 pub fn elevation(run: &Run, page: &mut Page) {
     page.section("Elevation and line of thrust", "picture");
     let picture = picture::elevation(run);
-    let mut caption = "Axis thin, governing line of thrust heavy, ring lines faint where a depth is known. Figures at the \
-                       loads: offset of the line from the axis along the joint, mm, positive toward the extrados. Letters: \
-                       spaces between the loads (Bow's notation)."
-        .to_owned();
+    let (_, mm) = text::length_units(&run.units);
+    let mut caption = format!(
+        "Axis thin, governing line of thrust heavy, ring lines faint where a depth is known. Figures at the loads: offset of \
+         the line from the axis along the joint, {mm}, positive toward the extrados. Letters: spaces between the loads \
+         (Bow's notation)."
+    );
     match picture.hidden {
         0 => {}
         1 => caption.push_str(" 1 figure is not shown; the tables hold all."),
@@ -173,6 +176,7 @@ pub fn elevation(run: &Run, page: &mut Page) {
 pub fn loads(run: &Run, page: &mut Page) {
     page.section("Loads, by Bow's letters", "table");
     let unit = text::force_unit(&run.units);
+    let (m, _) = text::length_units(&run.units);
     for span in &run.spans {
         let shown = Shown::new(run, span, 1.0);
         let rows: Vec<Vec<String>> = span
@@ -200,8 +204,8 @@ pub fn loads(run: &Run, page: &mut Page) {
             &[
                 words("Spaces"),
                 words("Load"),
-                figures("x, m"),
-                figures("y, m"),
+                figures(format!("x, {m}")),
+                figures(format!("y, {m}")),
                 figures("To the right"),
                 figures("Upward"),
                 words("Magnitude from"),
@@ -276,7 +280,8 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
     };
     let mut place = Vec::new();
     if let Some(at) = finding.at {
-        place.push(format!("x {} m, y {} m", metres(at[0]), metres(at[1])));
+        let (m, _) = text::length_units(&run.units);
+        place.push(format!("x {} {m}, y {} {m}", metres(at[0]), metres(at[1])));
     }
     if run.spans.len() > 1 {
         place.extend(finding.span.clone());
@@ -347,7 +352,7 @@ pub fn proofs(run: &Run, page: &mut Page) {
     page.section("Proof of optimality", "table");
     page.paragraph(
         "An optimum is proved in the same run by a bound from the other side: no line does better than the bound, and the \
-         line drawn reaches it but for the gap, relative to the value. The residual is the largest relative error of \
+         line drawn reaches it but for the gap, relative to the value. Lengths and forces here are in m and kN. The residual is the largest relative error of \
          equilibrium over all joints of the case.",
     );
     page.table(
@@ -436,7 +441,7 @@ pub fn signatures(page: &mut Page) {
     page.end();
 }
 
-/// The offset of a station as text, in mm.
-pub fn offset(value: Option<f64>) -> String {
-    value.map(signed_millimetres).unwrap_or_default()
+/// The offset of a station as text, in mm or inches.
+pub fn offset(value: Option<f64>, units: &Units) -> String {
+    value.map(|v| signed_small(v, units)).unwrap_or_default()
 }

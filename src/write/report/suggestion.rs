@@ -2,7 +2,7 @@
 
 use super::page::{Page, figures, sentence, words};
 use crate::outcome::{Check, Run, Status};
-use crate::write::text::{self, four_digits, metres, signed_millimetres};
+use crate::write::text::{self, four_digits, metres, signed_small};
 
 /// The section, where the job asks for suggestions.
 pub fn section(run: &Run, page: &mut Page) {
@@ -15,6 +15,7 @@ pub fn section(run: &Run, page: &mut Page) {
          rib's own weight acts where the rib is drawn. Whether the axis may move, and for which case, is for the engineer to \
          say: an axis that suits one case strays in the others.",
     );
+    let (m, mm) = text::length_units(&run.units);
     for span in &run.spans {
         let Some(suggestion) = &span.suggestion else { continue };
         for finding in run.findings.iter().filter(|f| f.check == Check::Suggestion) {
@@ -32,13 +33,13 @@ pub fn section(run: &Run, page: &mut Page) {
             let rows: Vec<Vec<String>> = axis
                 .moves
                 .iter()
-                .map(|m| {
+                .map(|step| {
                     vec![
-                        m.load.clone().unwrap_or_else(|| "axis".into()),
-                        metres(m.at[0]),
-                        metres(m.at[1]),
-                        metres(m.at[1] + m.by),
-                        signed_millimetres(m.by),
+                        step.load.clone().unwrap_or_else(|| "axis".into()),
+                        metres(step.at[0]),
+                        metres(step.at[1]),
+                        metres(step.at[1] + step.by),
+                        signed_small(step.by, &run.units),
                     ]
                 })
                 .collect();
@@ -51,10 +52,10 @@ pub fn section(run: &Run, page: &mut Page) {
                 ),
                 &[
                     words("Load"),
-                    figures("x, m"),
-                    figures("y drawn, m"),
-                    figures("y suggested, m"),
-                    figures("Move, mm, upward positive"),
+                    figures(format!("x, {m}")),
+                    figures(format!("y drawn, {m}")),
+                    figures(format!("y suggested, {m}")),
+                    figures(format!("Move, {mm}, upward positive")),
                 ],
                 &rows,
             );
