@@ -352,9 +352,12 @@ pub fn proofs(run: &Run, page: &mut Page) {
     page.section("Proof of optimality", "table");
     page.paragraph(
         "An optimum is proved in the same run by a bound from the other side: no line does better than the bound, and the \
-         line drawn reaches it but for the gap, relative to the value. Lengths and forces here are in m and kN. The residual is the largest relative error of \
+         line drawn reaches it but for the gap, relative to the value. The residual is the largest relative error of \
          equilibrium over all joints of the case.",
     );
+    if run.units.length == "ft" {
+        page.paragraph("Values and bounds stand in m and kN, as they were computed.");
+    }
     page.table(
         "Value reached and bound, per line",
         &[words("Line"), figures("Value reached"), figures("Bound"), figures("Gap"), figures("Residual")],
