@@ -1,9 +1,12 @@
 //! Pictures of a run: the elevation with axis, ring, loads and governing line, the offset diagram, and the force polygon
 //! below. The same layout as on the marked sheet, with what the drawing shows by itself drawn too.
 
+mod forces;
 mod loads;
 pub mod png;
 pub mod svg;
+
+pub use forces::forces;
 
 use crate::geometry::Point;
 use crate::outcome::{Run, Verdict};

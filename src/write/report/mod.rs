@@ -1,6 +1,7 @@
 //! The report: one file that holds everything, as a page for browsers (no network, no script) or as a PDF, set as a
 //! calculation sheet on A4 paper for those who prepare and check it to sign.
 
+mod envelope;
 mod factors;
 mod hand;
 mod html;
@@ -121,6 +122,7 @@ fn drawing(run: &Run, page: &mut Page) {
     sections::findings(run, page);
     suggestion::section(run, page);
     stations::tables(run, page);
+    envelope::section(run, page);
     sections::offsets(run, page);
     sections::proofs(run, page);
     sections::assumptions(run, page);
