@@ -5,7 +5,7 @@ use crate::outcome::{Check, Finding, FindingVerdict, MagnitudeFrom, Run, Status,
 use crate::tags::marks::{Across, Along};
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
 use crate::write::annotate::shown::{Shown, governing, kind_name};
-use crate::write::annotate::{Sheet, elevation, suggested};
+use crate::write::annotate::{Sheet, elevation, ring, suggested};
 use crate::write::text;
 
 /// Columns of the names and of what stands beside them.
@@ -100,6 +100,9 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
     for shown in spans {
         let name = if several { &shown.span.name } else { "Span" };
         row(name, span_words(run, shown));
+    }
+    for shown in spans.iter().filter(|s| ring::is_too_deep(s)) {
+        row("Ring", format!("{}: not drawn, its depth is more than half the span", shown.span.name));
     }
     // What is the same for all spans is told once.
     for words in told_once(spans.iter().map(|s| (s, line_words(s)))) {
