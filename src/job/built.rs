@@ -19,10 +19,8 @@ pub(super) enum Built {
     Only(&'static [&'static str]),
     /// Nothing but the default value.
     Later,
-    /// Nothing but the default value and 0, which means the same.
-    LaterZero,
 }
-use Built::{All, Later, LaterZero, Only};
+use Built::{All, Later, Only};
 
 /// A table by its path, with its keys in the order in which they are listed to the user. The empty path is the file.
 /// The keys of a table that is itself not built are listed as built: the table is refused as a whole.
@@ -77,9 +75,9 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("support", All),
             ("elastic_modulus", All),
             ("creep", All),
-            ("imperfection", LaterZero),
-            ("deck_inertia", Later),
-            ("deck_modulus", Later),
+            ("imperfection", All),
+            ("deck_inertia", All),
+            ("deck_modulus", All),
             ("temperature", All),
             ("expansion", All),
             ("shrinkage", All),
@@ -192,10 +190,9 @@ pub(super) fn not_built(settings: &Settings, lines: &BTreeMap<String, u64>) -> V
             let built_values = match built {
                 All => return None,
                 Only(values) if all_among(value, values) => return None,
-                Later | LaterZero if look_up(&default, path) == Some(value) => return None,
-                LaterZero if value.as_f64() == Some(0.0) => return None,
+                Later if look_up(&default, path) == Some(value) => return None,
                 Only(values) => Some(values),
-                Later | LaterZero => None,
+                Later => None,
             };
             Some(refuse(&plain, value, built_values, line))
         })

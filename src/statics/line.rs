@@ -58,6 +58,7 @@ impl Sheet<'_> {
             }),
             stations: self.stations(worst.iter().chain(&used), r),
             proof,
+            bending: None,
         }
     }
 
@@ -154,5 +155,6 @@ pub(super) fn missing(kind: LineKind, support: Option<Support>, status: Status, 
         depth_use: None,
         stations: Vec::new(),
         proof: None,
+        bending: None,
     }
 }

@@ -8,6 +8,7 @@ mod analyse;
 mod check;
 mod closest;
 mod elastic;
+mod factors;
 mod joint;
 mod limit;
 mod line;
@@ -20,6 +21,7 @@ pub mod range;
 mod rule;
 mod safety;
 mod simplex;
+pub mod slender;
 mod span;
 pub mod stress;
 mod string;
@@ -30,6 +32,8 @@ mod ties;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
+pub use factors::Factors;
+pub use slender::{Bending, Slender};
 pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};
@@ -118,6 +122,8 @@ pub struct Problem {
     pub stiffness: Option<f64>,
     /// What strains an elastic rib beside its loads.
     pub effects: Effects,
+    /// What bends a slender rib beside its line of thrust, with its buckling; `None`: not asked.
+    pub slender: Option<Slender>,
     /// Whether the section can take tension.
     pub tension: bool,
     /// How the span is held; `None` when nothing was said.
@@ -149,6 +155,7 @@ impl Problem {
             strength: None,
             stiffness: None,
             effects: Effects::default(),
+            slender: None,
             tension: false,
             support: None,
             hinges: Vec::new(),
@@ -289,6 +296,8 @@ pub struct Line {
     pub stations: Vec<Station>,
     /// Proof of optimality of an optimum.
     pub proof: Option<Proof>,
+    /// The bending of a slender rib, where [`Problem::slender`] asks for it and the line is that of an elastic rib.
+    pub bending: Option<Bending>,
 }
 
 /// A factor of safety.
@@ -424,6 +433,8 @@ pub struct Analysis {
     pub lines: Vec<Line>,
     /// Factors of safety; `None` for a cable, where no depth is known, and for a section that takes tension.
     pub safety: Option<Safety>,
+    /// Least radius of the axis over the depth there, and where; `None` without a depth or where the axis is straight.
+    pub sharpest: Option<(f64, Point)>,
     /// Largest relative residual of the equilibrium self-checks over all lines found.
     pub residual: f64,
 }

@@ -5,6 +5,7 @@ mod accept;
 mod limits;
 mod notes;
 mod ranges;
+mod slender;
 mod spans;
 
 use jiff::civil::Date;
@@ -81,6 +82,7 @@ pub fn judge(
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
+            slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());
