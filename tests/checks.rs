@@ -156,7 +156,7 @@ fn funiculars(t: &mut Table) {
 
 /// The root of a function that changes its sign once.
 fn root(mut a: f64, mut b: f64, f: impl Fn(f64) -> f64) -> f64 {
-    for _ in 0..200 {
+    for _ in 0..60 {
         let c = f64::midpoint(a, b);
         if f(c) * f(a) > 0.0 { a = c } else { b = c }
     }
@@ -452,6 +452,8 @@ fn rings(t: &mut Table) {
             t.add("M03b", "h", 0.620881206172, h, EXACT);
         }
     }
+    t.source("M05", makris);
+    t.add("M05", "t/R", 0.111660326556, ring_about_a_catenary(), ELASTIC);
     t.source("M06", cocchetti);
     let least = |thickness: f64, friction: Option<f64>| {
         let mut p = ring(90.0, 10.0 * thickness);
@@ -496,6 +498,18 @@ fn rings(t: &mut Table) {
     };
     let top = root(0.2, 0.8, |a| sliding(a + 1e-6) - sliding(a - 1e-6));
     t.add("M06", "sliding joint deg", 28.636194678, top.to_degrees(), 1e-4);
+    t.source("M04", makris);
+    let vertical = least_with_vertical_joints();
+    t.add("M04", "t/R", 0.109460703804, vertical, EXACT);
+    t.source("M11", "derived: four-hinge argument of A.J.S. Pippard / J. Heyman; closed form derived here");
+    for (k, p, h) in [(0.2, 120.0, 800.0 / 3.0), (0.25, 124.223602484, 279.50310559)] {
+        let (factor, push) = parabola_with_vertical_joints(k);
+        t.add("M11", format!("P k={k}"), p, factor, EXACT);
+        t.add("M11", format!("H k={k}"), h, push, EXACT);
+    }
+    let around = [0.18, 0.19, 0.21, 0.22].map(|k| parabola_with_vertical_joints(k).0);
+    let worst = around.iter().fold(parabola_with_vertical_joints(0.2).0, |m, p| m.min(*p));
+    t.add("M11", "P at worst k", 120.0, worst, EXACT);
     t.source(
         "M12",
         "from memory: I.J. Oppenheim, 'The masonry arch as a four-link mechanism under base motion', Earthq. Eng. Struct. Dyn. \
@@ -529,6 +543,118 @@ fn rings(t: &mut Table) {
     let mut p = problem(polyline(&[(0.0, 0.0), (2.0, 4e-8), (4.0, 0.0)]), down(&[(1.0, 2.0)], 1.0));
     (p.depth, p.strength, p.varying, p.govern) = (Some(Depth::Constant(0.6)), Some(5000.0), vec![0], None);
     t.add("M14", "P", 450.0, analyse(&p).unwrap().safety.unwrap().load.unwrap().value.unwrap(), 2e-7);
+}
+
+/// Least t/R of a half ring of radius 1 under its own weight, cut by vertical joints: the joints stand close about the place
+/// where the line touches the intrados.
+fn least_with_vertical_joints() -> f64 {
+    let ring = |thick: f64, touch: f64, step: f64| {
+        let (low, high) = (1.0 - thick / 2.0, 1.0 + thick / 2.0);
+        let mut cuts: Vec<f64> = (1..400).map(|k| low * (f64::from(k) / 200.0 - 1.0)).collect();
+        for side in [-1.0, 1.0] {
+            cuts.extend((-40..=40).map(|k| side * touch + f64::from(k) * step));
+        }
+        cuts.retain(|x| x.abs() < low * 0.999);
+        cuts.sort_by(f64::total_cmp);
+        cuts.dedup_by(|b, a| *b - *a < 1e-9);
+        let height = |x: f64, r: f64| (r * r - x * x).max(0.0).sqrt();
+        // Area left of x under a circle of radius r, and its moment about the middle.
+        let area = |x: f64, r: f64| {
+            let x = x.clamp(-r, r);
+            (x * height(x, r) + r * r * (x / r).asin()) / 2.0
+        };
+        let moment = |x: f64, r: f64| -height(x.clamp(-r, r), r).powi(3) / 3.0;
+        let mut p = problem(circle(1.0, FRAC_PI_2), Vec::new());
+        p.depth = Some(Depth::Constant(thick));
+        p.govern = Some(LineKind::Closest);
+        p.joints.push([Point::new(-low, 0.0), Point::new(-high, 0.0)]);
+        p.joints
+            .extend(cuts.iter().map(|&x| [Point::new(x, height(x, low)), Point::new(x, height(x, high))]));
+        p.joints.push([Point::new(low, 0.0), Point::new(high, 0.0)]);
+        let edges: Vec<f64> = [&[-high], &cuts[..], &[high]].concat();
+        for w in edges.windows(2) {
+            let weight = area(w[1], high) - area(w[0], high) - area(w[1], low) + area(w[0], low);
+            let turn = moment(w[1], high) - moment(w[0], high) - moment(w[1], low) + moment(w[0], low);
+            let middle = f64::midpoint(w[0].max(-1.0), w[1].min(1.0));
+            p.entering.push((p.forces.len(), FRAC_PI_2 + middle.asin()));
+            p.forces.push(Force { at: Point::new(turn / weight, 0.0), force: Vec2::new(0.0, -weight) });
+        }
+        p
+    };
+    let share = |thick: f64, touch: f64, step: f64| {
+        let line = solve(&ring(thick, touch, step)).1;
+        let used = line.depth_use.unwrap();
+        (2.0 * used.ratio, line)
+    };
+    let (mut touch, mut step) = (0.8, 0.004);
+    let mut thick = 0.11;
+    for _ in 0..5 {
+        thick = root(0.105, 0.115, |t| share(t, touch, step).0 - 1.0);
+        // The joint on the left half, away from crown and springing, that the line uses most.
+        let line = share(thick, touch, step).1;
+        let most = line
+            .stations
+            .iter()
+            .filter(|s| s.at.x < -0.4 && s.at.x > -0.9)
+            .max_by(|a, b| {
+                let used =
+                    |s: &thrustmark::statics::Station| s.eccentricity.unwrap().abs() / s.depth.unwrap();
+                used(a).total_cmp(&used(b))
+            })
+            .unwrap();
+        touch = most.at.x.abs();
+        step /= 12.0;
+    }
+    thick
+}
+
+/// t/R of the half ring that just holds the catenary through its extrados at crown and springings: the line through these
+/// points under a weight uniform along the catenary.
+fn ring_about_a_catenary() -> f64 {
+    let room = |thick: f64| {
+        let high = 1.0 + thick / 2.0;
+        let c = root(0.1, 10.0, |c| c * ((high / c).cosh() - 1.0) - high);
+        let n = 1000;
+        let edge = |k: i32| high * (2.0 * f64::from(k) / f64::from(n) - 1.0);
+        let loads: Vec<_> = (0..n)
+            .map(|k| {
+                let (a, b) = (edge(k), edge(k + 1));
+                let weight = c * ((b / c).sinh() - (a / c).sinh());
+                let first = |x: f64| c * x * (x / c).sinh() - c * c * (x / c).cosh();
+                (weight, (first(b) - first(a)) / weight)
+            })
+            .collect();
+        let mut p = problem(circle(high, FRAC_PI_2), down(&loads, 9.0));
+        p.through = Some([(-high, 0.0), (0.0, high), (high, 0.0)].map(Point::from));
+        let line = solve(&p).1;
+        // At the edges of the strips the string polygon lies on the catenary; between three of them the least distance from
+        // the middle is that of a parabola.
+        let far: Vec<f64> = (1..n / 2).map(|k| edge(k).hypot(height(&line, edge(k)))).collect();
+        let i = (1..far.len() - 1).min_by(|&i, &j| far[i].total_cmp(&far[j])).unwrap();
+        let (a, b) = ((far[i + 1] - far[i - 1]) / 2.0, far[i + 1] - 2.0 * far[i] + far[i - 1]);
+        far[i] - a * a / (2.0 * b) - (1.0 - thick / 2.0)
+    };
+    root(0.10, 0.13, room)
+}
+
+/// Greatest load at kL on the parabola of M11, with its push.
+fn parabola_with_vertical_joints(k: f64) -> (f64, f64) {
+    let (w, l, f, e, n) = (20.0, 20.0, 5.0, 0.4, 400);
+    let y = |x: f64| 4.0 * f * x * (l - x) / (l * l);
+    let at = |i: i32| l * f64::from(i) / f64::from(n);
+    let mut p = problem(parabola(l, f, 400), Vec::new());
+    (p.govern, p.depth) = (Some(LineKind::Closest), Some(Depth::Constant(2.0 * e)));
+    p.joints = (0..=n).map(at).map(|x| [Point::new(x, y(x) - e), Point::new(x, y(x) + e)]).collect();
+    p.forces = down(
+        &(0..n).map(|i| (w * l / f64::from(n), f64::midpoint(at(i), at(i + 1)))).collect::<Vec<_>>(),
+        9.0,
+    );
+    p.varying = vec![p.forces.len()];
+    p.forces.extend(down(&[(1.0, k * l)], 9.0));
+    let factor = analyse(&p).unwrap().safety.unwrap().load.unwrap().value.unwrap();
+    p.forces.last_mut().unwrap().force.y = -factor * (1.0 - 1e-12);
+    p.govern = Some(LineKind::LeastThrust);
+    (factor, analyse(&p).unwrap().lines[0].reaction.map_or(f64::NAN, |r| r.horizontal))
 }
 
 fn sections(t: &mut Table) {

@@ -43,9 +43,19 @@ fn solve(
     let span = Span::new(problem)?;
     let choice = choose(problem, &span)?;
     let sense = if choice.kind == SpanKind::Cable { -1.0 } else { 1.0 };
-    let sampling = match problem.voussoirs {
-        Some(count) => Sampling::voussoirs(&span, sense, count),
-        None => Sampling::new(&span, sense),
+    let sampling = match (&problem.joints[..], problem.voussoirs) {
+        ([], Some(count)) => Sampling::voussoirs(&span, sense, count),
+        ([], None) => Sampling::new(&span, sense),
+        (_, Some(_)) => {
+            return Err(Unsolved::Input("joints are given, and a number of voussoirs beside them".into()));
+        }
+        (_, None) if problem.ring_weight > 0.0 || problem.depth.is_none() => {
+            return Err(Unsolved::Input(
+                "a ring with joints of its own needs its depth, and the weight of its pieces as forces"
+                    .into(),
+            ));
+        }
+        (joints, None) => Sampling::drawn(&span, sense, joints)?,
     };
     let shallow = span.with_unit_depth();
     let bare = Sampling::new(&shallow, sense);

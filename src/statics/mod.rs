@@ -114,6 +114,11 @@ pub struct Problem {
     pub depth: Option<Depth>,
     /// Number of equal pieces of the ring along the axis; `None`: a continuous ring.
     pub voussoirs: Option<usize>,
+    /// Joints of the ring that are not normal to the axis: intrados and extrados end of each, m, left to right. They are all
+    /// joints that there are, and their own middle, direction and depth count. The weight of the pieces between them is the
+    /// caller's to give as forces with their places in [`Problem::entering`]: [`Problem::ring_weight`] is cut by normals, and is
+    /// refused beside them. Empty: joints normal to the axis.
+    pub joints: Vec<[Point; 2]>,
     /// Coefficient of friction between the pieces; `None`: nothing slides.
     pub friction: Option<f64>,
     /// Strength in compression times width, kN/m, of a uniform block of stress; `None`: unlimited.
@@ -151,6 +156,7 @@ impl Problem {
             weight_varies: false,
             depth: None,
             voussoirs: None,
+            joints: Vec::new(),
             friction: None,
             strength: None,
             stiffness: None,
