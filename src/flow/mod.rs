@@ -227,7 +227,8 @@ fn stages(
     let drawing = drawing::read_outlined(&source, &outline, &settings)?;
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
-    let model = model::build(&drawing, &(&settings).into())?;
+    let mut model = model::build(&drawing, &(&settings).into())?;
+    model.areas = model::areas::weigh(&model, &drawing, &settings)?;
     own_weight_stated(&settings)?;
     let cases = model::cases::cases(&model, &settings)?;
     let analyses = analyse(&model, &cases, &settings)?;
@@ -278,11 +279,12 @@ fn analyse(model: &Model, cases: &[model::Case], settings: &Settings) -> Result<
     model
         .spans
         .iter()
-        .map(|span| {
+        .enumerate()
+        .map(|(i, span)| {
             cases
                 .iter()
                 .map(|case| {
-                    let problem = problem::problem(model, span, case, settings)?;
+                    let problem = problem::problem(model, (i, span), case, settings)?;
                     statics::analyse(&problem).map_err(|unsolved| problem::refusal(span, case, &unsolved))
                 })
                 .collect()

@@ -2,6 +2,7 @@
 //!
 //! Knows layers only as names of load sets; knows no mechanics.
 
+pub mod areas;
 pub mod cases;
 pub mod chain;
 pub mod figures;
@@ -10,9 +11,11 @@ pub mod loads;
 pub mod matching;
 pub mod middle;
 pub mod note;
+pub mod outline;
 pub mod pieces;
 pub mod piers;
 pub mod ring;
+pub mod roof;
 pub mod weight;
 
 use crate::drawing::{Drawing, Source};
@@ -35,6 +38,8 @@ pub struct Model {
     pub forces: Forces,
     /// Loads that stand over no span.
     pub off_span: Vec<Load>,
+    /// What else weighs on the spans, in the order of the job; put in by [`areas::weigh`].
+    pub areas: Vec<areas::Weighed>,
     /// What was noticed.
     pub notes: Vec<Note>,
 }
@@ -131,7 +136,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     }));
     let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
     notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
-    Ok(Model { spans, forces, off_span, notes })
+    Ok(Model { spans, forces, off_span, areas: Vec::new(), notes })
 }
 
 /// Gives each drawn hinge to the span on whose rib it stands: within half the depth (`stated`, m, where no ring is drawn)

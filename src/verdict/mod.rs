@@ -2,6 +2,7 @@
 //! up in a verdict. Only here do results get a severity and advice.
 
 mod accept;
+mod areas;
 mod limits;
 mod notes;
 mod spans;
@@ -56,16 +57,19 @@ pub fn judge(
         .spans
         .iter()
         .zip(analyses)
-        .map(|(span, analyses)| spans::span(model, span, cases, analyses, settings))
+        .enumerate()
+        .map(|(i, (span, analyses))| spans::span(model, (i, span), cases, analyses, settings))
         .collect();
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
-    for (analyses, span) in analyses.iter().zip(&spans) {
+    areas::drawing(model, &units, &mut findings);
+    for (place, (analyses, span)) in analyses.iter().zip(&spans).enumerate() {
         for (i, (analysis, case)) in analyses.iter().zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
+                areas::sideways(model, &model.spans[place], place, analysis, &mut about);
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);

@@ -15,14 +15,14 @@ use crate::tolerance;
 /// Puts a span together.
 pub fn span(
     model: &Model,
-    span: &model::Span,
+    (index, span): (usize, &model::Span),
     cases: &[model::Case],
     analyses: &[Analysis],
     settings: &Settings,
 ) -> Span {
     let axis = &span.axis;
     let first = &analyses[0];
-    let listed = listed(model, span, first, settings);
+    let listed = listed(model, (index, span), first, settings);
     Span {
         name: span.name.clone(),
         kind: match first.kind {
@@ -50,6 +50,7 @@ pub fn span(
             })
             .collect(),
         loads: listed,
+        areas: super::areas::shares(model, index),
     }
 }
 
@@ -92,18 +93,24 @@ fn ring(span: &model::Span, settings: &Settings) -> Option<Ring> {
 const BARE_PIECES: u32 = 10;
 
 /// The loads in their order along the ring, with the pieces of the rib's own weight between them.
-fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Settings) -> Vec<Load> {
+fn listed(
+    model: &Model,
+    (index, span): (usize, &model::Span),
+    analysis: &Analysis,
+    settings: &Settings,
+) -> Vec<Load> {
     let mut all: Vec<(f64, Load)> =
-        analysis.order.iter().map(|placed| (placed.foot, load(&span.loads[placed.force]))).collect();
+        analysis.order.iter().filter_map(|p| Some((p.foot, load(span.loads.get(p.force)?)))).collect();
     let depths = weight::depths(span, settings.rib.depth);
+    let whole = span.axis.length();
+    let hair = whole * crate::tolerance::ONE_JOINT;
+    let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
+    cuts.dedup_by(|b, a| *b - *a <= hair);
+    if cuts.is_empty() {
+        cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
+    }
+    let bounds: Vec<f64> = std::iter::once(0.0).chain(cuts.iter().copied()).chain([whole]).collect();
     if let (Some(own), Some(depths)) = (model.own_weight(settings), depths) {
-        let whole = span.axis.length();
-        let hair = whole * crate::tolerance::ONE_JOINT;
-        let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
-        cuts.dedup_by(|b, a| *b - *a <= hair);
-        if cuts.is_empty() {
-            cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
-        }
         for (i, piece) in weight::pieces(span, &depths, &cuts).iter().enumerate() {
             let middle = f64::midpoint(piece.between.0, piece.between.1);
             all.push((
@@ -124,8 +131,9 @@ fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Set
                 },
             ));
         }
-        all.sort_by(|a, b| a.0.total_cmp(&b.0));
     }
+    all.extend(super::areas::listed(model, index, &bounds));
+    all.sort_by(|a, b| a.0.total_cmp(&b.0));
     let letters = outcome::bow::spaces(all.len());
     all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
 }
