@@ -163,7 +163,6 @@ fn the_contract_example_has_only_unbuilt_keys() {
             "rib.deck_modulus",
             "loads.arrow_scale",
             "traffic",
-            "range",
             "limits.pier_push",
             "limits.dimension",
             "title.sheet",
@@ -202,7 +201,6 @@ fn what_is_not_built_is_refused_by_name() {
         ("[loads]\nunit = \"kN\"\narrow_scale = 0.1", "loads.arrow_scale"),
         ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20\npassive = 3", "area.passive"),
         ("[[traffic]]\nname = \"train\"", "traffic"),
-        ("[[range]]\nwhat = \"rib.depth\"\nlow = 0.1\nhigh = 0.2", "range"),
         ("[limits]\npier_push = 2", "limits.pier_push"),
         ("[limits]\ndimension = 0.01", "limits.dimension"),
         (

@@ -11,12 +11,7 @@ use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Unsolved};
 ///
 /// # Errors
 /// When the rib's own weight is wanted without a depth, or a key that a stated one needs is missing from the job.
-pub fn problem(
-    model: &Model,
-    (index, span): (usize, &Span),
-    case: &Case,
-    settings: &Settings,
-) -> Result<Problem, Refusal> {
+pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> Result<Problem, Refusal> {
     let rib = &settings.rib;
     let effects = if model.forces == Forces::Kilonewtons { effects(settings)? } else { Effects::default() };
     let mut draw: Vec<LineKind> = settings.line.draw.iter().map(|d| drawn(*d)).collect();
@@ -42,7 +37,7 @@ pub fn problem(
         ));
     }
     let drawn = span.loads.len();
-    let standing = areas::lumps(model, index);
+    let standing = areas::lumps(model, &span.name);
     let name = |lump: &areas::Lump| &model.areas[lump.area].name;
     let weighed =
         standing.iter().enumerate().filter(|(_, lump)| case.varies(name(lump))).map(|(i, _)| drawn + i);

@@ -7,8 +7,8 @@
 use super::outline::{self, Groups};
 use super::roof::Roof;
 use super::{Forces, Model, Span};
+use crate::drawing::Source;
 use crate::drawing::outlines::Rule;
-use crate::drawing::{Drawing, Source};
 use crate::geometry::slab::{self, Between, Bounding, Edge, Moments, TooMany, Upright};
 use crate::geometry::{Point, Segment, Vec2};
 use crate::job::{Area, Settings};
@@ -102,7 +102,8 @@ impl Share {
 }
 
 /// The forces of all areas on one span, area by area from left to right.
-pub fn lumps(model: &Model, span: usize) -> Vec<Lump> {
+pub fn lumps(model: &Model, span: &str) -> Vec<Lump> {
+    let span = model.place_of(span);
     let mut out = Vec::new();
     for (area, weighed) in model.areas.iter().enumerate() {
         let Some(share) = weighed.shares.get(span) else {
@@ -137,10 +138,11 @@ pub fn joints(span: &Span, settings: &Settings) -> Vec<f64> {
 ///
 /// # Errors
 /// When an outline does not close, is too tangled, or no width is given.
-pub fn weigh(model: &Model, drawing: &Drawing, settings: &Settings) -> Result<Vec<Weighed>, Refusal> {
+pub fn weigh(model: &Model, settings: &Settings) -> Result<Vec<Weighed>, Refusal> {
     if settings.area.is_empty() || model.forces == Forces::UnitLoads {
         return Ok(Vec::new());
     }
+    let (outlines, metres) = &model.outlines;
     let origin = model.spans.first().map_or(Point::ORIGIN, |s| s.axis.start());
     let ground = Ground::new(model, settings, origin);
     let mut regions = Vec::new();
@@ -157,7 +159,7 @@ pub fn weigh(model: &Model, drawing: &Drawing, settings: &Settings) -> Result<Ve
                 None => refusal,
             });
         };
-        let (region, sources, groups) = match (area.level, drawing.areas.get(i)) {
+        let (region, sources, groups) = match (area.level, outlines.get(i)) {
             (Some(level), _) => {
                 let rings = model.spans.iter().filter_map(|s| s.ring.as_ref()).flat_map(|r| r.sources.iter());
                 let mut sources: Vec<Source> = rings.cloned().collect();
@@ -166,8 +168,8 @@ pub fn weigh(model: &Model, drawing: &Drawing, settings: &Settings) -> Result<Ve
                 }
                 (Region::fill(&ground, level - origin.y), sources, None)
             }
-            (None, Some(outlines)) => {
-                let groups = outline::groups(outlines, drawing.unit.metres, origin)?;
+            (None, Some(drawn)) => {
+                let groups = outline::groups(drawn, *metres, origin)?;
                 let mut sources: Vec<Source> = Vec::new();
                 for one in groups.groups.iter().flat_map(|g| &g.loops) {
                     if !sources.contains(&one.source) {
@@ -178,7 +180,7 @@ pub fn weigh(model: &Model, drawing: &Drawing, settings: &Settings) -> Result<Ve
             }
             (None, None) => continue,
         };
-        let boxes = drawing.areas.get(i).map_or(0, |o| o.hatches.iter().map(|h| h.text_boxes).sum());
+        let boxes = outlines.get(i).map_or(0, |o| o.hatches.iter().map(|h| h.text_boxes).sum());
         let weight = area.unit_weight * width;
         let weighed = ground.weigh(area, weight, &region, sources, groups.as_ref(), boxes);
         all.push(weighed.map_err(|TooMany| tangled(area))?);

@@ -3,13 +3,14 @@
 use super::{With, note, spans};
 use crate::geometry::{Point, Vec2};
 use crate::model::areas::{self, Lump, Weighed};
-use crate::model::{Model, Span};
-use crate::outcome::{AreaShare, Check, Finding, Load, MagnitudeFrom, Units};
+use crate::model::{self, Model};
+use crate::outcome::{AreaShare, Check, Finding, Load, MagnitudeFrom, Span, Units};
 use crate::statics::{Analysis, SpanKind};
 use crate::tolerance;
 
 /// The areas as they stand on a span.
-pub fn shares(model: &Model, span: usize) -> Vec<AreaShare> {
+pub fn shares(model: &Model, span: &model::Span) -> Vec<AreaShare> {
+    let span = model.place_of(&span.name);
     model
         .areas
         .iter()
@@ -41,8 +42,8 @@ pub fn shares(model: &Model, span: usize) -> Vec<AreaShare> {
 
 /// The pieces of the areas between places along the ring (ascending, m, with its ends), each with its middle: one load for the
 /// weight of an area there, and one for what it presses to either side.
-pub fn listed(model: &Model, span: usize, bounds: &[f64]) -> Vec<(f64, Load)> {
-    let lumps = areas::lumps(model, span);
+pub fn listed(model: &Model, span: &model::Span, bounds: &[f64]) -> Vec<(f64, Load)> {
+    let lumps = areas::lumps(model, &span.name);
     let mut out = Vec::new();
     for (index, weighed) in model.areas.iter().enumerate() {
         let mut number = 0;
@@ -251,7 +252,8 @@ fn outlines(count: usize) -> String {
 }
 
 /// The warning of an arch that fill presses on sideways without a word of it.
-pub fn sideways(model: &Model, span: &Span, index: usize, analysis: &Analysis, findings: &mut Vec<Finding>) {
+pub fn sideways(model: &Model, span: &Span, analysis: &Analysis, findings: &mut Vec<Finding>) {
+    let index = model.place_of(&span.name);
     let filled = model.areas.iter().filter(|a| a.shares.get(index).is_some_and(|s| s.total().0 > 0.0));
     let steep = analysis.rise / analysis.span;
     if analysis.kind == SpanKind::Arch && steep > tolerance::STEEP_FILLED {
