@@ -160,7 +160,6 @@ fn the_contract_example_has_only_unbuilt_keys() {
         [
             "rib.backing",
             "loads.arrow_scale",
-            "area",
             "traffic",
             "limits.pier_push",
             "limits.dimension",
@@ -197,7 +196,7 @@ fn what_is_not_built_is_refused_by_name() {
         ("[layers]\nplan = \"I\"", "layers.plan"),
         ("[rib]\njoint_loss = 0.01", "rib.joint_loss"),
         ("[loads]\nunit = \"kN\"\narrow_scale = 0.1", "loads.arrow_scale"),
-        ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20", "area"),
+        ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20\npassive = 3", "area.passive"),
         ("[[traffic]]\nname = \"train\"", "traffic"),
         ("[limits]\npier_push = 2", "limits.pier_push"),
         ("[limits]\ndimension = 0.01", "limits.dimension"),

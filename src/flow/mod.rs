@@ -251,7 +251,8 @@ fn judged(
     let drawing = drawing::read_outlined(source, outline, settings)?;
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
-    let model = model::build(&drawing, &settings.into())?;
+    let mut model = model::build(&drawing, &settings.into())?;
+    model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;
     let analyses = analyse(&model, &cases, settings)?;

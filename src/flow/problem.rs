@@ -2,7 +2,7 @@
 
 use crate::geometry::Point;
 use crate::job::{Draw, Govern, RibDepth, Settings, Support};
-use crate::model::{Case, Forces, Model, Span, cases};
+use crate::model::{Case, Forces, Model, Span, areas, cases};
 use crate::refusal::Refusal;
 use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Slender, Unsolved};
 
@@ -36,20 +36,31 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
             "Give [rib] depth, draw intrados and extrados, or remove [rib] unit_weight",
         ));
     }
+    let drawn = span.loads.len();
+    let standing = areas::lumps(model, &span.name);
+    let name = |lump: &areas::Lump| &model.areas[lump.area].name;
+    let weighed =
+        standing.iter().enumerate().filter(|(_, lump)| case.varies(name(lump))).map(|(i, _)| drawn + i);
     Ok(Problem {
         axis: span.axis.clone(),
         forces: span
             .loads
             .iter()
             .map(|load| Force { at: load.at, force: load.force * case.factor(&load.set) })
+            .chain(
+                standing
+                    .iter()
+                    .map(|lump| Force { at: lump.at, force: lump.force * case.factor(name(lump)) }),
+            )
             .collect(),
+        entering: standing.iter().enumerate().map(|(i, lump)| (drawn + i, lump.s)).collect(),
         stiffness: rib.elastic_modulus.zip(rib.width).map(|(e, b)| e * KN_PER_M2 * b / (1.0 + rib.creep)),
         effects,
         slender: slender(settings, model.forces)?,
         strength: strength(settings, model.forces)?,
         friction: rib.friction,
         ring_weight: own,
-        varying: (0..span.loads.len()).filter(|&i| case.varies(&span.loads[i].set)).collect(),
+        varying: (0..drawn).filter(|&i| case.varies(&span.loads[i].set)).chain(weighed).collect(),
         weight_varies: case.varies(cases::OWN_WEIGHT),
         depth,
         tension: rib.tension,

@@ -3,6 +3,7 @@
 //! Lengths in m, forces in kN (or unit loads), moments in kN·m, stresses in MPa; points are `[x, y]` in the elevation
 //! plane in metres, in the drawing's own origin.
 
+mod areas;
 pub mod bow;
 mod ranges;
 mod slender;
@@ -15,6 +16,8 @@ use serde::{Deserialize, Serialize};
 use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 pub use slender::{Buckling, SectionForces};
+
+pub use areas::AreaShare;
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -138,6 +141,9 @@ pub struct Span {
     pub ring: Option<Ring>,
     /// Its loads in their order along the ring.
     pub loads: Vec<Load>,
+    /// What stands on it by outline or up to a level.
+    #[serde(default)]
+    pub areas: Vec<AreaShare>,
     /// The load cases.
     pub cases: Vec<Case>,
 }
@@ -461,6 +467,8 @@ pub enum Check {
     Support,
     /// The text encoding was assumed.
     Encoding,
+    /// What stands on the ring by its outline or up to a level.
+    Areas,
     /// Something in the drawing that was passed over.
     PassedOver,
     /// A stated limit that could not be judged.

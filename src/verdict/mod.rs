@@ -2,6 +2,7 @@
 //! up in a verdict. Only here do results get a severity and advice.
 
 mod accept;
+mod areas;
 mod limits;
 mod notes;
 mod ranges;
@@ -74,11 +75,13 @@ pub fn judge(
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
+    areas::drawing(model, &units, &mut findings);
     for ((analyses, extras), span) in analyses.iter().zip(extras).zip(&spans) {
         for (i, ((analysis, extra), case)) in analyses.iter().zip(extras).zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
+                areas::sideways(model, span, analysis, &mut about);
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);

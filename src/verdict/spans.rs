@@ -57,6 +57,7 @@ pub fn span(
             })
             .collect(),
         loads: listed,
+        areas: super::areas::shares(model, span),
         ring,
     }
 }
@@ -102,16 +103,17 @@ const BARE_PIECES: u32 = 10;
 /// The loads in their order along the ring, with the pieces of the rib's own weight between them.
 fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Settings) -> Vec<Load> {
     let mut all: Vec<(f64, Load)> =
-        analysis.order.iter().map(|placed| (placed.foot, load(&span.loads[placed.force]))).collect();
+        analysis.order.iter().filter_map(|p| Some((p.foot, load(span.loads.get(p.force)?)))).collect();
     let depths = weight::depths(span, settings.rib.depth);
+    let whole = span.axis.length();
+    let hair = whole * crate::tolerance::ONE_JOINT;
+    let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
+    cuts.dedup_by(|b, a| *b - *a <= hair);
+    if cuts.is_empty() {
+        cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
+    }
+    let bounds: Vec<f64> = std::iter::once(0.0).chain(cuts.iter().copied()).chain([whole]).collect();
     if let (Some(own), Some(depths)) = (model.own_weight(settings), depths) {
-        let whole = span.axis.length();
-        let hair = whole * crate::tolerance::ONE_JOINT;
-        let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
-        cuts.dedup_by(|b, a| *b - *a <= hair);
-        if cuts.is_empty() {
-            cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
-        }
         for (i, piece) in weight::pieces(span, &depths, &cuts).iter().enumerate() {
             let middle = f64::midpoint(piece.between.0, piece.between.1);
             all.push((
@@ -132,8 +134,9 @@ fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Set
                 },
             ));
         }
-        all.sort_by(|a, b| a.0.total_cmp(&b.0));
     }
+    all.extend(super::areas::listed(model, span, &bounds));
+    all.sort_by(|a, b| a.0.total_cmp(&b.0));
     let letters = outcome::bow::spaces(all.len());
     all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
 }

@@ -248,6 +248,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         let (s, rise) = path.farthest_from_chord(sample.rise < 0.0);
         let crown = path.point_at(s);
         spans.push(Span {
+            areas: Vec::new(),
             name,
             kind: if sample.rise < 0.0 { "cable".into() } else { "arch".into() },
             axis: Axis {
