@@ -3,6 +3,7 @@
 mod copy;
 mod list;
 mod problem;
+mod ranges;
 mod sheet;
 mod unmark;
 
@@ -256,7 +257,8 @@ fn judged(
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;
     let analyses = analyse(&model, &cases, settings)?;
-    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses };
+    let extras = extras(&model, &cases, settings, &analyses)?;
+    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses, extras: &extras };
     let judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
     Ok((drawing, judged))
 }
@@ -328,6 +330,19 @@ fn analyse(model: &Model, cases: &[model::Case], settings: &Settings) -> Result<
                 .collect()
         })
         .collect()
+}
+
+/// What takes more than one analysis, for every span, in every case.
+fn extras(
+    model: &Model,
+    cases: &[model::Case],
+    settings: &Settings,
+    analyses: &[Vec<Analysis>],
+) -> Result<Vec<Vec<verdict::Extra>>, Refusal> {
+    let of = |(span, analyses): (&model::Span, &Vec<Analysis>)| {
+        cases.iter().zip(analyses).map(|(case, a)| ranges::extra(model, span, case, settings, a)).collect()
+    };
+    model.spans.iter().zip(analyses).map(of).collect()
 }
 
 /// Refuses a unit weight without a width: no weight follows from it.
