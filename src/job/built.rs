@@ -19,8 +19,10 @@ pub(super) enum Built {
     Only(&'static [&'static str]),
     /// Nothing but the default value.
     Later,
+    /// Nothing but the default value and 0, which means the same.
+    LaterZero,
 }
-use Built::{All, Later, Only};
+use Built::{All, Later, LaterZero, Only};
 
 /// A table by its path, with its keys in the order in which they are listed to the user. The empty path is the file.
 /// The keys of a table that is itself not built are listed as built: the table is refused as a whole.
@@ -190,9 +192,10 @@ pub(super) fn not_built(settings: &Settings, lines: &BTreeMap<String, u64>) -> V
             let built_values = match built {
                 All => return None,
                 Only(values) if all_among(value, values) => return None,
-                Later if look_up(&default, path) == Some(value) => return None,
+                Later | LaterZero if look_up(&default, path) == Some(value) => return None,
+                LaterZero if value.as_f64() == Some(0.0) => return None,
                 Only(values) => Some(values),
-                Later => None,
+                Later | LaterZero => None,
             };
             Some(refuse(&plain, value, built_values, line))
         })
