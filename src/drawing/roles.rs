@@ -38,6 +38,8 @@ pub fn named(
         Role::Intrados => JobRole::Intrados,
         Role::Extrados => JobRole::Extrados,
         Role::Hinges => JobRole::Hinges,
+        // Areas have tables of their own.
+        Role::Areas => return Ok(Vec::new()),
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();

@@ -157,8 +157,8 @@ fn holds(
     factor: f64,
     today: Date,
 ) -> Result<bool, Refusal> {
-    let mut span = span.clone();
-    if let Some(ring) = &mut span.ring {
+    let mut thicker = model.clone();
+    if let Some(ring) = thicker.spans.iter_mut().find(|s| s.name == span.name).and_then(|s| s.ring.as_mut()) {
         ring.depth.iter_mut().for_each(|d| d.1 *= factor);
     }
     let mut settings = settings.clone();
@@ -166,13 +166,16 @@ fn holds(
         RibDepth::Constant(d) => RibDepth::Constant(d * factor),
         RibDepth::Linear(ends) => RibDepth::Linear(ends.map(|d| d * factor)),
     });
-    let alone = Model { spans: vec![span], forces: model.forces, off_span: Vec::new(), notes: Vec::new() };
-    let analyses = analyse(&alone, cases, &settings)?;
+    let analyses = analyse(&thicker, cases, &settings)?;
     // What takes more than one analysis decides no limit.
-    let extras = [vec![verdict::Extra::default(); cases.len()]];
-    let computed = verdict::Computed { model: &alone, cases, analyses: &analyses, extras: &extras };
+    let extras = vec![vec![verdict::Extra::default(); cases.len()]; thicker.spans.len()];
+    let computed = verdict::Computed { model: &thicker, cases, analyses: &analyses, extras: &extras };
     let judged = verdict::judge(&settings, &[], &computed, today);
     let depends =
         [Check::Ring, Check::Kern, Check::Stress, Check::GeometricFactor, Check::LoadFactor, Check::NoLine];
-    Ok(!judged.findings.iter().any(|f| f.verdict == FindingVerdict::Outside && depends.contains(&f.check)))
+    Ok(!judged.findings.iter().any(|f| {
+        f.span.as_ref() == Some(&span.name)
+            && f.verdict == FindingVerdict::Outside
+            && depends.contains(&f.check)
+    }))
 }

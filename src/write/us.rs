@@ -111,6 +111,12 @@ fn case(case: &mut Case, scale: &Scale) {
             .for_each(|f| *f *= scale.force);
     }
     case.lines.iter_mut().for_each(|l| line(l, scale));
+    for forces in &mut case.section_forces {
+        forces.thrust *= scale.force;
+        forces.moment *= scale.moment;
+        forces.s *= FEET;
+        point(&mut forces.at);
+    }
     if let Some(safety) = &mut case.safety {
         times(&mut safety.least_depth, FEET);
         safety.hinges.iter_mut().for_each(|h| point(&mut h.at));
@@ -129,6 +135,12 @@ fn line(line: &mut Line, scale: &Scale) {
         [&mut offset.max_abs, &mut offset.signed, &mut offset.rms].into_iter().for_each(|v| *v *= FEET);
         point(&mut offset.at);
     }
+    if let Some(buckling) = &mut line.buckling {
+        buckling.push *= scale.force;
+        times(&mut buckling.critical, scale.force);
+        buckling.eccentricity *= FEET;
+        point(&mut buckling.at);
+    }
     line.stations.iter_mut().for_each(|s| station(s, scale));
 }
 
@@ -140,6 +152,9 @@ fn station(station: &mut Station, scale: &Scale) {
     station.moment *= scale.moment;
     for length in [&mut station.eccentricity, &mut station.vertical_offset, &mut station.depth] {
         times(length, FEET);
+    }
+    for moment in [&mut station.moment_min, &mut station.moment_max] {
+        times(moment, scale.moment);
     }
     for stress in [&mut station.stress_max, &mut station.stress_min] {
         times(stress, KSI);

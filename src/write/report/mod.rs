@@ -2,6 +2,7 @@
 //! calculation sheet on A4 paper for those who prepare and check it to sign.
 
 mod envelope;
+mod extremes;
 mod factors;
 mod hand;
 mod html;
@@ -123,6 +124,7 @@ fn drawing(run: &Run, page: &mut Page) {
     suggestion::section(run, page);
     stations::tables(run, page);
     envelope::section(run, page);
+    extremes::block(run, page);
     sections::offsets(run, page);
     sections::proofs(run, page);
     sections::assumptions(run, page);
