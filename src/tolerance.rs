@@ -338,3 +338,27 @@ pub const REVISION_RELATIVE: f64 = 1e-6;
 /// Part of the span up to which a load without a name of its own may have moved and still be the same load. Larger: two
 /// loads of a close row are taken for one that moved; smaller: a load pushed aside a little counts as gone and new.
 pub const REVISION_NEAR: f64 = 0.01;
+
+/// Greatest angle of a line from the vertical at which a load drawn without an arrowhead acts downward, radians (30°). Larger:
+/// raking pushes turn into weights; smaller: leaning posts of a deck do not act downward.
+pub const NEARLY_UPRIGHT: f64 = std::f64::consts::FRAC_PI_6;
+
+/// Part of the length of an arrow within which the strokes of its head lie. No unit. Larger: loads that meet in a point are
+/// taken for heads; smaller: stubby arrows have none.
+pub const HEAD_PART: f64 = 0.5;
+
+/// Least and greatest angle between an arrow and a stroke of its head, radians (5° and 60°). Wider: loads that meet in a point
+/// are taken for heads; narrower: slim and broad heads are not seen.
+pub const HEAD_ANGLES: [f64; 2] = [0.087_266_462_599_716_48, 1.047_197_551_196_597_7];
+
+/// By how much the two strokes of a head may differ, as a part of their length. No unit. Larger: loads that meet in a point are
+/// taken for heads; smaller: heads drawn by hand are not seen.
+pub const HEAD_EVEN: f64 = 0.1;
+
+/// How far a head may stand off its arrow, as a part of the head. No unit. Larger: heads of neighbours are taken; smaller: heads
+/// set by eye are not seen.
+pub const HEAD_OFF: f64 = 0.02;
+
+/// How far the points of a line may lie beside it, as a part of its length, and the line is straight all the same. No unit.
+/// Larger: bent lines are taken for arrows; smaller: straight ones with rounded coordinates are not.
+pub const STRAIGHT_LINE: f64 = 1e-6;

@@ -5,8 +5,9 @@ use std::borrow::Cow;
 use super::entity::{Curve, PointLike, Source, Text};
 use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
-use super::roles::{self, CURVES, POINTS};
+use super::roles::{self, CURVES, LOADS, POINTS};
 use super::space::View;
+use super::stroke::{self, STROKES, Stroke};
 use super::{Drawing, blocks, convert, names, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
@@ -116,15 +117,16 @@ fn read_seen(
     // Where no axis is drawn, the ring lines stand for it.
     let outline_of = if axis.is_empty() { [&intrados[..], &extrados[..]].concat() } else { axis.clone() };
     let at = if axis.is_empty() { &intrados } else { &axis };
-    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, at)?;
-    reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points)?;
+    let LoadLayers { layers: load_layers, points, texts, strokes, by_content } =
+        reader.loads(&axis_layers, at)?;
+    reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points, &strokes)?;
     reader.hidden(axis_layers.iter().chain(&load_layers).chain(&intrados_layers).chain(&extrados_layers));
     let hinge_layers = roles::named(outline, settings, Role::Hinges, &POINTS)?;
     let (hinges, _) = reader.points(&hinge_layers, &outline.records)?;
     reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
     reader.hidden(hinge_layers.iter());
     reader.parts_not_read()?;
-    reader.not_read(&axis_layers, &load_layers);
+    reader.not_read(&axis_layers, &load_layers, by_content);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
     reader.passed_over(Role::Extrados, &extrados_layers, &CURVES);
     let fitted = axis.iter().chain(&intrados).chain(&extrados).filter(|c| c.fitted);
@@ -157,6 +159,7 @@ fn read_seen(
         intrados,
         extrados,
         points,
+        strokes,
         hinges,
         texts,
         viewports,
@@ -170,6 +173,9 @@ struct LoadLayers {
     layers: Vec<String>,
     points: Vec<PointLike>,
     texts: Vec<Text>,
+    strokes: Vec<Stroke>,
+    /// Guessed by what they hold: lines on them are not read.
+    by_content: bool,
 }
 
 /// Layers with the curves on them.
@@ -289,10 +295,9 @@ impl Reader<'_> {
 
     /// The loads: by the patterns, else guessed by name, else by points that stand over the axis.
     fn loads(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
-        let layers = roles::named(self.outline, self.settings, Role::Loads, &POINTS)?;
+        let layers = roles::named(self.outline, self.settings, Role::Loads, &LOADS)?;
         if !layers.is_empty() {
-            let (points, texts) = self.points(&layers, &self.outline.records)?;
-            return Ok(LoadLayers { layers, points, texts });
+            return self.drawn_loads(layers);
         }
         let by_name = roles::loads_by_name(self.outline, axis_layers);
         if !by_name.is_empty() {
@@ -303,11 +308,21 @@ impl Reader<'_> {
                     reason: Reason::Word(word),
                 });
             }
-            let layers: Vec<String> = by_name.into_iter().map(|n| n.0).collect();
-            let (points, texts) = self.points(&layers, &self.outline.records)?;
-            return Ok(LoadLayers { layers, points, texts });
+            return self.drawn_loads(by_name.into_iter().map(|n| n.0).collect());
         }
         self.loads_by_content(axis_layers, axis)
+    }
+
+    /// Points, texts and lines on layers that are known to hold loads.
+    fn drawn_loads(&self, layers: Vec<String>) -> Result<LoadLayers, Refusal> {
+        let (points, texts) = self.points(&layers, &self.outline.records)?;
+        let mut strokes = Vec::new();
+        for record in in_model(&self.outline.records, &layers) {
+            if STROKES.contains(&record.kind.as_str()) {
+                strokes.extend(stroke::stroke(record, &self.outline.decoder)?);
+            }
+        }
+        Ok(LoadLayers { layers, points, texts, strokes, by_content: false })
     }
 
     fn loads_by_content(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
@@ -339,7 +354,7 @@ impl Reader<'_> {
             layer,
             reason: Reason::PointsOver { over, of },
         });
-        Ok(LoadLayers { layers, points, texts })
+        Ok(LoadLayers { layers, points, texts, strokes: Vec::new(), by_content: true })
     }
 
     fn rescan(&self, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
@@ -384,13 +399,17 @@ impl Reader<'_> {
     }
 
     /// Refuses curves and points that lie in different planes.
-    fn one_plane(&self, axis: &[Curve], points: &[PointLike]) -> Result<(), Refusal> {
+    fn one_plane(&self, axis: &[Curve], points: &[PointLike], strokes: &[Stroke]) -> Result<(), Refusal> {
         let Some(first) = axis.first() else {
             return Ok(());
         };
         let (left, right) = extent(axis);
         let slack = tolerance::FLAT * (right - left);
-        let others = axis.iter().map(|c| (&c.source, c.z)).chain(points.iter().map(|p| (&p.source, p.z)));
+        let others = axis
+            .iter()
+            .map(|c| (&c.source, c.z))
+            .chain(points.iter().map(|p| (&p.source, p.z)))
+            .chain(strokes.iter().map(|s| (&s.source, s.z)));
         for (source, z) in others {
             if (z - first.z).abs() > slack {
                 return Err(source.refuse(
@@ -438,9 +457,10 @@ impl Reader<'_> {
     }
 
     /// Tells what stands on the layers of axis and loads and was not read: other types, paper space.
-    fn not_read(&mut self, axis: &[String], loads: &[String]) {
+    fn not_read(&mut self, axis: &[String], loads: &[String], by_content: bool) {
         self.passed_over(Role::Axis, axis, &CURVES);
-        self.passed_over(Role::Loads, loads, &[&POINTS[..], &["TEXT", "MTEXT"]].concat());
+        let lines: &[&str] = if by_content { &[] } else { &STROKES };
+        self.passed_over(Role::Loads, loads, &[&POINTS[..], lines, &["TEXT", "MTEXT"]].concat());
     }
 
     fn passed_over(&mut self, role: Role, layers: &[String], read_kinds: &[&str]) {

@@ -18,6 +18,7 @@ pub mod read;
 mod reference;
 mod roles;
 mod space;
+mod stroke;
 mod suggest;
 pub mod text;
 pub mod unit;
@@ -26,9 +27,10 @@ pub mod viewport;
 use crate::tags;
 pub use crate::tags::{Doubt, Note as FileNote};
 pub use ends::{clusters, near_pairs};
-pub use entity::{Attribute, Curve, PointLike, Source, Text};
+pub use entity::{Attribute, Curve, Extended, PointLike, Source, Text};
 pub use gather::{keeps, read_outlined, scan};
 pub use note::{Note, Reason, Role};
+pub use stroke::{End, Stroke};
 pub use suggest::{Suggestion, suggest};
 pub use unit::{NoUnit, Unit, UnitSource};
 
@@ -51,6 +53,8 @@ pub struct Drawing {
     pub extrados: Vec<Curve>,
     /// Points on the load layers, in the order of the file.
     pub points: Vec<PointLike>,
+    /// Lines on the load layers, in the order of the file.
+    pub strokes: Vec<Stroke>,
     /// Points on the hinge layers, in the order of the file.
     pub hinges: Vec<PointLike>,
     /// Texts on the load layers, in the order of the file.

@@ -87,7 +87,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         ],
     ),
     ("rib.movement", &[("left", All), ("right", All)]),
-    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", Later), ("decimal", All)]),
+    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", All), ("decimal", All)]),
     (
         "area",
         &[

@@ -2,6 +2,7 @@
 //! up in a verdict. Only here do results get a severity and advice.
 
 mod accept;
+mod drawn;
 mod limits;
 mod notes;
 mod spans;

@@ -1,6 +1,6 @@
 //! What reader, builder and statics noticed, in words.
 
-use super::{With, length, note, spans};
+use super::{With, drawn, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Doubt, FileNote, Reason, Role};
 use crate::job::Support;
@@ -264,6 +264,7 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
             format!("{} stands on {} and was counted once", source.named(), kept.named()),
         )
         .entity(source),
+        Note::Drawn(n) => drawn::finding(n),
         Note::LoadsEqual { count } => note(
             Check::Loads,
             format!("none of the {count} loads has a figure: all were taken as equal, and forces are multiples of one of them"),
@@ -419,7 +420,8 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
         (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
-    let drawn = span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight);
+    let drawn =
+        span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight && l.over.is_none());
     uneven(drawn.map(|l| l.at[0]).collect())
 }
 

@@ -121,13 +121,69 @@ fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Set
                         .unwrap_or_else(|| super::source(&Default::default())),
                     magnitude_from: outcome::MagnitudeFrom::SelfWeight,
                     text: None,
+                    per_length: None,
+                    over: None,
+                    application: None,
+                    sense: None,
                 },
             ));
         }
-        all.sort_by(|a, b| a.0.total_cmp(&b.0));
     }
+    all.extend(strips(span, &all));
+    all.sort_by(|a, b| a.0.total_cmp(&b.0));
     let letters = outcome::bow::spaces(all.len());
     all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
+}
+
+/// The line loads in pieces between the feet of the single loads, each with the length along the axis under its middle.
+fn strips(span: &model::Span, single: &[(f64, Load)]) -> Vec<(f64, Load)> {
+    let axis = &span.axis;
+    let hair = axis.length() * tolerance::ONE_JOINT;
+    // In the middle of a piece of the ring there is no joint.
+    let feet = single.iter().filter(|l| l.1.magnitude_from != outcome::MagnitudeFrom::SelfWeight);
+    let mut cuts: Vec<f64> = feet.map(|l| axis.point_at(l.0).x).collect();
+    cuts.sort_by(f64::total_cmp);
+    let mut found = Vec::new();
+    for line in &span.line_loads {
+        let (left, right) = (line.from.x, line.to.x);
+        let mut ends: Vec<f64> =
+            cuts.iter().copied().filter(|x| *x > left + hair && *x < right - hair).collect();
+        if ends.is_empty() {
+            let part = |i: u32| left + (right - left) * f64::from(i) / f64::from(BARE_PIECES);
+            ends = (1..BARE_PIECES).map(part).collect();
+        }
+        ends.insert(0, left);
+        ends.push(right);
+        ends.dedup_by(|b, a| *b - *a <= hair);
+        for (i, pair) in ends.windows(2).enumerate() {
+            let Some(piece) = line.between(pair[0], pair[1]) else {
+                continue;
+            };
+            let at = piece.from.midpoint(piece.to);
+            // Where the axis leans over, the uppermost crossing carries.
+            let foot = axis
+                .crossings_of_vertical(at.x)
+                .into_iter()
+                .max_by(|a, b| axis.point_at(*a).y.total_cmp(&axis.point_at(*b).y))
+                .unwrap_or(0.0);
+            let load = Load {
+                label: format!("{}/{}", line.label, i + 1),
+                space: Default::default(),
+                at: xy(at),
+                force: [0.0, -piece.sum()],
+                set: line.set.clone(),
+                source: super::source(&line.source),
+                magnitude_from: outcome::MagnitudeFrom::Label,
+                text: Some(line.text.clone()),
+                per_length: Some(line.down),
+                over: Some([piece.from.x, piece.to.x]),
+                application: None,
+                sense: None,
+            };
+            found.push((foot, load));
+        }
+    }
+    found
 }
 
 fn load(load: &model::Load) -> Load {
@@ -141,10 +197,21 @@ fn load(load: &model::Load) -> Load {
         magnitude_from: match load.magnitude_from {
             model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
             model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
+            model::MagnitudeFrom::ExtendedData => outcome::MagnitudeFrom::ExtendedData,
+            model::MagnitudeFrom::ArrowLength => outcome::MagnitudeFrom::ArrowLength,
             model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
             model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
         },
         text: load.text.clone(),
+        per_length: None,
+        over: None,
+        application: load.application.clone(),
+        sense: match load.sense {
+            model::Sense::Point => None,
+            model::Sense::Head => Some(outcome::Sense::Arrowhead),
+            model::Sense::Down => Some(outcome::Sense::Downward),
+            model::Sense::Rib => Some(outcome::Sense::TowardRib),
+        },
     }
 }
 

@@ -402,6 +402,12 @@ fn load_words(run: &Run, load: &Load) -> String {
     if let Some(text) = &load.text {
         words.push_str(&format!(" \"{text}\""));
     }
+    if let Some(application) = &load.application {
+        words.push_str(&format!(" of {application}"));
+    }
+    if let Some(sense) = load.sense {
+        words.push_str(&format!(", {}", sense.words()));
+    }
     words
 }
 
