@@ -362,3 +362,29 @@ pub const HEAD_OFF: f64 = 0.02;
 /// How far the points of a line may lie beside it, as a part of its length, and the line is straight all the same. No unit.
 /// Larger: bent lines are taken for arrows; smaller: straight ones with rounded coordinates are not.
 pub const STRAIGHT_LINE: f64 = 1e-6;
+
+/// Distance from a post within which a load stands on it, as a part of the longest post. No unit. Larger: loads between posts are
+/// carried by one; smaller: loads set by eye are not.
+pub const ON_POST: f64 = 0.02;
+
+/// How far a post may end off the rib, as a part of the post's length. No unit. Larger: columns beside the arch are taken for
+/// posts; smaller: posts drawn to the face of a slab are not.
+pub const POST_REACH: f64 = 0.1;
+
+/// The same where no depth of the rib is known, from the axis. No unit. Larger and smaller as above.
+pub const POST_REACH_BLIND: f64 = 0.25;
+
+/// Distance along a dimension, as a part of the span, within which its point stands at a springing, the crown or a face of the
+/// ring. No unit. Larger: dimensions of other parts are taken for the arch's; smaller: those of an older shape are passed over.
+pub const DIMENSION_NEAR: f64 = 0.02;
+
+/// The same across a dimension, whose lines often begin off what they measure. No unit. Larger and smaller as above.
+pub const DIMENSION_BESIDE: f64 = 0.15;
+
+/// Least part of the depth of the ring that a dimension across it must show to be square to it. No unit. Larger: dimensions at the
+/// springings drawn by eye are passed over; smaller: slanting ones are taken for the depth.
+pub const DIMENSION_SQUARE: f64 = 0.99;
+
+/// Largest drawing, bytes, in which title block, dimensions and notes about the scale are looked for: all blocks and texts have to be
+/// kept for that. Larger: more memory; smaller: the sheet number of large drawings is not found.
+pub const SURROUNDINGS: u64 = 64 << 20;

@@ -8,6 +8,7 @@ use super::outlook::{self, Line};
 use super::roles::{self, CURVES, LOADS, POINTS};
 use super::space::View;
 use super::stroke::{self, STROKES, Stroke};
+use super::surroundings::{self, Surroundings};
 use super::{Drawing, blocks, convert, names, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
@@ -27,7 +28,13 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     }
     match settings.layers.role_of(candidate.layer) {
         Ok(Some(
-            JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+            JobRole::Axis
+            | JobRole::Loads
+            | JobRole::Intrados
+            | JobRole::Extrados
+            | JobRole::Hinges
+            | JobRole::Posts
+            | JobRole::Plan,
         ))
         | Err(_) => true,
         Ok(_) => {
@@ -45,7 +52,9 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
 /// # Errors
 /// As [`tags::scan`].
 pub fn scan(bytes: &tags::Source, settings: &Settings) -> Result<Outline, Refusal> {
-    let keep = |candidate: &Candidate<'_>| keeps(settings, candidate);
+    let all = bytes.len() <= tolerance::SURROUNDINGS;
+    let keep =
+        |candidate: &Candidate<'_>| keeps(settings, candidate) || all && surroundings::keeps(candidate);
     tags::scan(bytes, &Options { keep: Some(&keep), hash: true })
 }
 
@@ -106,6 +115,7 @@ fn read_seen(
     view: View,
     notes: Vec<Note>,
 ) -> Result<Drawing, Refusal> {
+    let original = outline;
     let mut seen = Cow::Borrowed(outline);
     if view != View::XY {
         view.look(&mut seen.to_mut().records);
@@ -125,6 +135,12 @@ fn read_seen(
     let (hinges, _) = reader.points(&hinge_layers, &outline.records)?;
     reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
     reader.hidden(hinge_layers.iter());
+    if bytes.len() > tolerance::SURROUNDINGS {
+        reader.notes.push(Note::SurroundingsNotRead);
+    }
+    let height = outline_of.first().map_or(0.0, |c| c.z);
+    let Surroundings { posts, plan, plan_of_rib, dimensions, title } =
+        surroundings::read(original, outline, view, height, settings, &mut reader.notes)?;
     reader.parts_not_read()?;
     reader.not_read(&axis_layers, &load_layers, by_content);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
@@ -160,6 +176,11 @@ fn read_seen(
         extrados,
         points,
         strokes,
+        posts,
+        plan,
+        plan_of_rib,
+        dimensions,
+        title,
         hinges,
         texts,
         viewports,
@@ -444,7 +465,13 @@ impl Reader<'_> {
             let count: u64 = layer.model.values().sum();
             let part = match roles::role_of(self.settings, &layer.name)? {
                 Some(
-                    JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+                    JobRole::Axis
+                    | JobRole::Loads
+                    | JobRole::Intrados
+                    | JobRole::Extrados
+                    | JobRole::Hinges
+                    | JobRole::Posts
+                    | JobRole::Plan,
                 ) => continue,
                 Some(role) => role.name(),
                 _ => continue,

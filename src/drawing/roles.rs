@@ -41,6 +41,8 @@ pub fn named(
         Role::Intrados => JobRole::Intrados,
         Role::Extrados => JobRole::Extrados,
         Role::Hinges => JobRole::Hinges,
+        Role::Posts => JobRole::Posts,
+        Role::Plan => JobRole::Plan,
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();
@@ -56,7 +58,8 @@ pub fn named(
     }
     let path = format!("layers.{}", role.key());
     if found.is_empty()
-        && (settings.states(&path) || !matches!(role, Role::Loads | Role::Hinges) && !unusable.is_empty())
+        && (settings.states(&path)
+            || !matches!(role, Role::Loads | Role::Hinges | Role::Posts | Role::Plan) && !unusable.is_empty())
     {
         return Err(nothing_on(outline, settings, role, wanted, kinds, &unusable));
     }

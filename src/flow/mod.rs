@@ -22,7 +22,7 @@ use crate::verdict;
 use crate::write::annotate;
 use crate::write::file::{self, Replace};
 
-pub use list::{LayerLine, Listing, list};
+pub use list::{LayerLine, Listing, LoadLine, list};
 pub use unmark::{Unmarked, unmark};
 
 /// What a run depends on beside its files.
@@ -227,6 +227,8 @@ fn stages(
     let drawing = drawing::read_outlined(&source, &outline, &settings)?;
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
+    facts.sheet.clone_from(&drawing.title.sheet);
+    facts.revision.clone_from(&drawing.title.revision);
     let model = model::build(&drawing, &(&settings).into())?;
     own_weight_stated(&settings)?;
     let cases = model::cases::cases(&model, &settings)?;

@@ -55,11 +55,11 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("intrados", All),
             ("extrados", All),
             ("loads", All),
-            ("posts", Later),
+            ("posts", All),
             ("joints", Later),
             ("hinges", All),
             ("road", Later),
-            ("plan", Later),
+            ("plan", All),
         ],
     ),
     (
@@ -134,14 +134,17 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("geometric_factor", All),
             ("load_factor", All),
             ("pier_push", Later),
-            ("dimension", Later),
+            ("dimension", All),
         ],
     ),
     ("accept", &[("assumed", All), ("finding", All)]),
     (
         "accept.finding",
         &[
-            ("check", Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor"])),
+            (
+                "check",
+                Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor", "dimension"]),
+            ),
             ("span", All),
             ("case", All),
             ("up_to", All),
@@ -151,7 +154,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         ],
     ),
     ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", Later)]),
-    ("title", &[("sheet", Later), ("revision", Later)]),
+    ("title", &[("sheet", All), ("revision", All)]),
     ("report", &[("units", Only(&["si"]))]),
 ];
 

@@ -49,6 +49,43 @@ pub enum Drawn {
         /// How many.
         count: usize,
     },
+    /// A line on a post layer that is no post.
+    NoPost {
+        /// The line.
+        source: Source,
+        /// Why.
+        why: &'static str,
+    },
+    /// Loads that stand on a post act down it.
+    DownPosts {
+        /// How many.
+        count: usize,
+        /// The greatest force that the deck has to hold sideways at one of them, kN or unit loads.
+        held: f64,
+        /// The greatest sideways part that one of them has itself and that stays in the deck.
+        own: f64,
+    },
+    /// Loads that stand between posts and not on the rib were put straight on it.
+    BetweenPosts {
+        /// The loads.
+        sources: Vec<Source>,
+    },
+    /// A roadway drawn in plan.
+    Plan {
+        /// The span.
+        span: String,
+        /// Whether the plane of the rib was taken through the roadway over the springings.
+        assumed: bool,
+        /// Loads over which the roadway is not drawn.
+        missing: usize,
+        /// Line loads, whose couples are not told.
+        line_loads: usize,
+    },
+    /// Dimensions of other parts with a text written in place of the measured length.
+    TextsByHand {
+        /// The dimensions.
+        sources: Vec<Source>,
+    },
     /// The extended data of a load hold figures that differ.
     ExtendedUnclear {
         /// The load.

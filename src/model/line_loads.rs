@@ -3,7 +3,7 @@
 //! Each is a uniform load per metre of plan over the extent of its line in plan, however the line runs above it.
 
 use super::drawn::Drawn;
-use super::figures::{Figure, Kind};
+use super::figures::{self, Figure, Kind, NoFigure};
 use super::heads::Arrows;
 use super::labels::{self, Label};
 use super::marks::Mark;
@@ -59,9 +59,19 @@ pub fn labelled(
     used: &mut [bool],
     notes: &mut Vec<Note>,
 ) -> Result<(Vec<Labelled>, Vec<Label>), Crowded> {
-    let free: Vec<usize> = (0..strokes.len())
+    let per_length = |t: &Text| {
+        matches!(
+            figures::read_as(&t.text, decimal, Kind::PerLength),
+            Ok(_) | Err(NoFigure::TwoReadings { .. } | NoFigure::Separator(_))
+        )
+    };
+    if !texts.iter().any(per_length) {
+        return Ok((Vec::new(), Vec::new()));
+    }
+    let mut free: Vec<usize> = (0..strokes.len())
         .filter(|&i| arrows.head_of[i].is_none() && arrows.double_of[i].is_none())
         .collect();
+    leave_arrows(&mut free, strokes);
     let least = texts.iter().map(|t| t.height).filter(|h| *h > 0.0).fold(f64::INFINITY, f64::min);
     let marks: Vec<Mark> = free.iter().map(|&i| mark(&strokes[i], least)).collect();
     let open = vec![true; marks.len()];
@@ -86,6 +96,26 @@ pub fn labelled(
         found.push(Labelled { stroke, label, ends });
     }
     Ok((found, unused))
+}
+
+/// Takes out steep lines that end at a flatter one: the arrows of a picture of a load per length, which has the label.
+fn leave_arrows(free: &mut Vec<usize>, strokes: &[Stroke]) {
+    let steep = |s: &Stroke| {
+        let ends = s.corners().and_then(|c| Some((*c.first()?, *c.last()?)));
+        !s.closed && ends.is_some_and(|(a, b)| (b.x - a.x).abs() < 0.5 * (b - a).hypot())
+    };
+    let flat: Vec<Path> = free
+        .iter()
+        .filter(|&&i| !steep(&strokes[i]))
+        .filter_map(|&i| Path::new(strokes[i].pieces.iter().copied()))
+        .collect();
+    free.retain(|&i| {
+        let stroke = &strokes[i];
+        let length: f64 = stroke.pieces.iter().map(Segment::length).sum();
+        let ends = [stroke.pieces.first().map(Segment::start), stroke.pieces.last().map(Segment::end)];
+        let hangs = |p: &Point| flat.iter().any(|f| f.nearest(*p).1 <= tolerance::HEAD_OFF * length);
+        !(steep(stroke) && ends.iter().flatten().any(hangs))
+    });
 }
 
 /// A line as something that a label belongs to.

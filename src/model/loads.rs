@@ -309,6 +309,8 @@ fn load(point: &Mark, found: Option<&Found>, from: MagnitudeFrom, size: f64, met
         text: found.map(|f| f.text.clone()).filter(|t| !t.is_empty()),
         application: found.and_then(|f| f.application.clone()),
         sense: point.arrow.map_or(Sense::Point, |a| a.sense),
+        post: None,
+        sideways: None,
     }
 }
 

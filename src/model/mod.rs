@@ -4,6 +4,7 @@
 
 pub mod cases;
 pub mod chain;
+pub mod dimensions;
 pub mod drawn;
 pub mod extended;
 pub mod figures;
@@ -17,6 +18,8 @@ pub mod middle;
 pub mod note;
 pub mod pieces;
 pub mod piers;
+mod plan;
+mod posts;
 pub mod ring;
 pub mod weight;
 
@@ -43,6 +46,8 @@ pub struct Model {
     pub forces: Forces,
     /// Loads that stand over no span.
     pub off_span: Vec<Load>,
+    /// Drawn dimensions of span, rise and depth.
+    pub dimensions: Vec<dimensions::Measured>,
     /// What was noticed.
     pub notes: Vec<Note>,
 }
@@ -108,6 +113,11 @@ pub struct Load {
     pub application: Option<String>,
     /// What tells its sense.
     pub sense: Sense,
+    /// The post that it comes down.
+    pub post: Option<Source>,
+    /// How far it stands to the left of the plane of the rib, looking in the direction of x, m; `None` where no roadway is drawn
+    /// in plan.
+    pub sideways: Option<f64>,
 }
 
 /// Where the magnitude of a load came from.
@@ -145,8 +155,9 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
         let p = (p.to_vec2() * metres).to_point();
         spans.iter().map(|s| s.axis.nearest(p).1).fold(f64::INFINITY, f64::min)
     };
-    let loads::Loaded { loads, lines, forces } =
+    let loads::Loaded { mut loads, lines, forces } =
         loads::loads(on_layers, settings, metres, &distance, &mut notes)?;
+    posts::carry(&mut loads, &drawing.posts, &spans, settings.depth, metres, &mut notes);
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
         source: load.source.clone(),
@@ -158,9 +169,14 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     for (span, lines) in spans.iter_mut().zip(line_loads::share_out(&lines, &reach, &mut notes)) {
         span.line_loads = lines;
     }
+    plan::sideways(&mut spans, &drawing.plan, drawing.plan_of_rib.map(|y| y * metres), metres, &mut notes);
+    let (dimensions, by_hand) = dimensions::measured(&drawing.dimensions, &spans, settings.depth, metres);
+    if !by_hand.is_empty() {
+        notes.push(Note::Drawn(Drawn::TextsByHand { sources: by_hand }));
+    }
     let bare = |s: &&Span| s.loads.is_empty() && s.line_loads.is_empty() && !settings.weighs;
     notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
-    Ok(Model { spans, forces, off_span, notes })
+    Ok(Model { spans, forces, off_span, dimensions, notes })
 }
 
 /// Gives each drawn hinge to the span on whose rib it stands: within half the depth (`stated`, m, where no ring is drawn)

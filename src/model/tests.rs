@@ -68,6 +68,11 @@ fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawin
         axis,
         points,
         strokes: Vec::new(),
+        posts: Vec::new(),
+        plan: Vec::new(),
+        plan_of_rib: None,
+        dimensions: Vec::new(),
+        title: crate::drawing::Title::default(),
         texts,
         notes: Vec::new(),
     }

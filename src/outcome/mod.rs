@@ -246,6 +246,12 @@ pub struct Load {
     /// The application whose extended data say how large it is.
     #[serde(default)]
     pub application: Option<String>,
+    /// The post that it comes down.
+    #[serde(default)]
+    pub post: Option<Source>,
+    /// How far it stands to the left of the plane of the rib, looking in the direction of x, where the roadway is drawn in plan.
+    #[serde(default)]
+    pub sideways: Option<f64>,
     /// What tells its sense, where it is drawn as a line; null for a point, which acts downward.
     #[serde(default)]
     pub sense: Option<Sense>,

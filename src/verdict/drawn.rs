@@ -75,6 +75,62 @@ pub fn finding(n: &Drawn) -> Finding {
             ),
         )
         .entity(line),
+        Drawn::NoPost { source, why } => note(
+            Check::PassedOver,
+            format!("{} on layer {} was not taken as a post: {why}", source.named(), source.layer),
+        )
+        .entity(source),
+        Drawn::DownPosts { count, held, own } => {
+            let deck = if *held > 0.0 {
+                format!("; the deck has to hold up to {held:.4} sideways at a post, which is left out here")
+            } else {
+                String::new()
+            };
+            let finding = note(
+                Check::Loads,
+                format!(
+                    "{count} loads stand on posts and act down them where they meet the rib, the posts pinned{deck}"
+                ),
+            );
+            if *own > 0.0 {
+                finding
+                    .uncheck()
+                    .remedy("draw loads that push the deck sideways where the deck is held, or on the rib")
+            } else {
+                finding
+            }
+        }
+        Drawn::BetweenPosts { sources } => note(
+            Check::Loads,
+            format!(
+                "{} loads stand between posts and were put straight on the rib: {}",
+                sources.len(),
+                named(sources)
+            ),
+        )
+        .uncheck()
+        .remedy("draw each load at the deck end of the post that carries it"),
+        Drawn::Plan { span, assumed, missing, line_loads } => {
+            let mut text = String::from("the roadway is drawn in plan");
+            if *assumed {
+                text.push_str("; the plane of the rib was taken through its points over the springings");
+            }
+            if *missing > 0 {
+                text.push_str(&format!("; over {missing} loads it is not drawn"));
+            }
+            if *line_loads > 0 {
+                text.push_str(&format!("; the couples of {line_loads} line loads are not told"));
+            }
+            note(Check::LeftOut, text).of(span)
+        }
+        Drawn::TextsByHand { sources } => note(
+            Check::Dimension,
+            format!(
+                "{} dimensions of other parts have a text written in place of the measured length: {}",
+                sources.len(),
+                named(sources)
+            ),
+        ),
         Drawn::ExtendedUnclear { source, texts } => note(
             Check::Labels,
             format!(

@@ -2,9 +2,11 @@
 //! up in a verdict. Only here do results get a severity and advice.
 
 mod accept;
+mod dimensions;
 mod drawn;
 mod limits;
 mod notes;
+mod sideways;
 mod spans;
 
 use jiff::civil::Date;
@@ -76,6 +78,14 @@ pub fn judge(
             }));
         }
     }
+    for span in &model.spans {
+        for case in cases {
+            let mut about = Vec::new();
+            sideways::couples(span, case, &units.force, &mut about);
+            findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
+        }
+    }
+    dimensions::judge(&model.dimensions, settings, &mut findings);
     notes::cases(cases, &mut findings);
     notes::left_out(model, settings, &mut findings);
     allow_assumptions(&settings.accept.assumed, &mut findings);

@@ -78,6 +78,30 @@ fn drawing_note(n: &drawing::Note) -> Finding {
                  in model space"
             ),
         ),
+        Note::TitleMissing { key, pattern } => note(
+            Check::PassedOver,
+            format!("no title block has an attribute that [title] {key} = \"{pattern}\" names"),
+        )
+        .remedy("name the tag of the attribute as the drawing does"),
+        Note::TitleUnclear { what, key, values } => note(
+            Check::PassedOver,
+            format!("title blocks say different things for the {what} ({}), and none was taken", values.join(", ")),
+        )
+        .remedy(format!("name the tag of the attribute: [title] {key}")),
+        Note::NotToScale { source, text, count } => {
+            let others = if *count > 1 { format!(" and {} more texts", count - 1) } else { String::new() };
+            note(Check::Dimension, format!("\"{text}\"{others} say that the drawing, or a part of it, is not to scale"))
+                .entity(source)
+                .uncheck()
+                .remedy("see to it that the arch is drawn to scale, and remove the note or move it into a block")
+        }
+        Note::SurroundingsNotRead => note(
+            Check::PassedOver,
+            format!(
+                "the drawing is larger than {} MB: title block, dimensions and notes about the scale were not looked for",
+                tolerance::SURROUNDINGS >> 20
+            ),
+        ),
         Note::CurveFitted { source, pieces } => note(
             Check::PassedOver,
             format!(
@@ -165,6 +189,8 @@ fn role_name(role: Role) -> &'static str {
         Role::Intrados => "intrados",
         Role::Extrados => "extrados",
         Role::Hinges => "hinges",
+        Role::Posts => "posts",
+        Role::Plan => "plan of the roadway",
     }
 }
 

@@ -125,18 +125,21 @@ fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Set
                     over: None,
                     application: None,
                     sense: None,
+                    post: None,
+                    sideways: None,
                 },
             ));
         }
     }
-    all.extend(strips(span, &all));
+    all.extend(strips(span, &all, analysis.crown.x));
     all.sort_by(|a, b| a.0.total_cmp(&b.0));
     let letters = outcome::bow::spaces(all.len());
     all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
 }
 
-/// The line loads in pieces between the feet of the single loads, each with the length along the axis under its middle.
-fn strips(span: &model::Span, single: &[(f64, Load)]) -> Vec<(f64, Load)> {
+/// The line loads in pieces between the feet of the single loads, cut at the crown too, each with the length along the axis under
+/// its middle. The resultants of pieces leave the moments at their ends as they are, so a hand check at the crown holds.
+fn strips(span: &model::Span, single: &[(f64, Load)], crown: f64) -> Vec<(f64, Load)> {
     let axis = &span.axis;
     let hair = axis.length() * tolerance::ONE_JOINT;
     // In the middle of a piece of the ring there is no joint.
@@ -152,8 +155,9 @@ fn strips(span: &model::Span, single: &[(f64, Load)]) -> Vec<(f64, Load)> {
             let part = |i: u32| left + (right - left) * f64::from(i) / f64::from(BARE_PIECES);
             ends = (1..BARE_PIECES).map(part).collect();
         }
-        ends.insert(0, left);
-        ends.push(right);
+        ends.extend([left, right]);
+        ends.extend(Some(crown).filter(|x| *x > left + hair && *x < right - hair));
+        ends.sort_by(f64::total_cmp);
         ends.dedup_by(|b, a| *b - *a <= hair);
         for (i, pair) in ends.windows(2).enumerate() {
             let Some(piece) = line.between(pair[0], pair[1]) else {
@@ -179,6 +183,8 @@ fn strips(span: &model::Span, single: &[(f64, Load)]) -> Vec<(f64, Load)> {
                 over: Some([piece.from.x, piece.to.x]),
                 application: None,
                 sense: None,
+                post: None,
+                sideways: None,
             };
             found.push((foot, load));
         }
@@ -206,6 +212,8 @@ fn load(load: &model::Load) -> Load {
         per_length: None,
         over: None,
         application: load.application.clone(),
+        post: load.post.as_ref().map(super::source),
+        sideways: load.sideways,
         sense: match load.sense {
             model::Sense::Point => None,
             model::Sense::Head => Some(outcome::Sense::Arrowhead),

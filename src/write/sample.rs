@@ -191,6 +191,8 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                     over: None,
                     application: None,
                     sense: None,
+                    post: None,
+                    sideways: None,
                 }
             })
             .collect();

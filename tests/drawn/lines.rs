@@ -223,7 +223,8 @@ fn a_line_with_a_label_per_length_is_read() {
         let single = all.iter().find(|l| l.label == "P1").unwrap();
         acts(single, [1.0, 11.0], [0.0, -200.0]);
         let pieces: Vec<_> = all.iter().filter(|l| l.over.is_some()).collect();
-        assert_eq!(pieces.len(), 2, "{label}");
+        // Cut by the single load and at the crown.
+        assert_eq!(pieces.len(), 3, "{label}");
         close(down(all), 200.0 + 2.0 * half * per_metre, 1e-12);
         for piece in pieces {
             close(piece.per_length.unwrap(), per_metre, 1e-12);

@@ -105,10 +105,20 @@ impl Sheet {
 
     /// Checked under a job, in metres.
     pub fn run(&self, job: &str) -> Run {
+        let text = format!("[drawing]\nunit = \"m\"\n{job}");
+        self.checked(&text)
+    }
+
+    /// Checked under a job that begins with its table `[drawing]`, in a unit.
+    pub fn run_in(&self, unit: &str, job: &str) -> Run {
+        self.checked(&job.replacen("[drawing]\n", &format!("[drawing]\nunit = \"{unit}\"\n"), 1))
+    }
+
+    fn checked(&self, job: &str) -> Run {
         let folder = tempfile::tempdir().unwrap();
         let file = folder.path().join("arch.dxf");
         std::fs::write(&file, self.file()).unwrap();
-        let job = Job::parse(format!("[drawing]\nunit = \"m\"\n{job}").as_bytes(), None).unwrap();
+        let job = Job::parse(job.as_bytes(), None).unwrap();
         flow::check(&file, Some(&job), Environment { today: jiff::civil::date(2026, 12, 1) })
     }
 
