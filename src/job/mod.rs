@@ -33,6 +33,7 @@ pub use actions::{Area, Case, Range, Step, Through, Traffic};
 pub use choice::Choice;
 pub use layers::{Layers, Patterns, Role};
 pub use limits::{Accept, Assumption, Exception, LimitCheck, Limits};
+pub use names::same_name;
 pub use pattern::{Ambiguous, Pattern, best_match};
 pub use rib::{Movement, Rib, RibDepth, Support};
 pub use settings::{

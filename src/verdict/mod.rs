@@ -6,6 +6,7 @@ mod dimensions;
 mod drawn;
 mod limits;
 mod notes;
+mod ranges;
 mod sideways;
 mod spans;
 
@@ -15,8 +16,8 @@ use crate::drawing;
 use crate::job::Assumption;
 use crate::job::Settings;
 use crate::model::{Case, Forces, Model};
-use crate::outcome::{Check, Finding, FindingVerdict, Source, Span, Units, Verdict, Xy};
-use crate::statics::Analysis;
+use crate::outcome::{Check, Finding, FindingVerdict, Ranges, Source, Span, Units, Verdict, Xy};
+use crate::statics::{Analysis, Factor};
 
 /// What came out of a drawing, judged.
 #[derive(Debug, Clone, PartialEq)]
@@ -40,6 +41,17 @@ pub struct Computed<'a> {
     pub cases: &'a [Case],
     /// Of each span, in order, one analysis for each case, in order.
     pub analyses: &'a [Vec<Analysis>],
+    /// Alike, what takes more than one analysis.
+    pub extras: &'a [Vec<Extra>],
+}
+
+/// What takes more than one analysis of a span in a case.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct Extra {
+    /// Least thickness, as a factor on the depth; `None` where factors do not apply.
+    pub thickness: Option<Factor>,
+    /// Factors over the ranges that the job states.
+    pub ranges: Option<Ranges>,
 }
 
 /// Judges what was computed. `today` decides whether an accepted exception has
@@ -50,7 +62,7 @@ pub fn judge(
     computed: &Computed<'_>,
     today: Date,
 ) -> Judgement {
-    let Computed { model, cases, analyses } = *computed;
+    let Computed { model, cases, analyses, extras } = *computed;
     let units = match model.forces {
         Forces::Kilonewtons => Units::si(),
         Forces::UnitLoads => Units::unit_loads(),
@@ -58,20 +70,21 @@ pub fn judge(
     let spans: Vec<Span> = model
         .spans
         .iter()
-        .zip(analyses)
-        .map(|(span, analyses)| spans::span(model, span, cases, analyses, settings))
+        .zip(analyses.iter().zip(extras))
+        .map(|(span, computed)| spans::span(model, span, cases, computed, settings))
         .collect();
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
-    for (analyses, span) in analyses.iter().zip(&spans) {
-        for (i, (analysis, case)) in analyses.iter().zip(cases).enumerate() {
+    for ((analyses, extras), span) in analyses.iter().zip(extras).zip(&spans) {
+        for (i, ((analysis, extra), case)) in analyses.iter().zip(extras).zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
+            ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());
                 finding
