@@ -70,6 +70,7 @@ pub fn pair_as(
     let mut by_x: Vec<(Point, usize)> =
         columns.iter().enumerate().flat_map(|(c, &i)| marks[i].beside.iter().map(move |p| (*p, c))).collect();
     by_x.sort_by(|a, b| a.0.x.total_cmp(&b.0.x).then(a.1.cmp(&b.1)));
+    let several: Vec<bool> = columns.iter().map(|&i| marks[i].beside.len() > 1).collect();
     let spacing = spacing(columns.iter().map(|&i| marks[i].at).collect());
     let rows: Vec<Row> = labels
         .iter_mut()
@@ -80,7 +81,7 @@ pub fn pair_as(
         })
         .collect();
     let pairing = matching::pair(&rows, columns.len(), |row, count| {
-        nearest(&texts[labels[row].text], &by_x, rows[row].reach, count)
+        nearest(&texts[labels[row].text], &by_x, &several, rows[row].reach, count)
     })?;
     for (label, column) in labels.iter_mut().zip(&pairing.column_of) {
         label.load = column.map(|c| columns[c]);
@@ -148,8 +149,14 @@ fn cost(text: &Text, p: Point) -> f64 {
     felt(text.way_to(p)) + tolerance::LABEL_ANCHOR * felt(p - text.anchor)
 }
 
-/// The cheapest loads of a text.
-fn nearest(text: &Text, by_x: &[(Point, usize)], reach: f64, count: usize) -> Vec<(f64, usize)> {
+/// The cheapest loads of a text; `several` tells which of them have more than one place.
+fn nearest(
+    text: &Text,
+    by_x: &[(Point, usize)],
+    several: &[bool],
+    reach: f64,
+    count: usize,
+) -> Vec<(f64, usize)> {
     // Only loads within reach of the circle around the text's rectangle can be cheap enough.
     let side = |(below, above): (f64, f64)| below.abs().max(above.abs());
     let radius = reach + side(text.across).hypot(side(text.upright));
@@ -161,7 +168,9 @@ fn nearest(text: &Text, by_x: &[(Point, usize)], reach: f64, count: usize) -> Ve
             continue;
         }
         // Of an arrow the place that is nearest counts.
-        if let Some(known) = best.iter().position(|b| b.1 == column) {
+        if several[column]
+            && let Some(known) = best.iter().position(|b| b.1 == column)
+        {
             if best[known].0 <= cost {
                 continue;
             }

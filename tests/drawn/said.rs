@@ -7,7 +7,7 @@ use thrustmark::outcome::{Check, Finding, FindingVerdict, Run, Verdict};
 use super::{acts, arch, loads};
 use crate::sheet::Sheet;
 
-const JOB: &str = "[rib]\nsupport = \"none\"\ndepth = 0.8\ntension = true\n[limits]\noffset = 9\n";
+const JOB: &str = "[rib]\nsupport = \"none\"\ndepth = 0.8\n[limits]\noffset = 9\nring = 9\n";
 
 /// Height of the axis at an abscissa.
 fn axis(x: f64) -> f64 {
