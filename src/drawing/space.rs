@@ -86,7 +86,7 @@ impl View {
 
     /// From the drawing's coordinates to those of its plan: right as in the elevation, upward away from the one who looks, and
     /// height. `None` in the x-y plane, where a plan is drawn flat beside the elevation.
-    pub fn from_above(&self) -> Option<Affine> {
+    pub fn plan_map(&self) -> Option<Affine> {
         (*self != Self::XY).then(|| Affine::of_rows(self.right, self.toward.map(|c| -c), self.up))
     }
 

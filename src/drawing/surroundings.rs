@@ -93,7 +93,7 @@ pub fn read(
 /// A record as it is seen from above: right is right in the elevation, up is away from the one who looks at it.
 fn from_above(record: &Record, view: View) -> Record {
     let mut record = record.clone();
-    if let Some(map) = view.from_above() {
+    if let Some(map) = view.plan_map() {
         let (inner, path) = match record.placement.take() {
             Some(placement) => (placement.map, placement.path),
             None => (crate::geometry::Affine::IDENTITY, Vec::new()),
