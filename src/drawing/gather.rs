@@ -2,14 +2,14 @@
 
 use std::borrow::Cow;
 
-use super::entity::{Curve, PointLike, Source, Text};
+use super::entity::{Curve, PointLike, Text};
 use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
 use super::roles::{self, CURVES, LOADS, POINTS};
 use super::space::View;
 use super::stroke::{self, STROKES, Stroke};
 use super::surroundings::{self, Surroundings};
-use super::{Drawing, blocks, convert, names, reference, unit, viewport};
+use super::{Drawing, blocks, convert, names, outlines, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
 use crate::refusal::Refusal;
@@ -24,6 +24,9 @@ const UNREAD: [&str; 3] = ["HELIX", "MLINE", "CIRCLE"];
 pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     let stated = |role: Role| settings.states(&format!("layers.{}", role.key()));
     if candidate.kind == "VIEWPORT" {
+        return true;
+    }
+    if outlines::is_area_layer(settings, candidate.layer) {
         return true;
     }
     match settings.layers.role_of(candidate.layer) {
@@ -141,6 +144,8 @@ fn read_seen(
     let height = outline_of.first().map_or(0.0, |c| c.z);
     let Surroundings { posts, plan, plan_of_rib, dimensions, title } =
         surroundings::read(original, outline, view, height, settings, &mut reader.notes)?;
+    let areas = outlines::read(outline, settings, &mut reader.notes)?;
+    reader.areas_in_plane(&areas, [&axis[..], &intrados].concat().first())?;
     reader.parts_not_read()?;
     reader.not_read(&axis_layers, &load_layers, by_content);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
@@ -182,6 +187,7 @@ fn read_seen(
         dimensions,
         title,
         hinges,
+        areas,
         texts,
         viewports,
         notes: reader.notes,
@@ -248,7 +254,8 @@ impl Reader<'_> {
             return Ok((Vec::new(), Vec::new()));
         }
         // The best names first; among equals the one layer that holds a line from springing to springing.
-        let by_name = roles::axis_by_name(self.outline);
+        let mut by_name = roles::axis_by_name(self.outline);
+        by_name.retain(|n| !outlines::is_area_layer(self.settings, &n.1));
         for rank in [3, 2, 1] {
             let same: Vec<_> = by_name.iter().filter(|n| n.0 == rank).collect();
             let mut fitting = Vec::new();
@@ -275,7 +282,8 @@ impl Reader<'_> {
     }
 
     fn axis_by_content(&mut self) -> Result<(Vec<String>, Vec<Curve>), Refusal> {
-        let layers = roles::holding(self.outline, &CURVES, tolerance::GUESS_ENTITIES, &[]);
+        let mut layers = roles::holding(self.outline, &CURVES, tolerance::GUESS_ENTITIES, &[]);
+        layers.retain(|l| !outlines::is_area_layer(self.settings, l));
         let records = self.rescan(&layers, &CURVES)?;
         let mut fitting: Vec<(String, Line)> = Vec::new();
         for layer in &layers {
@@ -320,7 +328,8 @@ impl Reader<'_> {
         if !layers.is_empty() {
             return self.drawn_loads(layers);
         }
-        let by_name = roles::loads_by_name(self.outline, axis_layers);
+        let mut by_name = roles::loads_by_name(self.outline, axis_layers);
+        by_name.retain(|n| !outlines::is_area_layer(self.settings, &n.0));
         if !by_name.is_empty() {
             for (layer, word) in &by_name {
                 self.notes.push(Note::LayerGuessed {
@@ -347,7 +356,8 @@ impl Reader<'_> {
     }
 
     fn loads_by_content(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
-        let layers = roles::holding(self.outline, &POINTS, tolerance::GUESS_ENTITIES, axis_layers);
+        let mut layers = roles::holding(self.outline, &POINTS, tolerance::GUESS_ENTITIES, axis_layers);
+        layers.retain(|l| !outlines::is_area_layer(self.settings, l));
         let records = self.rescan(&layers, &[&POINTS[..], &["TEXT", "MTEXT"]].concat())?;
         let Some(line) = outlook::one_line(axis) else {
             self.notes.push(Note::NoLoadLayer);
@@ -398,7 +408,7 @@ impl Reader<'_> {
     /// Refuses curves on the layers of axis or ring line that cannot be read: without them it would be another one.
     fn refuse_unread(&self, layers: &[String], role: Role) -> Result<(), Refusal> {
         match in_model(&self.outline.records, layers).find(|r| UNREAD.contains(&r.kind.as_str())) {
-            Some(record) => Err(not_readable(record, role)),
+            Some(record) => Err(roles::not_readable(record, role)),
             None => Ok(()),
         }
     }
@@ -445,6 +455,17 @@ impl Reader<'_> {
                     "Move all entities of the elevation into one plane (in a flat drawing: the same z)",
                 ));
             }
+        }
+        Ok(())
+    }
+
+    /// Refuses outlines that lie in another plane than the axis.
+    fn areas_in_plane(&self, areas: &[outlines::Outlines], axis: Option<&Curve>) -> Result<(), Refusal> {
+        let Some(axis) = axis else { return Ok(()) };
+        for area in areas {
+            let hatches = area.hatches.iter().flat_map(|h| &h.loops);
+            let all: Vec<Curve> = std::iter::once(axis).chain(&area.curves).chain(hatches).cloned().collect();
+            self.one_plane(&all, &[], &[])?;
         }
         Ok(())
     }
@@ -540,20 +561,6 @@ pub(super) fn in_model<'r>(records: &'r [Record], layers: &[String]) -> impl Ite
     records.iter().filter(move |r| {
         r.block.is_none() && !r.ours && layers.contains(&fold(&r.layer)) && !r.in_paper_space()
     })
-}
-
-fn not_readable(record: &Record, role: Role) -> Refusal {
-    let source: Source = convert::source(record);
-    source.refuse(
-        "axis-kind",
-        format!(
-            "layer {} of the {} holds a {}: it is read from LINE, ARC, LWPOLYLINE, POLYLINE, ELLIPSE and SPLINE",
-            record.layer,
-            role.key(),
-            record.kind
-        ),
-        "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",
-    )
 }
 
 /// Least and greatest x of the pieces' ends and middles.

@@ -8,12 +8,14 @@ mod dimension;
 mod ends;
 mod entity;
 mod gather;
+mod hatch;
 mod insert;
 mod lay;
 pub mod names;
 mod note;
 mod nurbs;
 pub mod ocs;
+pub mod outlines;
 mod outlook;
 pub mod read;
 mod reference;
@@ -72,6 +74,8 @@ pub struct Drawing {
     pub title: Title,
     /// Points on the hinge layers, in the order of the file.
     pub hinges: Vec<PointLike>,
+    /// Outlines of the areas of the job, in its order.
+    pub areas: Vec<outlines::Outlines>,
     /// Texts on the load layers, in the order of the file.
     pub texts: Vec<Text>,
     /// Viewports of the layouts.

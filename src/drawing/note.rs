@@ -22,6 +22,8 @@ pub enum Role {
     Posts,
     /// The roadway in plan.
     Plan,
+    /// Outlines of what weighs.
+    Areas,
 }
 
 impl Role {
@@ -35,6 +37,7 @@ impl Role {
             Self::Hinges => "hinges",
             Self::Posts => "posts",
             Self::Plan => "plan",
+            Self::Areas => "area",
         }
     }
 }

@@ -43,6 +43,8 @@ pub fn named(
         Role::Hinges => JobRole::Hinges,
         Role::Posts => JobRole::Posts,
         Role::Plan => JobRole::Plan,
+        // Areas have tables of their own.
+        Role::Areas => return Ok(Vec::new()),
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();
@@ -212,5 +214,20 @@ pub fn no_axis(outline: &Outline, candidates: &[String]) -> Refusal {
         "no-axis",
         format!("{what}{listed}{referred}"),
         "Name the layer of the axis in the job file: `[layers]` `axis = \"NAME\"`",
+    )
+}
+
+/// The refusal of an entity on the layer of axis or ring line that cannot be read.
+pub fn not_readable(record: &crate::tags::Record, role: Role) -> Refusal {
+    let source = super::convert::source(record);
+    source.refuse(
+        "axis-kind",
+        format!(
+            "layer {} of the {} holds a {}: it is read from LINE, ARC, LWPOLYLINE, POLYLINE, ELLIPSE and SPLINE",
+            record.layer,
+            role.key(),
+            record.kind
+        ),
+        "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",
     )
 }

@@ -255,7 +255,8 @@ fn judged(
     facts.unit_source = Some(drawing.unit.source.name().into());
     facts.sheet.clone_from(&drawing.title.sheet);
     facts.revision.clone_from(&drawing.title.revision);
-    let model = model::build(&drawing, &settings.into())?;
+    let mut model = model::build(&drawing, &settings.into())?;
+    model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;
     let analyses = analyse(&model, &cases, settings)?;

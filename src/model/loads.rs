@@ -52,7 +52,7 @@ impl From<&Settings> for LoadSettings {
             arrow_scale: settings.loads.arrow_scale,
             decimal: settings.loads.decimal,
             depth: settings.rib.depth,
-            weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0),
+            weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0) || !settings.area.is_empty(),
         }
     }
 }

@@ -2,12 +2,14 @@
 //! up in a verdict. Only here do results get a severity and advice.
 
 mod accept;
+mod areas;
 mod dimensions;
 mod drawn;
 mod limits;
 mod notes;
 mod ranges;
 mod sideways;
+mod slender;
 mod spans;
 
 use jiff::civil::Date;
@@ -76,14 +78,17 @@ pub fn judge(
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
+    areas::drawing(model, &units, &mut findings);
     for ((analyses, extras), span) in analyses.iter().zip(extras).zip(&spans) {
         for (i, ((analysis, extra), case)) in analyses.iter().zip(extras).zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
+                areas::sideways(model, span, analysis, &mut about);
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
+            slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());

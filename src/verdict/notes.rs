@@ -184,6 +184,7 @@ fn doubt_words(doubt: &Doubt) -> &'static str {
 
 fn role_name(role: Role) -> &'static str {
     match role {
+        Role::Areas => "outline of an area",
         Role::Axis => "axis",
         Role::Loads => "loads",
         Role::Intrados => "intrados",
@@ -446,8 +447,8 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
         (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
-    let drawn =
-        span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight && l.over.is_none());
+    let weight = [MagnitudeFrom::SelfWeight, MagnitudeFrom::Area];
+    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from) && l.over.is_none());
     uneven(drawn.map(|l| l.at[0]).collect())
 }
 
@@ -479,7 +480,10 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
     if model.own_weight(settings).is_none() {
         parts.push("the rib's own weight");
     }
-    parts.extend(["fill", "traffic", "everything out of the plane of the elevation"]);
+    if model.areas.is_empty() {
+        parts.push("fill");
+    }
+    parts.extend(["traffic", "everything out of the plane of the elevation"]);
     if model.forces == Forces::UnitLoads {
         parts.push("stresses");
     }
@@ -491,6 +495,8 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
             (rib.temperature.abs() > 0.0, "temperature"),
             (rib.shrinkage.abs() > 0.0, "shrinkage"),
             (rib.movement != Movement::default(), "movement"),
+            (rib.imperfection.is_some_and(|i| i.abs() > 0.0), "imperfection"),
+            (rib.deck_inertia > 0.0, "deck_inertia"),
         ];
         for (_, key) in sized.into_iter().filter(|(given, _)| *given) {
             let message = format!("[rib] {key} was left out: beside loads of unknown size it has no measure");
