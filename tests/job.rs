@@ -158,12 +158,10 @@ fn the_contract_example_has_only_unbuilt_keys() {
     assert_eq!(
         named,
         [
-            "rib.backing",
             "rib.imperfection",
             "rib.deck_modulus",
             "loads.arrow_scale",
             "traffic",
-            "limits.pier_push",
             "limits.dimension",
             "title.sheet",
             "title.revision",
@@ -201,7 +199,6 @@ fn what_is_not_built_is_refused_by_name() {
         ("[loads]\nunit = \"kN\"\narrow_scale = 0.1", "loads.arrow_scale"),
         ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20\npassive = 3", "area.passive"),
         ("[[traffic]]\nname = \"train\"", "traffic"),
-        ("[limits]\npier_push = 2", "limits.pier_push"),
         ("[limits]\ndimension = 0.01", "limits.dimension"),
         (
             "[[accept.finding]]\ncheck = \"dimension\"\nup_to = \"12 mm\"\nreason = \"r\"\nby = \"b\"",

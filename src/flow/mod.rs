@@ -1,6 +1,7 @@
 //! From a file name to a finished run: the stages in their order, with nothing printed.
 
 mod list;
+mod piers;
 mod problem;
 mod ranges;
 mod sheet;
@@ -252,6 +253,7 @@ fn judged(
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
     let mut model = model::build(&drawing, &settings.into())?;
+    model::backing::trim(&mut model, settings)?;
     model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;

@@ -15,7 +15,7 @@ use serde::{Deserialize, Serialize};
 use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 
-pub use areas::AreaShare;
+pub use areas::{AreaShare, PierPush};
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -142,6 +142,9 @@ pub struct Span {
     /// What stands on it by outline or up to a level.
     #[serde(default)]
     pub areas: Vec<AreaShare>,
+    /// The pier at its right end, for every case; empty where no span follows.
+    #[serde(default)]
+    pub piers: Vec<PierPush>,
     /// The load cases.
     pub cases: Vec<Case>,
 }
