@@ -6,6 +6,7 @@
 mod areas;
 pub mod bow;
 mod ranges;
+mod slender;
 
 use std::collections::BTreeMap;
 
@@ -14,6 +15,7 @@ use serde::{Deserialize, Serialize};
 
 use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
+pub use slender::{Buckling, SectionForces};
 
 pub use areas::{AreaShare, PierPush};
 
@@ -249,6 +251,10 @@ pub struct Case {
     pub traffic: Vec<serde_json::Value>,
     /// Factors of safety of a ring; null where they do not apply.
     pub safety: Option<Safety>,
+    /// Both extremes of thrust and moment of the governing line, each with what goes with it; empty where that line is only
+    /// the most favourable one.
+    #[serde(default)]
+    pub section_forces: Vec<SectionForces>,
     /// Worst and best factors over the ranges that the job states; null without any.
     #[serde(default)]
     pub ranges: Option<Ranges>,
@@ -316,6 +322,9 @@ pub struct Line {
     pub stations: Vec<Station>,
     /// Proof of optimality.
     pub proof: Option<Proof>,
+    /// Buckling and second-order bending; null but for an elastic rib whose modulus and width are given.
+    #[serde(default)]
+    pub buckling: Option<Buckling>,
 }
 
 /// What an abutment does to the rib.
@@ -365,6 +374,12 @@ pub struct Station {
     pub stress_max: Option<f64>,
     /// Least compression (negative: tension).
     pub stress_min: Option<f64>,
+    /// Least moment in a slender rib, imperfection to either side; null where buckling was not looked at.
+    #[serde(default)]
+    pub moment_min: Option<f64>,
+    /// Greatest moment, alike.
+    #[serde(default)]
+    pub moment_max: Option<f64>,
 }
 
 /// Proof of optimality.
@@ -431,6 +446,8 @@ pub enum Check {
     Equilibrium,
     /// A line of thrust that does not exist.
     NoLine,
+    /// Buckling, second-order bending, shared bending and sharp curvature of an elastic rib.
+    Buckling,
     /// Loads unevenly spaced.
     Spacing,
     /// Loads that stand over no span.

@@ -8,6 +8,7 @@ mod noise;
 mod notes;
 mod piers;
 mod ranges;
+mod slender;
 mod spans;
 
 pub use piers::Pushes;
@@ -93,6 +94,7 @@ pub fn judge(
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
+            slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());

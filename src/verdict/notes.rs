@@ -486,6 +486,8 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
             (rib.temperature.abs() > 0.0, "temperature"),
             (rib.shrinkage.abs() > 0.0, "shrinkage"),
             (rib.movement != Movement::default(), "movement"),
+            (rib.imperfection.is_some_and(|i| i.abs() > 0.0), "imperfection"),
+            (rib.deck_inertia > 0.0, "deck_inertia"),
         ];
         for (_, key) in sized.into_iter().filter(|(given, _)| *given) {
             let message = format!("[rib] {key} was left out: beside loads of unknown size it has no measure");

@@ -193,6 +193,7 @@ fn case(
         traffic: Vec::new(),
         safety: analysis.safety.as_ref().map(|s| safety(s, extra.thickness.as_ref(), ring)),
         ranges: extra.ranges.clone(),
+        section_forces: super::slender::section_forces(analysis),
         residual: analysis.residual,
     }
 }
@@ -249,9 +250,25 @@ fn line(line: &statics::Line, section: &Section) -> Line {
             at: xy(o.at),
             rms: o.rms,
         }),
-        stations: line.stations.iter().map(|s| station(s, section.stress(line, s))).collect(),
+        stations: stations(line, section),
+        buckling: line.bending.as_ref().map(super::slender::told),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
     }
+}
+
+/// The stations of a line; in a slender rib with the stresses of both extremes of its moment.
+fn stations(line: &statics::Line, section: &Section) -> Vec<Station> {
+    let told = |(i, s): (usize, &statics::Station)| {
+        let Some(b) = &line.bending else { return station(s, section.stress(line, s)) };
+        let [low, high] = b.moments[i];
+        let at = |moment: f64| {
+            let with = statics::Station { moment, eccentricity: Some(moment / s.thrust), ..*s };
+            section.stress(line, &with)
+        };
+        let stress = at(low).zip(at(high)).map(|(a, b)| [a[0].max(b[0]), a[1].min(b[1])]);
+        Station { moment_min: Some(low), moment_max: Some(high), ..station(s, stress) }
+    };
+    line.stations.iter().enumerate().map(told).collect()
 }
 
 fn safety(from: &statics::Safety, thickness: Option<&statics::Factor>, ring: Option<&Ring>) -> Safety {
@@ -341,5 +358,7 @@ fn station(s: &statics::Station, stress: Option<[f64; 2]>) -> Station {
         depth: s.depth,
         stress_max: stress.map(|[max, _]| max),
         stress_min: stress.map(|[_, min]| min),
+        moment_min: None,
+        moment_max: None,
     }
 }

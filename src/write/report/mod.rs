@@ -2,6 +2,7 @@
 //! A4 paper for those who prepare and check it to sign.
 
 mod areas;
+mod extremes;
 mod factors;
 mod hand;
 mod html;
@@ -108,6 +109,7 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     factors::block(run, page);
     sections::findings(run, page);
     stations::tables(run, page);
+    extremes::block(run, page);
     sections::offsets(run, page);
     sections::proofs(run, page);
     sections::assumptions(run, page);
