@@ -2,6 +2,7 @@
 
 mod copy;
 mod list;
+mod piers;
 mod problem;
 mod ranges;
 mod sheet;
@@ -256,6 +257,7 @@ fn judged(
     facts.sheet.clone_from(&drawing.title.sheet);
     facts.revision.clone_from(&drawing.title.revision);
     let mut model = model::build(&drawing, &settings.into())?;
+    model::backing::trim(&mut model, settings)?;
     model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;

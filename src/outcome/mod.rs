@@ -17,7 +17,7 @@ use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 pub use slender::{Buckling, SectionForces};
 
-pub use areas::AreaShare;
+pub use areas::{AreaShare, PierPush};
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -144,6 +144,9 @@ pub struct Span {
     /// What stands on it by outline or up to a level.
     #[serde(default)]
     pub areas: Vec<AreaShare>,
+    /// The pier at its right end, for every case; empty where no span follows.
+    #[serde(default)]
+    pub piers: Vec<PierPush>,
     /// The load cases.
     pub cases: Vec<Case>,
 }
