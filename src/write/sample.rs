@@ -190,6 +190,12 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                         MagnitudeFrom::Equal
                     },
                     text: Some(format!("P{} = {p} kN", j + 1)),
+                    per_length: None,
+                    over: None,
+                    application: None,
+                    sense: None,
+                    post: None,
+                    sideways: None,
                 }
             })
             .collect();
@@ -249,6 +255,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         let crown = path.point_at(s);
         spans.push(Span {
             areas: Vec::new(),
+            piers: Vec::new(),
             name,
             kind: if sample.rise < 0.0 { "cable".into() } else { "arch".into() },
             axis: Axis {

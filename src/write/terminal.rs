@@ -366,6 +366,18 @@ fn loads(run: &Run, span: &Span, out: &mut Page) {
         out.entry(&name, None, &load_words(run, load));
         name.clear();
     }
+    let (m, _) = text::length_units(&run.units);
+    for area in &span.areas {
+        let at = area.at.map_or_else(String::new, |at| format!(" at x {}", metres(at[0])));
+        let words = format!(
+            "{}: {} pieces, {} {m}², {} in all{at}",
+            area.name,
+            area.pieces,
+            four_digits(area.area),
+            force(area.weight, &run.units)
+        );
+        out.entry("stands on it", None, &words);
+    }
 }
 
 fn load_words(run: &Run, load: &Load) -> String {
@@ -403,6 +415,18 @@ fn load_words(run: &Run, load: &Load) -> String {
     ));
     if let Some(text) = &load.text {
         words.push_str(&format!(" \"{text}\""));
+    }
+    if let Some(application) = &load.application {
+        words.push_str(&format!(" of {application}"));
+    }
+    if let Some(post) = &load.post {
+        words.push_str(&format!(", down the post {}", post.handle.as_deref().unwrap_or(&post.kind)));
+    }
+    if let Some(sideways) = load.sideways {
+        words.push_str(&format!(", {} beside the rib", metres(sideways)));
+    }
+    if let Some(sense) = load.sense {
+        words.push_str(&format!(", {}", sense.words()));
     }
     words
 }

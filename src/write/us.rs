@@ -83,6 +83,21 @@ fn span(span: &mut Span, scale: &Scale) {
     for load in &mut span.loads {
         point(&mut load.at);
         load.force.iter_mut().for_each(|f| *f *= scale.force);
+        times(&mut load.per_length, scale.force / FEET);
+        times(&mut load.sideways, FEET);
+        load.over.iter_mut().flatten().for_each(|x| *x *= FEET);
+    }
+    for area in &mut span.areas {
+        times(&mut area.level, FEET);
+        area.area *= FEET * FEET;
+        area.whole *= FEET * FEET;
+        area.weight *= scale.force;
+        area.at.iter_mut().for_each(point);
+        area.beyond.iter_mut().chain(&mut area.sideways).for_each(|f| *f *= scale.force);
+    }
+    for pier in &mut span.piers {
+        times(&mut pier.least, scale.force);
+        times(&mut pier.greatest, scale.force);
     }
     span.cases.iter_mut().for_each(|c| case(c, scale));
     if let Some(suggestion) = &mut span.suggestion {

@@ -1,6 +1,7 @@
 //! The report: one file that holds everything, as a page for browsers (no network, no script) or as a PDF, set as a
 //! calculation sheet on A4 paper for those who prepare and check it to sign.
 
+mod areas;
 mod envelope;
 mod extremes;
 mod factors;
