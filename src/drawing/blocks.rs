@@ -9,7 +9,9 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use super::gather::keeps;
 use super::insert::Insert;
+use super::names;
 use super::note::{Note, Role};
+use super::outlines;
 use super::roles::{self, CURVES, POINTS};
 use crate::geometry::Affine;
 use crate::job::{Role as JobRole, Settings};
@@ -31,7 +33,10 @@ pub fn expanded<'o>(
     let mut inherits = false;
     let mut inside = false;
     for record in outline.records.iter().filter(|r| !r.ours && !r.in_paper_space()) {
-        inside |= record.block.is_some() && record.kind != "VIEWPORT";
+        let on_sheet = record
+            .block
+            .is_some_and(|b| outline.blocks.get(b).is_some_and(|b| names::is_paper_space(&b.name)));
+        inside |= record.block.is_some() && !on_sheet && record.kind != "VIEWPORT";
         inherits |= record.kind == "INSERT" && lends_layer(settings, &record.layer)?;
     }
     if !(inside || inherits) {
@@ -68,7 +73,8 @@ pub fn expanded<'o>(
 /// Whether a reference on this layer gives its layer to curves on layer `0` of its block: it serves as something, but not as
 /// loads, where the reference is a load itself.
 fn lends_layer(settings: &Settings, layer: &str) -> Result<bool, Refusal> {
-    Ok(roles::role_of(settings, layer)?.is_some_and(|role| role != JobRole::Loads))
+    Ok(outlines::is_area_layer(settings, layer)
+        || roles::role_of(settings, layer)?.is_some_and(|role| role != JobRole::Loads))
 }
 
 fn count_in_model(census: &mut Vec<LayerCensus>, record: &Record) {
@@ -118,7 +124,9 @@ impl<'r> Blocks<'r> {
             let Some(held) = record.block.and_then(|b| content.get_mut(b)) else {
                 continue;
             };
-            if roles::role_of(settings, &record.layer)?.is_some() {
+            if outlines::is_area_layer(settings, &record.layer)
+                || roles::role_of(settings, &record.layer)?.is_some()
+            {
                 held.own.push(record);
             } else if record.layer == "0" && record.kind != "INSERT" {
                 held.zero.push(record);

@@ -3,8 +3,13 @@
 //! Lengths in m, forces in kN (or unit loads), moments in kN·m, stresses in MPa; points are `[x, y]` in the elevation
 //! plane in metres, in the drawing's own origin.
 
+mod areas;
 pub mod bow;
 mod ranges;
+mod slender;
+mod suggestion;
+
+pub use suggestion::{Move, SuggestedAxis, SuggestedDepth, Suggestion};
 
 use std::collections::BTreeMap;
 
@@ -13,6 +18,9 @@ use serde::{Deserialize, Serialize};
 
 use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
+pub use slender::{Buckling, SectionForces};
+
+pub use areas::{AreaShare, PierPush};
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -143,8 +151,17 @@ pub struct Span {
     pub ring: Option<Ring>,
     /// Its loads in their order along the ring.
     pub loads: Vec<Load>,
+    /// What stands on it by outline or up to a level.
+    #[serde(default)]
+    pub areas: Vec<AreaShare>,
+    /// The pier at its right end, for every case; empty where no span follows.
+    #[serde(default)]
+    pub piers: Vec<PierPush>,
     /// The load cases.
     pub cases: Vec<Case>,
+    /// What would suit the loads better; null unless `[mark] suggest` asks for it.
+    #[serde(default)]
+    pub suggestion: Option<Suggestion>,
 }
 
 /// The axis of a span.
@@ -204,6 +221,29 @@ pub enum MagnitudeFrom {
     Area,
 }
 
+/// What tells the sense of a load drawn as a line. A closed list.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+pub enum Sense {
+    /// Its drawn arrowhead.
+    Arrowhead,
+    /// Inferred: within 30° of the vertical, so downward.
+    Downward,
+    /// Inferred: otherwise toward the rib.
+    TowardRib,
+}
+
+impl Sense {
+    /// In words.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::Arrowhead => "sense from its arrowhead",
+            Self::Downward => "taken to act downward",
+            Self::TowardRib => "taken to act toward the rib",
+        }
+    }
+}
+
 /// One load.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize, JsonSchema)]
 pub struct Load {
@@ -223,6 +263,24 @@ pub struct Load {
     pub magnitude_from: MagnitudeFrom,
     /// The label text it was read from, as drawn.
     pub text: Option<String>,
+    /// Of a piece of a line load its size per metre of plan, downward positive; null for a single load.
+    #[serde(default)]
+    pub per_length: Option<f64>,
+    /// Of a piece of a line load the abscissae of its ends.
+    #[serde(default)]
+    pub over: Option<[f64; 2]>,
+    /// The application whose extended data say how large it is.
+    #[serde(default)]
+    pub application: Option<String>,
+    /// The post that it comes down.
+    #[serde(default)]
+    pub post: Option<Source>,
+    /// How far it stands to the left of the plane of the rib, looking in the direction of x, where the roadway is drawn in plan.
+    #[serde(default)]
+    pub sideways: Option<f64>,
+    /// What tells its sense, where it is drawn as a line; null for a point, which acts downward.
+    #[serde(default)]
+    pub sense: Option<Sense>,
 }
 
 /// One load case.
@@ -247,6 +305,10 @@ pub struct Case {
     pub traffic: Vec<serde_json::Value>,
     /// Factors of safety of a ring; null where they do not apply.
     pub safety: Option<Safety>,
+    /// Both extremes of thrust and moment of the governing line, each with what goes with it; empty where that line is only
+    /// the most favourable one.
+    #[serde(default)]
+    pub section_forces: Vec<SectionForces>,
     /// Worst and best factors over the ranges that the job states; null without any.
     #[serde(default)]
     pub ranges: Option<Ranges>,
@@ -314,6 +376,9 @@ pub struct Line {
     pub stations: Vec<Station>,
     /// Proof of optimality.
     pub proof: Option<Proof>,
+    /// Buckling and second-order bending; null but for an elastic rib whose modulus and width are given.
+    #[serde(default)]
+    pub buckling: Option<Buckling>,
 }
 
 /// What an abutment does to the rib.
@@ -363,6 +428,12 @@ pub struct Station {
     pub stress_max: Option<f64>,
     /// Least compression (negative: tension).
     pub stress_min: Option<f64>,
+    /// Least moment in a slender rib, imperfection to either side; null where buckling was not looked at.
+    #[serde(default)]
+    pub moment_min: Option<f64>,
+    /// Greatest moment, alike.
+    #[serde(default)]
+    pub moment_max: Option<f64>,
 }
 
 /// Proof of optimality.
@@ -429,6 +500,8 @@ pub enum Check {
     Equilibrium,
     /// A line of thrust that does not exist.
     NoLine,
+    /// Buckling, second-order bending, shared bending and sharp curvature of an elastic rib.
+    Buckling,
     /// Loads unevenly spaced.
     Spacing,
     /// Loads that stand over no span.
@@ -451,6 +524,8 @@ pub enum Check {
     Support,
     /// The text encoding was assumed.
     Encoding,
+    /// What stands on the ring by its outline or up to a level.
+    Areas,
     /// Something in the drawing that was passed over.
     PassedOver,
     /// A stated limit that could not be judged.
@@ -459,6 +534,8 @@ pub enum Check {
     NoLimit,
     /// What the computation leaves out.
     LeftOut,
+    /// An axis or a depth that would suit the loads better.
+    Suggestion,
 }
 
 /// What became of a check.

@@ -8,9 +8,11 @@ mod analyse;
 mod check;
 mod closest;
 mod elastic;
+mod factors;
 mod joint;
 mod limit;
 mod line;
+mod line_load;
 mod peaks;
 mod piece;
 mod place;
@@ -20,16 +22,21 @@ pub mod range;
 mod rule;
 mod safety;
 mod simplex;
+pub mod slender;
 mod span;
 pub mod stress;
 mod string;
 mod subspace;
+mod suggest;
 mod thickness;
 mod through;
 mod ties;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
+pub use factors::Factors;
+pub use slender::{Bending, Slender};
+pub use suggest::{Funicular, funicular};
 pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};
@@ -41,6 +48,20 @@ pub struct Force {
     pub at: Point,
     /// Components to the right and upward, kN.
     pub force: Vec2,
+}
+
+/// A uniform weight per metre of plan over a part of it, as of a deck or a crowd. It enters the axis where a vertical from above
+/// meets it first.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LineLoad {
+    /// Abscissa where it begins, m.
+    pub from: f64,
+    /// Abscissa where it ends, right of `from`, m.
+    pub to: f64,
+    /// Weight per metre of plan, downward positive, kN/m.
+    pub down: f64,
+    /// Whether a load factor multiplies it.
+    pub varies: bool,
 }
 
 /// Depth of the rib or ring along the axis, measured along the joint, m.
@@ -94,6 +115,8 @@ pub struct Problem {
     pub axis: Path,
     /// Point forces, in any order.
     pub forces: Vec<Force>,
+    /// Uniform loads per metre of plan, in any order. What reaches beyond the axis does not act on it.
+    pub line_loads: Vec<LineLoad>,
     /// Uniform downward weight per metre of axis, acting on the axis, kN/m; 0 for a weightless rib.
     pub weight_on_axis: f64,
     /// Unit weight times width of the ring, kN per square metre of elevation: the weight of its true pieces between
@@ -110,6 +133,11 @@ pub struct Problem {
     pub depth: Option<Depth>,
     /// Number of equal pieces of the ring along the axis; `None`: a continuous ring.
     pub voussoirs: Option<usize>,
+    /// Joints of the ring that are not normal to the axis: intrados and extrados end of each, m, left to right. They are all
+    /// joints that there are, and their own middle, direction and depth count. The weight of the pieces between them is the
+    /// caller's to give as forces with their places in [`Problem::entering`]: [`Problem::ring_weight`] is cut by normals, and is
+    /// refused beside them. Empty: joints normal to the axis.
+    pub joints: Vec<[Point; 2]>,
     /// Coefficient of friction between the pieces; `None`: nothing slides.
     pub friction: Option<f64>,
     /// Strength in compression times width, kN/m, of a uniform block of stress; `None`: unlimited.
@@ -118,6 +146,8 @@ pub struct Problem {
     pub stiffness: Option<f64>,
     /// What strains an elastic rib beside its loads.
     pub effects: Effects,
+    /// What bends a slender rib beside its line of thrust, with its buckling; `None`: not asked.
+    pub slender: Option<Slender>,
     /// Whether the section can take tension.
     pub tension: bool,
     /// How the span is held; `None` when nothing was said.
@@ -138,6 +168,7 @@ impl Problem {
         Self {
             axis,
             forces: Vec::new(),
+            line_loads: Vec::new(),
             weight_on_axis: 0.0,
             ring_weight: 0.0,
             entering: Vec::new(),
@@ -145,10 +176,12 @@ impl Problem {
             weight_varies: false,
             depth: None,
             voussoirs: None,
+            joints: Vec::new(),
             friction: None,
             strength: None,
             stiffness: None,
             effects: Effects::default(),
+            slender: None,
             tension: false,
             support: None,
             hinges: Vec::new(),
@@ -289,6 +322,8 @@ pub struct Line {
     pub stations: Vec<Station>,
     /// Proof of optimality of an optimum.
     pub proof: Option<Proof>,
+    /// The bending of a slender rib, where [`Problem::slender`] asks for it and the line is that of an elastic rib.
+    pub bending: Option<Bending>,
 }
 
 /// A factor of safety.
@@ -424,6 +459,8 @@ pub struct Analysis {
     pub lines: Vec<Line>,
     /// Factors of safety; `None` for a cable, where no depth is known, and for a section that takes tension.
     pub safety: Option<Safety>,
+    /// Least radius of the axis over the depth there, and where; `None` without a depth or where the axis is straight.
+    pub sharpest: Option<(f64, Point)>,
     /// Largest relative residual of the equilibrium self-checks over all lines found.
     pub residual: f64,
 }

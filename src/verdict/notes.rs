@@ -1,6 +1,6 @@
 //! What reader, builder and statics noticed, in words.
 
-use super::{With, length, note, spans};
+use super::{With, drawn, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Doubt, FileNote, Reason, Role};
 use crate::job::Support;
@@ -76,6 +76,30 @@ fn drawing_note(n: &drawing::Note) -> Finding {
             format!(
                 "none of the {viewports} viewports of the layouts shows the whole axis ({part} show a part): the marks are seen \
                  in model space"
+            ),
+        ),
+        Note::TitleMissing { key, pattern } => note(
+            Check::PassedOver,
+            format!("no title block has an attribute that [title] {key} = \"{pattern}\" names"),
+        )
+        .remedy("name the tag of the attribute as the drawing does"),
+        Note::TitleUnclear { what, key, values } => note(
+            Check::PassedOver,
+            format!("title blocks say different things for the {what} ({}), and none was taken", values.join(", ")),
+        )
+        .remedy(format!("name the tag of the attribute: [title] {key}")),
+        Note::NotToScale { source, text, count } => {
+            let others = if *count > 1 { format!(" and {} more texts", count - 1) } else { String::new() };
+            note(Check::Dimension, format!("\"{text}\"{others} say that the drawing, or a part of it, is not to scale"))
+                .entity(source)
+                .uncheck()
+                .remedy("see to it that the arch is drawn to scale, and remove the note or move it into a block")
+        }
+        Note::SurroundingsNotRead => note(
+            Check::PassedOver,
+            format!(
+                "the drawing is larger than {} MB: title block, dimensions and notes about the scale were not looked for",
+                tolerance::SURROUNDINGS >> 20
             ),
         ),
         Note::CurveFitted { source, pieces } => note(
@@ -160,11 +184,14 @@ fn doubt_words(doubt: &Doubt) -> &'static str {
 
 fn role_name(role: Role) -> &'static str {
     match role {
+        Role::Areas => "outline of an area",
         Role::Axis => "axis",
         Role::Loads => "loads",
         Role::Intrados => "intrados",
         Role::Extrados => "extrados",
         Role::Hinges => "hinges",
+        Role::Posts => "posts",
+        Role::Plan => "plan of the roadway",
     }
 }
 
@@ -264,6 +291,7 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
             format!("{} stands on {} and was counted once", source.named(), kept.named()),
         )
         .entity(source),
+        Note::Drawn(n) => drawn::finding(n),
         Note::LoadsEqual { count } => note(
             Check::Loads,
             format!("none of the {count} loads has a figure: all were taken as equal, and forces are multiples of one of them"),
@@ -311,6 +339,24 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
         .entity(source)
         .uncheck()
         .remedy("move it onto the rib, or to another layer"),
+        Note::BackingIdle { span, level } => note(
+            Check::LeftOut,
+            format!("rib.backing = {level:.3} m lies below both ends of {span}: all of the ring works"),
+        )
+        .value(*level, "m")
+        .of(span),
+        Note::BackingTrimmed { span, level, left, right, off, loads } => {
+            let mut text = format!(
+                "haunches solid up to y = {level:.3} m: the working ring runs from ({:.3}, {:.3}) to ({:.3}, {:.3}) m; {:.3} m and \
+                 {:.3} m of axis with all that stands on them are left to the haunches",
+                left.x, left.y, right.x, right.y, off[0], off[1]
+            );
+            let forces: Vec<String> = loads.iter().map(|(_, label, f)| format!("{label} ({f:.3})")).collect();
+            if !forces.is_empty() {
+                text.push_str(&format!(", with the loads {}", forces.join(", ")));
+            }
+            note(Check::LeftOut, text).value(*level, "m").at(spans::xy(*left)).of(span)
+        }
         Note::NoLoads { span } => note(Check::Loads, "no load stands over this span").of(span).uncheck(),
         Note::SizeUnlikely { span, size } => note(
             Check::Unit,
@@ -419,7 +465,8 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
         (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
-    let drawn = span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight);
+    let weight = [MagnitudeFrom::SelfWeight, MagnitudeFrom::Area];
+    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from) && l.over.is_none());
     uneven(drawn.map(|l| l.at[0]).collect())
 }
 
@@ -451,7 +498,10 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
     if model.own_weight(settings).is_none() {
         parts.push("the rib's own weight");
     }
-    parts.extend(["fill", "traffic", "everything out of the plane of the elevation"]);
+    if model.areas.is_empty() {
+        parts.push("fill");
+    }
+    parts.extend(["traffic", "everything out of the plane of the elevation"]);
     if model.forces == Forces::UnitLoads {
         parts.push("stresses");
     }
@@ -463,6 +513,8 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
             (rib.temperature.abs() > 0.0, "temperature"),
             (rib.shrinkage.abs() > 0.0, "shrinkage"),
             (rib.movement != Movement::default(), "movement"),
+            (rib.imperfection.is_some_and(|i| i.abs() > 0.0), "imperfection"),
+            (rib.deck_inertia > 0.0, "deck_inertia"),
         ];
         for (_, key) in sized.into_iter().filter(|(given, _)| *given) {
             let message = format!("[rib] {key} was left out: beside loads of unknown size it has no measure");
