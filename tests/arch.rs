@@ -242,6 +242,34 @@ fn every_case_is_judged_with_its_factors() {
 }
 
 #[test]
+fn stress_is_judged_in_each_case_by_its_own_line() {
+    let mut sheet = Sheet::default();
+    sheet.arc("ARCH-AXIS", [0.0, 0.0], 10.0, 30.0, 150.0);
+    for x in [-5.0, 0.0, 5.0] {
+        sheet.load("ARCH-LOADS-DEAD", [x, 11.0], "30 kN");
+    }
+    sheet.load("ARCH-LOADS-LIVE", [-4.0, 11.0], "120 kN");
+    let job =
+        "[rib]\ndepth = 0.5\nwidth = 1.0\ntension = true\nsupport = \"two-hinged\"\n[limits]\nstress = 2.5\n
+        [[case]]\nname = \"dead\"\nfactors = { \"ARCH-LOADS-DEAD\" = 1.0 }\n
+        [[case]]\nname = \"full\"\nfactors = { \"ARCH-LOADS-*\" = 1.0 }\n";
+    let run = computed(sheet.run(job));
+    let mut values = Vec::new();
+    for case in &run.spans[0].cases {
+        let worst = case.lines[0].stations.iter().map(|s| s.stress_max.unwrap().max(-s.stress_min.unwrap()));
+        let worst = worst.fold(0.0, f64::max);
+        let judged =
+            run.findings.iter().find(|f| f.check == Check::Stress && f.case.as_ref() == Some(&case.name));
+        let judged = judged.unwrap();
+        assert!((judged.value.unwrap() - worst).abs() <= 1e-9 * worst, "{judged:?} {worst}");
+        let expected = if worst > 2.5 { FindingVerdict::Outside } else { FindingVerdict::Within };
+        assert_eq!(judged.verdict, expected);
+        values.push(worst);
+    }
+    assert!(values[0] < 2.5 && values[1] > 2.5, "the two cases fall on either side of the limit: {values:?}");
+}
+
+#[test]
 fn drawn_hinges_fix_the_line() {
     let mut sheet = Sheet::default();
     sheet.arc("ARCH-AXIS", [0.0, 0.0], 10.0, 30.0, 150.0);

@@ -6,11 +6,11 @@ use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
 use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
 use crate::tolerance;
 
-/// Judges one span in one case; the findings get the case's name afterwards.
-pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
+/// Judges one span in one of its cases (by its number); the findings get the case's name afterwards.
+pub fn span(analysis: &Analysis, span: &Span, case: usize, settings: &Settings, findings: &mut Vec<Finding>) {
     let limits = &settings.limits;
     let governing = &slender::state(&analysis.lines[analysis.governs]);
-    let mut judge = Judge { span, analysis, findings };
+    let mut judge = Judge { span, case, analysis, findings };
     if governing.status != Status::Found {
         judge.not_found(governing);
         return;
@@ -70,6 +70,7 @@ fn no_depth(analysis: &Analysis) -> &'static str {
 
 struct Judge<'a> {
     span: &'a Span,
+    case: usize,
     analysis: &'a Analysis,
     findings: &'a mut Vec<Finding>,
 }
@@ -212,7 +213,7 @@ impl Judge<'_> {
 
     /// The greatest edge stress over the stations of the governing line.
     fn stress(&mut self, limit: f64) {
-        let stations = &self.span.cases[0].lines[0].stations;
+        let stations = &self.span.cases[self.case].lines[0].stations;
         let worst = stations
             .iter()
             .filter_map(|s| Some((s.stress_max?.max(-s.stress_min?), s.at)))

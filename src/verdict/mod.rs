@@ -97,7 +97,7 @@ pub fn judge(
                 }
             }
             notes::analysis(analysis, span, &units, &mut about);
-            limits::span(analysis, span, settings, &mut about);
+            limits::span(analysis, span, i, settings, &mut about);
             slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
