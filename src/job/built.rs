@@ -55,11 +55,11 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("intrados", All),
             ("extrados", All),
             ("loads", All),
-            ("posts", Later),
+            ("posts", All),
             ("joints", Later),
             ("hinges", All),
             ("road", Later),
-            ("plan", Later),
+            ("plan", All),
         ],
     ),
     (
@@ -87,7 +87,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         ],
     ),
     ("rib.movement", &[("left", All), ("right", All)]),
-    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", Later), ("decimal", All)]),
+    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", All), ("decimal", All)]),
     (
         "area",
         &[
@@ -134,7 +134,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("geometric_factor", All),
             ("load_factor", All),
             ("pier_push", All),
-            ("dimension", Later),
+            ("dimension", All),
         ],
     ),
     ("accept", &[("assumed", All), ("finding", All)]),
@@ -143,7 +143,16 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         &[
             (
                 "check",
-                Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor", "pier-push"]),
+                Only(&[
+                    "offset",
+                    "ring",
+                    "kern",
+                    "geometric-factor",
+                    "stress",
+                    "load-factor",
+                    "pier-push",
+                    "dimension",
+                ]),
             ),
             ("span", All),
             ("case", All),
@@ -153,9 +162,9 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("until", All),
         ],
     ),
-    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", Later)]),
-    ("title", &[("sheet", Later), ("revision", Later)]),
-    ("report", &[("units", Only(&["si"]))]),
+    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", All)]),
+    ("title", &[("sheet", All), ("revision", All)]),
+    ("report", &[("units", All)]),
 ];
 
 /// The keys of the table with this path; empty for a table whose keys the user chooses (`case.factors`).

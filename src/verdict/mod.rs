@@ -3,13 +3,17 @@
 
 mod accept;
 mod areas;
+mod dimensions;
+mod drawn;
 mod limits;
 mod noise;
 mod notes;
 mod piers;
 mod ranges;
+mod sideways;
 mod slender;
 mod spans;
+mod suggest;
 
 pub use piers::Pushes;
 
@@ -102,6 +106,14 @@ pub fn judge(
             }));
         }
     }
+    for span in &model.spans {
+        for case in cases {
+            let mut about = Vec::new();
+            sideways::couples(span, case, &units.force, &mut about);
+            findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
+        }
+    }
+    dimensions::judge(&model.dimensions, settings, &mut findings);
     for (i, case) in cases.iter().enumerate() {
         let pushes: Vec<Option<&Pushes>> =
             extras.iter().map(|of| of.get(i).and_then(|e| e.pushes.as_ref())).collect();
@@ -116,6 +128,14 @@ pub fn judge(
     let verdict = verdict(&mut findings);
     findings.sort_by_key(|f| (rank(f), f.check));
     Judgement { units, spans, findings, verdict }
+}
+
+/// Adds suggestions to what was judged, as notes.
+pub fn add_suggestions(judged: &mut Judgement) {
+    for span in &judged.spans {
+        judged.findings.extend(suggest::findings(span, &judged.units));
+    }
+    judged.findings.sort_by_key(|f| (rank(f), f.check));
 }
 
 /// Worst first: outside, what keeps the run from being judged, accepted exceptions, limits that hold, notes.
