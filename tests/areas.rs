@@ -305,7 +305,7 @@ fn fill_presses_sideways_as_the_closed_form_says() {
 
 /// A ring of 20 equal voussoirs under its own weight, fill to 3.5 m (as D03) and a load that varies at x = 2.5 m: the greatest
 /// load as scipy's HiGHS finds it from the same joints, with weights and centroids of sectors in closed form and those of the
-/// fill by a Gauss rule of 12 points (a program of its own, not of this project): 278.55036835309 kN, and 246.57887546870 kN
+/// fill by a Gauss rule of 12 points (tests/fixtures/filled_ring.py, which shares no code with the program): 278.55036835309 kN, and 246.57887546870 kN
 /// for 200 voussoirs.
 #[test]
 fn the_greatest_load_on_a_filled_ring_is_that_of_another_solver() {
