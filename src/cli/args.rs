@@ -61,13 +61,32 @@ pub enum Command {
     Demo(DemoArgs),
     /// Print the JSON Schema of the results
     #[command(after_help = SCHEMA_HELP)]
-    Schema,
+    Schema(SchemaArgs),
     /// Print the completions of a shell
     #[command(arg_required_else_help = true, after_help = COMPLETIONS_HELP)]
     Completions(CompletionsArgs),
     /// Print the manual page
     #[command(after_help = MANUAL_HELP)]
     Manual,
+}
+
+/// `thrustmark schema`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct SchemaArgs {
+    /// What `--json` of which command writes
+    #[arg(value_name = "OF", value_enum, default_value = "check")]
+    pub of: SchemaOf,
+}
+
+/// The commands that write JSON.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+pub enum SchemaOf {
+    /// The results of `check` and `mark`
+    Check,
+    /// What `verify` found
+    Verify,
+    /// What `compare` found
+    Compare,
 }
 
 /// `thrustmark mark`
@@ -109,8 +128,8 @@ pub struct CheckArgs {
     #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
     pub json: Option<JsonTarget>,
 
-    /// Report to read, print on A4 and sign, one HTML file for all drawings
-    #[arg(long, value_name = "FILE.html")]
+    /// Report to read, print on A4 and sign, one HTML or PDF file for all drawings
+    #[arg(long, value_name = "FILE.html|FILE.pdf")]
     pub report: Option<PathBuf>,
 
     /// Picture of elevation, offset diagram and force polygon; with several drawings a folder for SVG pictures
@@ -370,8 +389,9 @@ Examples:
 
 const SCHEMA_HELP: &str = concat!(
     "\
-Example:
+Examples:
   thrustmark schema > thrustmark.schema.json
+  thrustmark schema compare > changes.schema.json
 
 ",
     plain_status!()

@@ -2,9 +2,11 @@
 
 mod copy;
 mod list;
+mod piers;
 mod problem;
 mod ranges;
 mod sheet;
+mod suggest;
 mod unmark;
 
 use std::path::{Path, PathBuf};
@@ -22,7 +24,7 @@ use crate::verdict;
 use crate::write::annotate;
 
 pub use copy::{Target, beside, carries_marks, mark, marked, may_write_copy, with_marks};
-pub use list::{LayerLine, Listing, list};
+pub use list::{LayerLine, Listing, LoadLine, list};
 pub use unmark::{Unmarked, unmark};
 
 /// What a run depends on beside its files.
@@ -253,14 +255,18 @@ fn judged(
     let drawing = drawing::read_outlined(source, outline, settings)?;
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
+    facts.sheet.clone_from(&drawing.title.sheet);
+    facts.revision.clone_from(&drawing.title.revision);
     let mut model = model::build(&drawing, &settings.into())?;
+    model::backing::trim(&mut model, settings)?;
     model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;
     let analyses = analyse(&model, &cases, settings)?;
     let extras = extras(&model, &cases, settings, &analyses)?;
     let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses, extras: &extras };
-    let judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
+    let mut judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
+    suggest::add(&computed, settings, &mut judged, environment.today)?;
     Ok((drawing, judged))
 }
 

@@ -55,11 +55,11 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("intrados", All),
             ("extrados", All),
             ("loads", All),
-            ("posts", Later),
+            ("posts", All),
             ("joints", Later),
             ("hinges", All),
             ("road", Later),
-            ("plan", Later),
+            ("plan", All),
         ],
     ),
     (
@@ -73,7 +73,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("friction", All),
             ("tension", All),
             ("joint_loss", Later),
-            ("backing", Later),
+            ("backing", All),
             ("support", All),
             ("elastic_modulus", All),
             ("creep", All),
@@ -87,7 +87,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         ],
     ),
     ("rib.movement", &[("left", All), ("right", All)]),
-    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", Later), ("decimal", All)]),
+    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", All), ("decimal", All)]),
     (
         "area",
         &[
@@ -133,15 +133,27 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("stress", All),
             ("geometric_factor", All),
             ("load_factor", All),
-            ("pier_push", Later),
-            ("dimension", Later),
+            ("pier_push", All),
+            ("dimension", All),
         ],
     ),
     ("accept", &[("assumed", All), ("finding", All)]),
     (
         "accept.finding",
         &[
-            ("check", Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor"])),
+            (
+                "check",
+                Only(&[
+                    "offset",
+                    "ring",
+                    "kern",
+                    "geometric-factor",
+                    "stress",
+                    "load-factor",
+                    "pier-push",
+                    "dimension",
+                ]),
+            ),
             ("span", All),
             ("case", All),
             ("up_to", All),
@@ -150,9 +162,9 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("until", All),
         ],
     ),
-    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", Later)]),
-    ("title", &[("sheet", Later), ("revision", Later)]),
-    ("report", &[("units", Only(&["si"]))]),
+    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", All)]),
+    ("title", &[("sheet", All), ("revision", All)]),
+    ("report", &[("units", All)]),
 ];
 
 /// The keys of the table with this path; empty for a table whose keys the user chooses (`case.factors`).

@@ -7,6 +7,9 @@ mod areas;
 pub mod bow;
 mod ranges;
 mod slender;
+mod suggestion;
+
+pub use suggestion::{Move, SuggestedAxis, SuggestedDepth, Suggestion};
 
 use std::collections::BTreeMap;
 
@@ -17,7 +20,7 @@ use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 pub use slender::{Buckling, SectionForces};
 
-pub use areas::AreaShare;
+pub use areas::{AreaShare, PierPush};
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -43,6 +46,13 @@ pub struct Tool {
     pub name: String,
     /// Its version.
     pub version: String,
+}
+
+impl Tool {
+    /// This program, in this version.
+    pub fn this() -> Self {
+        Self { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() }
+    }
 }
 
 /// The units of all numbers.
@@ -144,8 +154,14 @@ pub struct Span {
     /// What stands on it by outline or up to a level.
     #[serde(default)]
     pub areas: Vec<AreaShare>,
+    /// The pier at its right end, for every case; empty where no span follows.
+    #[serde(default)]
+    pub piers: Vec<PierPush>,
     /// The load cases.
     pub cases: Vec<Case>,
+    /// What would suit the loads better; null unless `[mark] suggest` asks for it.
+    #[serde(default)]
+    pub suggestion: Option<Suggestion>,
 }
 
 /// The axis of a span.
@@ -205,6 +221,29 @@ pub enum MagnitudeFrom {
     Area,
 }
 
+/// What tells the sense of a load drawn as a line. A closed list.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+pub enum Sense {
+    /// Its drawn arrowhead.
+    Arrowhead,
+    /// Inferred: within 30° of the vertical, so downward.
+    Downward,
+    /// Inferred: otherwise toward the rib.
+    TowardRib,
+}
+
+impl Sense {
+    /// In words.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::Arrowhead => "sense from its arrowhead",
+            Self::Downward => "taken to act downward",
+            Self::TowardRib => "taken to act toward the rib",
+        }
+    }
+}
+
 /// One load.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize, JsonSchema)]
 pub struct Load {
@@ -224,6 +263,24 @@ pub struct Load {
     pub magnitude_from: MagnitudeFrom,
     /// The label text it was read from, as drawn.
     pub text: Option<String>,
+    /// Of a piece of a line load its size per metre of plan, downward positive; null for a single load.
+    #[serde(default)]
+    pub per_length: Option<f64>,
+    /// Of a piece of a line load the abscissae of its ends.
+    #[serde(default)]
+    pub over: Option<[f64; 2]>,
+    /// The application whose extended data say how large it is.
+    #[serde(default)]
+    pub application: Option<String>,
+    /// The post that it comes down.
+    #[serde(default)]
+    pub post: Option<Source>,
+    /// How far it stands to the left of the plane of the rib, looking in the direction of x, where the roadway is drawn in plan.
+    #[serde(default)]
+    pub sideways: Option<f64>,
+    /// What tells its sense, where it is drawn as a line; null for a point, which acts downward.
+    #[serde(default)]
+    pub sense: Option<Sense>,
 }
 
 /// One load case.
@@ -477,6 +534,8 @@ pub enum Check {
     NoLimit,
     /// What the computation leaves out.
     LeftOut,
+    /// An axis or a depth that would suit the loads better.
+    Suggestion,
 }
 
 /// What became of a check.

@@ -3,11 +3,19 @@
 
 mod accept;
 mod areas;
+mod dimensions;
+mod drawn;
 mod limits;
+mod noise;
 mod notes;
+mod piers;
 mod ranges;
+mod sideways;
 mod slender;
 mod spans;
+mod suggest;
+
+pub use piers::Pushes;
 
 use jiff::civil::Date;
 
@@ -51,6 +59,8 @@ pub struct Extra {
     pub thickness: Option<Factor>,
     /// Factors over the ranges that the job states.
     pub ranges: Option<Ranges>,
+    /// Pushes at both ends, where the drawing has several spans.
+    pub pushes: Option<Pushes>,
 }
 
 /// Judges what was computed. `today` decides whether an accepted exception has
@@ -66,7 +76,7 @@ pub fn judge(
         Forces::Kilonewtons => Units::si(),
         Forces::UnitLoads => Units::unit_loads(),
     };
-    let spans: Vec<Span> = model
+    let mut spans: Vec<Span> = model
         .spans
         .iter()
         .zip(analyses.iter().zip(extras))
@@ -82,6 +92,9 @@ pub fn judge(
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
                 areas::sideways(model, span, analysis, &mut about);
+                if let Some(drawn) = model.spans.iter().find(|s| s.name == span.name) {
+                    noise::told(drawn, analysis, &mut about);
+                }
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
@@ -93,6 +106,21 @@ pub fn judge(
             }));
         }
     }
+    for span in &model.spans {
+        for case in cases {
+            let mut about = Vec::new();
+            sideways::couples(span, case, &units.force, &mut about);
+            findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
+        }
+    }
+    dimensions::judge(&model.dimensions, settings, &mut findings);
+    for (i, case) in cases.iter().enumerate() {
+        let pushes: Vec<Option<&Pushes>> =
+            extras.iter().map(|of| of.get(i).and_then(|e| e.pushes.as_ref())).collect();
+        let mut about = Vec::new();
+        piers::judge(&case.name, &pushes, settings, &units, &mut spans, &mut about);
+        findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
+    }
     notes::cases(cases, &mut findings);
     notes::left_out(model, settings, &mut findings);
     allow_assumptions(&settings.accept.assumed, &mut findings);
@@ -100,6 +128,14 @@ pub fn judge(
     let verdict = verdict(&mut findings);
     findings.sort_by_key(|f| (rank(f), f.check));
     Judgement { units, spans, findings, verdict }
+}
+
+/// Adds suggestions to what was judged, as notes.
+pub fn add_suggestions(judged: &mut Judgement) {
+    for span in &judged.spans {
+        judged.findings.extend(suggest::findings(span, &judged.units));
+    }
+    judged.findings.sort_by_key(|f| (rank(f), f.check));
 }
 
 /// Worst first: outside, what keeps the run from being judged, accepted exceptions, limits that hold, notes.

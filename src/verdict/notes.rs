@@ -1,6 +1,6 @@
 //! What reader, builder and statics noticed, in words.
 
-use super::{With, length, note, spans};
+use super::{With, drawn, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Doubt, FileNote, Reason, Role};
 use crate::job::Support;
@@ -76,6 +76,30 @@ fn drawing_note(n: &drawing::Note) -> Finding {
             format!(
                 "none of the {viewports} viewports of the layouts shows the whole axis ({part} show a part): the marks are seen \
                  in model space"
+            ),
+        ),
+        Note::TitleMissing { key, pattern } => note(
+            Check::PassedOver,
+            format!("no title block has an attribute that [title] {key} = \"{pattern}\" names"),
+        )
+        .remedy("name the tag of the attribute as the drawing does"),
+        Note::TitleUnclear { what, key, values } => note(
+            Check::PassedOver,
+            format!("title blocks say different things for the {what} ({}), and none was taken", values.join(", ")),
+        )
+        .remedy(format!("name the tag of the attribute: [title] {key}")),
+        Note::NotToScale { source, text, count } => {
+            let others = if *count > 1 { format!(" and {} more texts", count - 1) } else { String::new() };
+            note(Check::Dimension, format!("\"{text}\"{others} say that the drawing, or a part of it, is not to scale"))
+                .entity(source)
+                .uncheck()
+                .remedy("see to it that the arch is drawn to scale, and remove the note or move it into a block")
+        }
+        Note::SurroundingsNotRead => note(
+            Check::PassedOver,
+            format!(
+                "the drawing is larger than {} MB: title block, dimensions and notes about the scale were not looked for",
+                tolerance::SURROUNDINGS >> 20
             ),
         ),
         Note::CurveFitted { source, pieces } => note(
@@ -166,6 +190,8 @@ fn role_name(role: Role) -> &'static str {
         Role::Intrados => "intrados",
         Role::Extrados => "extrados",
         Role::Hinges => "hinges",
+        Role::Posts => "posts",
+        Role::Plan => "plan of the roadway",
     }
 }
 
@@ -265,6 +291,7 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
             format!("{} stands on {} and was counted once", source.named(), kept.named()),
         )
         .entity(source),
+        Note::Drawn(n) => drawn::finding(n),
         Note::LoadsEqual { count } => note(
             Check::Loads,
             format!("none of the {count} loads has a figure: all were taken as equal, and forces are multiples of one of them"),
@@ -312,6 +339,24 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
         .entity(source)
         .uncheck()
         .remedy("move it onto the rib, or to another layer"),
+        Note::BackingIdle { span, level } => note(
+            Check::LeftOut,
+            format!("rib.backing = {level:.3} m lies below both ends of {span}: all of the ring works"),
+        )
+        .value(*level, "m")
+        .of(span),
+        Note::BackingTrimmed { span, level, left, right, off, loads } => {
+            let mut text = format!(
+                "haunches solid up to y = {level:.3} m: the working ring runs from ({:.3}, {:.3}) to ({:.3}, {:.3}) m; {:.3} m and \
+                 {:.3} m of axis with all that stands on them are left to the haunches",
+                left.x, left.y, right.x, right.y, off[0], off[1]
+            );
+            let forces: Vec<String> = loads.iter().map(|(_, label, f)| format!("{label} ({f:.3})")).collect();
+            if !forces.is_empty() {
+                text.push_str(&format!(", with the loads {}", forces.join(", ")));
+            }
+            note(Check::LeftOut, text).value(*level, "m").at(spans::xy(*left)).of(span)
+        }
         Note::NoLoads { span } => note(Check::Loads, "no load stands over this span").of(span).uncheck(),
         Note::SizeUnlikely { span, size } => note(
             Check::Unit,
@@ -421,7 +466,7 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
     let weight = [MagnitudeFrom::SelfWeight, MagnitudeFrom::Area];
-    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from));
+    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from) && l.over.is_none());
     uneven(drawn.map(|l| l.at[0]).collect())
 }
 

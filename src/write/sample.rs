@@ -190,6 +190,12 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                         MagnitudeFrom::Equal
                     },
                     text: Some(format!("P{} = {p} kN", j + 1)),
+                    per_length: None,
+                    over: None,
+                    application: None,
+                    sense: None,
+                    post: None,
+                    sideways: None,
                 }
             })
             .collect();
@@ -249,6 +255,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         let crown = path.point_at(s);
         spans.push(Span {
             areas: Vec::new(),
+            piers: Vec::new(),
             name,
             kind: if sample.rise < 0.0 { "cable".into() } else { "arch".into() },
             axis: Axis {
@@ -269,6 +276,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
             }),
             loads,
             cases,
+            suggestion: None,
         });
     }
     findings.sort_by_key(|f| f.verdict);
@@ -311,6 +319,34 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         output: Some("bridge.thrust.dxf".into()),
         error: None,
     }
+}
+
+/// An arch with an axis and a depth suggested.
+pub fn suggested() -> Run {
+    let mut run = Sample { depth: Some(0.5), ..arch(3, 24.0, 6.0) }.limited(0.01).run();
+    let points: Vec<Xy> = vec![[0.0, 0.0], [6.0, 4.5], [12.0, 6.0], [18.0, 4.5], [24.0, 0.0]];
+    let moves = run.spans[0]
+        .loads
+        .iter()
+        .zip(&points[1..])
+        .map(|(load, p)| Move { load: Some(load.label.clone()), at: load.at, by: p[1] - load.at[1] })
+        .collect();
+    let axis = SuggestedAxis {
+        case: "drawn".into(),
+        status: Status::Found,
+        reason: None,
+        horizontal: Some(200.0),
+        points,
+        moves,
+    };
+    let depth = SuggestedDepth {
+        status: Status::Found,
+        factor: Some(1.2),
+        depth_min: Some(0.6),
+        depth_max: Some(0.6),
+    };
+    run.spans[0].suggestion = Some(Suggestion { axes: vec![axis], depth: Some(depth) });
+    run
 }
 
 /// A drawing that was refused.

@@ -21,6 +21,7 @@
 //! | `REACTIONS` | thrust of the abutments on the rib | 42 ochre | continuous | 0.35 |
 //! | `FLAGS` | limits that do not hold | 20 vermilion | continuous | 0.35 |
 //! | `NOTES` | note block, key, sign sketch | 7 black or white | continuous | 0.18 |
+//! | `SUGGESTED-AXIS` | funicular of the loads as an axis, switched off; only where it is asked for | 142 blue | dash and two dots | 0.35 |
 //!
 //! Of several cases the governing line of the worst one is drawn heavy (most limits that do not hold, then the largest
 //! offset); the others stand beside it on `OTHER-LINES` and all are listed in the note block.
@@ -33,6 +34,7 @@ mod place;
 pub(super) mod polygon;
 mod ring;
 pub(super) mod shown;
+pub(super) mod suggested;
 
 pub use crate::outcome::bow::{MOST_LETTERED, letter, spaces};
 pub use elevation::check_name;
@@ -143,6 +145,7 @@ pub fn annotate(run: &Run, sheet: &Sheet) -> Marks {
         canvas.taken.boxes.push(Box2::upright(at - corner, at + corner));
     }
     let hidden = elevation::draw(run, &spans, &mut canvas);
+    suggested::draw(&spans, &mut canvas);
 
     let (left, right) = (content.low[0] * unit, content.high[0] * unit);
     let mut y = free_below(sheet, content, &canvas, unit) - 3.0 * h;
@@ -155,7 +158,7 @@ pub fn annotate(run: &Run, sheet: &Sheet) -> Marks {
         application: APPLICATION.into(),
         plane: sheet.plane,
         line_types: pen::line_types(&sheet.prefix, h),
-        layers: pen::layers(&sheet.prefix, sheet.frozen),
+        layers: pen::layers(&sheet.prefix, sheet.frozen, spans.iter().any(|s| suggested::axis(s).is_some())),
         marks: canvas.marks,
         facts: facts(run, sheet),
     }

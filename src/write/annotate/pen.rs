@@ -30,6 +30,8 @@ pub enum Layer {
     Flags,
     /// Note block, key and sign sketch.
     Notes,
+    /// The suggested axis.
+    Suggested,
     /// The axis; drawn in pictures only, a marked copy has its own.
     Axis,
     /// The loads; drawn in pictures only, as the axis.
@@ -38,7 +40,7 @@ pub enum Layer {
 
 /// Name after the prefix, colour, line type, weight in hundredths of a millimetre. The module docs of `annotate` tell
 /// the colours by name.
-const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 11] = [
+const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 12] = [
     (Layer::Line, "LINE", 142, None, 50),
     (Layer::OtherLines, "OTHER-LINES", 252, None, 25),
     (Layer::Ring, "RING", 8, None, 9),
@@ -50,6 +52,7 @@ const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 11] = [
     (Layer::Reactions, "REACTIONS", 42, None, 35),
     (Layer::Flags, "FLAGS", 20, None, 35),
     (Layer::Notes, "NOTES", 7, None, 18),
+    (Layer::Suggested, "SUGGESTED-AXIS", 142, Some(Dash::TwoDots), 35),
 ];
 
 /// A kind of broken line.
@@ -81,17 +84,18 @@ pub const DASHES: [(Dash, &str, &str, &[f64]); 5] = [
 /// 0.5 mm of its layer's line weight, which viewers that know line widths take in its place.
 const HEAVY: f64 = 0.16;
 
-/// The layers to be made.
-pub fn layers(prefix: &str, frozen: bool) -> Vec<MarkLayer> {
+/// The layers to be made. That of the suggested axis, the last, is switched off, and left out where nothing is suggested.
+pub fn layers(prefix: &str, frozen: bool, suggested: bool) -> Vec<MarkLayer> {
     LAYERS
         .iter()
-        .map(|&(_, name, colour, dash, weight)| MarkLayer {
+        .filter(|row| suggested || row.0 != Layer::Suggested)
+        .map(|&(layer, name, colour, dash, weight)| MarkLayer {
             name: format!("{prefix}{name}").to_ascii_uppercase(),
             colour,
             line_type: dash.map(|d| d as usize),
             weight: Some(weight),
             frozen,
-            off: false,
+            off: layer == Layer::Suggested,
         })
         .collect()
 }
