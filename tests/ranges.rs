@@ -172,3 +172,32 @@ fn ranges_that_cannot_be_worked_out_are_refused() {
     let tension = run(&ring, &format!("[rib]\ndepth = 1.0\ntension = true\n{}", range("rib.depth")));
     assert!(tension.findings.iter().any(|f| f.unchecks && f.message.contains("ring without tension")));
 }
+
+#[test]
+fn areas_have_ranges_too() {
+    // A fill weighed by the job: the factor at the ends is that of runs with these values stated, and the level is sampled.
+    let ring = drawing(&HALF, &[("ARCH-LOADS-LIVE", [-3.0, 11.0], "40 kN")]);
+    let job = |weight: f64, level: f64| {
+        format!(
+            "[rib]\ndepth = 2.2\nwidth = 1.0\nsupport = \"none\"\n[limits]\nload_factor = 1.1\n\
+             [[area]]\nname = \"fill\"\nlevel = {level}\nunit_weight = {weight}\n\
+             [[case]]\nname = \"live\"\nfactors = {{ \"ARCH-LOADS*\" = 1.0, fill = 1.0 }}\nvary = [\"ARCH-LOADS-LIVE\"]\n"
+        )
+    };
+    let ranges = "[[range]]\nwhat = \"fill.unit_weight\"\nlow = 14\nhigh = 22\n\
+                  [[range]]\nwhat = \"FILL.level\"\nlow = 11.5\nhigh = 13.0\n";
+    let all = run(&ring, &(job(18.0, 12.0) + ranges));
+    let load = factor(&all, "load_factor").clone();
+    assert_eq!(load.worst.found, "sampling");
+    let at = |weight, level| {
+        let run = run(&ring, &job(weight, level));
+        assert!(run.error.is_none(), "{:?}", run.error);
+        run.spans[0].cases[0].safety.as_ref().unwrap().load_factor.unwrap()
+    };
+    let worst = &load.worst.inputs;
+    near(load.worst.value, at(worst["fill.unit_weight"], worst["FILL.level"]), 1e-9);
+    for (weight, level) in [(14.0, 11.5), (22.0, 11.5), (14.0, 13.0), (22.0, 13.0), (18.0, 12.2)] {
+        let here = at(weight, level);
+        assert!(here >= load.worst.value.unwrap() - 1e-9 && here <= load.best.value.unwrap() + 1e-9);
+    }
+}

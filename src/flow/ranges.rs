@@ -278,13 +278,14 @@ fn idle(model: &Model, span: &Span, settings: &Settings, analysis: &Analysis, wh
     let sized = model.forces == Forces::Kilonewtons;
     let (table, key) = what.rsplit_once('.').unwrap_or(("", what));
     let weighs = model.own_weight(settings).is_some();
+    let lends = settings.area.iter().any(|a| a.width.is_none());
     match (table, key) {
         ("rib", "depth") if span.ring.is_some() => Some("the depth was read from the ring lines".into()),
         ("rib", "unit_weight" | "strength" | "width") if !sized => {
             Some("beside loads of unknown size it has no measure".into())
         }
         ("rib", "unit_weight") if !weighs => Some("the rib was stated without weight".into()),
-        ("rib", "width") if !weighs && settings.rib.strength.is_none() => {
+        ("rib", "width") if !weighs && !lends && settings.rib.strength.is_none() => {
             Some("neither weight nor strength of the rib counts".into())
         }
         ("rib", "depth" | "width" | "unit_weight" | "strength" | "friction" | "joint_loss" | "backing") => {
@@ -304,6 +305,8 @@ fn effect(case: &Case, settings: &Settings, input: &RangeInput, kind: Kind) -> E
         return Effect::None;
     }
     let (table, key) = input.what.rsplit_once('.').unwrap_or(("", &input.what));
+    // Cases know an area by its own spelling.
+    let table = settings.area.iter().find(|a| same_name(&a.name, table)).map_or(table, |a| a.name.as_str());
     // Weights that the load factor multiplies meet it in a product.
     let scaled = |part: &str| {
         if case.varies(part) && kind != Kind::Geometric { Effect::Unknown } else { Effect::QuasiConcave }
@@ -314,11 +317,16 @@ fn effect(case: &Case, settings: &Settings, input: &RangeInput, kind: Kind) -> E
         ("rib", "strength" | "friction") => Effect::Rising,
         ("rib", "unit_weight") if !own => Effect::None,
         ("rib", "unit_weight") => scaled(cases::OWN_WEIGHT),
+        ("rib", "width") if settings.area.iter().any(|a| a.width.is_none() && case.varies(&a.name)) => {
+            Effect::Unknown
+        }
         ("rib", "width") if own => scaled(cases::OWN_WEIGHT),
+        ("rib", "width") if settings.area.iter().any(|a| a.width.is_none()) => Effect::QuasiConcave,
         ("rib", "width") if kind == Kind::Geometric => Effect::None,
         ("rib", "width") => Effect::Rising,
         ("rib", "depth") if !own && settings.area.is_empty() => Effect::Rising,
         ("rib", _) => Effect::Unknown,
+        (area, _) if case.factor(area).abs() <= 0.0 => Effect::None,
         // Fill that the extrados rises through does not grow in proportion.
         (_, "level") => Effect::Unknown,
         (area, _) => scaled(area),

@@ -6,11 +6,11 @@
 //!
 //! - A greater strength or coefficient of friction, and a greater depth of a weightless ring, leave every admissible line
 //!   admissible: the factor *rises* with them, and its extremes lie at their ends.
-//! - In a weight (unit weight, width, level of a fill) together with the reaction and the load factor the admissible set is
+//! - In a weight (unit weight, width) together with the reaction and the load factor the admissible set is
 //!   convex (`N² / f b` is convex in `N` and `f b` together), so the factor is *quasi-concave* in it: it has no least value
 //!   inside, and its worst value over a box lies at a corner [S. Boyd and L. Vandenberghe, Convex Optimization, 2004,
 //!   sections 3.4 and 3.2.6]. Its best value may lie inside.
-//! - Of all others (the depth of a ring that weighs) nothing is known, and they are sampled.
+//! - Of all others (the depth of a ring that weighs, the level of a fill) nothing is known, and they are sampled.
 //!
 //! An extreme that lies at a corner is exact; one that is sampled is the worst (or best) of the values looked at, refined
 //! by golden sections about it.
