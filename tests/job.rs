@@ -374,10 +374,10 @@ fn a_byte_order_mark_and_crlf_are_no_trouble() {
 
 #[test]
 fn all_problems_are_told_at_once() {
-    let refusal = refusal("[rib]\nwidth = -1\ndetph = 2\nbacking = 3\n");
+    let refusal = refusal("[rib]\nwidth = -1\ndetph = 2\njoint_loss = 3\n");
     assert_eq!(refusal.line, Some(2));
     assert!(refusal.message.contains("line 3: `rib.detph`"), "{refusal}");
-    assert!(refusal.message.contains("line 4: `rib.backing`"), "{refusal}");
+    assert!(refusal.message.contains("line 4: `rib.joint_loss`"), "{refusal}");
     let many: String = (0..30).map(|n| format!("k{n} = 1\n")).collect();
     assert!(parse(&many).unwrap_err().message.contains("and 21 more"));
 }
