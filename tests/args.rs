@@ -4,7 +4,7 @@ use std::path::{Path, PathBuf};
 
 use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser};
-use thrustmark::cli::args::{Args, Command, JsonTarget};
+use thrustmark::cli::args::{Args, Command, JsonTarget, SchemaArgs, SchemaOf};
 
 fn parse(arguments: &[&str]) -> Result<Args, clap::Error> {
     Args::try_parse_from(std::iter::once("thrustmark").chain(arguments.iter().copied()))
@@ -52,7 +52,13 @@ fn check_unmark_list_and_schema() {
     assert!(unmark.force);
     let Command::List(list) = parse(&["list", "a.dxf", "-j", "x.toml"]).unwrap().command else { panic!() };
     assert_eq!(list.job.as_deref(), Some(Path::new("x.toml")));
-    assert_eq!(parse(&["schema"]).unwrap().command, Command::Schema);
+    for (given, of) in [
+        (&["schema"][..], SchemaOf::Check),
+        (&["schema", "verify"], SchemaOf::Verify),
+        (&["schema", "compare"], SchemaOf::Compare),
+    ] {
+        assert_eq!(parse(given).unwrap().command, Command::Schema(SchemaArgs { of }));
+    }
 }
 
 #[test]

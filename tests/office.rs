@@ -590,6 +590,47 @@ fn a_moved_axis_is_told_with_its_place() {
 }
 
 #[test]
+fn what_verify_and_compare_write_holds_to_their_schemas() {
+    let office = Office::new();
+    office.run(&["mark", "masonry-ring.dxf"]);
+    for (command, arguments) in [
+        ("verify", &["verify", "masonry-ring.thrust.dxf", "masonry-ring.dxf"][..]),
+        ("verify", &["verify", "masonry-ring.thrust.dxf", "unsymmetric-rib.dxf"]),
+        ("verify", &["verify", "masonry-ring.dxf"]),
+        ("compare", &["compare", "masonry-ring.dxf", "unsymmetric-rib.dxf"]),
+        ("compare", &["compare", "masonry-ring.dxf", "absent.dxf"]),
+    ] {
+        let schema: Value = serde_json::from_str(&office.run(&["schema", command]).out).unwrap();
+        let validator = jsonschema::validator_for(&schema).unwrap();
+        let (_, document) = office.json(arguments);
+        let problems: Vec<String> = validator.iter_errors(&document).map(|e| e.to_string()).collect();
+        assert!(problems.is_empty(), "{arguments:?}: {problems:?}");
+        assert!(document[command].is_null() != document["error"].is_null());
+    }
+}
+
+#[test]
+fn a_thinner_ring_is_told_with_its_place() {
+    let office = Office::new();
+    fs::create_dir(office.path("old")).unwrap();
+    for name in ["unsymmetric-rib.dxf", "thrustmark.toml"] {
+        fs::copy(office.path(name), office.path(&format!("old/{name}"))).unwrap();
+    }
+    let job = |depth: &str| format!("[rib]\nwidth = 1.0\nsupport = \"none\"\ndepth = {depth}\n");
+    fs::write(office.path("old/thrustmark.toml"), job("[1.0, 0.6]")).unwrap();
+    fs::write(office.path("thrustmark.toml"), job("[1.0, 0.5]")).unwrap();
+    let (status, value) = office.json(&["compare", "old/unsymmetric-rib.dxf", "unsymmetric-rib.dxf"]);
+    assert_eq!(status, 1, "{value:#}");
+    let changes = value["compare"]["changes"].as_array().unwrap();
+    let lost = changes.iter().find(|c| c["what"] == "ring" && c["name"] == "depth").unwrap();
+    // The depth is linear from springing to crown: most is lost at the crown.
+    for (key, depth) in [("old", 0.6), ("new", 0.5)] {
+        assert!((lost[key].as_f64().unwrap() - depth).abs() < 1e-9, "{lost:#}");
+    }
+    assert!(lost["message"].as_str().unwrap().contains("thinner by up to 100"), "{lost:#}");
+}
+
+#[test]
 fn what_cannot_be_compared_is_an_error() {
     let office = Office::new();
     let name = "masonry-ring.dxf";

@@ -76,7 +76,9 @@ fn a_pdf_report_is_read_by_another_program() {
     assert_eq!(output.status.code(), Some(0), "{}", told(&output));
     let other = |program: &str, arguments: &[&str]| {
         let output = Command::new(program).current_dir(office.path()).args(arguments).output().unwrap();
-        assert!(output.status.success() && output.stderr.is_empty(), "{}", told(&output));
+        // Older poppler takes the standard's own form of one entry of tagged files for an error.
+        let noise = told(&output).replace("Syntax Error: Suspects object is wrong type (boolean)", "");
+        assert!(output.status.success() && noise.trim().is_empty(), "{noise}");
         String::from_utf8(output.stdout).unwrap()
     };
     let facts = other("pdfinfo", &["r.pdf"]);

@@ -61,13 +61,32 @@ pub enum Command {
     Demo(DemoArgs),
     /// Print the JSON Schema of the results
     #[command(after_help = SCHEMA_HELP)]
-    Schema,
+    Schema(SchemaArgs),
     /// Print the completions of a shell
     #[command(arg_required_else_help = true, after_help = COMPLETIONS_HELP)]
     Completions(CompletionsArgs),
     /// Print the manual page
     #[command(after_help = MANUAL_HELP)]
     Manual,
+}
+
+/// `thrustmark schema`
+#[derive(Debug, Clone, PartialEq, Eq, ClapArgs)]
+pub struct SchemaArgs {
+    /// What `--json` of which command writes
+    #[arg(value_name = "OF", value_enum, default_value = "check")]
+    pub of: SchemaOf,
+}
+
+/// The commands that write JSON.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+pub enum SchemaOf {
+    /// The results of `check` and `mark`
+    Check,
+    /// What `verify` found
+    Verify,
+    /// What `compare` found
+    Compare,
 }
 
 /// `thrustmark mark`
@@ -370,8 +389,9 @@ Examples:
 
 const SCHEMA_HELP: &str = concat!(
     "\
-Example:
+Examples:
   thrustmark schema > thrustmark.schema.json
+  thrustmark schema compare > changes.schema.json
 
 ",
     plain_status!()

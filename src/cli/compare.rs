@@ -1,13 +1,30 @@
 //! `compare`: what changed between two revisions, in words and as JSON.
 
+use schemars::JsonSchema;
+use serde::Serialize;
+
 use super::args::{CompareArgs, JsonTarget};
 use super::{deliver, document_of, json_may_replace};
 use crate::flow::Environment;
 use crate::job::Job;
 use crate::office::compare::{self, Change, Compared, Target, What};
+use crate::outcome::{CONTRACT, Tool};
 use crate::refusal::Refusal;
 use crate::write::file;
 use crate::write::text::plain;
+
+/// What `--json` writes.
+#[derive(Serialize, JsonSchema)]
+pub(super) struct Document<'a> {
+    /// Version of the contract.
+    contract: u32,
+    /// The program that wrote it.
+    tool: Tool,
+    /// What was found; null when it could not be told.
+    compare: Option<&'a Compared>,
+    /// Why it could not be told.
+    error: Option<&'a Refusal>,
+}
 
 /// Runs the command: 0 same, 1 different.
 pub fn compare(args: &CompareArgs) -> Result<u8, Refusal> {
@@ -20,7 +37,13 @@ pub fn compare(args: &CompareArgs) -> Result<u8, Refusal> {
         compare::compare(&args.old, &args.new, job.as_ref(), Environment::of_process()?, target)
     });
     let words = done.as_ref().map(words).unwrap_or_default();
-    deliver(args.json.as_ref(), &sources, args.force, &words, &document_of("compare", done.as_ref())?)?;
+    let document = Document {
+        contract: CONTRACT,
+        tool: Tool::this(),
+        compare: done.as_ref().ok(),
+        error: done.as_ref().err(),
+    };
+    deliver(args.json.as_ref(), &sources, args.force, &words, &document_of(&document)?)?;
     Ok(u8::from(!done?.same))
 }
 

@@ -28,7 +28,7 @@ use crate::refusal::Refusal;
 use crate::write::file::{self, Replace};
 use crate::write::text::plain;
 use crate::write::{json, terminal};
-use args::{Args, CheckArgs, Command, DemoArgs, JsonTarget, ListArgs, UnmarkArgs};
+use args::{Args, CheckArgs, Command, DemoArgs, JsonTarget, ListArgs, SchemaOf, UnmarkArgs};
 use outputs::Outputs;
 use progress::Progress;
 
@@ -81,7 +81,7 @@ pub fn run() -> ExitCode {
         Command::Demo(args) => demo(args),
         Command::Completions(args) => Ok(manual::completions(args.shell)),
         Command::Manual => manual::manual(),
-        Command::Schema => json::schema().map(|schema| {
+        Command::Schema(args) => schema(args.of).map(|schema| {
             say(&schema);
             0
         }),
@@ -90,6 +90,15 @@ pub fn run() -> ExitCode {
         tell(&format!("thrustmark: {}\n", plain(&refusal.to_string())));
         REFUSED
     }))
+}
+
+/// The schema of what a command writes as JSON.
+fn schema(of: SchemaOf) -> Result<String, Refusal> {
+    match of {
+        SchemaOf::Check => json::schema(),
+        SchemaOf::Verify => json::schema_of::<verify::Document<'static>>(),
+        SchemaOf::Compare => json::schema_of::<compare::Document<'static>>(),
+    }
 }
 
 /// `check`, and `mark` when a place for the copies is given (which may be "beside each drawing").
@@ -132,11 +141,7 @@ fn check(args: &CheckArgs, mark: Option<Option<&Path>>, store: Option<&Store>) -
 }
 
 fn document(runs: Vec<Run>) -> Document {
-    Document {
-        contract: CONTRACT,
-        tool: Tool { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() },
-        runs,
-    }
+    Document { contract: CONTRACT, tool: Tool::this(), runs }
 }
 
 /// The runs of all drawings, in their order, with the progress told on the way.
@@ -237,25 +242,12 @@ fn write_json(target: &Path, sources: &[&Path], force: bool, text: &str) -> Resu
     })
 }
 
-/// A document of one result that is no run: contract and tool as in the results, then the result under its name, or the
-/// error.
-fn document_of(name: &str, result: Result<&impl Serialize, &Refusal>) -> Result<String, Refusal> {
-    let value = |v: Result<serde_json::Value, serde_json::Error>| {
-        v.map_err(|e| {
-            Refusal::new("json", format!("the result could not be written as JSON: {e}"), "Please report it.")
-        })
-    };
-    let (result, error) = match result {
-        Ok(result) => (value(serde_json::to_value(result))?, serde_json::Value::Null),
-        Err(refusal) => (serde_json::Value::Null, value(serde_json::to_value(refusal))?),
-    };
-    let document = serde_json::json!({
-        "contract": CONTRACT,
-        "tool": {"name": env!("CARGO_PKG_NAME"), "version": env!("CARGO_PKG_VERSION")},
-        name: result,
-        "error": error,
-    });
-    Ok(format!("{document:#}\n"))
+/// A document of one result that is no run, as text.
+fn document_of(document: &impl Serialize) -> Result<String, Refusal> {
+    let text = serde_json::to_value(document).map_err(|e| {
+        Refusal::new("json", format!("the result could not be written as JSON: {e}"), "Please report it.")
+    })?;
+    Ok(format!("{text:#}\n"))
 }
 
 /// A results file may replace another JSON document of this tool, and anything with `--force`.

@@ -2,14 +2,31 @@
 
 use std::path::Path;
 
+use schemars::JsonSchema;
+use serde::Serialize;
+
 use super::args::{JsonTarget, VerifyArgs};
 use super::{deliver, document_of, json_may_replace};
 use crate::flow::Environment;
 use crate::job::Job;
 use crate::office::verify::{self, State, Verified};
+use crate::outcome::{CONTRACT, Tool};
 use crate::refusal::Refusal;
 use crate::write::file;
 use crate::write::text::plain;
+
+/// What `--json` writes.
+#[derive(Serialize, JsonSchema)]
+pub(super) struct Document<'a> {
+    /// Version of the contract.
+    contract: u32,
+    /// The program that wrote it.
+    tool: Tool,
+    /// What was found; null when it could not be told.
+    verify: Option<&'a Verified>,
+    /// Why it could not be told.
+    error: Option<&'a Refusal>,
+}
 
 /// Runs the command: 0 current, 1 stale.
 pub fn verify(args: &VerifyArgs) -> Result<u8, Refusal> {
@@ -21,7 +38,13 @@ pub fn verify(args: &VerifyArgs) -> Result<u8, Refusal> {
         verify::verify(&args.marked, args.source.as_deref(), job.as_ref(), Environment::of_process()?)
     });
     let words = done.as_ref().map(words).unwrap_or_default();
-    deliver(args.json.as_ref(), &sources, args.force, &words, &document_of("verify", done.as_ref())?)?;
+    let document = Document {
+        contract: CONTRACT,
+        tool: Tool::this(),
+        verify: done.as_ref().ok(),
+        error: done.as_ref().err(),
+    };
+    deliver(args.json.as_ref(), &sources, args.force, &words, &document_of(&document)?)?;
     Ok(match done?.state {
         State::Current => 0,
         State::Stale => 1,

@@ -3,6 +3,7 @@
 use std::path::{Path, PathBuf};
 
 use jiff::civil::Date;
+use schemars::JsonSchema;
 use serde::Serialize;
 
 use crate::flow::{self, Environment};
@@ -13,7 +14,7 @@ use crate::tags::{self, FoundMarks, Hashing, Options, Outline, Source};
 use crate::write::annotate::settings_hash;
 
 /// Whether a marked copy may be issued as it stands.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, JsonSchema)]
 #[serde(rename_all = "kebab-case")]
 pub enum State {
     /// It is what marking the source again gives, to the byte.
@@ -23,7 +24,7 @@ pub enum State {
 }
 
 /// What has changed. A closed list.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, JsonSchema)]
 #[serde(rename_all = "kebab-case")]
 pub enum What {
     /// The source.
@@ -43,7 +44,7 @@ pub enum What {
 }
 
 /// One thing that makes a mark stale.
-#[derive(Debug, Clone, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, JsonSchema)]
 pub struct Reason {
     /// What has changed.
     pub what: What,
@@ -52,7 +53,7 @@ pub struct Reason {
 }
 
 /// What the marks say of themselves.
-#[derive(Debug, Clone, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, JsonSchema)]
 pub struct Recorded {
     /// Name of the source.
     pub source: Option<String>,
@@ -86,7 +87,7 @@ impl Recorded {
 }
 
 /// What [`verify`] found.
-#[derive(Debug, Clone, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, JsonSchema)]
 pub struct Verified {
     /// The marked copy, as named.
     pub file: String,

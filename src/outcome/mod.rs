@@ -48,6 +48,13 @@ pub struct Tool {
     pub version: String,
 }
 
+impl Tool {
+    /// This program, in this version.
+    pub fn this() -> Self {
+        Self { name: env!("CARGO_PKG_NAME").into(), version: env!("CARGO_PKG_VERSION").into() }
+    }
+}
+
 /// The units of all numbers.
 #[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize, JsonSchema)]
 pub struct Units {

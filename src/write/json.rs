@@ -31,7 +31,15 @@ pub fn to_json(document: &Document) -> Result<String, Refusal> {
 ///
 /// Only when the schema cannot be put into JSON, a fault of the program.
 pub fn schema() -> Result<String, Refusal> {
-    let schema = schemars::schema_for!(Document);
+    schema_of::<Document>()
+}
+
+/// The JSON Schema of another type that is written as JSON.
+///
+/// # Errors
+/// As [`schema`].
+pub fn schema_of<T: schemars::JsonSchema>() -> Result<String, Refusal> {
+    let schema = schemars::schema_for!(T);
     let mut text = serde_json::to_string_pretty(&schema).map_err(|e| {
         Refusal::new(
             "json",

@@ -11,6 +11,7 @@ mod spans;
 use std::collections::BTreeMap;
 use std::path::Path;
 
+use schemars::JsonSchema;
 use serde::Serialize;
 use serde_json::Value;
 
@@ -25,7 +26,7 @@ use crate::write::file::{self, Replace};
 pub const HOLDS: &str = "changes";
 
 /// What has changed. A closed list.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Serialize)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Serialize, JsonSchema)]
 #[serde(rename_all = "kebab-case")]
 pub enum What {
     /// The verdict of the run.
@@ -51,7 +52,7 @@ pub enum What {
 }
 
 /// One change. Lengths in m, forces in the units of the runs.
-#[derive(Debug, Clone, PartialEq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Serialize, JsonSchema)]
 pub struct Change {
     /// What has changed.
     pub what: What,
@@ -108,7 +109,7 @@ impl Change {
 }
 
 /// One of the two drawings.
-#[derive(Debug, Clone, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, JsonSchema)]
 pub struct Side {
     /// As named.
     pub file: String,
@@ -136,7 +137,7 @@ impl Side {
 }
 
 /// What [`compare`] found.
-#[derive(Debug, Clone, PartialEq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Serialize, JsonSchema)]
 pub struct Compared {
     /// The old drawing.
     pub old: Side,

@@ -2,7 +2,7 @@
 
 use super::{Change, What, loads, results, same_length};
 use crate::geometry::{Path, Point, Segment, Vec2};
-use crate::outcome::{Axis, Run, Span, Xy};
+use crate::outcome::{Axis, Run, Span, Station, Xy};
 use crate::tolerance;
 use crate::write::text::{metres, millimetres};
 
@@ -227,10 +227,69 @@ fn ring(old: &Span, new: &Span, found: &mut Vec<Change>) {
             found.push(change(words).named(name).values(was, is, "m"));
         }
     }
+    thinned(old, new, found);
     if before.width != after.width {
         let word = |w: Option<f64>| w.map_or("not given".into(), |w| format!("{} m", metres(w)));
         let words =
             format!("{}: width of the ring {}, was {}", new.name, word(after.width), word(before.width));
         found.push(change(words).named("width").values(before.width, after.width, "m"));
     }
+}
+
+/// Where the ring has lost most of its depth, at joints that lie the same part of the axis from the left springing.
+fn thinned(old: &Span, new: &Span, found: &mut Vec<Change>) {
+    let before = depths(old);
+    let lost = |joint: &Joint| {
+        let was = depth_at(&before, joint.part)?;
+        Some((was - joint.depth, was, *joint))
+    };
+    let most = depths(new).iter().filter_map(lost).max_by(|a, b| a.0.total_cmp(&b.0));
+    let Some((by, was, joint)) = most.filter(|most| most.0 > tolerance::REVISION_LENGTH) else {
+        return;
+    };
+    let words = format!(
+        "{}: the ring is thinner by up to {} mm, at x {} m, y {} m: depth {} m, was {} m",
+        new.name,
+        millimetres(by),
+        metres(joint.at[0]),
+        metres(joint.at[1]),
+        metres(joint.depth),
+        metres(was)
+    );
+    found.push(Change::new(What::Ring, words).of(&new.name).named("depth").at(joint.at).values(
+        was,
+        joint.depth,
+        "m",
+    ));
+}
+
+/// A joint with its depth.
+#[derive(Debug, Clone, Copy)]
+struct Joint {
+    /// Which part of the axis lies before it.
+    part: f64,
+    at: Xy,
+    depth: f64,
+}
+
+/// The joints that the results tell of, from the left.
+fn depths(span: &Span) -> Vec<Joint> {
+    let lines = span.cases.iter().flat_map(|case| &case.lines);
+    let stations = lines.map(|line| &line.stations).find(|s| s.iter().any(|s| s.depth.is_some()));
+    let joint = |s: &Station| Some(Joint { part: s.s / span.axis.length, at: s.at, depth: s.depth? });
+    let mut joints: Vec<Joint> = stations.into_iter().flatten().filter_map(joint).collect();
+    joints.sort_by(|a, b| a.part.total_cmp(&b.part));
+    joints
+}
+
+/// The depth at a part of the axis, linear between the joints on either side.
+fn depth_at(joints: &[Joint], part: f64) -> Option<f64> {
+    let next = joints.partition_point(|j| j.part < part);
+    let (before, after) = (joints.get(next.saturating_sub(1))?, joints.get(next).or(joints.last())?);
+    let width = after.part - before.part;
+    if width <= 0.0 {
+        return Some(before.depth.min(after.depth));
+    }
+    let along = ((part - before.part) / width).clamp(0.0, 1.0);
+    Some(before.depth + (after.depth - before.depth) * along)
 }

@@ -365,7 +365,7 @@ pub fn proofs(run: &Run, page: &mut Page) {
          equilibrium over all joints of the case.",
     );
     if run.units.length == "ft" {
-        page.paragraph("Values and bounds stand in m and kN, as they were computed.");
+        page.paragraph("Values and bounds are those computed, in m and kN.");
     }
     page.table(
         "Value reached and bound, per line",

@@ -112,7 +112,9 @@ fn layout(columns: &[Column], rows: &[Vec<String>], lettering: &Lettering) -> La
     let natural: Vec<f64> = (0..columns.len())
         .map(|i| {
             let in_cells = cells.iter().filter_map(|r| r.get(i)).map(|c| lettering.width(c));
-            in_cells.fold(lettering.longest_word(&names[i]) * bold, f64::max)
+            // A head of many words takes about two lines.
+            let head = lettering.longest_word(&names[i]).max(0.55 * lettering.width(&names[i]));
+            in_cells.fold(head * bold, f64::max)
         })
         .collect();
     let least: Vec<f64> = (0..columns.len())
