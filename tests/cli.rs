@@ -294,7 +294,7 @@ fn mistakes_are_told_with_the_way_to_mend_them() {
     let cases: [(&str, &str, &[&str]); 4] = [
         ("key.toml", "[rib]\ndepht = 0.4\n", &["depht", "depth", "line 2"]),
         ("layer.toml", "[layers]\naxis = \"ARCH-AXES\"\n", &["ARCH-AXES", "ARCH-AXIS"]),
-        ("built.toml", "[rib]\nbacking = 1.0\n", &["backing", "line 2"]),
+        ("built.toml", "[rib]\njoint_loss = 0.01\n", &["joint_loss", "line 2"]),
         ("value.toml", "[limits]\noffset = -1\n", &["offset", "line 2"]),
     ];
     for (name, job, words) in cases {
