@@ -53,6 +53,8 @@ pub struct Drawing {
     pub points: Vec<PointLike>,
     /// Points on the hinge layers, in the order of the file.
     pub hinges: Vec<PointLike>,
+    /// Curves of the road line, in the order of the file; read only where the job has traffic.
+    pub road: Vec<Curve>,
     /// Texts on the load layers, in the order of the file.
     pub texts: Vec<Text>,
     /// Viewports of the layouts.

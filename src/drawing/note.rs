@@ -18,6 +18,8 @@ pub enum Role {
     Extrados,
     /// Hinges of the rib.
     Hinges,
+    /// The line that traffic runs on.
+    Road,
 }
 
 impl Role {
@@ -29,6 +31,7 @@ impl Role {
             Self::Intrados => "intrados",
             Self::Extrados => "extrados",
             Self::Hinges => "hinges",
+            Self::Road => "road",
         }
     }
 }

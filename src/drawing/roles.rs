@@ -38,6 +38,7 @@ pub fn named(
         Role::Intrados => JobRole::Intrados,
         Role::Extrados => JobRole::Extrados,
         Role::Hinges => JobRole::Hinges,
+        Role::Road => JobRole::Road,
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();

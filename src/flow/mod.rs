@@ -3,6 +3,7 @@
 mod list;
 mod problem;
 mod sheet;
+mod traffic;
 mod unmark;
 
 use std::io::Read;
@@ -231,7 +232,8 @@ fn stages(
     own_weight_stated(&settings)?;
     let cases = model::cases::cases(&model, &settings)?;
     let analyses = analyse(&model, &cases, &settings)?;
-    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses };
+    let traffic = traffic::run(&model, &cases, &settings)?;
+    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses, traffic: &traffic };
     let judged = verdict::judge(&settings, &drawing.notes, &computed, environment.today);
     let run = Run {
         units: judged.units,

@@ -14,6 +14,6 @@ pub(super) fn nearest<'c>(word: &str, candidates: impl IntoIterator<Item = &'c s
 }
 
 /// Whether two names are one when capitals and small letters do not matter.
-pub(super) fn same_name(one: &str, other: &str) -> bool {
+pub fn same_name(one: &str, other: &str) -> bool {
     one.to_lowercase() == other.to_lowercase()
 }

@@ -13,6 +13,7 @@ pub mod note;
 pub mod pieces;
 pub mod piers;
 pub mod ring;
+pub mod traffic;
 pub mod weight;
 
 use crate::drawing::{Drawing, Source};
@@ -33,6 +34,8 @@ pub struct Model {
     pub spans: Vec<Span>,
     /// What forces are given in.
     pub forces: Forces,
+    /// The road line in its pieces, left to right, m.
+    pub road: Vec<Path>,
     /// Loads that stand over no span.
     pub off_span: Vec<Load>,
     /// What was noticed.
@@ -121,6 +124,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     let mut notes = Vec::new();
     let mut spans = spans(drawing, &mut notes)?;
     hinges(drawing, &mut spans, settings.depth, &mut notes);
+    let road = traffic::road(&drawing.road, metres, &mut notes)?;
     let (loads, forces) = loads::loads(&drawing.points, &drawing.texts, settings, metres, &mut notes)?;
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
@@ -131,7 +135,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     }));
     let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
     notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
-    Ok(Model { spans, forces, off_span, notes })
+    Ok(Model { spans, forces, road, off_span, notes })
 }
 
 /// Gives each drawn hinge to the span on whose rib it stands: within half the depth (`stated`, m, where no ring is drawn)

@@ -4,6 +4,7 @@
 //! plane in metres, in the drawing's own origin.
 
 pub mod bow;
+mod traffic;
 
 use std::collections::BTreeMap;
 
@@ -11,6 +12,11 @@ use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
 
 use crate::refusal::Refusal;
+
+pub use traffic::{
+    AtWorst, Axle, Direction, EnvelopeStation, Forces, InfluenceLine, InfluenceOrdinate, PushRange, Traffic,
+    Worst, WorstValue,
+};
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -235,7 +241,7 @@ pub struct Case {
     /// The lines of thrust, the governing one first.
     pub lines: Vec<Line>,
     /// Traffic on top of this case.
-    pub traffic: Vec<serde_json::Value>,
+    pub traffic: Vec<Traffic>,
     /// Factors of safety of a ring; null where they do not apply.
     pub safety: Option<Safety>,
     /// Largest relative residual of the equilibrium self-checks.
@@ -446,6 +452,8 @@ pub enum Check {
     NoLimit,
     /// What the computation leaves out.
     LeftOut,
+    /// Traffic: what was taken to be so, what reaches the abutments, what remains uncertain.
+    Traffic,
 }
 
 /// What became of a check.

@@ -26,6 +26,7 @@ mod subspace;
 mod thickness;
 mod through;
 mod ties;
+pub mod traffic;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};

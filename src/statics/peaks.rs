@@ -5,7 +5,7 @@
 //! kinks and joints of pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of
 //! its slope is followed to the peak. A ring of a stated number of voussoirs has its own joints and no others.
 
-use super::joint::{Joint, Unknowns};
+use super::joint::{Joint, Loads, Unknowns};
 use super::piece::Piece;
 use super::span::Span;
 use crate::tolerance;
@@ -70,11 +70,28 @@ impl<'a> Sampling<'a> {
             let s = k as f64 / count as f64;
             let (before, after) = (span.joint_at(s, true), span.joint_at(s, false));
             joints.push(before);
-            if after.loads != before.loads || after.tangent != before.tangent {
+            let loaded = span.entered.partition_point(|e| e.foot < s - tolerance::ONE_JOINT);
+            let loaded = span.entered.get(loaded).is_some_and(|e| e.foot <= s + tolerance::ONE_JOINT);
+            if loaded || after.loads != before.loads || after.tangent != before.tangent {
                 joints.push(after);
             }
         }
         Self { span, sense, joints, separate: true }
+    }
+
+    /// The same joints of a span that carries other loads: what `fixed` and `varying` say has entered before each piece
+    /// comes to the loads of each joint.
+    pub fn carrying<'b>(&self, span: &'b Span, fixed: &[Loads], varying: &[Loads]) -> Sampling<'b> {
+        let mut joints = self.joints.clone();
+        for joint in &mut joints {
+            if let Some(loads) = fixed.get(joint.piece) {
+                joint.loads.fixed = joint.loads.fixed.plus(loads);
+            }
+            if let Some(loads) = varying.get(joint.piece) {
+                joint.loads.varying = joint.loads.varying.plus(loads);
+            }
+        }
+        Sampling { span, sense: self.sense, joints, separate: self.separate }
     }
 
     pub fn joints(&self) -> &[Joint] {

@@ -5,6 +5,7 @@ mod accept;
 mod limits;
 mod notes;
 mod spans;
+pub mod traffic;
 
 use jiff::civil::Date;
 
@@ -37,6 +38,8 @@ pub struct Computed<'a> {
     pub cases: &'a [Case],
     /// Of each span, in order, one analysis for each case, in order.
     pub analyses: &'a [Vec<Analysis>],
+    /// Of each span, in order, what the trains of the job came to.
+    pub traffic: &'a [Vec<traffic::Ran>],
 }
 
 /// Judges what was computed. `today` decides whether an accepted exception has
@@ -47,7 +50,7 @@ pub fn judge(
     computed: &Computed<'_>,
     today: Date,
 ) -> Judgement {
-    let Computed { model, cases, analyses } = *computed;
+    let Computed { model, cases, analyses, traffic } = *computed;
     let units = match model.forces {
         Forces::Kilonewtons => Units::si(),
         Forces::UnitLoads => Units::unit_loads(),
@@ -56,7 +59,8 @@ pub fn judge(
         .spans
         .iter()
         .zip(analyses)
-        .map(|(span, analyses)| spans::span(model, span, cases, analyses, settings))
+        .zip(traffic)
+        .map(|((span, analyses), traffic)| spans::span(model, span, cases, analyses, traffic, settings))
         .collect();
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
@@ -73,6 +77,14 @@ pub fn judge(
                 finding.case = Some(case.name.clone());
                 finding
             }));
+        }
+    }
+    for (trains, span) in traffic.iter().zip(&spans) {
+        for ran in trains {
+            let mut about = Vec::new();
+            traffic::findings(ran, span, settings, &mut about);
+            let case = cases.get(ran.case).map(|c| c.name.clone());
+            findings.extend(about.into_iter().map(|f| Finding { case: case.clone(), ..f }));
         }
     }
     notes::cases(cases, &mut findings);

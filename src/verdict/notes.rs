@@ -165,6 +165,7 @@ fn role_name(role: Role) -> &'static str {
         Role::Intrados => "intrados",
         Role::Extrados => "extrados",
         Role::Hinges => "hinges",
+        Role::Road => "road",
     }
 }
 
@@ -451,7 +452,11 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
     if model.own_weight(settings).is_none() {
         parts.push("the rib's own weight");
     }
-    parts.extend(["fill", "traffic", "everything out of the plane of the elevation"]);
+    parts.push("fill");
+    if settings.traffic.is_empty() {
+        parts.push("traffic");
+    }
+    parts.push("everything out of the plane of the elevation");
     if model.forces == Forces::UnitLoads {
         parts.push("stresses");
     }

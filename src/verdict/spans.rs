@@ -18,6 +18,7 @@ pub fn span(
     span: &model::Span,
     cases: &[model::Case],
     analyses: &[Analysis],
+    traffic: &[super::traffic::Ran],
     settings: &Settings,
 ) -> Span {
     let axis = &span.axis;
@@ -44,9 +45,12 @@ pub fn span(
         cases: cases
             .iter()
             .zip(analyses)
-            .map(|(c, analysis)| {
+            .enumerate()
+            .map(|(i, (c, analysis))| {
                 let forces = listed.iter().map(|l| l.force.map(|f| f * c.factor(&l.set))).collect();
-                case(c, analysis, forces, &Section::of(analysis, settings, model.forces))
+                let mut case = case(c, analysis, forces, &Section::of(analysis, settings, model.forces));
+                case.traffic = traffic.iter().filter(|t| t.case == i).map(super::traffic::outcome).collect();
+                case
             })
             .collect(),
         loads: listed,
@@ -257,7 +261,7 @@ fn safety(from: &statics::Safety) -> Safety {
     }
 }
 
-fn hinge(from: &statics::Hinge) -> Hinge {
+pub(super) fn hinge(from: &statics::Hinge) -> Hinge {
     let side = match from.side {
         HingeSide::Extrados => "extrados",
         HingeSide::Intrados => "intrados",

@@ -5,6 +5,7 @@ mod hand;
 mod html;
 mod sections;
 mod stations;
+mod traffic;
 
 use crate::outcome::{Document, Run, Verdict};
 use crate::write::annotate::note::{CAUTION, heading};
@@ -106,6 +107,7 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     sections::findings(run, page);
     stations::tables(run, page);
     sections::offsets(run, page);
+    traffic::section(run, page);
     sections::proofs(run, page);
     sections::assumptions(run, page);
     sections::settings(run, page);
