@@ -163,7 +163,6 @@ fn the_contract_example_has_only_unbuilt_keys() {
             "rib.deck_modulus",
             "loads.arrow_scale",
             "area",
-            "range",
             "limits.pier_push",
             "limits.dimension",
             "title.sheet",
@@ -201,7 +200,6 @@ fn what_is_not_built_is_refused_by_name() {
         ("[rib]\ndeck_inertia = 1", "rib.deck_inertia"),
         ("[loads]\nunit = \"kN\"\narrow_scale = 0.1", "loads.arrow_scale"),
         ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20", "area"),
-        ("[[range]]\nwhat = \"rib.depth\"\nlow = 0.1\nhigh = 0.2", "range"),
         ("[limits]\npier_push = 2", "limits.pier_push"),
         ("[limits]\ndimension = 0.01", "limits.dimension"),
         (

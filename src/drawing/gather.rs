@@ -40,13 +40,13 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     }
 }
 
-/// Scans a drawing so that [`read_outlined`] finds what it needs; with the hash of the file.
+/// Scans a drawing so that [`read_outlined`] finds what it needs; without the hash of the file.
 ///
 /// # Errors
 /// As [`tags::scan`].
 pub fn scan(bytes: &tags::Source, settings: &Settings) -> Result<Outline, Refusal> {
     let keep = |candidate: &Candidate<'_>| keeps(settings, candidate);
-    tags::scan(bytes, &Options { keep: Some(&keep), hash: true })
+    tags::scan(bytes, &Options { keep: Some(&keep), hash: false })
 }
 
 /// Reads what the job asks for from a drawing that [`scan`] has outlined.

@@ -60,7 +60,7 @@ pub struct LayerLine {
 /// When it cannot be read as a drawing, or the job file is wrong.
 pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
     let settings = settings_for(path, job)?;
-    let (source, outline, marks) = without_marks(Source::open(path)?, &settings)?;
+    let (source, outline, marks, _) = without_marks(Source::open(path)?, &settings, false)?;
     let spelled = |name: &str, code| outline.header(name, code).map(str::to_string);
     let units = ["$INSUNITS", "$MEASUREMENT"]
         .into_iter()

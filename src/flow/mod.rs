@@ -2,6 +2,7 @@
 
 mod list;
 mod problem;
+mod ranges;
 mod sheet;
 mod traffic;
 mod unmark;
@@ -18,7 +19,7 @@ use crate::outcome::{DrawingFacts, Run, Units};
 use crate::refusal::Refusal;
 use crate::statics::{self, Analysis};
 use crate::tags::marks::Marks;
-use crate::tags::{self, FoundMarks, Outline, Source};
+use crate::tags::{self, FoundMarks, Hashing, Outline, Source};
 use crate::verdict;
 use crate::write::annotate;
 use crate::write::file::{self, Replace};
@@ -220,21 +221,14 @@ fn stages(
     in_force: &serde_json::Value,
 ) -> Result<Checked, Refusal> {
     let file = Source::open(path)?;
-    let (source, outline, marks) = without_marks(file, &settings)?;
-    facts.sha256.clone_from(&outline.sha256);
+    let (source, outline, marks, hashing) = without_marks(file, &settings, true)?;
     facts.dxf_version.clone_from(&outline.version);
     facts.form = Some(outline.form.name().into());
     facts.encoding = Some(outline.encoding().into());
-    let drawing = drawing::read_outlined(&source, &outline, &settings)?;
-    facts.unit = Some(drawing.unit.name.into());
-    facts.unit_source = Some(drawing.unit.source.name().into());
-    let model = model::build(&drawing, &(&settings).into())?;
-    own_weight_stated(&settings)?;
-    let cases = model::cases::cases(&model, &settings)?;
-    let analyses = analyse(&model, &cases, &settings)?;
-    let traffic = traffic::run(&model, &cases, &settings)?;
-    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses, traffic: &traffic };
-    let judged = verdict::judge(&settings, &drawing.notes, &computed, environment.today);
+    let judged = judged(&source, &outline, &settings, facts, environment);
+    // The hash was on its way beside all that; it is told of a refused drawing too.
+    facts.sha256 = hashing.map(Hashing::finish).transpose()?;
+    let (drawing, judged) = judged?;
     let run = Run {
         units: judged.units,
         drawing: facts.clone(),
@@ -248,19 +242,52 @@ fn stages(
     Ok(Checked { run, source, outline, drawing, settings, marks })
 }
 
-/// The drawing as it was before it was marked, with its outline, and the marks it carried.
+fn judged(
+    source: &Source,
+    outline: &Outline,
+    settings: &Settings,
+    facts: &mut DrawingFacts,
+    environment: Environment,
+) -> Result<(Drawing, verdict::Judgement), Refusal> {
+    let drawing = drawing::read_outlined(source, outline, settings)?;
+    facts.unit = Some(drawing.unit.name.into());
+    facts.unit_source = Some(drawing.unit.source.name().into());
+    let model = model::build(&drawing, &settings.into())?;
+    own_weight_stated(settings)?;
+    let cases = model::cases::cases(&model, settings)?;
+    let analyses = analyse(&model, &cases, settings)?;
+    let extras = extras(&model, &cases, settings, &analyses)?;
+    let traffic = traffic::run(&model, &cases, settings)?;
+    let computed = verdict::Computed {
+        model: &model,
+        cases: &cases,
+        analyses: &analyses,
+        extras: &extras,
+        traffic: &traffic,
+    };
+    let judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
+    Ok((drawing, judged))
+}
+
+/// The drawing as it was before it was marked, with its outline, the marks it carried, and, when it is wanted, its hash on
+/// its way.
 fn without_marks(
     file: Source,
     settings: &Settings,
-) -> Result<(Source, Outline, Option<FoundMarks>), Refusal> {
+    hash: bool,
+) -> Result<(Source, Outline, Option<FoundMarks>, Option<Hashing>), Refusal> {
+    // Most drawings carry no marks; for those the hash is under way while they are read.
+    let hashing = hash.then(|| Hashing::start(&file));
     let mut outline = drawing::scan(&file, settings)?;
     let Some(marks) = outline.marks.take() else {
-        return Ok((file, outline, None));
+        return Ok((file, outline, None, hashing));
     };
+    drop(hashing);
     outline.marks = Some(marks.clone());
     let plain = file.spliced(&tags::unmark(&file, &outline)?)?;
+    let hashing = hash.then(|| Hashing::start(&plain));
     let outline = drawing::scan(&plain, settings)?;
-    Ok((plain, outline, Some(marks)))
+    Ok((plain, outline, Some(marks), hashing))
 }
 
 /// The name that the source of a marked copy has when nobody renamed it: `NAME.dxf` for `NAME.thrust.dxf`; any other
@@ -290,6 +317,19 @@ fn analyse(model: &Model, cases: &[model::Case], settings: &Settings) -> Result<
                 .collect()
         })
         .collect()
+}
+
+/// What takes more than one analysis, for every span, in every case.
+fn extras(
+    model: &Model,
+    cases: &[model::Case],
+    settings: &Settings,
+    analyses: &[Vec<Analysis>],
+) -> Result<Vec<Vec<verdict::Extra>>, Refusal> {
+    let of = |(span, analyses): (&model::Span, &Vec<Analysis>)| {
+        cases.iter().zip(analyses).map(|(case, a)| ranges::extra(model, span, case, settings, a)).collect()
+    };
+    model.spans.iter().zip(analyses).map(of).collect()
 }
 
 /// Refuses a unit weight without a width: no weight follows from it.
@@ -375,7 +415,7 @@ pub fn write_marked(
     let ours = |target: &Path| Ok(carries_marks(target));
     let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
     file::write_whole(output, &[path], &replace, |target| {
-        marked.write_to(target).map_err(|error| {
+        marked.write_to_file(target).map_err(|error| {
             Refusal::new(
                 "write",
                 format!("The marked copy could not be written: {error}"),

@@ -3,7 +3,7 @@
 use std::path::{Path, PathBuf};
 
 use crate::refusal::Refusal;
-use crate::tags::{self, Options, Source};
+use crate::tags::{self, Hashing, Options, Source};
 use crate::write::file::{self, Replace};
 
 /// What [`unmark`] did.
@@ -34,27 +34,31 @@ pub fn unmark(path: &Path, output: Option<&Path>, force: bool) -> Result<Unmarke
         ));
     };
     let plain = marked.spliced(&tags::unmark(&marked, &outline)?)?;
-    let sha256 = plain.sha256()?;
-    let exact = found.fact("sha256") == Some(sha256.as_str());
-    if !exact && !force {
-        return Err(Refusal::new(
-            "unmark-hash",
-            "Without its marks this drawing is not the source that was marked: it was changed since, or saved by \
-             another program",
-            "Take the source itself, or write what is left with --force (it will not be byte-exact).",
-        ));
-    }
+    let hashing = Hashing::start(&plain);
+    let recorded = found.fact("sha256");
     let output = output.map_or_else(|| beside(path), Path::to_path_buf);
     let replace = if force { Replace::Any } else { Replace::Nothing };
-    file::write_whole(&output, &[path], &replace, |target| {
-        plain.write_to(target).map_err(|error| {
+    let (sha256, exact) = file::write_whole(&output, &[path], &replace, |target| {
+        // Written while the hash is being computed; when that is wrong, the file never gets its name.
+        plain.write_to_file(target).map_err(|error| {
             Refusal::new(
                 "write",
                 format!("The drawing could not be written: {error}"),
                 "Look at the space left and at your right to write there.",
             )
         })?;
-        marked.unchanged()
+        marked.unchanged()?;
+        let sha256 = hashing.finish()?;
+        let exact = recorded == Some(sha256.as_str());
+        if !exact && !force {
+            return Err(Refusal::new(
+                "unmark-hash",
+                "Without its marks this drawing is not the source that was marked: it was changed since, or saved by \
+                 another program",
+                "Take the source itself, or write what is left with --force (it will not be byte-exact).",
+            ));
+        }
+        Ok((sha256, exact))
     })?;
     Ok(Unmarked { output, sha256, exact })
 }

@@ -37,7 +37,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("area", Later),
             ("case", All),
             ("traffic", All),
-            ("range", Later),
+            ("range", All),
             ("line", All),
             ("limits", All),
             ("accept", All),

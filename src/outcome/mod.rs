@@ -4,6 +4,7 @@
 //! plane in metres, in the drawing's own origin.
 
 pub mod bow;
+mod ranges;
 mod traffic;
 
 use std::collections::BTreeMap;
@@ -12,6 +13,7 @@ use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
 
 use crate::refusal::Refusal;
+pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 
 pub use traffic::{
     AtWorst, Axle, Direction, EnvelopeStation, Forces, InfluenceLine, InfluenceOrdinate, PushRange, Traffic,
@@ -244,6 +246,9 @@ pub struct Case {
     pub traffic: Vec<Traffic>,
     /// Factors of safety of a ring; null where they do not apply.
     pub safety: Option<Safety>,
+    /// Worst and best factors over the ranges that the job states; null without any.
+    #[serde(default)]
+    pub ranges: Option<Ranges>,
     /// Largest relative residual of the equilibrium self-checks.
     pub residual: f64,
 }
@@ -379,7 +384,8 @@ pub struct Safety {
     pub load_factor: Option<f64>,
     /// Lower end of the interval.
     pub load_factor_least: Option<f64>,
-    /// Least depth.
+    /// Least depth: where the ring is thinnest, of the least ring of the drawn shape that a line of thrust still fits into,
+    /// its own weight shrinking with it.
     pub least_depth: Option<f64>,
     /// How each of them ended.
     pub status: BTreeMap<String, Status>,

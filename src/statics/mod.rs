@@ -16,6 +16,7 @@ mod piece;
 mod place;
 mod pole;
 mod quadratic;
+pub mod range;
 mod rule;
 mod safety;
 mod simplex;

@@ -12,15 +12,43 @@ pub(super) struct Entry {
     pub decision: Option<(Option<usize>, bool)>,
     /// In model space, in paper space, in blocks.
     counts: [u64; 3],
+    /// Type and layer byte for byte, with a line feed between them.
+    key: Vec<u8>,
 }
+
+/// Places of the small table that most pairs are found in.
+const PLACES: usize = 1 << 10;
 
 #[derive(Default)]
 pub(super) struct Census {
     entries: Vec<Entry>,
+    /// Every pair; its hashing withstands names chosen to collide, and costs more than all the rest of an entity.
     index: HashMap<Vec<u8>, usize>,
+    /// The pair last seen of those that share a place.
+    places: Vec<usize>,
     key: Vec<u8>,
-    /// The entry found last: neighbours are often alike.
-    last: Option<(Vec<u8>, usize)>,
+}
+
+/// A number that is mostly another one for another pair.
+#[inline]
+fn place(kind: &[u8], layer: &[u8]) -> usize {
+    const ODD: u64 = 0x9E37_79B9_7F4A_7C15;
+    let mut sum = (kind.len() + (layer.len() << 8)) as u64;
+    for bytes in [kind, layer] {
+        let mut add =
+            |word: [u8; 8]| sum = (sum ^ u64::from_le_bytes(word)).wrapping_mul(ODD).rotate_left(29);
+        let mut rest = bytes;
+        while let Some((word, more)) = rest.split_first_chunk() {
+            add(*word);
+            rest = more;
+        }
+        let mut last = [0; 8];
+        for (to, from) in last.iter_mut().zip(rest) {
+            *to = *from;
+        }
+        add(last);
+    }
+    usize::try_from(sum.wrapping_mul(ODD) >> 32).unwrap_or(0) % PLACES
 }
 
 impl Census {
@@ -31,18 +59,23 @@ impl Census {
         self.key.extend_from_slice(layer);
     }
 
+    #[inline]
     pub fn find(&mut self, kind: &[u8], layer: &[u8]) -> Option<usize> {
-        self.set_key(kind, layer);
-        match &mut self.last {
-            Some((key, index)) if *key == self.key => Some(*index),
-            last => {
-                let index = *self.index.get(&self.key)?;
-                let (key, _) = last.get_or_insert_with(Default::default);
-                key.clone_from(&self.key);
-                *last = last.take().map(|(key, _)| (key, index));
-                Some(index)
-            }
+        let place = place(kind, layer);
+        if let Some(&index) = self.places.get(place)
+            && let Some(Entry { key, .. }) = self.entries.get(index)
+            && let Some(rest) = key.strip_prefix(kind)
+            && rest.split_first() == Some((&b'\n', layer))
+        {
+            return Some(index);
         }
+        if self.places.is_empty() {
+            self.places = vec![usize::MAX; PLACES];
+        }
+        self.set_key(kind, layer);
+        let index = *self.index.get(&self.key)?;
+        self.places[place] = index;
+        Some(index)
     }
 
     /// Adds a pair that [`Census::find`] does not know; the name is the layer decoded.
@@ -54,6 +87,7 @@ impl Census {
             layer: name,
             decision: None,
             counts: [0; 3],
+            key: self.key.clone(),
         });
         self.index.insert(self.key.clone(), index);
         index

@@ -1,7 +1,7 @@
 //! The end of each record: it is counted, kept, or noted for what it says about the drawing.
 
 use crate::refusal::Refusal;
-use crate::tags::machine::{Collect, Machine, Part};
+use crate::tags::machine::{Collect, Machine, Part, Word};
 use crate::tags::outline::Block;
 use crate::tags::record::Record;
 
@@ -11,12 +11,12 @@ impl Machine<'_> {
         if !std::mem::take(&mut self.current.open) {
             return Ok(());
         }
-        let is = |machine: &Self, word: &[u8]| machine.current.kind.eq_ignore_ascii_case(word);
+        let word = self.current.word;
         match self.part {
-            Part::Tables if is(self, b"TABLE") => self.close_table_head(),
+            Part::Tables if word == Word::Table => self.close_table_head(),
             Part::Tables => self.close_table_record(end),
-            Part::Blocks if is(self, b"BLOCK") => self.close_block_head(),
-            Part::Blocks if is(self, b"ENDBLK") => {
+            Part::Blocks if word == Word::Block => self.close_block_head(),
+            Part::Blocks if word == Word::EndBlock => {
                 self.block = None;
                 self.count(false);
             }
@@ -110,7 +110,7 @@ impl Machine<'_> {
                     parent.children.push(record);
                 }
             }
-            if self.current.kind.eq_ignore_ascii_case(b"SEQEND") {
+            if self.current.word == Word::EndRun {
                 self.parent_kept = false;
                 self.parent_ours = false;
             }
@@ -120,8 +120,7 @@ impl Machine<'_> {
         if let Some(index) = self.current.entry {
             self.census.count(index, in_block, self.current.paper);
         }
-        let parent = self.current.kind.eq_ignore_ascii_case(b"POLYLINE")
-            || self.current.kind.eq_ignore_ascii_case(b"INSERT");
+        let parent = self.current.word == Word::Parent;
         self.parent_ours = parent && self.current.ours;
         self.parent_kept = parent && kept;
         if kept {

@@ -15,7 +15,25 @@ pub(crate) enum Kind {
 }
 
 /// The kind of value behind a group code; `None` for a code that the format does not list.
+#[inline]
 pub(crate) fn kind(code: i32) -> Option<Kind> {
+    *usize::try_from(code).ok().and_then(|code| KINDS.get(code))?
+}
+
+/// The kinds of all codes in a table: a binary drawing is passed over by them.
+static KINDS: [Option<Kind>; 1072] = {
+    let mut kinds = [None; 1072];
+    let mut code = 0;
+    let mut index = 0;
+    while index < kinds.len() {
+        kinds[index] = listed(code);
+        code += 1;
+        index += 1;
+    }
+    kinds
+};
+
+const fn listed(code: i32) -> Option<Kind> {
     Some(match code {
         0..=9
         | 100..=105
@@ -43,21 +61,33 @@ pub(crate) fn is_reference(code: i32) -> bool {
     matches!(code, 320..=369 | 390..=399 | 480 | 481 | 1005)
 }
 
+/// What each byte counts as a hexadecimal digit; 16 for those that are none.
+const DIGITS: [u8; 256] = {
+    let mut digits = [16; 256];
+    let mut digit = 0;
+    while digit < 16 {
+        digits[b"0123456789abcdef"[digit as usize] as usize] = digit;
+        digits[b"0123456789ABCDEF"[digit as usize] as usize] = digit;
+        digit += 1;
+    }
+    digits
+};
+
 /// The number a handle spells, when it is one: up to sixteen hexadecimal digits with blanks around them.
+#[inline]
 pub(crate) fn parse_handle(value: &[u8]) -> Option<u64> {
     let digits = value.trim_ascii();
     if digits.is_empty() || digits.len() > 16 {
         return None;
     }
-    digits.iter().try_fold(0u64, |sum, byte| {
-        let digit = match byte {
-            b'0'..=b'9' => byte - b'0',
-            b'a'..=b'f' => byte - b'a' + 10,
-            b'A'..=b'F' => byte - b'A' + 10,
-            _ => return None,
-        };
-        Some(sum << 4 | u64::from(digit))
-    })
+    let mut sum = 0u64;
+    let mut seen = 0;
+    for byte in digits {
+        let digit = DIGITS[usize::from(*byte)];
+        seen |= digit;
+        sum = sum << 4 | u64::from(digit);
+    }
+    (seen < 16).then_some(sum)
 }
 
 #[cfg(test)]

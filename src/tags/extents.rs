@@ -35,7 +35,7 @@ const NO_PLACE: [&[u8]; 8] =
 /// As [`crate::tags::scan()`].
 pub fn extents(source: &Source) -> Result<Option<[[f64; 2]; 2]>, Refusal> {
     let mut gather = Gather::default();
-    tokenize(source, &mut gather, false)?;
+    tokenize(source, &mut gather)?;
     gather.close();
     let Extent { low, high } = gather.all;
     let wide = low[0] <= high[0] && low[1] <= high[1] && (low[0] < high[0] || low[1] < high[1]);

@@ -75,7 +75,7 @@ fn all_handles(source: &Source) -> Result<Vec<u64>, Refusal> {
         }
     }
     let mut collect = Collect(Vec::new());
-    tokenize(source, &mut collect, false)?;
+    tokenize(source, &mut collect)?;
     collect.0.sort_unstable();
     collect.0.dedup();
     Ok(collect.0)

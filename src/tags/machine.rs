@@ -55,9 +55,58 @@ pub(super) enum Part {
 pub(super) enum Collect {
     #[default]
     No,
-    /// Until the layer is known.
+    /// Not decided before the layer is known.
     Pending,
     Yes,
+}
+
+/// What the word behind a group 0 means to a scan.
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]
+pub(super) enum Word {
+    #[default]
+    Other,
+    Section,
+    EndSection,
+    EndOfFile,
+    Table,
+    EndTable,
+    Block,
+    EndBlock,
+    /// VERTEX or ATTRIB.
+    Child,
+    /// SEQEND.
+    EndRun,
+    /// POLYLINE or INSERT, which children may follow.
+    Parent,
+    DimStyle,
+    Dictionary,
+}
+
+impl Word {
+    /// In capitals or not.
+    #[inline]
+    pub fn of(kind: &[u8]) -> Self {
+        // By length first: every entity of a drawing comes by here.
+        let words: &[(&[u8], Self)] = match kind.len() {
+            3 => &[(b"EOF", Self::EndOfFile)],
+            5 => &[(b"TABLE", Self::Table), (b"BLOCK", Self::Block)],
+            6 => &[
+                (b"INSERT", Self::Parent),
+                (b"VERTEX", Self::Child),
+                (b"ATTRIB", Self::Child),
+                (b"SEQEND", Self::EndRun),
+                (b"ENDSEC", Self::EndSection),
+                (b"ENDTAB", Self::EndTable),
+                (b"ENDBLK", Self::EndBlock),
+            ],
+            7 => &[(b"SECTION", Self::Section)],
+            8 => &[(b"POLYLINE", Self::Parent), (b"DIMSTYLE", Self::DimStyle)],
+            10 => &[(b"DICTIONARY", Self::Dictionary)],
+            19 => &[(b"ACDBDICTIONARYWDFLT", Self::Dictionary)],
+            _ => &[],
+        };
+        words.iter().find(|(word, _)| kind.eq_ignore_ascii_case(word)).map_or(Self::Other, |found| found.1)
+    }
 }
 
 /// The record that is being read.
@@ -65,6 +114,7 @@ pub(super) enum Collect {
 pub(super) struct Current {
     pub open: bool,
     pub kind: Vec<u8>,
+    pub word: Word,
     pub start: u64,
     pub line: Option<u64>,
     pub collect: Collect,
@@ -90,6 +140,8 @@ pub(super) struct Machine<'a> {
     pub part: Part,
     /// Every tag is wanted.
     pub all: bool,
+    /// The record at hand has just turned out to be kept: its tags so far are needed.
+    pub recalled: bool,
     pub current: Current,
     pub tags: Tags,
     pub section_open: bool,

@@ -5,6 +5,7 @@
 //! A [`Source`] is scanned into an [`Outline`]; [`mark()`] gives the edits that put [`marks::Marks`] in, [`unmark()`] those
 //! that take them out; [`Source::spliced`] is the drawing with the edits made.
 
+mod binary;
 mod census;
 mod close;
 mod codes;
@@ -13,7 +14,10 @@ mod extents;
 mod facts;
 mod finish;
 mod handles;
+mod hashing;
+mod inserts;
 mod items;
+mod lines;
 mod machine;
 mod mark;
 pub mod marks;
@@ -24,6 +28,7 @@ mod plane;
 mod record;
 mod scan;
 mod shapes;
+mod skim;
 mod sound;
 mod source;
 mod text;
@@ -33,6 +38,8 @@ pub mod validate;
 
 pub use extents::extents;
 pub use facts::FoundMarks;
+pub use hashing::Hashing;
+pub use inserts::inserted;
 pub use machine::{Candidate, Keep, Options};
 pub use mark::mark;
 pub use outline::{

@@ -59,11 +59,6 @@ impl Tags {
         self.line = line;
     }
 
-    /// Bytes in use.
-    pub(crate) fn size(&self) -> usize {
-        self.bytes.len() + self.spans.len() * size_of::<Span>()
-    }
-
     /// Appends a tag; false when the record has grown beyond what can be numbered (4 GB).
     pub(crate) fn push(&mut self, code: i32, value: &[u8], line: Option<u64>) -> bool {
         self.bytes.extend_from_slice(value);

@@ -5,11 +5,12 @@ use crate::tags::APPLICATION;
 use crate::tags::census::Entry;
 use crate::tags::codes::{is_reference, parse_handle};
 use crate::tags::finish;
-use crate::tags::machine::{Candidate, Collect, Machine, Options, Part};
+use crate::tags::hashing::Hashing;
+use crate::tags::machine::{Candidate, Collect, Machine, Options, Part, Word};
 use crate::tags::outline::{Anchor, HeaderValue, HeaderVariable, Note, Outline, Section, Table};
 use crate::tags::source::Source;
 use crate::tags::text::Doubt;
-use crate::tags::tokens::{Form, Place, Sink, Stream, tokenize};
+use crate::tags::tokens::{Form, MOST_HELD, Place, Sink, Stream, tokenize};
 
 /// Reads a drawing from its first byte to its last.
 ///
@@ -17,12 +18,12 @@ use crate::tags::tokens::{Form, Place, Sink, Stream, tokenize};
 /// When the file is no DXF drawing, is damaged, or cannot be read; the refusal names the line.
 pub fn scan(source: &Source, options: &Options<'_>) -> Result<Outline, Refusal> {
     let mut machine = Machine { keep: options.keep, ..Machine::default() };
-    let stream = tokenize(source, &mut machine, options.hash)?;
-    machine.finish(stream)
+    let hashing = options.hash.then(|| Hashing::start(source));
+    let stream = tokenize(source, &mut machine)?;
+    let mut outline = machine.finish(stream)?;
+    outline.sha256 = hashing.map(Hashing::finish).transpose()?;
+    Ok(outline)
 }
-
-/// Bytes of a record that are held before its layer is known; the layer is among the first tags of every entity.
-const BEFORE_LAYER: usize = 1 << 20;
 
 /// Codes whose values matter in a record that is not kept.
 const WANTED: [bool; 1072] = {
@@ -48,7 +49,33 @@ impl Sink for Machine<'_> {
         self.all || usize::try_from(code).is_ok_and(|i| WANTED.get(i) == Some(&true))
     }
 
-    #[inline]
+    #[inline(always)]
+    fn skims(&self) -> bool {
+        !self.all
+    }
+
+    #[inline(always)]
+    fn holds(&self) -> bool {
+        self.current.open && self.current.collect == Collect::Pending
+    }
+
+    fn settle(&mut self) {
+        self.layer(b"0", self.current.line);
+    }
+
+    #[inline(always)]
+    fn recalls(&mut self) -> bool {
+        std::mem::take(&mut self.recalled)
+    }
+
+    fn recall(&mut self, code: i32, value: &[u8], line: Option<u64>) -> Result<(), Refusal> {
+        self.collect(code, value, line)
+    }
+
+    fn overlong(&self) -> Refusal {
+        self.too_long("a million bytes with no layer")
+    }
+
     fn tag(&mut self, code: i32, value: &[u8], place: &Place) -> Result<(), Refusal> {
         if code == 0 {
             return self.open(value, place);
@@ -83,8 +110,8 @@ impl Machine<'_> {
         let kind = value.trim_ascii();
         self.close_record(place.start)?;
         let anchor = Anchor { at: place.start, crlf: place.after_crlf };
-        let is = |word: &[u8]| kind.eq_ignore_ascii_case(word);
-        if is(b"SECTION") {
+        let word = Word::of(kind);
+        if word == Word::Section {
             self.end_section(anchor, None);
             self.sections.push(Section {
                 name: "?".to_owned(),
@@ -99,11 +126,11 @@ impl Machine<'_> {
             self.section_open = true;
             self.part = Part::Unnamed;
             self.all = true;
-        } else if is(b"ENDSEC") {
+        } else if word == Word::EndSection {
             self.end_section(anchor, Some(place.end));
-        } else if is(b"EOF") {
+        } else if word == Word::EndOfFile {
             self.end_section(anchor, None);
-        } else if self.part == Part::Tables && is(b"TABLE") {
+        } else if self.part == Part::Tables && word == Word::Table {
             self.end_table(anchor, None);
             self.tables.push(Table {
                 name: String::new(),
@@ -116,14 +143,14 @@ impl Machine<'_> {
                 records: Vec::new(),
             });
             self.table_open = true;
-            self.begin_record(kind, place);
-        } else if self.part == Part::Tables && is(b"ENDTAB") {
+            self.begin_record(kind, word, place);
+        } else if self.part == Part::Tables && word == Word::EndTable {
             self.end_table(anchor, Some(place.end));
         } else {
             match self.part {
                 Part::Ignored | Part::Other | Part::Header => {}
                 Part::Unnamed => self.name_section(b"?"),
-                _ => self.begin_record(kind, place),
+                _ => self.begin_record(kind, word, place),
             }
         }
         Ok(())
@@ -201,9 +228,10 @@ impl Machine<'_> {
         }
     }
 
-    fn begin_record(&mut self, kind: &[u8], place: &Place) {
+    fn begin_record(&mut self, kind: &[u8], word: Word, place: &Place) {
         let current = &mut self.current;
         current.open = true;
+        current.word = word;
         current.kind.clear();
         current.kind.extend_from_slice(kind);
         current.start = place.start;
@@ -220,25 +248,22 @@ impl Machine<'_> {
         current.collect = Collect::No;
         match self.part {
             Part::Tables => {
-                current.dimstyle = kind.eq_ignore_ascii_case(b"DIMSTYLE");
+                current.dimstyle = word == Word::DimStyle;
                 let table = self.tables.last().map_or("", |table| table.name.as_str());
-                let head = kind.eq_ignore_ascii_case(b"TABLE");
+                let head = word == Word::Table;
                 let wanted = ["LAYER", "LTYPE", "STYLE", "APPID", "BLOCK_RECORD"];
                 if self.table_open && (head || wanted.contains(&table)) {
                     current.collect = Collect::Yes;
                 }
             }
             Part::Objects => {
-                current.dictionary = kind.eq_ignore_ascii_case(b"DICTIONARY")
-                    || kind.eq_ignore_ascii_case(b"ACDBDICTIONARYWDFLT");
+                current.dictionary = word == Word::Dictionary;
                 self.dictionary_name = None;
             }
-            Part::Blocks if kind.eq_ignore_ascii_case(b"BLOCK") => current.collect = Collect::Yes,
-            Part::Blocks if kind.eq_ignore_ascii_case(b"ENDBLK") => {}
+            Part::Blocks if word == Word::Block => current.collect = Collect::Yes,
+            Part::Blocks if word == Word::EndBlock => {}
             _ => {
-                current.child = [&b"VERTEX"[..], b"ATTRIB", b"SEQEND"]
-                    .iter()
-                    .any(|child| kind.eq_ignore_ascii_case(child));
+                current.child = matches!(word, Word::Child | Word::EndRun);
                 if current.child {
                     current.ours = self.parent_ours;
                     if self.parent_kept {
@@ -249,8 +274,8 @@ impl Machine<'_> {
                 }
             }
         }
-        self.all = current.collect != Collect::No || current.dictionary;
-        if self.all {
+        self.all = current.collect == Collect::Yes || current.dictionary;
+        if current.collect != Collect::No || self.all {
             self.tags.restart(place.line);
         }
     }
@@ -284,16 +309,25 @@ impl Machine<'_> {
             _ if is_reference(code) => self.reference(code, value),
             _ => {}
         }
-        // Previews (310) of block records and the like are of no use.
-        if self.current.collect != Collect::No && code != 999 && !(code == 310 && self.part == Part::Tables) {
-            if !self.tags.push(code, value, place.line) {
-                return Err(self.too_long("four thousand million bytes"));
-            }
-            if self.current.collect == Collect::Pending && self.tags.size() > BEFORE_LAYER {
-                return Err(self.too_long("a million bytes with no layer"));
-            }
+        if self.recalled {
+            // This tag comes again with those before it.
+            return Ok(());
         }
-        Ok(())
+        match self.current.collect {
+            Collect::No => Ok(()),
+            Collect::Yes => self.collect(code, value, place.line),
+            Collect::Pending if place.start - self.current.start > MOST_HELD as u64 => Err(self.overlong()),
+            Collect::Pending => Ok(()),
+        }
+    }
+
+    fn collect(&mut self, code: i32, value: &[u8], line: Option<u64>) -> Result<(), Refusal> {
+        // Previews (310) of block records and the like are of no use.
+        let useless = code == 999 || code == 310 && self.part == Part::Tables;
+        if useless || self.tags.push(code, value, line) {
+            return Ok(());
+        }
+        Err(self.too_long("four thousand million bytes"))
     }
 
     fn too_long(&self, what: &str) -> Refusal {
@@ -382,9 +416,10 @@ impl Machine<'_> {
         });
         if keep {
             self.current.collect = Collect::Yes;
+            self.recalled = true;
+            self.all = true;
         } else {
             self.current.collect = Collect::No;
-            self.all = false;
         }
     }
 

@@ -5,9 +5,10 @@
 //! while it is read gives an error here, where a map would end the process.
 
 use std::fs::File;
-use std::io::{self, Read, Write};
+use std::io::{self, Read, Seek, SeekFrom, Write};
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::time::SystemTime;
 
 use sha2::{Digest, Sha256};
@@ -15,7 +16,7 @@ use sha2::{Digest, Sha256};
 use crate::refusal::Refusal;
 
 /// Bytes read at a time.
-pub(crate) const CHUNK: usize = 1 << 20;
+pub(crate) const CHUNK: usize = 256 << 10;
 
 /// One change to a source: `remove` bytes at `at` make room for `insert`.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -220,10 +221,15 @@ impl Source {
     /// # Errors
     /// When the file cannot be read.
     pub fn sha256(&self) -> Result<String, Refusal> {
+        self.sha256_unless(&AtomicBool::new(false))
+    }
+
+    /// The same, given up with an error as soon as `stop` is set.
+    pub(super) fn sha256_unless(&self, stop: &AtomicBool) -> Result<String, Refusal> {
         let mut hasher = Sha256::new();
         self.each_chunk(|chunk| {
             hasher.update(chunk);
-            Ok(())
+            if stop.load(Ordering::Relaxed) { Err(io::ErrorKind::Interrupted.into()) } else { Ok(()) }
         })
         .map_err(|error| self.unreadable(&error))?;
         Ok(hex(&hasher.finalize()))
@@ -236,6 +242,65 @@ impl Source {
     pub fn write_to(&self, out: &mut (impl Write + ?Sized)) -> io::Result<u64> {
         self.each_chunk(|chunk| out.write_all(chunk))?;
         Ok(self.len)
+    }
+
+    /// Writes all bytes to a file from where it stands on; gives their number. What the file behind this source holds is
+    /// copied inside of the system where it can do that.
+    ///
+    /// # Errors
+    /// Those of reading and of writing.
+    pub fn write_to_file(&self, out: &mut File) -> io::Result<u64> {
+        let mut buf = Vec::new();
+        for (start, piece) in self.pieces.iter() {
+            let mut done = match (piece, &*self.origin) {
+                (Piece::Kept { from, len }, Origin::File { file, .. }) => {
+                    copy_inside(file, *from, *len, out)?
+                }
+                _ => 0,
+            };
+            while done < piece.len() {
+                if buf.is_empty() {
+                    buf = vec![0; CHUNK];
+                }
+                let most = index_of(piece.len() - done)?.min(buf.len());
+                let count = self.read_at(start + done, &mut buf[..most])?;
+                out.write_all(&buf[..count])?;
+                done += count as u64;
+            }
+        }
+        Ok(self.len)
+    }
+
+    /// Writes over what differs when `out` stands behind what [`Source::write_to_file`] has just written to it for
+    /// `other`. False, with nothing written, when the two differ in more than the bytes put in.
+    ///
+    /// # Errors
+    /// Those of writing.
+    pub fn rewrite(&self, other: &Self, out: &mut File) -> io::Result<bool> {
+        let alike = |((a, one), (b, two)): (&(u64, Piece), &(u64, Piece))| {
+            a == b
+                && match (one, two) {
+                    (Piece::Made(one), Piece::Made(two)) => one.len() == two.len(),
+                    (Piece::Kept { from: a, len: n }, Piece::Kept { from: b, len: m }) => a == b && n == m,
+                    _ => false,
+                }
+        };
+        let same = Arc::ptr_eq(&self.origin, &other.origin) && self.pieces.len() == other.pieces.len();
+        if !same || !self.pieces.iter().zip(other.pieces.iter()).all(alike) {
+            return Ok(false);
+        }
+        // The writing left the file at the end of what it wrote.
+        let begin = out.stream_position()?.saturating_sub(self.len);
+        for ((at, new), (_, old)) in self.pieces.iter().zip(other.pieces.iter()) {
+            if let (Piece::Made(new), Piece::Made(old)) = (new, old)
+                && new != old
+            {
+                out.seek(SeekFrom::Start(begin + at))?;
+                out.write_all(new)?;
+            }
+        }
+        out.seek(SeekFrom::Start(begin + self.len))?;
+        Ok(true)
     }
 
     fn each_chunk(&self, mut take: impl FnMut(&[u8]) -> io::Result<()>) -> io::Result<()> {
@@ -355,6 +420,32 @@ fn read_file_at(file: &File, at: u64, buf: &mut [u8]) -> io::Result<usize> {
     std::os::windows::fs::FileExt::seek_read(file, buf, at)
 }
 
+/// Copies a range of a file behind what another holds, without the bytes passing through this program; gives how many
+/// it could: none where the system or the file systems cannot.
+#[cfg(any(target_os = "linux", target_os = "android"))]
+fn copy_inside(from: &File, at: u64, len: u64, out: &File) -> io::Result<u64> {
+    use rustix::io::Errno;
+    // In steps, so that a signal does not have to wait for all of a large drawing.
+    const STEP: u64 = 64 << 20;
+    let mut offset = at;
+    while offset - at < len {
+        let left = usize::try_from((len - (offset - at)).min(STEP)).unwrap_or(CHUNK);
+        match rustix::fs::copy_file_range(from, Some(&mut offset), out, None, left) {
+            Ok(0) => break,
+            Ok(_) | Err(Errno::INTR) => {}
+            // Whatever the reason, reading and writing goes on from here and meets it again if it is a real one.
+            Err(Errno::NOSPC) => return Err(Errno::NOSPC.into()),
+            Err(_) => break,
+        }
+    }
+    Ok(offset - at)
+}
+
+#[cfg(not(any(target_os = "linux", target_os = "android")))]
+fn copy_inside(_: &File, _: u64, _: u64, _: &File) -> io::Result<u64> {
+    Ok(0)
+}
+
 /// Lower-case hexadecimal digits.
 pub(crate) fn hex(bytes: &[u8]) -> String {
     use std::fmt::Write;
@@ -392,6 +483,32 @@ mod tests {
         assert_eq!(all(&twice), "0-b56789end");
         assert_eq!(twice.range(2, 6).unwrap(), b"b567");
         assert_eq!(all(&source), "0123456789");
+    }
+
+    #[test]
+    fn a_file_copies_and_is_written_over() {
+        let bytes: Vec<u8> = (0..700_001u32).map(|i| i.to_le_bytes()[0]).collect();
+        let mut file = tempfile::NamedTempFile::new().unwrap();
+        file.write_all(&bytes).unwrap();
+        for source in [Source::open(file.path()).unwrap(), Source::from_bytes(bytes.clone())] {
+            let view = |word: &str| source.spliced(&[edit(3, 2, word), edit(600_000, 0, word)]).unwrap();
+            let (first, second) = (view("abc"), view("xyz"));
+            let mut out = tempfile::tempfile().unwrap();
+            assert_eq!(first.write_to_file(&mut out).unwrap(), first.len());
+            let held = |out: &mut File| {
+                let mut held = Vec::new();
+                out.rewind().unwrap();
+                out.read_to_end(&mut held).unwrap();
+                held
+            };
+            assert!(held(&mut out) == first.range(0, first.len()).unwrap());
+            assert!(second.rewrite(&first, &mut out).unwrap());
+            assert!(held(&mut out) == second.range(0, second.len()).unwrap());
+            assert!(!view("longer").rewrite(&first, &mut out).unwrap());
+            let elsewhere = source.spliced(&[edit(4, 2, "abc"), edit(600_000, 0, "abc")]).unwrap();
+            assert!(!elsewhere.rewrite(&first, &mut out).unwrap());
+            assert!(held(&mut out) == second.range(0, second.len()).unwrap());
+        }
     }
 
     #[test]

@@ -116,7 +116,7 @@ impl Known {
 pub fn problems(source: &Source) -> Result<Vec<Problem>, Refusal> {
     let outline = scan(source, &Options { keep: None, hash: false })?;
     let mut items = Items::new(&outline.decoder, None);
-    tokenize(source, &mut items, false)?;
+    tokenize(source, &mut items)?;
     let items = items.finish();
     let mut known = Known::of(&outline);
     known.learn(&items);
@@ -176,7 +176,7 @@ pub fn check_inserted(source: &Source, outline: &Outline, edits: &[Edit]) -> Res
             Where::Entities
         };
         let mut part = Items::new(&outline.decoder, Some(place));
-        tokenize(&Source::from_bytes(bytes), &mut part, false)?;
+        tokenize(&Source::from_bytes(bytes), &mut part)?;
         items.extend(part.finish());
     }
     known.learn(&items);

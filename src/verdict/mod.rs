@@ -4,6 +4,7 @@
 mod accept;
 mod limits;
 mod notes;
+mod ranges;
 mod spans;
 pub mod traffic;
 
@@ -13,8 +14,8 @@ use crate::drawing;
 use crate::job::Assumption;
 use crate::job::Settings;
 use crate::model::{Case, Forces, Model};
-use crate::outcome::{Check, Finding, FindingVerdict, Source, Span, Units, Verdict, Xy};
-use crate::statics::Analysis;
+use crate::outcome::{Check, Finding, FindingVerdict, Ranges, Source, Span, Units, Verdict, Xy};
+use crate::statics::{Analysis, Factor};
 
 /// What came out of a drawing, judged.
 #[derive(Debug, Clone, PartialEq)]
@@ -38,8 +39,19 @@ pub struct Computed<'a> {
     pub cases: &'a [Case],
     /// Of each span, in order, one analysis for each case, in order.
     pub analyses: &'a [Vec<Analysis>],
+    /// Alike, what takes more than one analysis.
+    pub extras: &'a [Vec<Extra>],
     /// Of each span, in order, what the trains of the job came to.
     pub traffic: &'a [Vec<traffic::Ran>],
+}
+
+/// What takes more than one analysis of a span in a case.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct Extra {
+    /// Least thickness, as a factor on the depth; `None` where factors do not apply.
+    pub thickness: Option<Factor>,
+    /// Factors over the ranges that the job states.
+    pub ranges: Option<Ranges>,
 }
 
 /// Judges what was computed. `today` decides whether an accepted exception has
@@ -50,29 +62,36 @@ pub fn judge(
     computed: &Computed<'_>,
     today: Date,
 ) -> Judgement {
-    let Computed { model, cases, analyses, traffic } = *computed;
+    let Computed { model, cases, analyses, extras, traffic } = *computed;
     let units = match model.forces {
         Forces::Kilonewtons => Units::si(),
         Forces::UnitLoads => Units::unit_loads(),
     };
-    let spans: Vec<Span> = model
+    let mut spans: Vec<Span> = model
         .spans
         .iter()
-        .zip(analyses)
-        .zip(traffic)
-        .map(|((span, analyses), traffic)| spans::span(model, span, cases, analyses, traffic, settings))
+        .zip(analyses.iter().zip(extras))
+        .map(|(span, computed)| spans::span(model, span, cases, computed, settings))
         .collect();
+    for (span, trains) in spans.iter_mut().zip(traffic) {
+        for ran in trains {
+            if let Some(case) = span.cases.get_mut(ran.case) {
+                case.traffic.push(traffic::outcome(ran));
+            }
+        }
+    }
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
-    for (analyses, span) in analyses.iter().zip(&spans) {
-        for (i, (analysis, case)) in analyses.iter().zip(cases).enumerate() {
+    for ((analyses, extras), span) in analyses.iter().zip(extras).zip(&spans) {
+        for (i, ((analysis, extra), case)) in analyses.iter().zip(extras).zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
+            ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());
                 finding

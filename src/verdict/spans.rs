@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+use super::Extra;
 use crate::geometry::{Path, Point, Segment};
 use crate::job::Settings;
 use crate::model::{self, Forces, Model, cases, weight};
@@ -17,13 +18,13 @@ pub fn span(
     model: &Model,
     span: &model::Span,
     cases: &[model::Case],
-    analyses: &[Analysis],
-    traffic: &[super::traffic::Ran],
+    (analyses, extras): (&Vec<Analysis>, &Vec<Extra>),
     settings: &Settings,
 ) -> Span {
     let axis = &span.axis;
     let first = &analyses[0];
     let listed = listed(model, span, first, settings);
+    let ring = ring(span, settings);
     Span {
         name: span.name.clone(),
         kind: match first.kind {
@@ -41,19 +42,22 @@ pub fn span(
             entities: span.sources.iter().map(super::source).collect(),
             curve: curve(axis),
         },
-        ring: ring(span, settings),
         cases: cases
             .iter()
-            .zip(analyses)
-            .enumerate()
-            .map(|(i, (c, analysis))| {
+            .zip(analyses.iter().zip(extras))
+            .map(|(c, (analysis, extra))| {
                 let forces = listed.iter().map(|l| l.force.map(|f| f * c.factor(&l.set))).collect();
-                let mut case = case(c, analysis, forces, &Section::of(analysis, settings, model.forces));
-                case.traffic = traffic.iter().filter(|t| t.case == i).map(super::traffic::outcome).collect();
-                case
+                case(
+                    c,
+                    (analysis, extra),
+                    ring.as_ref(),
+                    forces,
+                    &Section::of(analysis, settings, model.forces),
+                )
             })
             .collect(),
         loads: listed,
+        ring,
     }
 }
 
@@ -152,7 +156,13 @@ fn load(load: &model::Load) -> Load {
     }
 }
 
-fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>, section: &Section) -> Case {
+fn case(
+    case: &model::Case,
+    (analysis, extra): (&Analysis, &Extra),
+    ring: Option<&Ring>,
+    forces: Vec<Xy>,
+    section: &Section,
+) -> Case {
     let governing = &analysis.lines[analysis.governs];
     let mut lines: Vec<Line> = vec![line(governing, section)];
     lines.extend(
@@ -177,7 +187,8 @@ fn case(case: &model::Case, analysis: &Analysis, forces: Vec<Xy>, section: &Sect
         governs_why: why(analysis.rule).into(),
         lines,
         traffic: Vec::new(),
-        safety: analysis.safety.as_ref().map(safety),
+        safety: analysis.safety.as_ref().map(|s| safety(s, extra.thickness.as_ref(), ring)),
+        ranges: extra.ranges.clone(),
         residual: analysis.residual,
     }
 }
@@ -239,7 +250,7 @@ fn line(line: &statics::Line, section: &Section) -> Line {
     }
 }
 
-fn safety(from: &statics::Safety) -> Safety {
+fn safety(from: &statics::Safety, thickness: Option<&statics::Factor>, ring: Option<&Ring>) -> Safety {
     let mut found = BTreeMap::new();
     let mut value = |name: &str, factor: Option<&statics::Factor>| {
         found.insert(name.to_string(), factor.map_or(Status::NotAsked, |f| status(f.status)));
@@ -248,7 +259,7 @@ fn safety(from: &statics::Safety) -> Safety {
     let geometric_factor = value("geometric_factor", Some(&from.geometric));
     let load_factor = value("load_factor", from.load.as_ref());
     let load_factor_least = value("load_factor_least", from.load_least.as_ref());
-    let least_depth = value("least_depth", None);
+    let least_depth = value("least_depth", thickness).zip(ring).map(|(k, ring)| k * ring.depth_min);
     let proof = from.load.as_ref().and_then(|f| f.proof).or(from.geometric.proof);
     Safety {
         geometric_factor,

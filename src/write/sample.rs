@@ -237,6 +237,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                 lines,
                 traffic: vec![],
                 safety: None,
+                ranges: None,
                 residual: 1e-15,
             });
         }

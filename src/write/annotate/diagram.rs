@@ -5,6 +5,7 @@ use crate::outcome::{Check, Run};
 use crate::tags::marks::{Across, Along};
 use crate::write::annotate::elevation;
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
+use crate::write::annotate::place::width;
 use crate::write::annotate::shown::Shown;
 use crate::write::text::{self, in_metres};
 
@@ -70,9 +71,10 @@ pub fn draw(
     let up = curves.iter().flatten().map(|p| p.1).fold(drawn_limit.unwrap_or(0.0), f64::max);
     let down = curves.iter().flatten().map(|p| p.1).fold(-drawn_limit.unwrap_or(0.0), f64::min);
     let unit = spans.first().map_or(1.0, |s| s.unit);
-    let base = y - 3.2 * h - up * factor * unit;
+    let bar = Bar::new(reach, up, down, factor * unit, h);
+    let base = (y - 3.2 * h - up * factor * unit).min(y - bar.above - 0.5 * h);
 
-    scale_bar(canvas, Point::new(corner.x - 2.0 * h, base), factor * unit, reach);
+    scale_bar(canvas, Point::new(corner.x - 2.0 * h, base), &bar);
     for (shown, curve) in spans.iter().zip(&curves) {
         one(shown, curve, canvas, base, factor * unit, drawn_limit, spans.len() > 1);
     }
@@ -130,13 +132,30 @@ pub fn round_down(value: f64) -> f64 {
     lead * power
 }
 
-/// A bar with the scale of the offsets, upright at the left.
-fn scale_bar(canvas: &mut Canvas, at: Point, scale: f64, reach: f64) {
+/// A bar with the scale of the offsets, upright at the left, on the side of the base line that the larger offsets take.
+struct Bar {
+    /// Drawn from the base line, upward positive.
+    drawn: f64,
+    words: String,
+    /// How far bar and words reach above the base line.
+    above: f64,
+}
+
+impl Bar {
+    fn new(reach: f64, up: f64, down: f64, scale: f64, h: f64) -> Self {
+        let length = round_down(if reach > 0.0 { reach } else { TALL * h / scale });
+        let drawn = length * scale * if -down > up { -1.0 } else { 1.0 };
+        let words = format!("{} mm", text::millimetres(length));
+        let half = width(&words, h) / 2.0;
+        Self { drawn, above: drawn.max(0.0).max(drawn / 2.0 + half), words }
+    }
+}
+
+fn scale_bar(canvas: &mut Canvas, at: Point, bar: &Bar) {
     let h = canvas.h;
-    let length = round_down(if reach > 0.0 { reach } else { TALL * h / scale });
-    let top = at + Vec2::new(0.0, length * scale);
-    canvas.line(Layer::OffsetDiagram, "scale", at, top);
-    for end in [at, top] {
+    let end = at + Vec2::new(0.0, bar.drawn);
+    canvas.line(Layer::OffsetDiagram, "scale", at, end);
+    for end in [at, end] {
         canvas.line(
             Layer::OffsetDiagram,
             "scale",
@@ -144,10 +163,8 @@ fn scale_bar(canvas: &mut Canvas, at: Point, scale: f64, reach: f64) {
             end + Vec2::new(0.5 * h, 0.0),
         );
     }
-    let middle = Point::new(at.x - 1.2 * h, f64::midpoint(at.y, top.y));
-    let words = Words::new(format!("{} mm", text::millimetres(length)), middle, h)
-        .centred()
-        .turned(std::f64::consts::FRAC_PI_2);
+    let middle = Point::new(at.x - 1.2 * h, f64::midpoint(at.y, end.y));
+    let words = Words::new(bar.words.clone(), middle, h).centred().turned(std::f64::consts::FRAC_PI_2);
     canvas.text(Layer::OffsetDiagram, "scale", &words);
 }
 

@@ -131,8 +131,13 @@ fn samples() -> impl Strategy<Value = Vec<Sample>> {
     })
 }
 
+/// How many cases are made up: what `PROPTEST_CASES` says, else 400.
+fn cases() -> u32 {
+    std::env::var("PROPTEST_CASES").ok().and_then(|n| n.parse().ok()).unwrap_or(400)
+}
+
 proptest! {
-    #![proptest_config(ProptestConfig { max_shrink_iters: 50, cases: 400, ..ProptestConfig::default() })]
+    #![proptest_config(ProptestConfig { max_shrink_iters: 50, cases: cases(), ..ProptestConfig::default() })]
 
     #[test]
     fn nothing_overlaps(samples in samples(), plotted in prop::option::of(5.0..40.0_f64), mm in any::<bool>()) {
@@ -155,6 +160,52 @@ fn tall_text_and_forty_loads_stay_apart() {
     // Forty loads make twenty groups of two: twenty-one spaces.
     assert_eq!(texts(&marks).iter().filter(|t| t.2.role == "letter" && t.2.layer == 6).count(), 21);
     assert_eq!(has(&marks, "ray"), 21);
+}
+
+/// An arch whose loads stand near one springing: its line lies metres below the axis, so that the diagram hangs below its
+/// base line. Found by `nothing_overlaps`: the bar with the scale stood above it, among the figures of the elevation.
+#[test]
+fn scale_bar_stands_below_the_title_of_its_diagram() {
+    let lopsided = Sample {
+        loads: vec![
+            (0.01, 300.0),
+            (0.04, 150.0),
+            (0.07, 280.0),
+            (0.1, 120.0),
+            (0.15, 240.0),
+            (0.37, 250.0),
+            (0.5, 1.0),
+        ],
+        shift: [-0.64, 0.12, 0.0],
+        ..arch(1, 25.6, 12.5)
+    };
+    let high = Sample { shift: [0.0, 0.0, -3.0], ..arch(5, 30.0, 6.0) };
+    for sample in [lopsided, high, arch(5, 30.0, 6.0)] {
+        let marks = assert_calm(&sample.run(), &sheet());
+        let diagram = |m: &&Mark| marks.layers[m.layer].name.ends_with("OFFSET-DIAGRAM");
+        let title = marks
+            .marks
+            .iter()
+            .filter(diagram)
+            .filter(|m| m.role == "title")
+            .filter_map(|m| match m.shape {
+                Shape::Text { at, .. } => Some(at.y),
+                _ => None,
+            })
+            .fold(f64::INFINITY, f64::min);
+        assert!(title.is_finite());
+        for mark in marks.marks.iter().filter(diagram).filter(|m| m.role == "scale") {
+            let top = match &mark.shape {
+                Shape::Line(a, b) => a.y.max(b.y),
+                Shape::Text { at, height, text, angle, across, along } => {
+                    let covered = Box2::of_text(*at, *height, text, *angle, *across, *along);
+                    covered.centre.y + covered.reach().y
+                }
+                _ => panic!("a scale is made of lines and a text"),
+            };
+            assert!(top < title, "{top} is not below {title}");
+        }
+    }
 }
 
 #[test]

@@ -1,6 +1,7 @@
 //! The report: one HTML file that holds everything, needs no network and no script, and prints as a calculation sheet on
 //! A4 paper for those who prepare and check it to sign.
 
+mod factors;
 mod hand;
 mod html;
 mod sections;
@@ -104,6 +105,7 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     sections::loads(run, page);
     sections::polygon(run, page);
     hand::block(run, page);
+    factors::block(run, page);
     sections::findings(run, page);
     stations::tables(run, page);
     sections::offsets(run, page);
