@@ -387,7 +387,7 @@ fn patches_are_the_worst_of_all_intervals() {
                 worst.1 = worst.1.min(factor.unwrap_or(f64::INFINITY));
             }
         }
-        assert_eq!(found.tally.depth_use.status(), Status::Found);
+        assert_eq!(found.tally.depth_use.missing, None);
         let told = found.tally.depth_use.found.unwrap().value;
         // More than one stretch may be adverse, so it can be worse than any one interval, and never better.
         assert!(told >= worst.0 * (1.0 - 1e-9), "{support:?}: {told} {}", worst.0);

@@ -1,5 +1,6 @@
 //! One position: its line of thrust, its extremes, its factors.
 
+use super::super::analyse::analyse;
 use super::super::closest::{Closest, Search};
 use super::super::elastic::Effects;
 use super::super::joint::{Joint, Loads, Unknowns};
@@ -143,9 +144,12 @@ impl<'p, 'm> Evaluator<'p, 'm> {
                         }
                         match ended {
                             Closest::Found { r, .. } => Ok(r),
-                            Closest::None(_) => Err(Status::None),
-                            Closest::Unbounded => Err(Status::Unbounded),
-                            Closest::Stalled => Err(Status::Refused),
+                            // In units of its own load the same program may end where it did not here.
+                            ended => alone(prepared, pushes).map_err(|_| match ended {
+                                Closest::None(_) => Status::None,
+                                Closest::Unbounded => Status::Unbounded,
+                                Closest::Stalled | Closest::Found { .. } => Status::Refused,
+                            }),
                         }
                     }
                 }
@@ -267,6 +271,15 @@ impl<'p, 'm> Evaluator<'p, 'm> {
             note(&mut self.tally.multiple, upper, value, position, false);
         }
     }
+}
+
+/// The governing line of a position solved on its own.
+fn alone(prepared: &Prepared, pushes: &[Push]) -> Result<Unknowns, Status> {
+    let analysis = analyse(&prepared.moving.problem_at(pushes)).map_err(|_| Status::Refused)?;
+    let line = analysis.lines.get(analysis.governs).ok_or(Status::Refused)?;
+    let r = line.reaction.ok_or(line.status)?;
+    let (load, length) = (prepared.span.load, prepared.span.length);
+    Ok([r.horizontal / load, r.vertical / load, r.moment / (load * length), 1.0])
 }
 
 fn limit<'a>(
