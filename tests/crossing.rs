@@ -114,6 +114,8 @@ fn a_train_through_fill_is_as_by_hand() {
     near(worst.kern.value.unwrap(), 3.0 * worst.ring.value.unwrap(), 1e-12);
     let said = |check: Check| run.findings.iter().filter(move |f| f.check == check);
     assert!(said(Check::LoadFactor).any(|f| f.message.contains("two axles")), "{:?}", run.findings);
+    // Only the train varies: its factor is judged, and nothing is said to be missing.
+    assert!(!said(Check::NotJudged).any(|f| f.message.contains("nothing varies")));
     assert!(said(Check::Traffic).any(|f| f.message.contains("go to the ground on the left")));
 }
 
