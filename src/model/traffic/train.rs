@@ -243,8 +243,7 @@ fn way(
                     "state `dispersal`, horizontal per vertical on each side",
                 ));
             };
-            let voussoirs = settings.rib.voussoirs.and_then(|n| u32::try_from(n).ok());
-            let fill = Fill::new(span, &depths, voussoirs, dispersal).ok_or_else(|| {
+            let fill = Fill::new(span, &depths, settings.rib.voussoirs, dispersal).ok_or_else(|| {
                 not("the ring has no extrados that fill could press on", "draw intrados and extrados")
             })?;
             if let Some(road) = Road::over(&model.road, span.axis.start().x, span.axis.end().x)

@@ -75,10 +75,10 @@ impl Patches {
         if self.pushes.is_empty() {
             return;
         }
-        if let (false, Some(r)) = (self.answers.is_empty(), solved.r) {
-            if let Some((_, _, loading)) = self.by_stations(evaluator, &r, &solved.prefix, position) {
-                self.look(evaluator, pushes, &loading, position);
-            }
+        if let (false, Some(r)) = (self.answers.is_empty(), solved.r)
+            && let Some((_, _, loading)) = self.by_stations(evaluator, &r, &solved.prefix, position)
+        {
+            self.look(evaluator, pushes, &loading, position);
         }
         let closest = self.answers.is_empty() && evaluator.prepared.choice.governs == LineKind::Closest;
         if !closest && !evaluator.prepared.ring {
@@ -329,8 +329,8 @@ impl Patches {
             let room = tau * joint.depth * sense;
             for side in [1.0, -1.0] {
                 let mut a = [0.0; MOST];
-                for i in 0..n {
-                    a[i] = side * m.0[i] - room * t.0[i];
+                for (to, (m, t)) in a.iter_mut().zip(m.0.iter().zip(&t.0)).take(n) {
+                    *to = side * m - room * t;
                 }
                 a[n] = -1.0;
                 program.push(Row { a, b: room * t.1 - side * m.1 });
