@@ -1,5 +1,5 @@
 //! Loads that move across a span, against closed forms, influence lines of the books, and every position solved alone.
-#![allow(clippy::unwrap_used, clippy::print_stdout)]
+#![allow(clippy::unwrap_used, clippy::print_stdout, clippy::cast_possible_truncation, clippy::cast_sign_loss)]
 
 mod support;
 

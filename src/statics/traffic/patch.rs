@@ -342,7 +342,7 @@ impl Patches {
             .active
             .iter()
             .filter(|a| a.0 >= first && a.1 > 0.0)
-            .map(|&(i, y)| ((i - first) / 2, if (i - first) % 2 == 0 { 1.0 } else { -1.0 }, y))
+            .map(|&(i, y)| ((i - first) / 2, if (i - first).is_multiple_of(2) { 1.0 } else { -1.0 }, y))
             .collect();
         Some(self.adverse(|c| {
             active
