@@ -6,6 +6,7 @@
 mod affine;
 mod crossing;
 pub mod fit;
+pub mod slab;
 
 pub use affine::Affine;
 pub use crossing::{Boxes, Crossing};

@@ -353,3 +353,35 @@ pub const ONE_POST: f64 = 1e-6;
 /// Least cosine of the slope of a road beyond its drawn end. Larger: true slopes are flattened; smaller: a road drawn with
 /// an upright end runs to infinity.
 pub const STEEP_ROAD: f64 = 0.1;
+/// Steps of the walk through the slabs of an outline (edges open at each upright cut, summed) above which it is given up. A
+/// count. Larger: hostile outlines take minutes; smaller: finely surveyed ones are refused.
+pub const SLAB_STEPS: usize = 40_000_000;
+
+/// Part of an outline's extent by which two of its edges must change sides to count as crossing. No unit. Larger: a loop of a
+/// few millimetres goes unsaid; smaller: outlines that share an edge within rounding are told to cross.
+pub const OUTLINE_CROSSES: f64 = 1e-7;
+
+/// Crossings of one outline that are looked for. A count. Larger: a scribble fills the findings; smaller: the one that is told
+/// may be the least of them.
+pub const CROSSINGS_TOLD: usize = 16;
+
+/// Pieces that a continuous ring is cut into for the weight upon it. A count, even, so that the crown of a symmetrical ring is a
+/// joint of two. The weight of each piece enters in its middle, so between joints the line of thrust lies outside its true
+/// curve by `f / (2 n²)` of a parabola of rise `f`. Larger: time for nothing that is built; smaller: millimetres.
+pub const FILL_PIECES: u32 = 160;
+
+/// Part of the whole by which the sum of the weighed pieces may miss it. No unit. Larger: weight is lost unseen; smaller:
+/// rounding of large coordinates is told as a fault.
+pub const AREA_RESIDUAL: f64 = 1e-9;
+
+/// Part of the smaller of two outlines from which on their overlap is told, and up to which one counts as lying within the
+/// other. No unit. Larger: strips counted twice go unsaid; smaller: neighbours drawn edge to edge are told to overlap.
+pub const AREA_OVERLAP: f64 = 1e-6;
+
+/// Part of an area under the extrados from which on a run is not judged. No unit. Larger: a part of the ring weighs twice in
+/// silence; smaller: chords drawn along a curved extrados keep a drawing from being judged.
+pub const AREA_UNDER: f64 = 0.01;
+
+/// Rise over span above which fill that is not said to press sideways is worth a warning. No unit. From the trade's view that
+/// sideways pressure matters little on flat arches.
+pub const STEEP_FILLED: f64 = 0.25;

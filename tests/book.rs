@@ -377,7 +377,12 @@ fn not_built(table: &str, key: &str) -> Option<String> {
     let several = ["area", "case", "traffic", "range", "accept.finding"].contains(&table);
     let head = if several { format!("[[{table}]]") } else { format!("[{table}]") };
     PROBES.iter().find_map(|probe| {
-        let job = format!("{head}\n{key} = {probe}\n");
+        // An area is read as a whole or not at all.
+        let beside = match (table, key) {
+            ("area", "width" | "earth_pressure" | "passive") => "name = \"x\"\nlevel = 1\nunit_weight = 1\n",
+            _ => "",
+        };
+        let job = format!("{head}\n{beside}{key} = {probe}\n");
         let named = format!("`{table}.{key}`");
         let problems = thrustmark::job::Job::problems(job.as_bytes());
         problems.into_iter().find(|p| p.check == "not-built" && p.message.contains(&named)).map(|p| p.remedy)

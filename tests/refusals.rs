@@ -20,6 +20,7 @@ const WITHOUT_DRAWING: &[(&str, &str)] = &[
         "entity",
         "what the entity reader still finds after every number was looked at; no drawing is known that does",
     ),
+    ("area-tangled", "takes outlines with tens of thousands of edges over one another"),
     ("axis-pieces", "takes more lines than any bridge has spans"),
     ("labels-crowded", "takes thousands of labels"),
     ("marks", "marks that are not sound: a fault of the program"),

@@ -294,3 +294,24 @@ fn a_changed_copy_is_not_taken_for_the_source() {
     assert!(flow::unmark(&copy, Some(&plain), false).unwrap().exact);
     assert_eq!(fs::read(&plain).unwrap(), fs::read(&source).unwrap());
 }
+
+#[test]
+fn a_large_drawing_is_marked_while_its_hash_is_on_its_way() {
+    let good = Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/good");
+    let small = fs::read_to_string(good.join("open-spandrel-rib.dxf")).unwrap();
+    let end = if small.contains("\r\n") { "\r\n" } else { "\n" };
+    // Comments before the end: the hash of some forty megabytes takes longer than all the rest.
+    let (head, tail) = small.split_at(small.rfind(&format!("  0{end}EOF")).unwrap());
+    let comment = format!("999{end}{}{end}", "x".repeat(250));
+    let large = [head, &comment.repeat(160_000), tail].concat();
+    let stated = fs::read_to_string(good.join("thrustmark.toml")).unwrap();
+    let (run, copy) = there_and_back(large.as_bytes(), &job(&stated));
+    let copy = String::from_utf8(copy.unwrap()).unwrap();
+    let hash = Source::from_bytes(large).sha256().unwrap();
+    assert_eq!(run.drawing.sha256.as_deref(), Some(hash.as_str()));
+    assert!(copy.contains(&format!("sha256 {hash}")) && !copy.contains(&"0".repeat(64)));
+    // What the marks say beside the hash and the date is what they say of the small drawing.
+    let (_, of_small) = there_and_back(small.as_bytes(), &job(&stated));
+    let lines = |text: &str| text.lines().filter(|l| l.starts_with("THRUST-")).count();
+    assert_eq!(lines(&copy), lines(&String::from_utf8(of_small.unwrap()).unwrap()));
+}

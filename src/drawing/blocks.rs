@@ -10,6 +10,7 @@ use std::collections::{BTreeMap, BTreeSet};
 use super::gather::keeps;
 use super::insert::Insert;
 use super::note::{Note, Role};
+use super::outlines;
 use super::roles::{self, CURVES, POINTS};
 use crate::geometry::Affine;
 use crate::job::{Role as JobRole, Settings};
@@ -68,7 +69,8 @@ pub fn expanded<'o>(
 /// Whether a reference on this layer gives its layer to curves on layer `0` of its block: it serves as something, but not as
 /// loads, where the reference is a load itself.
 fn lends_layer(settings: &Settings, layer: &str) -> Result<bool, Refusal> {
-    Ok(roles::role_of(settings, layer)?.is_some_and(|role| role != JobRole::Loads))
+    Ok(outlines::is_area_layer(settings, layer)
+        || roles::role_of(settings, layer)?.is_some_and(|role| role != JobRole::Loads))
 }
 
 fn count_in_model(census: &mut Vec<LayerCensus>, record: &Record) {
@@ -118,7 +120,9 @@ impl<'r> Blocks<'r> {
             let Some(held) = record.block.and_then(|b| content.get_mut(b)) else {
                 continue;
             };
-            if roles::role_of(settings, &record.layer)?.is_some() {
+            if outlines::is_area_layer(settings, &record.layer)
+                || roles::role_of(settings, &record.layer)?.is_some()
+            {
                 held.own.push(record);
             } else if record.layer == "0" && record.kind != "INSERT" {
                 held.zero.push(record);

@@ -29,7 +29,7 @@ pub fn source(record: &Record) -> Source {
 }
 
 /// How a record lies in what it is read for.
-fn placement(record: &Record) -> Affine {
+pub(super) fn placement(record: &Record) -> Affine {
     record.placement.as_ref().map_or(Affine::IDENTITY, |p| p.map)
 }
 

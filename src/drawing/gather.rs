@@ -7,7 +7,7 @@ use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
 use super::roles::{self, CURVES, POINTS};
 use super::space::View;
-use super::{Drawing, blocks, convert, names, reference, unit, viewport};
+use super::{Drawing, blocks, convert, names, outlines, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
 use crate::refusal::Refusal;
@@ -22,6 +22,9 @@ const UNREAD: [&str; 3] = ["HELIX", "MLINE", "CIRCLE"];
 pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     let stated = |role: Role| settings.states(&format!("layers.{}", role.key()));
     if candidate.kind == "VIEWPORT" {
+        return true;
+    }
+    if outlines::is_area_layer(settings, candidate.layer) {
         return true;
     }
     match settings.layers.role_of(candidate.layer) {
@@ -125,6 +128,8 @@ fn read_seen(
     reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
     reader.hidden(hinge_layers.iter());
     let road = reader.road()?;
+    let areas = outlines::read(outline, settings, &mut reader.notes)?;
+    reader.areas_in_plane(&areas, [&axis[..], &intrados].concat().first())?;
     reader.parts_not_read()?;
     reader.not_read(&axis_layers, &load_layers);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
@@ -161,6 +166,7 @@ fn read_seen(
         points,
         hinges,
         road,
+        areas,
         texts,
         viewports,
         notes: reader.notes,
@@ -237,7 +243,8 @@ impl Reader<'_> {
             return Ok((Vec::new(), Vec::new()));
         }
         // The best names first; among equals the one layer that holds a line from springing to springing.
-        let by_name = roles::axis_by_name(self.outline);
+        let mut by_name = roles::axis_by_name(self.outline);
+        by_name.retain(|n| !outlines::is_area_layer(self.settings, &n.1));
         for rank in [3, 2, 1] {
             let same: Vec<_> = by_name.iter().filter(|n| n.0 == rank).collect();
             let mut fitting = Vec::new();
@@ -264,7 +271,8 @@ impl Reader<'_> {
     }
 
     fn axis_by_content(&mut self) -> Result<(Vec<String>, Vec<Curve>), Refusal> {
-        let layers = roles::holding(self.outline, &CURVES, tolerance::GUESS_ENTITIES, &[]);
+        let mut layers = roles::holding(self.outline, &CURVES, tolerance::GUESS_ENTITIES, &[]);
+        layers.retain(|l| !outlines::is_area_layer(self.settings, l));
         let records = self.rescan(&layers, &CURVES)?;
         let mut fitting: Vec<(String, Line)> = Vec::new();
         for layer in &layers {
@@ -310,7 +318,8 @@ impl Reader<'_> {
             let (points, texts) = self.points(&layers, &self.outline.records)?;
             return Ok(LoadLayers { layers, points, texts });
         }
-        let by_name = roles::loads_by_name(self.outline, axis_layers);
+        let mut by_name = roles::loads_by_name(self.outline, axis_layers);
+        by_name.retain(|n| !outlines::is_area_layer(self.settings, &n.0));
         if !by_name.is_empty() {
             for (layer, word) in &by_name {
                 self.notes.push(Note::LayerGuessed {
@@ -327,7 +336,8 @@ impl Reader<'_> {
     }
 
     fn loads_by_content(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
-        let layers = roles::holding(self.outline, &POINTS, tolerance::GUESS_ENTITIES, axis_layers);
+        let mut layers = roles::holding(self.outline, &POINTS, tolerance::GUESS_ENTITIES, axis_layers);
+        layers.retain(|l| !outlines::is_area_layer(self.settings, l));
         let records = self.rescan(&layers, &[&POINTS[..], &["TEXT", "MTEXT"]].concat())?;
         let Some(line) = outlook::one_line(axis) else {
             self.notes.push(Note::NoLoadLayer);
@@ -421,6 +431,17 @@ impl Reader<'_> {
                     "Move all entities of the elevation into one plane (in a flat drawing: the same z)",
                 ));
             }
+        }
+        Ok(())
+    }
+
+    /// Refuses outlines that lie in another plane than the axis.
+    fn areas_in_plane(&self, areas: &[outlines::Outlines], axis: Option<&Curve>) -> Result<(), Refusal> {
+        let Some(axis) = axis else { return Ok(()) };
+        for area in areas {
+            let hatches = area.hatches.iter().flat_map(|h| &h.loops);
+            let all: Vec<Curve> = std::iter::once(axis).chain(&area.curves).chain(hatches).cloned().collect();
+            self.one_plane(&all, &[])?;
         }
         Ok(())
     }

@@ -7,12 +7,14 @@ pub mod convert;
 mod ends;
 mod entity;
 mod gather;
+mod hatch;
 mod insert;
 mod lay;
 pub mod names;
 mod note;
 mod nurbs;
 pub mod ocs;
+pub mod outlines;
 mod outlook;
 pub mod read;
 mod reference;
@@ -55,6 +57,8 @@ pub struct Drawing {
     pub hinges: Vec<PointLike>,
     /// Curves of the road line, in the order of the file; read only where the job has traffic.
     pub road: Vec<Curve>,
+    /// Outlines of the areas of the job, in its order.
+    pub areas: Vec<outlines::Outlines>,
     /// Texts on the load layers, in the order of the file.
     pub texts: Vec<Text>,
     /// Viewports of the layouts.

@@ -20,6 +20,8 @@ pub enum Role {
     Hinges,
     /// The line that traffic runs on.
     Road,
+    /// Outlines of what weighs.
+    Areas,
 }
 
 impl Role {
@@ -32,6 +34,7 @@ impl Role {
             Self::Extrados => "extrados",
             Self::Hinges => "hinges",
             Self::Road => "road",
+            Self::Areas => "area",
         }
     }
 }

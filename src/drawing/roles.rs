@@ -39,6 +39,8 @@ pub fn named(
         Role::Extrados => JobRole::Extrados,
         Role::Hinges => JobRole::Hinges,
         Role::Road => JobRole::Road,
+        // Areas have tables of their own.
+        Role::Areas => return Ok(Vec::new()),
     };
     let mut found = Vec::new();
     let mut unusable = Vec::new();

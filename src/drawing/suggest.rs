@@ -20,8 +20,9 @@ pub struct Suggestion {
     pub reason: Option<Reason>,
 }
 
-/// Looks at every layer of a drawing: those that the layer names of the job claim, those whose names hold a word of the
-/// trade, and those whose content looks like an axis or like loads over one.
+/// Looks at the layers of a drawing: those that the layer names of the job claim; and, where these leave the axis or the
+/// loads open, those whose names hold a word of the trade, and those whose content looks like an axis or like loads over
+/// one. Only for the latter the drawing is read once more.
 ///
 /// # Errors
 /// When the drawing cannot be read a second time, or the job gives one layer to two roles.
@@ -32,12 +33,26 @@ pub fn suggest(
 ) -> Result<Vec<Suggestion>, Refusal> {
     let mut found = Vec::new();
     let kinds = [&CURVES[..], &POINTS[..]].concat();
-    let layers = roles::holding(outline, &kinds, tolerance::GUESS_ENTITIES, &[]);
-    let records = gather::rescan(bytes, &layers, &kinds)?;
+    let mut layers = roles::holding(outline, &kinds, tolerance::GUESS_ENTITIES, &[]);
+    let mut claimed = Vec::new();
+    for layer in &layers {
+        claimed.push(roles::role_of(settings, layer)?);
+    }
+    let is = |role| claimed.contains(&Some(role));
+    let line = is(JobRole::Axis) || is(JobRole::Intrados) && is(JobRole::Extrados);
+    let rescanned;
+    let records = if line && is(JobRole::Loads) {
+        let mut named = claimed.iter().map(Option::is_some);
+        layers.retain(|_| named.next().unwrap_or(false));
+        &outline.records
+    } else {
+        rescanned = gather::rescan(bytes, &layers, &kinds)?;
+        &rescanned
+    };
     let mut lines: Vec<(Vec<super::Curve>, Line)> = Vec::new();
     for layer in &layers {
         let one = std::slice::from_ref(layer);
-        let curves: Result<Vec<_>, Refusal> = gather::in_model(&records, one)
+        let curves: Result<Vec<_>, Refusal> = gather::in_model(records, one)
             .filter(|r| CURVES.contains(&r.kind.as_str()))
             .map(|r| convert::curve(r, &outline.decoder))
             .collect();
@@ -66,7 +81,7 @@ pub fn suggest(
     }
     for layer in &layers {
         let one = std::slice::from_ref(layer);
-        let points: Vec<_> = gather::in_model(&records, one)
+        let points: Vec<_> = gather::in_model(records, one)
             .filter(|r| POINTS.contains(&r.kind.as_str()))
             .filter_map(|r| convert::point(r, &outline.decoder).ok().flatten())
             .collect();

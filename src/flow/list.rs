@@ -3,13 +3,13 @@
 use std::collections::BTreeMap;
 use std::path::Path;
 
-use super::{settings_for, without_marks};
+use super::{Plain, settings_for};
 use crate::drawing::viewport::{self, Shown};
 use crate::drawing::{self, Suggestion};
 use crate::job::Job;
 use crate::refusal::Refusal;
 use crate::tags::marks::Plane;
-use crate::tags::{Outline, Source, fold};
+use crate::tags::{Outline, fold};
 
 /// A drawing at a glance.
 #[derive(Debug, Clone, PartialEq)]
@@ -60,7 +60,8 @@ pub struct LayerLine {
 /// When it cannot be read as a drawing, or the job file is wrong.
 pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
     let settings = settings_for(path, job)?;
-    let (source, outline, marks, _) = without_marks(Source::open(path)?, &settings, false)?;
+    let Plain { source, outline, marks, .. } = Plain::open(path, &settings, false)?;
+    let outline = outline.map_or_else(|| drawing::scan(&source, &settings), Ok)?;
     let spelled = |name: &str, code| outline.header(name, code).map(str::to_string);
     let units = ["$INSUNITS", "$MEASUREMENT"]
         .into_iter()

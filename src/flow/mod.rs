@@ -1,5 +1,6 @@
 //! From a file name to a finished run: the stages in their order, with nothing printed.
 
+mod copy;
 mod list;
 mod problem;
 mod ranges;
@@ -7,7 +8,6 @@ mod sheet;
 mod traffic;
 mod unmark;
 
-use std::io::Read;
 use std::path::{Path, PathBuf};
 
 use jiff::civil::Date;
@@ -18,12 +18,11 @@ use crate::model::{self, Model};
 use crate::outcome::{DrawingFacts, Run, Units};
 use crate::refusal::Refusal;
 use crate::statics::{self, Analysis};
-use crate::tags::marks::Marks;
 use crate::tags::{self, FoundMarks, Hashing, Outline, Source};
 use crate::verdict;
 use crate::write::annotate;
-use crate::write::file::{self, Replace};
 
+pub use copy::{Target, beside, carries_marks, mark, marked, may_write_copy, with_marks};
 pub use list::{LayerLine, Listing, list};
 pub use unmark::{Unmarked, unmark};
 
@@ -69,9 +68,19 @@ pub struct Checked {
     settings: Settings,
     /// The marks that the file as it stands carries.
     marks: Option<FoundMarks>,
+    /// The hash of the source, while it is on its way.
+    hashing: Option<Hashing>,
 }
 
 impl Checked {
+    /// Waits for the hash of the source and puts it into the run.
+    fn settle(&mut self) -> Result<(), Refusal> {
+        if let Some(hashing) = self.hashing.take() {
+            self.run.drawing.sha256 = Some(hashing.finish()?);
+        }
+        Ok(())
+    }
+
     /// The marks that the file as it stands carries.
     pub fn marks(&self) -> Option<&FoundMarks> {
         self.marks.as_ref()
@@ -93,58 +102,12 @@ impl Checked {
     }
 }
 
-/// Where the marked copy goes.
-#[derive(Debug, Clone, PartialEq, Eq)]
-pub struct Target {
-    /// The file; `None`: beside the drawing, as [`beside`] names it.
-    pub output: Option<PathBuf>,
-    /// Replace a file that carries no mark of ours.
-    pub force: bool,
-}
-
 /// Reads, computes and judges one drawing. A refusal becomes a run with an error and no verdict.
 pub fn check(path: &Path, job: Option<&Job>, environment: Environment) -> Run {
     match checked(path, job, environment) {
         Ok(checked) => checked.run,
         Err(refused) => *refused,
     }
-}
-
-/// Checks one drawing and writes its marked copy. A refusal becomes a run with an error and no verdict.
-pub fn mark(path: &Path, job: Option<&Job>, target: &Target, environment: Environment) -> Run {
-    let checked = match checked(path, job, environment) {
-        Ok(checked) => checked,
-        Err(refused) => return *refused,
-    };
-    let facts = checked.run.drawing.clone();
-    let settings = checked.run.settings.clone();
-    let output = match (&target.output, checked.marks.is_some()) {
-        (Some(output), _) => output.clone(),
-        (None, false) => beside(path),
-        (None, true) => {
-            let refusal = Refusal::new(
-                "marked-already",
-                "This drawing carries marks already",
-                "Name the new copy with --output; the old marks are replaced there.",
-            );
-            return refused(facts, settings, refusal);
-        }
-    };
-    match write_copy(path, &checked, &output, target.force, environment) {
-        Ok(()) => {
-            let mut run = checked.run;
-            run.output = Some(output.display().to_string());
-            run
-        }
-        Err(refusal) => refused(facts, settings, refusal),
-    }
-}
-
-/// The name of the marked copy beside a drawing: `NAME.thrust.dxf`.
-pub fn beside(path: &Path) -> PathBuf {
-    let mut name = path.file_stem().unwrap_or_default().to_os_string();
-    name.push(".thrust.dxf");
-    path.with_file_name(name)
 }
 
 /// The job of a drawing: the one named, else the one found on the way up from its folder.
@@ -206,29 +169,68 @@ pub fn in_force(settings: &Settings) -> serde_json::Value {
 /// # Errors
 /// The run with its refusal.
 pub fn checked_with(path: &Path, settings: Settings, environment: Environment) -> Result<Checked, Box<Run>> {
+    settled(begun(path, None, settings, environment)?)
+}
+
+/// The same for a drawing that was opened before.
+///
+/// # Errors
+/// The run with its refusal; the hash of the drawing is told in it.
+pub fn checked_plain(
+    path: &Path,
+    plain: Plain,
+    settings: Settings,
+    environment: Environment,
+) -> Result<Checked, Box<Run>> {
+    settled(begun(path, Some(plain), settings, environment)?)
+}
+
+fn settled(mut checked: Checked) -> Result<Checked, Box<Run>> {
+    match checked.settle() {
+        Ok(()) => Ok(checked),
+        Err(refusal) => Err(Box::new(refused(checked.run.drawing, checked.run.settings, refusal))),
+    }
+}
+
+/// The same with the hash of the source still on its way.
+fn begun(
+    path: &Path,
+    plain: Option<Plain>,
+    settings: Settings,
+    environment: Environment,
+) -> Result<Checked, Box<Run>> {
     let mut facts = no_facts(path);
     let in_force = in_force(&settings);
-    stages(path, settings, environment, &mut facts, &in_force)
+    stages(path, plain, settings, environment, &mut facts, &in_force)
         .map_err(|refusal| Box::new(refused(facts, in_force, refusal)))
 }
 
 /// The stages in order; what is known so far is left in `facts` for a refusal.
 fn stages(
     path: &Path,
+    plain: Option<Plain>,
     settings: Settings,
     environment: Environment,
     facts: &mut DrawingFacts,
     in_force: &serde_json::Value,
 ) -> Result<Checked, Refusal> {
-    let file = Source::open(path)?;
-    let (source, outline, marks, hashing) = without_marks(file, &settings, true)?;
+    let plain = match plain {
+        Some(plain) => plain,
+        None => Plain::open(path, &settings, true)?,
+    };
+    let Plain { source, outline, marks, hashing } = plain;
+    let outline = outline.map_or_else(|| drawing::scan(&source, &settings), Ok)?;
     facts.dxf_version.clone_from(&outline.version);
     facts.form = Some(outline.form.name().into());
     facts.encoding = Some(outline.encoding().into());
-    let judged = judged(&source, &outline, &settings, facts, environment);
-    // The hash was on its way beside all that; it is told of a refused drawing too.
-    facts.sha256 = hashing.map(Hashing::finish).transpose()?;
-    let (drawing, judged) = judged?;
+    let (drawing, judged) = match judged(&source, &outline, &settings, facts, environment) {
+        Ok(judged) => judged,
+        Err(refusal) => {
+            // It is told of a refused drawing too.
+            facts.sha256 = hashing.map(Hashing::finish).transpose()?;
+            return Err(refusal);
+        }
+    };
     let run = Run {
         units: judged.units,
         drawing: facts.clone(),
@@ -239,7 +241,7 @@ fn stages(
         output: None,
         error: None,
     };
-    Ok(Checked { run, source, outline, drawing, settings, marks })
+    Ok(Checked { run, source, outline, drawing, settings, marks, hashing })
 }
 
 fn judged(
@@ -252,7 +254,8 @@ fn judged(
     let drawing = drawing::read_outlined(source, outline, settings)?;
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
-    let model = model::build(&drawing, &settings.into())?;
+    let mut model = model::build(&drawing, &settings.into())?;
+    model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;
     let analyses = analyse(&model, &cases, settings)?;
@@ -269,25 +272,44 @@ fn judged(
     Ok((drawing, judged))
 }
 
-/// The drawing as it was before it was marked, with its outline, the marks it carried, and, when it is wanted, its hash on
-/// its way.
-fn without_marks(
-    file: Source,
-    settings: &Settings,
-    hash: bool,
-) -> Result<(Source, Outline, Option<FoundMarks>, Option<Hashing>), Refusal> {
-    // Most drawings carry no marks; for those the hash is under way while they are read.
-    let hashing = hash.then(|| Hashing::start(&file));
-    let mut outline = drawing::scan(&file, settings)?;
-    let Some(marks) = outline.marks.take() else {
-        return Ok((file, outline, None, hashing));
-    };
-    drop(hashing);
-    outline.marks = Some(marks.clone());
-    let plain = file.spliced(&tags::unmark(&file, &outline)?)?;
-    let hashing = hash.then(|| Hashing::start(&plain));
-    let outline = drawing::scan(&plain, settings)?;
-    Ok((plain, outline, Some(marks), hashing))
+/// A drawing as it was before it was marked.
+pub struct Plain {
+    /// Its bytes.
+    pub source: Source,
+    /// The marks that were taken out.
+    pub marks: Option<FoundMarks>,
+    /// Its hash, on its way, when it is wanted.
+    pub hashing: Option<Hashing>,
+    /// What stands where in it, where it was gone through already.
+    outline: Option<Outline>,
+}
+
+impl Plain {
+    /// Opens a drawing and takes any marks out of it, in memory. Most drawings carry none; for those the hash is under way
+    /// while they are read, and reading once is enough.
+    ///
+    /// # Errors
+    /// When it cannot be read as a drawing.
+    pub fn open(path: &Path, settings: &Settings, hash: bool) -> Result<Self, Refusal> {
+        let file = Source::open(path)?;
+        let hashing = hash.then(|| Hashing::start(&file));
+        let outline = drawing::scan(&file, settings)?;
+        if outline.marks.is_none() {
+            return Ok(Self { source: file, marks: None, hashing, outline: Some(outline) });
+        }
+        drop(hashing);
+        Self::without(&file, &outline, hash)
+    }
+
+    /// Takes the marks out of a drawing that was gone through.
+    ///
+    /// # Errors
+    /// When the marks are those of a later version.
+    pub fn without(file: &Source, outline: &Outline, hash: bool) -> Result<Self, Refusal> {
+        let source = file.spliced(&tags::unmark(file, outline)?)?;
+        let hashing = hash.then(|| Hashing::start(&source));
+        Ok(Self { source, marks: outline.marks.clone(), hashing, outline: None })
+    }
 }
 
 /// The name that the source of a marked copy has when nobody renamed it: `NAME.dxf` for `NAME.thrust.dxf`; any other
@@ -349,121 +371,6 @@ fn own_weight_stated(settings: &Settings) -> Result<(), Refusal> {
     Ok(())
 }
 
-fn write_copy(
-    path: &Path,
-    checked: &Checked,
-    output: &Path,
-    force: bool,
-    environment: Environment,
-) -> Result<(), Refusal> {
-    may_write_copy(path, output, force)?;
-    write_marked(path, checked, &marked(path, checked, environment)?, output, force)
-}
-
-/// Looks whether a marked copy may be written, before any work is done: over nothing, over a copy of ours, or by force.
-///
-/// # Errors
-/// As [`file::may_write`].
-pub fn may_write_copy(path: &Path, output: &Path, force: bool) -> Result<(), Refusal> {
-    let ours = |target: &Path| Ok(carries_marks(target));
-    let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
-    file::may_write(output, &[path], &replace)
-}
-
-/// The marked copy of a checked drawing, in memory.
-///
-/// # Errors
-/// When the drawing cannot take the marks.
-pub fn marked(path: &Path, checked: &Checked, environment: Environment) -> Result<Source, Refusal> {
-    let sheet = sheet::sheet(path, checked, environment);
-    with_marks(checked, &annotate::annotate(&checked.run, &sheet))
-}
-
-/// A checked drawing with marks of the caller's in it, in memory. Marks that it carried are gone.
-///
-/// # Errors
-/// When the drawing cannot take the marks.
-pub fn with_marks(checked: &Checked, marks: &Marks) -> Result<Source, Refusal> {
-    let edits = tags::mark(&checked.source, &checked.outline, marks)?;
-    let broken = tags::validate::check_inserted(&checked.source, &checked.outline, &edits)?;
-    if let Some(first) = broken.first() {
-        return Err(Refusal::new(
-            "marks-invalid",
-            format!(
-                "The marks made for this drawing break {} rules of the format, first {:?}: {}",
-                broken.len(),
-                first.rule,
-                first.detail
-            ),
-            "Report this drawing; nothing was written.",
-        ));
-    }
-    checked.source.spliced(&edits)
-}
-
-/// Writes a marked copy that was made in memory.
-///
-/// # Errors
-/// As [`may_write_copy`]; when the copy cannot be written; when another program wrote to the source meanwhile.
-pub fn write_marked(
-    path: &Path,
-    checked: &Checked,
-    marked: &Source,
-    output: &Path,
-    force: bool,
-) -> Result<(), Refusal> {
-    let ours = |target: &Path| Ok(carries_marks(target));
-    let replace = if force { Replace::Any } else { Replace::Ours(&ours) };
-    file::write_whole(output, &[path], &replace, |target| {
-        marked.write_to_file(target).map_err(|error| {
-            Refusal::new(
-                "write",
-                format!("The marked copy could not be written: {error}"),
-                "Look at the space left and at your right to write there.",
-            )
-        })?;
-        checked.source.unchanged()
-    })
-}
-
-/// Whether a file is a drawing that carries marks of ours; false also when it cannot be read as a drawing.
-pub fn carries_marks(path: &Path) -> bool {
-    let look = || -> Result<bool, Refusal> {
-        let source = Source::open(path)?;
-        // A scan is dearer than a search, and most drawings of a set carry no marks.
-        if !holds_name(&mut source.reader()).unwrap_or(true) {
-            return Ok(false);
-        }
-        Ok(tags::scan(&source, &tags::Options { keep: None, hash: false })?.marks.is_some())
-    };
-    look().unwrap_or(false)
-}
-
-/// Whether the name of our application stands anywhere in the bytes, in capitals or not.
-fn holds_name(reader: &mut impl Read) -> std::io::Result<bool> {
-    const CHUNK: usize = 1 << 18;
-    let name = tags::APPLICATION.as_bytes();
-    let first = name.first().copied().unwrap_or_default();
-    let mut buffer = vec![0; CHUNK];
-    // Bytes at the start of the buffer that were there before: a name may lie across two chunks.
-    let mut kept = 0;
-    loop {
-        let read = reader.read(&mut buffer[kept..])?;
-        if read == 0 {
-            return Ok(false);
-        }
-        let filled = &buffer[..kept + read];
-        let found = memchr::memchr2_iter(first, first.to_ascii_lowercase(), filled)
-            .any(|at| filled.get(at..at + name.len()).is_some_and(|part| part.eq_ignore_ascii_case(name)));
-        if found {
-            return Ok(true);
-        }
-        let tail = filled.len().saturating_sub(name.len() - 1)..filled.len();
-        kept = tail.len();
-        buffer.copy_within(tail, 0);
-    }
-}
-
 fn no_facts(path: &Path) -> DrawingFacts {
     DrawingFacts {
         file: path.display().to_string(),
@@ -479,7 +386,7 @@ fn no_facts(path: &Path) -> DrawingFacts {
 }
 
 /// A run that ended in a refusal.
-pub fn refused(facts: DrawingFacts, settings: serde_json::Value, refusal: Refusal) -> Run {
+fn refused(facts: DrawingFacts, settings: serde_json::Value, refusal: Refusal) -> Run {
     Run {
         units: Units::si(),
         drawing: facts,
@@ -495,36 +402,4 @@ pub fn refused(facts: DrawingFacts, settings: serde_json::Value, refusal: Refusa
 /// A run for a drawing that was refused before it was opened.
 pub fn refused_unread(path: &Path, refusal: Refusal) -> Run {
     refused(no_facts(path), serde_json::Value::Null, refusal)
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    /// Gives a few bytes at a time.
-    struct Slow<'a>(&'a [u8], usize);
-
-    impl Read for Slow<'_> {
-        fn read(&mut self, buf: &mut [u8]) -> std::io::Result<usize> {
-            let count = self.1.min(self.0.len()).min(buf.len());
-            buf[..count].copy_from_slice(&self.0[..count]);
-            self.0 = &self.0[count..];
-            Ok(count)
-        }
-    }
-
-    #[test]
-    fn the_name_is_found_across_chunks() {
-        for step in [1, 3, 7, 100] {
-            for (text, found) in [
-                ("  1\nTHRUSTMARK\n", true),
-                ("tTtthrustMark", true),
-                ("THRUSTMAR", false),
-                ("", false),
-                ("THRUST MARK THRUSTMAR K", false),
-            ] {
-                assert_eq!(holds_name(&mut Slow(text.as_bytes(), step)).unwrap(), found, "{text} by {step}");
-            }
-        }
-    }
 }

@@ -2,9 +2,9 @@
 
 use crate::geometry::Point;
 use crate::job::{Draw, Govern, RibDepth, Settings, Support};
-use crate::model::{Case, Forces, Model, Span, cases};
+use crate::model::{Case, Forces, Model, Span, areas, cases};
 use crate::refusal::Refusal;
-use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Unsolved};
+use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Slender, Unsolved};
 
 /// The problem of one span in one case. With unit loads nothing strains the rib but the loads: a change of temperature has
 /// no size beside an unknown force.
@@ -36,19 +36,31 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
             "Give [rib] depth, draw intrados and extrados, or remove [rib] unit_weight",
         ));
     }
+    let drawn = span.loads.len();
+    let standing = areas::lumps(model, &span.name);
+    let name = |lump: &areas::Lump| &model.areas[lump.area].name;
+    let weighed =
+        standing.iter().enumerate().filter(|(_, lump)| case.varies(name(lump))).map(|(i, _)| drawn + i);
     Ok(Problem {
         axis: span.axis.clone(),
         forces: span
             .loads
             .iter()
             .map(|load| Force { at: load.at, force: load.force * case.factor(&load.set) })
+            .chain(
+                standing
+                    .iter()
+                    .map(|lump| Force { at: lump.at, force: lump.force * case.factor(name(lump)) }),
+            )
             .collect(),
+        entering: standing.iter().enumerate().map(|(i, lump)| (drawn + i, lump.s)).collect(),
         stiffness: rib.elastic_modulus.zip(rib.width).map(|(e, b)| e * KN_PER_M2 * b / (1.0 + rib.creep)),
         effects,
+        slender: slender(settings, model.forces)?,
         strength: strength(settings, model.forces)?,
         friction: rib.friction,
         ring_weight: own,
-        varying: (0..span.loads.len()).filter(|&i| case.varies(&span.loads[i].set)).collect(),
+        varying: (0..drawn).filter(|&i| case.varies(&span.loads[i].set)).chain(weighed).collect(),
         weight_varies: case.varies(cases::OWN_WEIGHT),
         depth,
         tension: rib.tension,
@@ -95,6 +107,29 @@ fn effects(settings: &Settings) -> Result<Effects, Refusal> {
         }
     }
     Ok(effects)
+}
+
+/// What bends a slender rib: whenever its support is elastic, and modulus and width are given.
+fn slender(settings: &Settings, forces: Forces) -> Result<Option<Slender>, Refusal> {
+    let rib = &settings.rib;
+    let elastic = matches!(rib.support, Some(Support::Hingeless | Support::TwoHinged | Support::ThreeHinged));
+    if forces == Forces::UnitLoads || !elastic {
+        return Ok(None);
+    }
+    let imperfection = rib.imperfection.unwrap_or(0.0).abs();
+    if imperfection > 0.0 || rib.deck_inertia > 0.0 {
+        for (key, given) in [("rib.elastic_modulus", rib.elastic_modulus), ("rib.width", rib.width)] {
+            if given.is_none() {
+                return Err(missing(settings, key, "an imperfection and a deck that shares the bending"));
+            }
+        }
+    }
+    let deck = match (rib.deck_inertia > 0.0, rib.deck_modulus) {
+        (false, _) => 0.0,
+        (true, Some(modulus)) => modulus * KN_PER_M2 * rib.deck_inertia,
+        (true, None) => return Err(missing(settings, "rib.deck_modulus", "rib.deck_inertia")),
+    };
+    Ok(rib.elastic_modulus.zip(rib.width).map(|_| Slender { imperfection, deck }))
 }
 
 /// Strength times width, kN/m; none with unit loads, which have no size beside it.

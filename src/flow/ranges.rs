@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 
 use super::problem;
 use crate::job::{RibDepth, Settings, same_name};
-use crate::model::{Case, Forces, Model, Span, cases};
+use crate::model::{Case, Forces, Model, Span, areas, cases};
 use crate::outcome::{RangeInput, RangedFactor, RangedValue, Ranges, Status};
 use crate::refusal::Refusal;
 use crate::statics::range::{self, Effect, Found, Input};
@@ -108,6 +108,13 @@ fn ranges(
         for (input, &value) in inputs.iter().zip(x).filter(|(input, _)| input.idle.is_none()) {
             set(&mut varied, &input.what, value);
         }
+        let standing;
+        let model = if settings.area.is_empty() {
+            model
+        } else {
+            standing = Model { areas: areas::weigh(model, &varied)?, ..model.clone() };
+            &standing
+        };
         let mut problem = problem::problem(model, span, case, &varied)?;
         problem.govern = Some(LineKind::Closest);
         problem.draw.clear();
@@ -311,6 +318,8 @@ fn effect(case: &Case, settings: &Settings, input: &RangeInput, kind: Kind) -> E
         ("rib", "width") => Effect::Rising,
         ("rib", "depth") if !own && settings.area.is_empty() => Effect::Rising,
         ("rib", _) => Effect::Unknown,
+        // Fill that the extrados rises through does not grow in proportion.
+        (_, "level") => Effect::Unknown,
         (area, _) => scaled(area),
     }
 }

@@ -48,7 +48,8 @@ pub fn sheet(path: &Path, checked: &Checked, environment: Environment) -> Sheet 
         frozen: checked.settings.mark.frozen,
         tool_version: env!("CARGO_PKG_VERSION").into(),
         date: environment.today.to_string(),
-        sha256: checked.run.drawing.sha256.clone().unwrap_or_default(),
+        // As many zeros where the hash is still on its way.
+        sha256: checked.run.drawing.sha256.clone().unwrap_or_else(|| "0".repeat(64)),
         source_name: source_name(path, checked),
         job_hash: checked.settings.origin.sha256.clone(),
     }

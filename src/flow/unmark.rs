@@ -2,6 +2,7 @@
 
 use std::path::{Path, PathBuf};
 
+use super::copy::unwritten;
 use crate::refusal::Refusal;
 use crate::tags::{self, Hashing, Options, Source};
 use crate::write::file::{self, Replace};
@@ -40,13 +41,8 @@ pub fn unmark(path: &Path, output: Option<&Path>, force: bool) -> Result<Unmarke
     let replace = if force { Replace::Any } else { Replace::Nothing };
     let (sha256, exact) = file::write_whole(&output, &[path], &replace, |target| {
         // Written while the hash is being computed; when that is wrong, the file never gets its name.
-        plain.write_to_file(target).map_err(|error| {
-            Refusal::new(
-                "write",
-                format!("The drawing could not be written: {error}"),
-                "Look at the space left and at your right to write there.",
-            )
-        })?;
+        file::sending(target, plain.len(), |target| plain.write_to_file(target))
+            .map_err(|error| unwritten("drawing", &error))?;
         marked.unchanged()?;
         let sha256 = hashing.finish()?;
         let exact = recorded == Some(sha256.as_str());

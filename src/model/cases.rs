@@ -46,6 +46,7 @@ pub fn parts(model: &Model, settings: &Settings) -> Vec<String> {
     if model.own_weight(settings).is_some() {
         parts.push(OWN_WEIGHT.into());
     }
+    parts.extend(model.areas.iter().map(|a| a.name.clone()));
     parts.sort();
     parts.dedup();
     parts
@@ -66,6 +67,7 @@ pub fn cases(model: &Model, settings: &Settings) -> Result<Vec<Case>, Refusal> {
             unknown: Vec::new(),
         }]);
     }
+    let named_only = |part: &str| part == OWN_WEIGHT || model.areas.iter().any(|a| a.name == part);
     settings
         .case
         .iter()
@@ -83,7 +85,7 @@ pub fn cases(model: &Model, settings: &Settings) -> Result<Vec<Case>, Refusal> {
                 unknown: Vec::new(),
             };
             for part in &parts {
-                let factor = match find(part, &keys, &stated.name)? {
+                let factor = match find(part, named_only(part), &keys, &stated.name)? {
                     Some(place) => {
                         used[place] = true;
                         values[place]
@@ -92,7 +94,7 @@ pub fn cases(model: &Model, settings: &Settings) -> Result<Vec<Case>, Refusal> {
                 };
                 if factor.abs() > 0.0 {
                     case.factors.insert(part.clone(), factor);
-                    if let Some(place) = find(part, &vary, &stated.name)? {
+                    if let Some(place) = find(part, named_only(part), &vary, &stated.name)? {
                         varying[place] = true;
                         case.varies.push(part.clone());
                     }
@@ -115,8 +117,8 @@ pub fn cases(model: &Model, settings: &Settings) -> Result<Vec<Case>, Refusal> {
 }
 
 /// The entry that stands for a part; the rib's own weight and areas only by their own names.
-fn find(part: &str, entries: &[Pattern], case: &str) -> Result<Option<usize>, Refusal> {
-    if part == OWN_WEIGHT {
+fn find(part: &str, by_name: bool, entries: &[Pattern], case: &str) -> Result<Option<usize>, Refusal> {
+    if by_name {
         return Ok(entries.iter().position(|e| e.is_exact() && e.matches(part)));
     }
     best_match(part, entries).map_err(|two| {

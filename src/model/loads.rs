@@ -39,7 +39,7 @@ impl From<&Settings> for LoadSettings {
             unlabelled: settings.loads.unlabelled_kn(),
             decimal: settings.loads.decimal,
             depth: settings.rib.depth,
-            weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0),
+            weighs: settings.rib.unit_weight.is_some_and(|w| w > 0.0) || !settings.area.is_empty(),
         }
     }
 }

@@ -2,6 +2,7 @@
 //!
 //! Knows layers only as names of load sets; knows no mechanics.
 
+pub mod areas;
 pub mod cases;
 pub mod chain;
 pub mod figures;
@@ -10,12 +11,15 @@ pub mod loads;
 pub mod matching;
 pub mod middle;
 pub mod note;
+pub mod outline;
 pub mod pieces;
 pub mod piers;
 pub mod ring;
+pub mod roof;
 pub mod traffic;
 pub mod weight;
 
+use crate::drawing::outlines::Outlines;
 use crate::drawing::{Drawing, Source};
 use crate::geometry::{Path, Point, Vec2};
 use crate::job::{RibDepth, Settings};
@@ -38,11 +42,20 @@ pub struct Model {
     pub road: Vec<Path>,
     /// Loads that stand over no span.
     pub off_span: Vec<Load>,
+    /// What else weighs on the spans, in the order of the job; put in by [`areas::weigh`].
+    pub areas: Vec<areas::Weighed>,
+    /// The outlines of the areas as drawn, in the order of the job, drawing units, and a drawing unit in m.
+    pub outlines: (Vec<Outlines>, f64),
     /// What was noticed.
     pub notes: Vec<Note>,
 }
 
 impl Model {
+    /// The place of a span by its name; behind all others when there is none.
+    pub fn place_of(&self, span: &str) -> usize {
+        self.spans.iter().position(|s| s.name == span).unwrap_or(self.spans.len())
+    }
+
     /// Weight of the rib per area of the elevation, kN/m²: unit weight times width. `None` where it is not given, or
     /// forces are multiples of an unknown load.
     pub fn own_weight(&self, settings: &Settings) -> Option<f64> {
@@ -135,7 +148,15 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     }));
     let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
     notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
-    Ok(Model { spans, forces, road, off_span, notes })
+    Ok(Model {
+        spans,
+        forces,
+        road,
+        off_span,
+        areas: Vec::new(),
+        outlines: (drawing.areas.clone(), metres),
+        notes,
+    })
 }
 
 /// Gives each drawn hinge to the span on whose rib it stands: within half the depth (`stated`, m, where no ring is drawn)

@@ -1,6 +1,5 @@
 //! Whether a marked copy is still what its source, its job and this version of the program give.
 
-use std::io::Read;
 use std::path::{Path, PathBuf};
 
 use jiff::civil::Date;
@@ -8,9 +7,9 @@ use serde::Serialize;
 
 use crate::flow::{self, Environment};
 use crate::job::{Job, Settings};
-use crate::outcome::Verdict;
+use crate::outcome::{Run, Verdict};
 use crate::refusal::Refusal;
-use crate::tags::{self, FoundMarks, Options, Source};
+use crate::tags::{self, FoundMarks, Hashing, Options, Outline, Source};
 use crate::write::annotate::settings_hash;
 
 /// Whether a marked copy may be issued as it stands.
@@ -115,49 +114,55 @@ pub fn verify(
     environment: Environment,
 ) -> Result<Verified, Refusal> {
     let copy = Source::open(marked)?;
-    let (found, plain) = taken_out(&copy)?;
-    let Some(found) = found else {
-        return Err(Refusal::new(
-            "no-marks",
-            format!("{} carries no marks of thrustmark", marked.display()),
-            "Give the marked copy, the one that `mark` wrote.",
-        ));
-    };
-    if found.fact("holds") == Some(super::compare::HOLDS) {
-        return Err(Refusal::new(
-            "no-marks",
-            format!("{} carries the changes that `compare` draws, and no mark of a check", marked.display()),
-            "Give the marked copy, the one that `mark` wrote.",
-        ));
+    let outline = tags::scan(&copy, &Options { keep: None, hash: false })?;
+    let found = of_a_check(marked, &outline)?;
+    let recorded = Recorded::of(found);
+    let mut plain = flow::Plain::without(&copy, &outline, true)?;
+    let other = source.map(|path| Source::open(path).map(|s| (path, Hashing::start(&s), s))).transpose()?;
+    let mut later = Reasons(Vec::new());
+    let tool = format!("{} {}", env!("CARGO_PKG_NAME"), env!("CARGO_PKG_VERSION"));
+    if recorded.tool.as_deref() != Some(tool.as_str()) {
+        let by = recorded.tool.as_deref().unwrap_or("an unknown version");
+        later.add(What::Tool, format!("it was marked by {by}, and this is {tool}"));
     }
-    let recorded = Recorded::of(&found);
+    // The sheets of a job know a drawing by the name of the source, whatever the copy is called.
+    let named_as = source.map(Path::to_path_buf).or_else(|| recorded.source.as_ref().map(PathBuf::from));
+    let (read, named_as) = (source.unwrap_or(marked), named_as.unwrap_or_else(|| marked.to_path_buf()));
+    let settings = flow::settings_as(read, &named_as, job)?;
+    job_reasons(&recorded, &settings, &mut later);
+    // Where nothing speaks against it so far, the drawing is gone through while its hash is on its way.
+    let then = found.fact("date").and_then(|d| d.parse::<Date>().ok()).map(|today| Environment { today });
+    let (sha256, checked) = match then.filter(|_| later.0.is_empty()) {
+        Some(then) => match flow::checked_plain(marked, plain, settings.clone(), then) {
+            Ok(checked) => (checked.run.drawing.sha256.clone(), Some(Ok((checked, then)))),
+            Err(run) => (run.drawing.sha256.clone(), Some(Err(run))),
+        },
+        None => (plain.hashing.take().map(Hashing::finish).transpose()?, None),
+    };
     let mut reasons = Reasons(Vec::new());
-    if recorded.sha256.as_deref() != Some(plain.sha256()?.as_str()) {
+    if recorded.sha256.is_none() || recorded.sha256 != sha256 {
         reasons.add(
             What::Copy,
             "without its marks the copy is not the source that was marked: it was changed since, or saved by another \
              program",
         );
     }
-    if let Some(source) = source {
-        let (_, bytes) = taken_out(&Source::open(source)?)?;
-        if recorded.sha256.as_deref() != Some(bytes.sha256()?.as_str()) {
-            reasons.add(What::Source, format!("{} is not the drawing that was marked", source.display()));
-        }
+    if let Some((path, hashing, other)) = other
+        && recorded.sha256.as_ref() != Some(&hashing.finish()?)
+        && recorded.sha256 != Some(taken_out(&other)?.sha256()?)
+    {
+        reasons.add(What::Source, format!("{} is not the drawing that was marked", path.display()));
     }
-    let tool = format!("{} {}", env!("CARGO_PKG_NAME"), env!("CARGO_PKG_VERSION"));
-    if recorded.tool.as_deref() != Some(tool.as_str()) {
-        let by = recorded.tool.as_deref().unwrap_or("an unknown version");
-        reasons.add(What::Tool, format!("it was marked by {by}, and this is {tool}"));
-    }
-    // The sheets of a job know a drawing by the name of the source, whatever the copy is called.
-    let named_as = source.map(Path::to_path_buf).or_else(|| recorded.source.as_ref().map(PathBuf::from));
-    let (read, named_as) = (source.unwrap_or(marked), named_as.unwrap_or_else(|| marked.to_path_buf()));
-    let settings = flow::settings_as(read, &named_as, job)?;
-    job_reasons(&recorded, &settings, &mut reasons);
+    reasons.0.append(&mut later.0);
     if reasons.0.is_empty() {
-        let copy = Copy { path: marked, bytes: &copy, found: &found };
-        reasons.0.extend(derived_again(&copy, &settings, environment)?);
+        match checked {
+            Some(checked) => {
+                let (checked, then) = checked.map_err(unchecked)?;
+                let copy = Copy { path: marked, bytes: &copy, found };
+                reasons.0.extend(derived_again(&copy, &settings, &checked, then, environment)?);
+            }
+            None => reasons.add(What::Marks, "the marks carry no day on which they were made"),
+        }
     }
     Ok(Verified {
         file: marked.display().to_string(),
@@ -177,13 +182,39 @@ impl Reasons {
     }
 }
 
-/// The marks of a drawing, and its bytes without them.
-fn taken_out(drawing: &Source) -> Result<(Option<FoundMarks>, Source), Refusal> {
-    let outline = tags::scan(drawing, &Options { keep: None, hash: false })?;
-    match &outline.marks {
-        None => Ok((None, drawing.clone())),
-        Some(marks) => Ok((Some(marks.clone()), drawing.spliced(&tags::unmark(drawing, &outline)?)?)),
+/// The marks of a check that a drawing carries.
+fn of_a_check<'o>(marked: &Path, outline: &'o Outline) -> Result<&'o FoundMarks, Refusal> {
+    const REMEDY: &str = "Give the marked copy, the one that `mark` wrote.";
+    let Some(found) = &outline.marks else {
+        return Err(Refusal::new(
+            "no-marks",
+            format!("{} carries no marks of thrustmark", marked.display()),
+            REMEDY,
+        ));
+    };
+    if found.fact("holds") == Some(super::compare::HOLDS) {
+        return Err(Refusal::new(
+            "no-marks",
+            format!("{} carries the changes that `compare` draws, and no mark of a check", marked.display()),
+            REMEDY,
+        ));
     }
+    Ok(found)
+}
+
+/// A drawing without any marks of ours.
+fn taken_out(drawing: &Source) -> Result<Source, Refusal> {
+    let outline = tags::scan(drawing, &Options { keep: None, hash: false })?;
+    match outline.marks {
+        None => Ok(drawing.clone()),
+        Some(_) => drawing.spliced(&tags::unmark(drawing, &outline)?),
+    }
+}
+
+/// Why a drawing that was marked once could not be checked again.
+fn unchecked(run: Box<Run>) -> Refusal {
+    run.error
+        .unwrap_or_else(|| Refusal::new("verify", "The drawing cannot be checked again", "Mark it again."))
 }
 
 fn job_reasons(recorded: &Recorded, settings: &Settings, reasons: &mut Reasons) {
@@ -218,21 +249,13 @@ struct Copy<'a> {
 fn derived_again(
     copy: &Copy,
     settings: &Settings,
+    checked: &flow::Checked,
+    then: Environment,
     environment: Environment,
 ) -> Result<Option<Reason>, Refusal> {
     let reason = |what, message: String| Ok(Some(Reason { what, message }));
-    let refused = |run: Box<crate::outcome::Run>| {
-        run.error.unwrap_or_else(|| {
-            Refusal::new("verify", "The drawing cannot be checked again", "Mark it again.")
-        })
-    };
-    let Some(then) = copy.found.fact("date").and_then(|d| d.parse::<Date>().ok()) else {
-        return reason(What::Marks, "the marks carry no day on which they were made".into());
-    };
-    let then = Environment { today: then };
-    let checked = flow::checked_with(copy.path, settings.clone(), then).map_err(refused)?;
-    let again = flow::marked(copy.path, &checked, then)?;
-    if !same_bytes(copy.bytes, &again)? {
+    let again = flow::marked(copy.path, checked, then)?;
+    if !copy.bytes.same_as(&again)? {
         let expected =
             tags::scan(&again, &Options { keep: None, hash: false })?.marks.map_or(0, |m| m.entities);
         let words = match copy.found.entities {
@@ -248,7 +271,7 @@ fn derived_again(
     }
     let dated = settings.accept.finding.iter().any(|e| e.until.is_some());
     if dated && environment != then {
-        let now = flow::checked_with(copy.path, settings.clone(), environment).map_err(refused)?;
+        let now = flow::checked_with(copy.path, settings.clone(), environment).map_err(unchecked)?;
         if now.run.verdict != checked.run.verdict {
             let word = |v: Option<Verdict>| match v {
                 Some(Verdict::Within) => "within",
@@ -266,25 +289,4 @@ fn derived_again(
         }
     }
     Ok(None)
-}
-
-fn same_bytes(one: &Source, other: &Source) -> Result<bool, Refusal> {
-    if one.len() != other.len() {
-        return Ok(false);
-    }
-    let failed = |error: std::io::Error| {
-        Refusal::new("read", format!("The marked copy cannot be read: {error}"), "Run again.")
-    };
-    let (mut one, mut other) = (one.reader(), other.reader());
-    let mut buffers = (vec![0; 1 << 16], vec![0; 1 << 16]);
-    loop {
-        let read = one.read(&mut buffers.0).map_err(failed)?;
-        if read == 0 {
-            return Ok(true);
-        }
-        other.read_exact(&mut buffers.1[..read]).map_err(failed)?;
-        if buffers.0[..read] != buffers.1[..read] {
-            return Ok(false);
-        }
-    }
 }

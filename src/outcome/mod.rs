@@ -3,8 +3,10 @@
 //! Lengths in m, forces in kN (or unit loads), moments in kN·m, stresses in MPa; points are `[x, y]` in the elevation
 //! plane in metres, in the drawing's own origin.
 
+mod areas;
 pub mod bow;
 mod ranges;
+mod slender;
 mod traffic;
 
 use std::collections::BTreeMap;
@@ -14,6 +16,9 @@ use serde::{Deserialize, Serialize};
 
 use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
+pub use slender::{Buckling, SectionForces};
+
+pub use areas::AreaShare;
 
 pub use traffic::{
     AtWorst, Axle, Direction, EnvelopeStation, Forces, InfluenceLine, InfluenceOrdinate, PushRange, Traffic,
@@ -142,6 +147,9 @@ pub struct Span {
     pub ring: Option<Ring>,
     /// Its loads in their order along the ring.
     pub loads: Vec<Load>,
+    /// What stands on it by outline or up to a level.
+    #[serde(default)]
+    pub areas: Vec<AreaShare>,
     /// The load cases.
     pub cases: Vec<Case>,
 }
@@ -246,6 +254,10 @@ pub struct Case {
     pub traffic: Vec<Traffic>,
     /// Factors of safety of a ring; null where they do not apply.
     pub safety: Option<Safety>,
+    /// Both extremes of thrust and moment of the governing line, each with what goes with it; empty where that line is only
+    /// the most favourable one.
+    #[serde(default)]
+    pub section_forces: Vec<SectionForces>,
     /// Worst and best factors over the ranges that the job states; null without any.
     #[serde(default)]
     pub ranges: Option<Ranges>,
@@ -313,6 +325,9 @@ pub struct Line {
     pub stations: Vec<Station>,
     /// Proof of optimality.
     pub proof: Option<Proof>,
+    /// Buckling and second-order bending; null but for an elastic rib whose modulus and width are given.
+    #[serde(default)]
+    pub buckling: Option<Buckling>,
 }
 
 /// What an abutment does to the rib.
@@ -362,6 +377,12 @@ pub struct Station {
     pub stress_max: Option<f64>,
     /// Least compression (negative: tension).
     pub stress_min: Option<f64>,
+    /// Least moment in a slender rib, imperfection to either side; null where buckling was not looked at.
+    #[serde(default)]
+    pub moment_min: Option<f64>,
+    /// Greatest moment, alike.
+    #[serde(default)]
+    pub moment_max: Option<f64>,
 }
 
 /// Proof of optimality.
@@ -428,6 +449,8 @@ pub enum Check {
     Equilibrium,
     /// A line of thrust that does not exist.
     NoLine,
+    /// Buckling, second-order bending, shared bending and sharp curvature of an elastic rib.
+    Buckling,
     /// Loads unevenly spaced.
     Spacing,
     /// Loads that stand over no span.
@@ -450,6 +473,8 @@ pub enum Check {
     Support,
     /// The text encoding was assumed.
     Encoding,
+    /// What stands on the ring by its outline or up to a level.
+    Areas,
     /// Something in the drawing that was passed over.
     PassedOver,
     /// A stated limit that could not be judged.

@@ -7,10 +7,11 @@ use super::limit::{Aim, Extreme, Limit};
 use super::line::{Sheet, missing};
 use super::peaks::Sampling;
 use super::rule::{Choice, choose, through_points};
+use super::slender::{Parts, Rib, with_deck};
 use super::span::Span;
 use super::subspace::Subspace;
 use super::through::{slack, through};
-use super::{Analysis, Line, LineKind, Placed, Problem, Proof, SpanKind, Status, Support, Unsolved};
+use super::{Analysis, Line, LineKind, Placed, Problem, Proof, Slender, SpanKind, Status, Support, Unsolved};
 
 /// Computes the governing line of thrust of a span and those wanted beside it.
 ///
@@ -42,9 +43,19 @@ fn solve(
     let span = Span::new(problem)?;
     let choice = choose(problem, &span)?;
     let sense = if choice.kind == SpanKind::Cable { -1.0 } else { 1.0 };
-    let sampling = match problem.voussoirs {
-        Some(count) => Sampling::voussoirs(&span, sense, count),
-        None => Sampling::new(&span, sense),
+    let sampling = match (&problem.joints[..], problem.voussoirs) {
+        ([], Some(count)) => Sampling::voussoirs(&span, sense, count),
+        ([], None) => Sampling::new(&span, sense),
+        (_, Some(_)) => {
+            return Err(Unsolved::Input("joints are given, and a number of voussoirs beside them".into()));
+        }
+        (_, None) if problem.ring_weight > 0.0 || problem.depth.is_none() => {
+            return Err(Unsolved::Input(
+                "a ring with joints of its own needs its depth, and the weight of its pieces as forces"
+                    .into(),
+            ));
+        }
+        (joints, None) => Sampling::drawn(&span, sense, joints)?,
     };
     let shallow = span.with_unit_depth();
     let bare = Sampling::new(&shallow, sense);
@@ -103,8 +114,17 @@ fn solve(
         rule: choice.rule,
         lines,
         safety,
+        sharpest: span.sharpest(),
         residual,
     })
+}
+
+/// The flexibility of a rectangle of the drawn depth, for a modulus times a width in kN/m.
+fn rectangle(modulus: f64) -> impl Fn(&Place) -> Flexibility {
+    move |p| {
+        let d = p.depth.unwrap_or(1.0);
+        Flexibility { bending: 12.0 / (modulus * d.powi(3)), axial: 1.0 / (modulus * d) }
+    }
 }
 
 /// One problem with all that its lines share.
@@ -153,18 +173,54 @@ impl Work<'_> {
             }
         }
         let modulus = self.problem.stiffness.unwrap_or(1.0);
-        let rectangle = |p: &Place| {
-            let d = p.depth.unwrap_or(1.0);
-            Flexibility { bending: 12.0 / (modulus * d.powi(3)), axial: 1.0 / (modulus * d) }
-        };
+        let rectangle = rectangle(modulus);
         let flexibility = self.flexibility.unwrap_or(&rectangle);
         let whole = self.sheet.bare;
-        let Some(r) = least_energy(self.span, whole, self.space, flexibility, &effects) else {
+        let deck = self.problem.slender.map_or(0.0, |s| s.deck);
+        let parts = (deck > 0.0 && support != Some(Support::ThreeHinged))
+            .then(|| with_deck(self.span, whole, self.choice, flexibility, &effects, deck))
+            .flatten();
+        let alone = || least_energy(self.span, whole, self.space, flexibility, &effects);
+        let Some(r) = parts.as_ref().map(|p| p.all).or_else(alone) else {
             return refuse("the stiffness along the axis is no positive number");
         };
         match slack(whole.least_thrust(&r)) {
             Some(joint) => self.no_line(kind, "the elastic line", &joint),
-            None => Ok((self.sheet.found(kind, support, &r, None), Some(r))),
+            None => self.slender(self.sheet.found(kind, support, &r, None), r, parts.as_ref()),
+        }
+    }
+
+    /// Adds the bending of a slender rib to its line, or refuses the line of a rib that buckles.
+    fn slender(
+        &self,
+        mut line: Line,
+        r: Unknowns,
+        parts: Option<&Parts>,
+    ) -> Result<(Line, Option<Unknowns>), Unsolved> {
+        let (Some(slender), Some(support)) = (self.problem.slender, self.choice.support) else {
+            return Ok((line, Some(r)));
+        };
+        let stiffness = self.problem.stiffness.filter(|_| self.span.has_depth);
+        if support == Support::None || (self.flexibility.is_none() && stiffness.is_none()) {
+            return Ok((line, Some(r)));
+        }
+        let rectangle = rectangle(stiffness.unwrap_or(1.0));
+        let rib = Rib {
+            span: self.span,
+            whole: self.sheet.bare,
+            space: self.space,
+            support,
+            slender: if support == Support::ThreeHinged { Slender { deck: 0.0, ..slender } } else { slender },
+            flexibility: self.flexibility.unwrap_or(&rectangle),
+            r,
+            parts,
+        };
+        match rib.bending(&line.stations) {
+            Ok(bending) => {
+                line.bending = Some(bending);
+                Ok((line, Some(r)))
+            }
+            Err(reason) => Ok((missing(line.kind, line.support, Status::Refused, reason), None)),
         }
     }
 
@@ -219,7 +275,15 @@ impl Work<'_> {
         };
         match slack(self.sheet.bare.least_thrust(&r)) {
             Some(joint) => self.no_line(kind, "the line through its three points", &joint),
-            None => Ok((self.sheet.found(kind, self.choice.support, &r, None), Some(r))),
+            None => {
+                let line = self.sheet.found(kind, self.choice.support, &r, None);
+                // Of three hinges this is the elastic line too.
+                if self.choice.support == Some(Support::ThreeHinged) && self.choice.kind == SpanKind::Arch {
+                    self.slender(line, r, None)
+                } else {
+                    Ok((line, Some(r)))
+                }
+            }
         }
     }
 

@@ -90,7 +90,7 @@ pub(super) fn least_energy(
 }
 
 /// Adds half the square of an affine function, times `weight`.
-fn add(energy: &mut Quadratic, row: &Affine, weight: f64) {
+pub(super) fn add(energy: &mut Quadratic, row: &Affine, weight: f64) {
     for i in 0..energy.n {
         for j in 0..energy.n {
             energy.matrix[i][j] += weight * row.0[i] * row.0[j];
@@ -99,7 +99,7 @@ fn add(energy: &mut Quadratic, row: &Affine, weight: f64) {
     }
 }
 
-fn place(span: &Span, joint: &Joint) -> Place {
+pub(super) fn place(span: &Span, joint: &Joint) -> Place {
     Place {
         at: span.drawn(joint.at),
         s: joint.s * span.length,

@@ -28,7 +28,8 @@ impl Sheet<'_> {
         proof: Option<Proof>,
     ) -> Line {
         let span = self.span;
-        let worst = self.bare.worst(r);
+        let own = self.sampling.has_own_directions();
+        let worst = if own { self.sampling.farthest(r) } else { self.bare.worst(r) };
         let used = self.sampling.worst(r).filter(|_| span.has_depth);
         let reaction = span.reaction(r);
         let (first, last) = (span.first(), span.last());
@@ -58,6 +59,7 @@ impl Sheet<'_> {
             }),
             stations: self.stations(worst.iter().chain(&used), r),
             proof,
+            bending: None,
         }
     }
 
@@ -97,6 +99,9 @@ impl Sheet<'_> {
 
     fn stations<'p>(&self, worst: impl Iterator<Item = &'p Peak>, r: &Unknowns) -> Vec<Station> {
         let span = self.span;
+        if self.sampling.has_own_directions() {
+            return self.sampling.joints().iter().map(|j| self.station(j, r)).collect();
+        }
         let mut joints: Vec<Joint> = vec![span.first(), span.last()];
         joints.push(span.joint_at(span.crown.0, true));
         for e in &span.entered {
@@ -154,5 +159,6 @@ pub(super) fn missing(kind: LineKind, support: Option<Support>, status: Status, 
         depth_use: None,
         stations: Vec::new(),
         proof: None,
+        bending: None,
     }
 }

@@ -8,6 +8,7 @@ mod analyse;
 mod check;
 mod closest;
 mod elastic;
+mod factors;
 mod joint;
 mod limit;
 mod line;
@@ -20,6 +21,7 @@ pub mod range;
 mod rule;
 mod safety;
 mod simplex;
+pub mod slender;
 mod span;
 pub mod stress;
 mod string;
@@ -31,6 +33,8 @@ pub mod traffic;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
+pub use factors::Factors;
+pub use slender::{Bending, Slender};
 pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};
@@ -111,6 +115,11 @@ pub struct Problem {
     pub depth: Option<Depth>,
     /// Number of equal pieces of the ring along the axis; `None`: a continuous ring.
     pub voussoirs: Option<usize>,
+    /// Joints of the ring that are not normal to the axis: intrados and extrados end of each, m, left to right. They are all
+    /// joints that there are, and their own middle, direction and depth count. The weight of the pieces between them is the
+    /// caller's to give as forces with their places in [`Problem::entering`]: [`Problem::ring_weight`] is cut by normals, and is
+    /// refused beside them. Empty: joints normal to the axis.
+    pub joints: Vec<[Point; 2]>,
     /// Coefficient of friction between the pieces; `None`: nothing slides.
     pub friction: Option<f64>,
     /// Strength in compression times width, kN/m, of a uniform block of stress; `None`: unlimited.
@@ -119,6 +128,8 @@ pub struct Problem {
     pub stiffness: Option<f64>,
     /// What strains an elastic rib beside its loads.
     pub effects: Effects,
+    /// What bends a slender rib beside its line of thrust, with its buckling; `None`: not asked.
+    pub slender: Option<Slender>,
     /// Whether the section can take tension.
     pub tension: bool,
     /// How the span is held; `None` when nothing was said.
@@ -146,10 +157,12 @@ impl Problem {
             weight_varies: false,
             depth: None,
             voussoirs: None,
+            joints: Vec::new(),
             friction: None,
             strength: None,
             stiffness: None,
             effects: Effects::default(),
+            slender: None,
             tension: false,
             support: None,
             hinges: Vec::new(),
@@ -290,6 +303,8 @@ pub struct Line {
     pub stations: Vec<Station>,
     /// Proof of optimality of an optimum.
     pub proof: Option<Proof>,
+    /// The bending of a slender rib, where [`Problem::slender`] asks for it and the line is that of an elastic rib.
+    pub bending: Option<Bending>,
 }
 
 /// A factor of safety.
@@ -425,6 +440,8 @@ pub struct Analysis {
     pub lines: Vec<Line>,
     /// Factors of safety; `None` for a cable, where no depth is known, and for a section that takes tension.
     pub safety: Option<Safety>,
+    /// Least radius of the axis over the depth there, and where; `None` without a depth or where the axis is straight.
+    pub sharpest: Option<(f64, Point)>,
     /// Largest relative residual of the equilibrium self-checks over all lines found.
     pub residual: f64,
 }

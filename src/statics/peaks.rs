@@ -5,9 +5,11 @@
 //! kinks and joints of pieces it is smooth; it is sampled at every end and every few degrees, and every change of sign of
 //! its slope is followed to the peak. A ring of a stated number of voussoirs has its own joints and no others.
 
+use super::Unsolved;
 use super::joint::{Joint, Loads, Unknowns};
 use super::piece::Piece;
 use super::span::Span;
+use crate::geometry::{Boxes, Point, Vec2};
 use crate::tolerance;
 
 /// Turning of the axis between two samples, degrees.
@@ -44,6 +46,8 @@ pub(super) struct Sampling<'a> {
     joints: Vec<Joint>,
     /// The joints are all there are.
     separate: bool,
+    /// They have a direction of their own.
+    drawn: bool,
 }
 
 impl<'a> Sampling<'a> {
@@ -60,7 +64,7 @@ impl<'a> Sampling<'a> {
                 joints.push(piece.joint(piece.s1, i));
             }
         }
-        Self { span, sense, joints, separate: false }
+        Self { span, sense, joints, separate: false, drawn: false }
     }
 
     /// The joints of a ring of `count` equal pieces along the axis, on both sides of a load or kink.
@@ -76,7 +80,62 @@ impl<'a> Sampling<'a> {
                 joints.push(after);
             }
         }
-        Self { span, sense, joints, separate: true }
+        Self { span, sense, joints, separate: true, drawn: false }
+    }
+
+    /// Joints with a direction and depth of their own, on both sides of a load or kink.
+    pub fn drawn(span: &'a Span, sense: f64, ends: &[[Point; 2]]) -> Result<Self, Unsolved> {
+        let mut joints = Vec::with_capacity(ends.len());
+        let boxes = Boxes::new(&span.path);
+        let mut last = f64::NEG_INFINITY;
+        for &[a, b] in ends {
+            let bad = |what: &str| {
+                let text =
+                    format!("the joint from ({:.3}, {:.3}) to ({:.3}, {:.3}) m {what}", a.x, a.y, b.x, b.y);
+                Err(Unsolved::Input(text))
+            };
+            let (low, high) = (span.local(a), span.local(b));
+            let depth = (high - low).hypot();
+            if !(depth > tolerance::ONE_JOINT && depth.is_finite()) {
+                return bad("has no depth");
+            }
+            let (middle, up) = (low.midpoint(high), (high - low) / depth);
+            let crossings = span.path.crossings_of_line(&boxes, middle, up, tolerance::ONE_JOINT);
+            let crossing = crossings.iter().min_by(|p, q| p.along.abs().total_cmp(&q.along.abs()));
+            let Some(s) = crossing.map(|c| c.s.clamp(0.0, 1.0)) else {
+                return bad("does not cross the axis");
+            };
+            if s < last + tolerance::ONE_JOINT {
+                return bad("does not stand right of the one before it");
+            }
+            last = s;
+            let tangent = Vec2::new(up.y, -up.x);
+            let (before, after) = (span.joint_at(s, true), span.joint_at(s, false));
+            if tangent.dot(before.tangent) <= tolerance::ONE_JOINT {
+                return bad("runs along the axis, or from extrados to intrados");
+            }
+            let own = |joint: Joint| Joint { at: middle, tangent, depth, ..joint };
+            joints.push(own(before));
+            if after.loads != before.loads {
+                joints.push(own(after));
+            }
+        }
+        if joints.len() < 2 {
+            return Err(Unsolved::Input("a ring has at least the two joints at its springings".into()));
+        }
+        Ok(Self { span, sense, joints, separate: true, drawn: true })
+    }
+
+    /// Whether the joints have a direction of their own.
+    pub fn has_own_directions(&self) -> bool {
+        self.drawn
+    }
+
+    /// Of joints with a direction of their own the one with the largest `|M / N|`.
+    pub fn farthest(&self, r: &Unknowns) -> Option<Peak> {
+        let peaks =
+            self.joints.iter().map(|j| self.peak(Measure::Eccentricity, &Joint { depth: 1.0, ..*j }, r));
+        peaks.max_by(|a, b| a.value.total_cmp(&b.value))
     }
 
     /// The same joints of a span that carries other loads: what `fixed` and `varying` say has entered before each piece
@@ -91,7 +150,7 @@ impl<'a> Sampling<'a> {
                 joint.loads.varying = joint.loads.varying.plus(loads);
             }
         }
-        Sampling { span, sense: self.sense, joints, separate: self.separate }
+        Sampling { span, sense: self.sense, joints, separate: self.separate, drawn: self.drawn }
     }
 
     pub fn joints(&self) -> &[Joint] {

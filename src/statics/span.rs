@@ -287,6 +287,15 @@ impl Span {
         self.crown.1.abs() + if self.has_depth { deepest } else { 0.0 }
     }
 
+    /// Least radius over depth, and where, m.
+    pub fn sharpest(&self) -> Option<(f64, Point)> {
+        let bent = self.pieces.iter().filter(|p| self.has_depth && p.curvature.abs() > 0.0);
+        let ends = bent.flat_map(|p| {
+            [p.s0, p.s1].map(|s| (1.0 / (p.curvature.abs() * p.ring_depth(s)), self.drawn(p.joint(s, 0).at)))
+        });
+        ends.min_by(|a, b| a.0.total_cmp(&b.0))
+    }
+
     /// Sum of all loads, in local units.
     pub fn total(&self) -> Vec2 {
         let loads = self.last().loads.times(1.0);

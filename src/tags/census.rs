@@ -29,24 +29,24 @@ pub(super) struct Census {
     key: Vec<u8>,
 }
 
-/// A number that is mostly another one for another pair.
-#[inline]
+/// A number that is mostly another one for another pair: of the lengths, and of eight bytes at each end of the names.
+#[inline(always)]
 fn place(kind: &[u8], layer: &[u8]) -> usize {
     const ODD: u64 = 0x9E37_79B9_7F4A_7C15;
     let mut sum = (kind.len() + (layer.len() << 8)) as u64;
     for bytes in [kind, layer] {
-        let mut add =
-            |word: [u8; 8]| sum = (sum ^ u64::from_le_bytes(word)).wrapping_mul(ODD).rotate_left(29);
-        let mut rest = bytes;
-        while let Some((word, more)) = rest.split_first_chunk() {
-            add(*word);
-            rest = more;
-        }
-        let mut last = [0; 8];
-        for (to, from) in last.iter_mut().zip(rest) {
-            *to = *from;
-        }
-        add(last);
+        let ends = match (bytes.first_chunk(), bytes.last_chunk()) {
+            (Some(first), Some(last)) => {
+                u64::from_le_bytes(*first) ^ u64::from_le_bytes(*last).rotate_left(32)
+            }
+            _ => match (bytes.first_chunk(), bytes.last_chunk()) {
+                (Some(first), Some(last)) => {
+                    u64::from(u32::from_le_bytes(*first)) | u64::from(u32::from_le_bytes(*last)) << 32
+                }
+                _ => bytes.iter().fold(0, |sum, byte| sum << 8 | u64::from(*byte)),
+            },
+        };
+        sum = (sum ^ ends).wrapping_mul(ODD).rotate_left(29);
     }
     usize::try_from(sum.wrapping_mul(ODD) >> 32).unwrap_or(0) % PLACES
 }
@@ -59,7 +59,7 @@ impl Census {
         self.key.extend_from_slice(layer);
     }
 
-    #[inline]
+    #[inline(always)]
     pub fn find(&mut self, kind: &[u8], layer: &[u8]) -> Option<usize> {
         let place = place(kind, layer);
         if let Some(&index) = self.places.get(place)
@@ -69,6 +69,11 @@ impl Census {
         {
             return Some(index);
         }
+        self.find_any(kind, layer, place)
+    }
+
+    #[cold]
+    fn find_any(&mut self, kind: &[u8], layer: &[u8], place: usize) -> Option<usize> {
         if self.places.is_empty() {
             self.places = vec![usize::MAX; PLACES];
         }

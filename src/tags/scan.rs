@@ -49,6 +49,21 @@ impl Sink for Machine<'_> {
         self.all || usize::try_from(code).is_ok_and(|i| WANTED.get(i) == Some(&true))
     }
 
+    /// The few tags that nearly every entity has. What they do is what [`Machine::record_tag`] would do.
+    #[inline(always)]
+    fn brief(&mut self, code: i32, value: &[u8]) -> bool {
+        if self.all || !self.current.open || !matches!(self.part, Part::Entities | Part::Blocks) {
+            return false;
+        }
+        match code {
+            5 => self.own_handle(value),
+            330 if self.model_owner.is_some() || self.part == Part::Blocks => self.refer(value),
+            8 if self.current.entry.is_none() => return self.passed_over(value.trim_ascii()),
+            _ => return false,
+        }
+        true
+    }
+
     #[inline(always)]
     fn skims(&self) -> bool {
         !self.all
@@ -387,6 +402,22 @@ impl Machine<'_> {
                 _ => {}
             }
         }
+    }
+
+    /// The layer of the current entity is known, and it is known already that no such entity is kept; false when it is not.
+    #[inline(always)]
+    fn passed_over(&mut self, layer: &[u8]) -> bool {
+        let Some(index) = self.census.find(&self.current.kind, layer) else {
+            return false;
+        };
+        if self.current.collect == Collect::Pending {
+            if self.census.entry(index).decision != Some((self.block, false)) {
+                return false;
+            }
+            self.current.collect = Collect::No;
+        }
+        self.current.entry = Some(index);
+        true
     }
 
     /// The layer of the current entity is known: whether it is kept is decided here.

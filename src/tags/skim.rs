@@ -309,6 +309,10 @@ fn leap<S: Sink>(
             let value_crlf = line_end > value && buf[line_end - 1] == b'\r';
             let value_end = line_end - usize::from(value_crlf);
             let end = line_end + 1;
+            if sink.brief(code, &buf[value..value_end]) {
+                handed = (end, here + 2, value_crlf);
+                continue;
+            }
             let place = Place {
                 start: base + at as u64,
                 value: base + value as u64,

@@ -303,6 +303,51 @@ impl Source {
         Ok(true)
     }
 
+    /// Whether another source holds the same bytes. Where both keep the same part of one file nothing is read.
+    ///
+    /// # Errors
+    /// When a file cannot be read.
+    pub fn same_as(&self, other: &Self) -> Result<bool, Refusal> {
+        if self.len != other.len {
+            return Ok(false);
+        }
+        let one_file = Arc::ptr_eq(&self.origin, &other.origin);
+        let (mut mine, mut theirs) = (self.pieces.iter().peekable(), other.pieces.iter().peekable());
+        let mut at = 0;
+        while let (Some((start, piece)), Some((other_start, other_piece))) = (mine.peek(), theirs.peek()) {
+            let (end, other_end) = (start + piece.len(), other_start + other_piece.len());
+            let stop = end.min(other_end);
+            let shared = match (piece, other_piece) {
+                (Piece::Kept { from: a, .. }, Piece::Kept { from: b, .. }) if one_file => {
+                    a + (at - start) == b + (at - other_start)
+                }
+                _ => false,
+            };
+            if !shared && !self.same_range(other, at, stop)? {
+                return Ok(false);
+            }
+            at = stop;
+            if end == stop {
+                mine.next();
+            }
+            if other_end == stop {
+                theirs.next();
+            }
+        }
+        Ok(true)
+    }
+
+    fn same_range(&self, other: &Self, mut from: u64, to: u64) -> Result<bool, Refusal> {
+        while from < to {
+            let stop = to.min(from + CHUNK as u64);
+            if self.range(from, stop)? != other.range(from, stop)? {
+                return Ok(false);
+            }
+            from = stop;
+        }
+        Ok(true)
+    }
+
     fn each_chunk(&self, mut take: impl FnMut(&[u8]) -> io::Result<()>) -> io::Result<()> {
         let mut buf = vec![0; CHUNK.min(index_of(self.len)?.max(1))];
         let mut at = 0;
@@ -509,6 +554,22 @@ mod tests {
             assert!(!elsewhere.rewrite(&first, &mut out).unwrap());
             assert!(held(&mut out) == second.range(0, second.len()).unwrap());
         }
+    }
+
+    #[test]
+    fn the_same_bytes_are_told_however_they_are_put_together() {
+        let edit = |at, remove, insert: &str| Edit { at, remove, insert: insert.into() };
+        let source = Source::from_bytes("0123456789".repeat(60_000));
+        let copy = source.spliced(&[edit(7, 3, "789"), edit(300_000, 0, "abc")]).unwrap();
+        let again = source.spliced(&[edit(300_000, 0, "ab")]).unwrap();
+        assert!(!copy.same_as(&again).unwrap());
+        let again = again.spliced(&[edit(300_002, 0, "c")]).unwrap();
+        assert!(copy.same_as(&again).unwrap() && again.same_as(&copy).unwrap());
+        let whole = Source::from_bytes(copy.range(0, copy.len()).unwrap());
+        assert!(copy.same_as(&whole).unwrap() && whole.same_as(&copy).unwrap());
+        let shifted = source.spliced(&[edit(0, 3, ""), edit(300_003, 0, "3ab3ab")]).unwrap();
+        assert!(!copy.same_as(&shifted).unwrap() && copy.len() == shifted.len());
+        assert!(Source::from_bytes("").same_as(&Source::from_bytes("")).unwrap());
     }
 
     #[test]

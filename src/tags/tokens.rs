@@ -62,6 +62,11 @@ pub(crate) trait Sink {
     fn wants(&self, code: i32) -> bool;
     /// One tag of interest.
     fn tag(&mut self, code: i32, value: &[u8], place: &Place) -> Result<(), Refusal>;
+    /// Takes a tag that it wants when its place does not matter; false when it needs all of it.
+    #[inline(always)]
+    fn brief(&mut self, _code: i32, _value: &[u8]) -> bool {
+        false
+    }
     /// Whether it wants, for now, none of the codes from 10 to 100 but 67.
     fn skims(&self) -> bool {
         false

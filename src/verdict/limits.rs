@@ -1,6 +1,6 @@
 //! The stated limits, and the one built in, against what was computed.
 
-use super::{With, length, note, spans};
+use super::{With, length, note, slender, spans};
 use crate::job::{Settings, Support};
 use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
 use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
@@ -9,7 +9,7 @@ use crate::tolerance;
 /// Judges one span in one case; the findings get the case's name afterwards.
 pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mut Vec<Finding>) {
     let limits = &settings.limits;
-    let governing = &analysis.lines[analysis.governs];
+    let governing = &slender::state(&analysis.lines[analysis.governs]);
     let mut judge = Judge { span, analysis, findings };
     if governing.status != Status::Found {
         judge.not_found(governing);

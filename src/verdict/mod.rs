@@ -2,9 +2,11 @@
 //! up in a verdict. Only here do results get a severity and advice.
 
 mod accept;
+mod areas;
 mod limits;
 mod notes;
 mod ranges;
+mod slender;
 mod spans;
 pub mod traffic;
 
@@ -83,11 +85,13 @@ pub fn judge(
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
+    areas::drawing(model, &units, &mut findings);
     for (((analyses, extras), span), trains) in analyses.iter().zip(extras).zip(&spans).zip(traffic) {
         for (i, ((analysis, extra), case)) in analyses.iter().zip(extras).zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
+                areas::sideways(model, span, analysis, &mut about);
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
@@ -96,6 +100,7 @@ pub fn judge(
             if still && trains.iter().any(|t| t.case == i && t.ended.is_ok()) {
                 about.retain(|f| !f.message.starts_with("the stated limit `load_factor` was not judged"));
             }
+            slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());

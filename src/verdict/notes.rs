@@ -160,6 +160,7 @@ fn doubt_words(doubt: &Doubt) -> &'static str {
 
 fn role_name(role: Role) -> &'static str {
     match role {
+        Role::Areas => "outline of an area",
         Role::Axis => "axis",
         Role::Loads => "loads",
         Role::Intrados => "intrados",
@@ -420,7 +421,8 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
         (high > low * (1.0 + tolerance::EVEN_SPACING)).then_some((low, high))
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
-    let drawn = span.loads.iter().filter(|l| l.magnitude_from != MagnitudeFrom::SelfWeight);
+    let weight = [MagnitudeFrom::SelfWeight, MagnitudeFrom::Area];
+    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from));
     uneven(drawn.map(|l| l.at[0]).collect())
 }
 
@@ -452,7 +454,9 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
     if model.own_weight(settings).is_none() {
         parts.push("the rib's own weight");
     }
-    parts.push("fill");
+    if model.areas.is_empty() {
+        parts.push("fill");
+    }
     if settings.traffic.is_empty() {
         parts.push("traffic");
     }
@@ -468,6 +472,8 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
             (rib.temperature.abs() > 0.0, "temperature"),
             (rib.shrinkage.abs() > 0.0, "shrinkage"),
             (rib.movement != Movement::default(), "movement"),
+            (rib.imperfection.is_some_and(|i| i.abs() > 0.0), "imperfection"),
+            (rib.deck_inertia > 0.0, "deck_inertia"),
         ];
         for (_, key) in sized.into_iter().filter(|(given, _)| *given) {
             let message = format!("[rib] {key} was left out: beside loads of unknown size it has no measure");

@@ -57,6 +57,7 @@ pub fn span(
             })
             .collect(),
         loads: listed,
+        areas: super::areas::shares(model, span),
         ring,
     }
 }
@@ -102,16 +103,17 @@ const BARE_PIECES: u32 = 10;
 /// The loads in their order along the ring, with the pieces of the rib's own weight between them.
 fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Settings) -> Vec<Load> {
     let mut all: Vec<(f64, Load)> =
-        analysis.order.iter().map(|placed| (placed.foot, load(&span.loads[placed.force]))).collect();
+        analysis.order.iter().filter_map(|p| Some((p.foot, load(span.loads.get(p.force)?)))).collect();
     let depths = weight::depths(span, settings.rib.depth);
+    let whole = span.axis.length();
+    let hair = whole * crate::tolerance::ONE_JOINT;
+    let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
+    cuts.dedup_by(|b, a| *b - *a <= hair);
+    if cuts.is_empty() {
+        cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
+    }
+    let bounds: Vec<f64> = std::iter::once(0.0).chain(cuts.iter().copied()).chain([whole]).collect();
     if let (Some(own), Some(depths)) = (model.own_weight(settings), depths) {
-        let whole = span.axis.length();
-        let hair = whole * crate::tolerance::ONE_JOINT;
-        let mut cuts: Vec<f64> = all.iter().map(|l| l.0).filter(|s| *s > hair && *s < whole - hair).collect();
-        cuts.dedup_by(|b, a| *b - *a <= hair);
-        if cuts.is_empty() {
-            cuts = (1..BARE_PIECES).map(|i| whole * f64::from(i) / f64::from(BARE_PIECES)).collect();
-        }
         for (i, piece) in weight::pieces(span, &depths, &cuts).iter().enumerate() {
             let middle = f64::midpoint(piece.between.0, piece.between.1);
             all.push((
@@ -132,8 +134,9 @@ fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Set
                 },
             ));
         }
-        all.sort_by(|a, b| a.0.total_cmp(&b.0));
     }
+    all.extend(super::areas::listed(model, span, &bounds));
+    all.sort_by(|a, b| a.0.total_cmp(&b.0));
     let letters = outcome::bow::spaces(all.len());
     all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
 }
@@ -189,6 +192,7 @@ fn case(
         traffic: Vec::new(),
         safety: analysis.safety.as_ref().map(|s| safety(s, extra.thickness.as_ref(), ring)),
         ranges: extra.ranges.clone(),
+        section_forces: super::slender::section_forces(analysis),
         residual: analysis.residual,
     }
 }
@@ -245,9 +249,25 @@ fn line(line: &statics::Line, section: &Section) -> Line {
             at: xy(o.at),
             rms: o.rms,
         }),
-        stations: line.stations.iter().map(|s| station(s, section.stress(line, s))).collect(),
+        stations: stations(line, section),
+        buckling: line.bending.as_ref().map(super::slender::told),
         proof: line.proof.map(|p| Proof { primal: p.primal, dual: p.dual, gap: p.gap }),
     }
+}
+
+/// The stations of a line; in a slender rib with the stresses of both extremes of its moment.
+fn stations(line: &statics::Line, section: &Section) -> Vec<Station> {
+    let told = |(i, s): (usize, &statics::Station)| {
+        let Some(b) = &line.bending else { return station(s, section.stress(line, s)) };
+        let [low, high] = b.moments[i];
+        let at = |moment: f64| {
+            let with = statics::Station { moment, eccentricity: Some(moment / s.thrust), ..*s };
+            section.stress(line, &with)
+        };
+        let stress = at(low).zip(at(high)).map(|(a, b)| [a[0].max(b[0]), a[1].min(b[1])]);
+        Station { moment_min: Some(low), moment_max: Some(high), ..station(s, stress) }
+    };
+    line.stations.iter().enumerate().map(told).collect()
 }
 
 fn safety(from: &statics::Safety, thickness: Option<&statics::Factor>, ring: Option<&Ring>) -> Safety {
@@ -337,5 +357,7 @@ fn station(s: &statics::Station, stress: Option<[f64; 2]>) -> Station {
         depth: s.depth,
         stress_max: stress.map(|[max, _]| max),
         stress_min: stress.map(|[_, min]| min),
+        moment_min: None,
+        moment_max: None,
     }
 }

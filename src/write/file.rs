@@ -4,7 +4,10 @@ use std::collections::BTreeSet;
 use std::fs::{self, File};
 use std::io;
 use std::path::{Path, PathBuf};
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::{Mutex, OnceLock};
+use std::thread;
+use std::time::Duration;
 
 use crate::refusal::Refusal;
 
@@ -73,6 +76,56 @@ pub fn write_whole<T>(
         let _ = opened.sync_all();
     }
     Ok(value)
+}
+
+/// Does `write`, which puts some `size` bytes into a file, while another thread sends to the disk what is there already:
+/// little is left to do for the sync at the end. A file of less than 32 MB is not worth the thread.
+///
+/// # Errors
+///
+/// Whatever the file system refuses, and what `write` refuses.
+pub fn sending<T>(
+    file: &mut File,
+    size: u64,
+    write: impl FnOnce(&mut File) -> io::Result<T>,
+) -> io::Result<T> {
+    const WORTH_IT: u64 = 32 << 20;
+    const PAUSE: Duration = Duration::from_millis(20);
+    struct Ends<'a>(&'a AtomicBool, Option<thread::Thread>);
+    impl Drop for Ends<'_> {
+        fn drop(&mut self) {
+            self.0.store(true, Ordering::Release);
+            if let Some(thread) = &self.1 {
+                thread.unpark();
+            }
+        }
+    }
+    if size < WORTH_IT {
+        return write(file);
+    }
+    let other = file.try_clone()?;
+    let ended = AtomicBool::new(false);
+    thread::scope(|scope| {
+        let send = || {
+            loop {
+                thread::park_timeout(PAUSE);
+                if ended.load(Ordering::Acquire) {
+                    return Ok(());
+                }
+                // An error is told to one caller only, so it must not be lost here.
+                other.sync_data()?;
+            }
+        };
+        // Without a thread the sync at the end takes longer, and that is all.
+        let sending = thread::Builder::new().name("sync".to_owned()).spawn_scoped(scope, send).ok();
+        let end = Ends(&ended, sending.as_ref().map(|s| s.thread().clone()));
+        let value = write(file)?;
+        drop(end);
+        match sending.map(thread::ScopedJoinHandle::join) {
+            Some(Ok(Err(error))) => Err(error),
+            _ => Ok(value),
+        }
+    })
 }
 
 /// Removes temporaries of ours that no living run holds. What cannot be removed stays, without a word: it does no harm.
@@ -211,6 +264,23 @@ mod tests {
             .collect();
         names.sort();
         names
+    }
+
+    #[test]
+    fn what_is_sent_while_it_is_written_is_whole() {
+        let mut file = tempfile::tempfile().unwrap();
+        let size = 40 << 20;
+        let part = vec![7; 1 << 20];
+        let written = sending(&mut file, size, |file| {
+            for _ in 0..40 {
+                file.write_all(&part)?;
+                thread::sleep(Duration::from_millis(1));
+            }
+            Ok(5)
+        });
+        assert_eq!((written.unwrap(), file.metadata().unwrap().len()), (5, size));
+        let refused = sending(&mut file, size, |_| Err::<(), _>(io::ErrorKind::StorageFull.into()));
+        assert_eq!(refused.unwrap_err().kind(), io::ErrorKind::StorageFull);
     }
 
     #[test]

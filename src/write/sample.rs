@@ -128,6 +128,8 @@ impl Sample {
                 depth: self.depth,
                 stress_max: None,
                 stress_min: None,
+                moment_min: None,
+                moment_max: None,
             });
         }
         let worst = stations
@@ -148,6 +150,7 @@ impl Sample {
             offset: Some(offset),
             stations,
             proof: Some(Proof { primal: 1.0, dual: 1.0, gap: 0.0 }),
+            buckling: None,
         }
     }
 }
@@ -237,6 +240,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                 lines,
                 traffic: vec![],
                 safety: None,
+                section_forces: Vec::new(),
                 ranges: None,
                 residual: 1e-15,
             });
@@ -244,6 +248,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         let (s, rise) = path.farthest_from_chord(sample.rise < 0.0);
         let crown = path.point_at(s);
         spans.push(Span {
+            areas: Vec::new(),
             name,
             kind: if sample.rise < 0.0 { "cable".into() } else { "arch".into() },
             axis: Axis {

@@ -1,6 +1,7 @@
 //! The report: one HTML file that holds everything, needs no network and no script, and prints as a calculation sheet on
 //! A4 paper for those who prepare and check it to sign.
 
+mod extremes;
 mod factors;
 mod hand;
 mod html;
@@ -108,6 +109,7 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     factors::block(run, page);
     sections::findings(run, page);
     stations::tables(run, page);
+    extremes::block(run, page);
     sections::offsets(run, page);
     traffic::section(run, page);
     sections::proofs(run, page);
