@@ -385,3 +385,11 @@ pub const AREA_UNDER: f64 = 0.01;
 /// Rise over span above which fill that is not said to press sideways is worth a warning. No unit. From the trade's view that
 /// sideways pressure matters little on flat arches.
 pub const STEEP_FILLED: f64 = 0.25;
+
+/// Straight pieces from which on a line counts as drawn point by point. A count. Larger: short surveys go without a word on
+/// their noise; smaller: too few points to tell noise from shape.
+pub const NOISE_POINTS: usize = 16;
+
+/// Twice the noise over the depth from which on it is told. No unit. Larger: noise that moves a factor by a percent goes unsaid;
+/// smaller: the rounding of coordinates is told.
+pub const NOISE_TOLD: f64 = 1e-3;

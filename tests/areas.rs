@@ -278,3 +278,276 @@ fn cases_name_areas() {
         near(sum, case.total_load[1], 1e-12);
     }
 }
+
+/// Fill up to a level presses on the left half of a symmetrical extrados with K gamma b [y_l (y_1 - y_0) - (y_1² - y_0²) / 2]
+/// between its end at y_0 and the crown at y_1: the integral of the pressure over the projection (closed form, derived).
+#[test]
+fn fill_presses_sideways_as_the_closed_form_says() {
+    let run = good(&segmental(10.0, 2.5), &format!("{FILLED}earth_pressure = 0.4\n"));
+    let (top, low, level) = (2.8, 6.55 * 0.6 - 3.75, 3.5);
+    let expected = 0.4 * 18.0 * (level * (top - low) - (top * top - low * low) / 2.0);
+    let fill = share(&run, "fill");
+    near(fill.sideways[0], expected, 1e-12);
+    near(fill.sideways[1], -expected, 1e-12);
+    assert!(says(&run, "presses sideways with 0.400"));
+    assert!(run.spans[0].cases[0].total_load[0].abs() < 1e-9);
+    // The sideways forces are in the line: its push at the abutment and at the crown differ by them.
+    let case = &run.spans[0].cases[0];
+    let line = &case.lines[0];
+    let crown =
+        line.stations.iter().min_by(|a, b| (a.at[0] - 5.0).abs().total_cmp(&(b.at[0] - 5.0).abs())).unwrap();
+    near(crown.thrust - line.left.as_ref().unwrap().horizontal, expected, 1e-9);
+    let flat = good(&segmental(10.0, 2.4), FILLED);
+    assert!(!says(&flat, "is taken to press downward only"));
+    let steep = good(&segmental(10.0, 2.6), FILLED);
+    assert!(says(&steep, "is taken to press downward only"));
+}
+
+/// A ring of 20 equal voussoirs under its own weight, fill to 3.5 m (as D03) and a load that varies at x = 2.5 m: the greatest
+/// load as scipy's HiGHS finds it from the same joints, with weights and centroids of sectors in closed form and those of the
+/// fill by a Gauss rule of 12 points (a program of its own, not of this project): 278.55036835309 kN, and 246.57887546870 kN
+/// for 200 voussoirs.
+#[test]
+fn the_greatest_load_on_a_filled_ring_is_that_of_another_solver() {
+    for (voussoirs, expected) in [(20, 278.550_368_353_09), (200, 246.578_875_468_70)] {
+        let job = format!(
+            "{}[loads]\nunit = \"kN\"\nunlabelled = 1.0\n[[case]]\nname = \"all\"\n\
+             factors = {{ \"ARCH-LOADS\" = 1.0, self = 1.0, fill = 1.0 }}\nvary = [\"ARCH-LOADS\"]\n",
+            FILLED.replace("depth = 0.6", &format!("depth = 0.6\nvoussoirs = {voussoirs}"))
+        );
+        let run = good(&format!("{}0 POINT|5 B1|8 ARCH-LOADS|10 2.5|20 3.5|", segmental(10.0, 2.5)), &job);
+        near(run.spans[0].cases[0].safety.as_ref().unwrap().load_factor.unwrap(), expected, 1e-8);
+    }
+}
+
+/// E21 (published): published worked sheet, hingeless parabolic masonry arch, 16 slices: V=184.63376; L=16, f=4, key depth 0.4,
+/// brick 23 kN/m3, q_L=12 kN/m over the span, width 1; M.M. Reda Taha, N.G. Shrive, 'Analysis of Fixed End Arches', Example 1
+/// (course sheet). The printed depths follow h=0.4 (sec phi)^(1/3); exact V 184.684388129, the sheet is low by its slices. Here the
+/// ring and the load on it are drawn as outlines over the axis.
+#[test]
+fn a_published_load_take_down_by_outline() {
+    let n = 4000;
+    let axis = |k: i32| {
+        let x = 16.0 * f64::from(k) / f64::from(n);
+        (x, x * (16.0 - x) / 16.0)
+    };
+    let points: Vec<[f64; 3]> = (0..=n).map(|k| [axis(k).0, axis(k).1, 0.0]).collect();
+    let band = |layer: &str, handle: u32, from: &dyn Fn(f64) -> f64, to: &dyn Fn(f64) -> f64| {
+        let upper = points.iter().rev().map(|p| [p[0], p[1] + to(p[0]), 0.0]);
+        let all: Vec<[f64; 3]> = points.iter().map(|p| [p[0], p[1] + from(p[0]), 0.0]).chain(upper).collect();
+        polyline(layer, handle, &all, true)
+    };
+    // Vertical thickness of the ring: h sec phi.
+    let thick = |x: f64| 0.4 * (1.0 + (1.0 - x / 8.0).powi(2)).powf(2.0 / 3.0);
+    let entities = polyline("ARCH-AXIS", 0xA1, &points, false)
+        + &band("BRICK", 0xB1, &|_| 0.0, &thick)
+        + &band("LOAD", 0xB2, &thick, &|x| thick(x) + 0.5);
+    let job = "[rib]\nwidth = 1.0\nvoussoirs = 16\n[line]\ngovern = \"through\"\n[[area]]\nname = \"ring\"\nlayer = \"BRICK\"\n\
+               unit_weight = 23.0\n[[area]]\nname = \"load\"\nlayer = \"LOAD\"\nunit_weight = 24.0\n";
+    let run = good(&entities, job);
+    let end = run.spans[0].cases[0].lines[0].left.as_ref().unwrap();
+    near(end.vertical, 184.684_388_129, 1e-7);
+    near(end.vertical, 184.633_76, 3e-4);
+    near(share(&run, "load").weight, 192.0, 1e-12);
+    assert_eq!(share(&run, "ring").pieces, 16);
+    assert!(!says(&run, "of the elevation together"));
+}
+
+/// Outlines of lines and arcs against the chords of them in a general-purpose geometry library (geo).
+mod by_chords {
+    use geo::{Area as _, BooleanOps as _, Centroid as _, Coord, LineString, Polygon};
+    use proptest::prelude::*;
+    use thrustmark::geometry::slab::{self, Bounding, Edge};
+    use thrustmark::geometry::{Point, Segment};
+
+    /// A loop around a centre, with arcs that bulge a little.
+    fn outline(radii: &[(f64, f64)], centre: (f64, f64)) -> Vec<Segment> {
+        let n = radii.len();
+        let corner = |i: usize| {
+            let angle = std::f64::consts::TAU * i as f64 / n as f64 + 0.1;
+            Point::new(centre.0 + radii[i % n].0 * angle.cos(), centre.1 + radii[i % n].0 * angle.sin())
+        };
+        (0..n).map(|i| Segment::bulge(corner(i), corner((i + 1) % n), radii[i].1)).collect()
+    }
+
+    fn chords(pieces: &[Segment]) -> Polygon {
+        let at = |piece: &Segment, k: u32| {
+            let p = piece.point_at(piece.length() * f64::from(k) / 400.0);
+            Coord { x: p.x, y: p.y }
+        };
+        let line: Vec<Coord> = pieces.iter().flat_map(|p| (0..400).map(move |k| at(p, k))).collect();
+        Polygon::new(LineString::new(line), vec![])
+    }
+
+    proptest! {
+        #![proptest_config(ProptestConfig::with_cases(48))]
+
+        #[test]
+        fn areas_centroids_and_overlaps(
+            radii in prop::collection::vec((2.0..4.0, -0.15..0.15), 5..9),
+            others in prop::collection::vec((2.0..4.0, -0.15..0.15), 5..9),
+            shift in (-3.0..3.0, -2.0..2.0),
+        ) {
+            let (a, b) = (outline(&radii, (0.0, 0.0)), outline(&others, shift));
+            let (p, q) = (chords(&a), chords(&b));
+            let whole = slab::enclosed(&a);
+            prop_assert!((whole.area - p.signed_area()).abs() < 2e-5 * whole.area);
+            let (c, d) = (whole.centroid().unwrap(), p.centroid().unwrap());
+            prop_assert!((c.x - d.x()).abs() < 1e-5 && (c.y - d.y()).abs() < 1e-5);
+            let edges: Vec<Bounding> = [(&a, 0), (&b, 1)]
+                .into_iter()
+                .flat_map(|(loop_, owner)| loop_.iter().flat_map(Edge::of).map(move |edge| Bounding { edge, owner }))
+                .collect();
+            let (mut alone, mut both) = (0.0, 0.0);
+            slab::walk(&edges, 2, 2, &[], &mut |part| {
+                let m = part.moments().area;
+                alone += if part.odd[0] { m } else { 0.0 };
+                both += if part.odd[0] && part.odd[1] { m } else { 0.0 };
+            })
+            .unwrap();
+            prop_assert!((alone - whole.area).abs() < 1e-11 * whole.area, "{alone} {}", whole.area);
+            let overlap = p.intersection(&q).unsigned_area();
+            prop_assert!((both - overlap).abs() < 1e-4 * whole.area, "{both} {overlap}");
+        }
+    }
+}
+
+/// The places of a filled span that weigh, as a run gives them.
+fn weights(run: &Run) -> Vec<(f64, f64)> {
+    let areas: Vec<_> = run.spans[0].loads.iter().filter(|l| l.set == "fill").collect();
+    areas.iter().map(|l| (l.at[0], l.force[1])).collect()
+}
+
+proptest::proptest! {
+    #![proptest_config(proptest::prelude::ProptestConfig::with_cases(12))]
+
+    /// Cutting an outline in two changes nothing; a mirrored outline gives the mirrored weights.
+    #[test]
+    fn split_and_mirrored_outlines(left in -0.2..3.0_f64, right in 6.0..10.2_f64, cut in 0.2..0.8_f64, top in 3.2..4.0_f64) {
+        let job = format!("{}layer = \"FILL\"\nunit_weight = 18.0\n", FILLED.split("level").next().unwrap());
+        let boxed = |a: f64, b: f64, handle: u32, h: f64, k: f64| {
+            polyline("FILL", handle, &[[a, 2.9, 0.0], [b, 2.9, 0.0], [b, k, 0.0], [a, h, 0.1]], true)
+        };
+        let axis = segmental(10.0, 2.5);
+        let middle = left + (right - left) * cut;
+        let straight = |a: f64, b: f64, handle: u32, h: f64, k: f64| boxed(a, b, handle, h, k).replace("|42 0.1", "|42 0.0");
+        let at = top + 0.5 * cut;
+        let one = good(&format!("{axis}{}", straight(left, right, 0xB1, top, top + 0.5)), &job);
+        let two = straight(left, middle, 0xB1, top, at) + &straight(middle, right, 0xB2, at, top + 0.5);
+        let two = good(&format!("{axis}{two}"), &job);
+        for (a, b) in weights(&one).iter().zip(weights(&two)) {
+            proptest::prop_assert!((a.0 - b.0).abs() < 1e-9 && (a.1 - b.1).abs() < 1e-9 * a.1.abs().max(1.0), "{a:?} {b:?}");
+        }
+        let mirrored = straight(10.0 - right, 10.0 - left, 0xB1, top + 0.5, top);
+        let turned = good(&format!("{axis}{mirrored}"), &job);
+        let back: Vec<_> = weights(&turned).into_iter().rev().map(|(x, f)| (10.0 - x, f)).collect();
+        proptest::prop_assert_eq!(weights(&one).len(), back.len());
+        for (a, b) in weights(&one).iter().zip(back) {
+            proptest::prop_assert!((a.0 - b.0).abs() < 1e-9 && (a.1 - b.1).abs() < 1e-9 * a.1.abs().max(1.0), "{a:?} {b:?}");
+        }
+    }
+}
+
+/// Two equal three-hinged spans with one load of 100 kN at mid-span of the left one: it pushes with P L / (4 f) = 100 x 20 / 16
+/// = 125 kN on the pier (statics), the other with nothing; a load of 40 kN over the right one takes 50 kN from that.
+#[test]
+fn neighbouring_spans_push_on_their_pier() {
+    let arch = |x: f64, handle: u32| {
+        polyline("ARCH-AXIS", handle, &[[x, 0.0, 0.0], [x + 10.0, 4.0, 0.0], [x + 20.0, 0.0, 0.0]], false)
+    };
+    let load = |x: f64, kn: f64, handle: u32| {
+        format!(
+            "0 POINT|5 {handle:X}|8 ARCH-LOADS|10 {x}|20 6|0 TEXT|5 {:X}|8 ARCH-LOADS|10 {x}|20 6.2|40 0.2|1 {kn} kN|",
+            handle + 1
+        )
+    };
+    let entities = arch(0.0, 0xA1) + &arch(21.0, 0xA2) + &load(10.0, 100.0, 0xB1) + &load(31.0, 40.0, 0xC1);
+    let job = |limit: f64| {
+        format!(
+            "[rib]\ndepth = 0.5\nsupport = \"three-hinged\"\ntension = true\n[limits]\npier_push = {limit}\n"
+        )
+    };
+    let run = good(&entities, &job(80.0));
+    let pier = &run.spans[0].piers[0];
+    assert_eq!((pier.case.as_str(), pier.next.as_str()), ("drawn", "span 2"));
+    near(pier.least.unwrap(), 75.0, 1e-9);
+    near(pier.greatest.unwrap(), 75.0, 1e-9);
+    let verdict = |run: &Run| run.findings.iter().find(|f| f.check == Check::PierPush).map(|f| f.verdict);
+    assert_eq!(verdict(&run), Some(thrustmark::outcome::FindingVerdict::Within));
+    assert_eq!(verdict(&good(&entities, &job(70.0))), Some(thrustmark::outcome::FindingVerdict::Outside));
+    // Rings without tension leave a range: from the least push of one and the greatest of the other.
+    let ring =
+        |x: f64, handle: u32| polyline("ARCH-AXIS", handle, &[[x, 0.0, -0.5], [x + 10.0, 0.0, 0.0]], false);
+    let entities = ring(0.0, 0xA1) + &ring(11.0, 0xA2);
+    let job = "[rib]\ndepth = 0.8\nwidth = 1.0\nunit_weight = 22.0\nsupport = \"none\"\n\
+               [line]\ndraw = [\"least-thrust\", \"greatest-thrust\"]\n[limits]\npier_push = 1.0\n";
+    let run = good(&entities, job);
+    let push = |kind| {
+        let line = run.spans[0].cases[0].lines.iter().find(|l| l.kind == kind).unwrap();
+        line.left.as_ref().unwrap().horizontal
+    };
+    let range = push(thrustmark::outcome::LineKind::GreatestThrust)
+        - push(thrustmark::outcome::LineKind::LeastThrust);
+    assert!(range > 5.0);
+    let pier = &run.spans[0].piers[0];
+    near(pier.greatest.unwrap(), range, 1e-8);
+    near(pier.least.unwrap(), -range, 1e-8);
+    assert!(says(&run, "it lies within what is possible"));
+    assert!(says(
+        &good(&segmental(10.0, 2.5), &FILLED.replace("[[area]]", "[limits]\npier_push = 9\n[[area]]")),
+        "no pier"
+    ));
+}
+
+/// Haunches solid up to y = 1 m: the ring of D03 works between the joints whose extrados ends lie at that level, cos a = (1 + 3.75)
+/// / 6.55, so its weight is 22 x 0.6 x 6.25 x 2 a, and the fill is that over the extrados between those ends.
+#[test]
+fn the_working_ring_begins_above_its_backing() {
+    let run = good(&segmental(10.0, 2.5), &FILLED.replace("depth = 0.6", "depth = 0.6\nbacking = 1.0"));
+    let a = (4.75_f64 / 6.55).acos();
+    let r: f64 = 6.55;
+    let fill = 18.0 * (2.0 * r * a.sin() * 7.25 - r * r * (a + a.sin() * a.cos()));
+    near(-run.spans[0].cases[0].total_load[1], 22.0 * 0.6 * 6.25 * 2.0 * a + fill, 1e-9);
+    near(run.spans[0].axis.left[1], 6.25 * a.cos() - 3.75, 1e-9);
+    near(run.spans[0].axis.span, 2.0 * 6.25 * a.sin(), 1e-9);
+    assert!(says(&run, "are left to the haunches"));
+    let idle = good(&segmental(10.0, 2.5), &FILLED.replace("depth = 0.6", "depth = 0.6\nbacking = 0.0"));
+    assert!(says(&idle, "all of the ring works"));
+    near(-idle.spans[0].cases[0].total_load[1], 433.867_015_345, 1e-9);
+    // The stated depths go on to belong to their places: 0.6 m at the drawn springings, 0.4 m at the crown.
+    let varied =
+        good(&segmental(10.0, 2.5), &FILLED.replace("depth = 0.6", "depth = [0.6, 0.4]\nbacking = 1.0"));
+    let ring = varied.spans[0].ring.as_ref().unwrap();
+    assert!(ring.depth_max < 0.59 && ring.depth_max > 0.5, "{ring:?}");
+    near(ring.depth_min, 0.4, 1e-9);
+}
+
+/// Ring lines surveyed point by point: what their noise could move is told; the same ring without noise says nothing.
+#[test]
+fn the_noise_of_a_survey_is_told() {
+    let line = |radius: f64, noise: f64, layer: &str, handle: u32| {
+        let mut seed = u64::from(handle);
+        let mut next = move || {
+            seed = seed.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+            ((seed >> 33) as f64 / (1u64 << 31) as f64 - 0.5) * 12.0_f64.sqrt()
+        };
+        let points: Vec<[f64; 3]> = (0..=60)
+            .map(|k| {
+                let angle = std::f64::consts::PI * (0.85 - 0.7 * f64::from(k) / 60.0);
+                let r = radius + noise * next();
+                [r * angle.cos(), r * angle.sin(), 0.0]
+            })
+            .collect();
+        polyline(layer, handle, &points, false)
+    };
+    let job = "[rib]\nwidth = 1.0\nunit_weight = 22.0\nsupport = \"none\"\n";
+    let ring = |noise: f64| {
+        good(&(line(5.7, noise, "ARCH-INTRADOS", 0xA1) + &line(6.3, noise, "ARCH-EXTRADOS", 0xA2)), job)
+    };
+    let run = ring(0.003);
+    let told = run.findings.iter().find(|f| f.message.contains("surveyed point by point")).unwrap();
+    // Twice the root of two times 3 mm, as well as sixty points tell it.
+    near(told.value.unwrap(), 2.0 * 2.0_f64.sqrt() * 0.003, 0.25);
+    assert!(told.message.contains("and the geometric factor of"), "{}", told.message);
+    assert!(!says(&ring(0.0), "surveyed point by point"));
+}

@@ -2,6 +2,7 @@
 
 mod copy;
 mod list;
+mod piers;
 mod problem;
 mod ranges;
 mod sheet;
@@ -255,6 +256,7 @@ fn judged(
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
     let mut model = model::build(&drawing, &settings.into())?;
+    model::backing::trim(&mut model, settings)?;
     model.areas = model::areas::weigh(&model, settings)?;
     own_weight_stated(settings)?;
     let cases = model::cases::cases(&model, settings)?;

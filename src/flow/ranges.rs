@@ -2,7 +2,7 @@
 
 use std::collections::BTreeMap;
 
-use super::problem;
+use super::{piers, problem};
 use crate::job::{RibDepth, Settings, same_name};
 use crate::model::{Case, Forces, Model, Span, areas, cases};
 use crate::outcome::{RangeInput, RangedFactor, RangedValue, Ranges, Status};
@@ -36,7 +36,8 @@ pub fn extra(
         true => None,
         false => Some(ranges(model, span, case, settings, analysis)?),
     };
-    Ok(Extra { thickness, ranges })
+    let pushes = piers::pushes(model, span, case, settings, analysis)?;
+    Ok(Extra { thickness, ranges, pushes })
 }
 
 /// The factors that ranges are worked out for.

@@ -73,7 +73,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("friction", All),
             ("tension", All),
             ("joint_loss", Later),
-            ("backing", Later),
+            ("backing", All),
             ("support", All),
             ("elastic_modulus", All),
             ("creep", All),
@@ -134,7 +134,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("stress", All),
             ("geometric_factor", All),
             ("load_factor", All),
-            ("pier_push", Later),
+            ("pier_push", All),
             ("dimension", Later),
         ],
     ),
@@ -142,7 +142,10 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
     (
         "accept.finding",
         &[
-            ("check", Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor"])),
+            (
+                "check",
+                Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor", "pier-push"]),
+            ),
             ("span", All),
             ("case", All),
             ("up_to", All),

@@ -186,11 +186,10 @@ pub fn weigh(model: &Model, settings: &Settings) -> Result<Vec<Weighed>, Refusal
         all.push(weighed.map_err(|TooMany| tangled(area))?);
         regions.push(region);
     }
-    for i in 0..regions.len() {
-        for j in i + 1..regions.len() {
-            let both = both(&regions[i], &regions[j]).map_err(|TooMany| tangled(&settings.area[j]))?;
-            let least = all[i].whole.min(all[j].whole);
-            if both > least * tolerance::AREA_OVERLAP {
+    for (i, one) in regions.iter().enumerate() {
+        for (j, other) in regions.iter().enumerate().skip(i + 1) {
+            let both = both(one, other).map_err(|TooMany| tangled(&settings.area[j]))?;
+            if both > all[i].whole.min(all[j].whole) * tolerance::AREA_OVERLAP {
                 let name = all[j].name.clone();
                 all[i].over.push((name, both));
             }

@@ -3,6 +3,7 @@
 //! Knows layers only as names of load sets; knows no mechanics.
 
 pub mod areas;
+pub mod backing;
 pub mod cases;
 pub mod chain;
 pub mod figures;
@@ -10,6 +11,7 @@ pub mod labels;
 pub mod loads;
 pub mod matching;
 pub mod middle;
+pub mod noise;
 pub mod note;
 pub mod outline;
 pub mod pieces;

@@ -151,6 +151,28 @@ pub enum Note {
         /// Where, m.
         at: Point,
     },
+    /// The haunches are solid up to a level below both ends of the ring.
+    BackingIdle {
+        /// Name of the span.
+        span: String,
+        /// The level, m.
+        level: f64,
+    },
+    /// The ring was cut off where its haunches are solid.
+    BackingTrimmed {
+        /// Name of the span.
+        span: String,
+        /// The level, m.
+        level: f64,
+        /// The axis points where the working ring begins and ends, m.
+        left: Point,
+        /// As `left`.
+        right: Point,
+        /// Lengths of axis cut off on the left and on the right, m.
+        off: [f64; 2],
+        /// Loads on the parts cut off, left to the haunches: entity, name, force downward.
+        loads: Vec<(Source, String, f64)>,
+    },
     /// A span over which no load stands.
     NoLoads {
         /// Name of the span.

@@ -158,7 +158,7 @@ fn upward(path: &Path, from: f64, to: f64) -> Vec<Edge> {
 }
 
 /// The part of a piece between two of its lengths.
-fn part(segment: &Segment, from: f64, to: f64) -> Option<Segment> {
+pub(super) fn part(segment: &Segment, from: f64, to: f64) -> Option<Segment> {
     let length = segment.length();
     if to <= from {
         return None;
@@ -177,7 +177,14 @@ fn part(segment: &Segment, from: f64, to: f64) -> Option<Segment> {
     })
 }
 
-/// The extrados of an axis with these depths: exact where the depth is constant, else arcs along it.
+/// The two lines of a ring with these depths along an axis, the inner one first.
+pub(super) fn sides(axis: &Path, depths: &[(f64, f64)]) -> Option<[Path; 2]> {
+    let inner: Vec<(f64, f64)> = depths.iter().map(|d| (d.0, -d.1)).collect();
+    Some([offset(axis, &inner)?, offset(axis, depths)?])
+}
+
+/// The extrados of an axis with these depths (the intrados, with negative ones): exact where the depth is constant, else arcs
+/// along it.
 fn offset(axis: &Path, depths: &[(f64, f64)]) -> Option<Path> {
     let whole = axis.length();
     let mut pieces: Vec<Segment> = Vec::new();

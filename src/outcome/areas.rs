@@ -1,4 +1,4 @@
-//! What stands on a span by outline or up to a level.
+//! What stands on a span by outline or up to a level, and what spans do to the piers between them.
 
 use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
@@ -32,4 +32,19 @@ pub struct AreaShare {
     pub earth_pressure: Option<f64>,
     /// Sum of the sideways forces to the right, and to the left (negative).
     pub sideways: [f64; 2],
+}
+
+/// The difference of the pushes of two neighbouring spans on the pier between them.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize, JsonSchema)]
+pub struct PierPush {
+    /// The case, the same on both spans.
+    pub case: String,
+    /// Name of the span on the right.
+    pub next: String,
+    /// Least difference, to the right positive; null where it is not known.
+    pub least: Option<f64>,
+    /// Greatest difference.
+    pub greatest: Option<f64>,
+    /// Why they are not known.
+    pub reason: Option<String>,
 }

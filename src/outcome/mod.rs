@@ -18,7 +18,7 @@ use crate::refusal::Refusal;
 pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 pub use slender::{Buckling, SectionForces};
 
-pub use areas::AreaShare;
+pub use areas::{AreaShare, PierPush};
 
 pub use traffic::{
     AtWorst, Axle, Direction, EnvelopeStation, Forces, InfluenceLine, InfluenceOrdinate, PushRange, Traffic,
@@ -150,6 +150,9 @@ pub struct Span {
     /// What stands on it by outline or up to a level.
     #[serde(default)]
     pub areas: Vec<AreaShare>,
+    /// The pier at its right end, for every case; empty where no span follows.
+    #[serde(default)]
+    pub piers: Vec<PierPush>,
     /// The load cases.
     pub cases: Vec<Case>,
 }

@@ -117,11 +117,11 @@ fn one(weighed: &Weighed, model: &Model, units: &Units, findings: &mut Vec<Findi
         let place = at.map_or(String::new(), |p| format!(" at x = {:.3} m", p.x));
         let mut text = format!(
             "{name} ({what}): {pieces} pieces over {}, {area:.4} m², {:.3} {} in all{place}; all pieces of it add up to the \
-             whole to {:.0e}",
+             whole to {:.0e} or better",
             span.name,
             area * weighed.weight,
             units.force,
-            weighed.residual.max(f64::EPSILON)
+            weighed.residual.max(tolerance::SHOWN_ERROR)
         );
         if share.on_axis {
             text.push_str("; no depth is known, so it stands on the axis");

@@ -4,11 +4,15 @@
 mod accept;
 mod areas;
 mod limits;
+mod noise;
 mod notes;
+mod piers;
 mod ranges;
 mod slender;
 mod spans;
 pub mod traffic;
+
+pub use piers::Pushes;
 
 use jiff::civil::Date;
 
@@ -54,6 +58,8 @@ pub struct Extra {
     pub thickness: Option<Factor>,
     /// Factors over the ranges that the job states.
     pub ranges: Option<Ranges>,
+    /// Pushes at both ends, where the drawing has several spans.
+    pub pushes: Option<Pushes>,
 }
 
 /// Judges what was computed. `today` decides whether an accepted exception has
@@ -92,6 +98,9 @@ pub fn judge(
             if i == 0 {
                 notes::shape(analysis, span, settings, &mut about);
                 areas::sideways(model, span, analysis, &mut about);
+                if let Some(drawn) = model.spans.iter().find(|s| s.name == span.name) {
+                    noise::told(drawn, analysis, &mut about);
+                }
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, settings, &mut about);
@@ -115,6 +124,13 @@ pub fn judge(
             let case = cases.get(ran.case).map(|c| c.name.clone());
             findings.extend(about.into_iter().map(|f| Finding { case: case.clone(), ..f }));
         }
+    }
+    for (i, case) in cases.iter().enumerate() {
+        let pushes: Vec<Option<&Pushes>> =
+            extras.iter().map(|of| of.get(i).and_then(|e| e.pushes.as_ref())).collect();
+        let mut about = Vec::new();
+        piers::judge(&case.name, &pushes, settings, &units, &mut spans, &mut about);
+        findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
     }
     notes::cases(cases, &mut findings);
     notes::left_out(model, settings, &mut findings);

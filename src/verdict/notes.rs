@@ -313,6 +313,24 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
         .entity(source)
         .uncheck()
         .remedy("move it onto the rib, or to another layer"),
+        Note::BackingIdle { span, level } => note(
+            Check::LeftOut,
+            format!("rib.backing = {level:.3} m lies below both ends of {span}: all of the ring works"),
+        )
+        .value(*level, "m")
+        .of(span),
+        Note::BackingTrimmed { span, level, left, right, off, loads } => {
+            let mut text = format!(
+                "haunches solid up to y = {level:.3} m: the working ring runs from ({:.3}, {:.3}) to ({:.3}, {:.3}) m; {:.3} m and \
+                 {:.3} m of axis with all that stands on them are left to the haunches",
+                left.x, left.y, right.x, right.y, off[0], off[1]
+            );
+            let forces: Vec<String> = loads.iter().map(|(_, label, f)| format!("{label} ({f:.3})")).collect();
+            if !forces.is_empty() {
+                text.push_str(&format!(", with the loads {}", forces.join(", ")));
+            }
+            note(Check::LeftOut, text).value(*level, "m").at(spans::xy(*left)).of(span)
+        }
         Note::NoLoads { span } => note(Check::Loads, "no load stands over this span").of(span).uncheck(),
         Note::SizeUnlikely { span, size } => note(
             Check::Unit,

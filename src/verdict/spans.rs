@@ -58,6 +58,7 @@ pub fn span(
             .collect(),
         loads: listed,
         areas: super::areas::shares(model, span),
+        piers: Vec::new(),
         ring,
     }
 }

@@ -249,6 +249,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         let crown = path.point_at(s);
         spans.push(Span {
             areas: Vec::new(),
+            piers: Vec::new(),
             name,
             kind: if sample.rise < 0.0 { "cable".into() } else { "arch".into() },
             axis: Axis {

@@ -364,6 +364,17 @@ fn loads(run: &Run, span: &Span, out: &mut Page) {
         out.entry(&name, None, &load_words(run, load));
         name.clear();
     }
+    for area in &span.areas {
+        let at = area.at.map_or_else(String::new, |at| format!(" at x {}", metres(at[0])));
+        let words = format!(
+            "{}: {} pieces, {} m², {} in all{at}",
+            area.name,
+            area.pieces,
+            four_digits(area.area),
+            force(area.weight, &run.units)
+        );
+        out.entry("stands on it", None, &words);
+    }
 }
 
 fn load_words(run: &Run, load: &Load) -> String {

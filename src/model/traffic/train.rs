@@ -100,6 +100,12 @@ pub fn crossing(
             "give the loads their figures",
         ));
     }
+    if settings.rib.deck_inertia > 0.0 || settings.rib.imperfection.is_some_and(|i| i.abs() > 0.0) {
+        return Err(not(
+            "a deck that shares the bending and an imperfection are not reckoned with moving loads in this version",
+            "take `rib.deck_inertia` and `rib.imperfection` out for the check under traffic",
+        ));
+    }
     let (left, right) = (span.axis.start().x, span.axis.end().x);
     let (uniform, knife) = (train.uniform.unwrap_or(0.0), train.knife.unwrap_or(0.0));
     let mut taken = Vec::new();

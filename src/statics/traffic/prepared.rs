@@ -30,6 +30,9 @@ impl<'a> Prepared<'a> {
     /// Puts the dead loads on the ring. `live` is about the size of the moving load, kN.
     pub fn new(moving: &'a Moving<'a>, live: f64) -> Result<Self, Unsolved> {
         let problem = moving.with_slots();
+        if !problem.joints.is_empty() {
+            return Err(Unsolved::NotBuilt("moving loads over a ring with joints of its own".into()));
+        }
         let span = Span::with_live(&problem, live)?;
         let mut choice = choose(&problem, &span)?;
         if span.hangs && span.total().hypot() <= 0.0 && problem.govern.is_none() {

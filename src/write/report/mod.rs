@@ -1,6 +1,7 @@
 //! The report: one HTML file that holds everything, needs no network and no script, and prints as a calculation sheet on
 //! A4 paper for those who prepare and check it to sign.
 
+mod areas;
 mod extremes;
 mod factors;
 mod hand;

@@ -212,6 +212,7 @@ pub fn loads(run: &Run, page: &mut Page) {
             &rows,
         );
     }
+    super::areas::tables(run, page);
     page.end();
 }
 
