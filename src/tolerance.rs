@@ -353,6 +353,55 @@ pub const ONE_POST: f64 = 1e-6;
 /// Least cosine of the slope of a road beyond its drawn end. Larger: true slopes are flattened; smaller: a road drawn with
 /// an upright end runs to infinity.
 pub const STEEP_ROAD: f64 = 0.1;
+/// Greatest angle of a line from the vertical at which a load drawn without an arrowhead acts downward, radians (30°). Larger:
+/// raking pushes turn into weights; smaller: leaning posts of a deck do not act downward.
+pub const NEARLY_UPRIGHT: f64 = std::f64::consts::FRAC_PI_6;
+
+/// Part of the length of an arrow within which the strokes of its head lie. No unit. Larger: loads that meet in a point are
+/// taken for heads; smaller: stubby arrows have none.
+pub const HEAD_PART: f64 = 0.5;
+
+/// Least and greatest angle between an arrow and a stroke of its head, radians (5° and 60°). Wider: loads that meet in a point
+/// are taken for heads; narrower: slim and broad heads are not seen.
+pub const HEAD_ANGLES: [f64; 2] = [0.087_266_462_599_716_48, 1.047_197_551_196_597_7];
+
+/// By how much the two strokes of a head may differ, as a part of their length. No unit. Larger: loads that meet in a point are
+/// taken for heads; smaller: heads drawn by hand are not seen.
+pub const HEAD_EVEN: f64 = 0.1;
+
+/// How far a head may stand off its arrow, as a part of the head. No unit. Larger: heads of neighbours are taken; smaller: heads
+/// set by eye are not seen.
+pub const HEAD_OFF: f64 = 0.02;
+
+/// How far the points of a line may lie beside it, as a part of its length, and the line is straight all the same. No unit.
+/// Larger: bent lines are taken for arrows; smaller: straight ones with rounded coordinates are not.
+pub const STRAIGHT_LINE: f64 = 1e-6;
+
+/// Distance from a post within which a load stands on it, as a part of the longest post. No unit. Larger: loads between posts are
+/// carried by one; smaller: loads set by eye are not.
+pub const ON_POST: f64 = 0.02;
+
+/// How far a post may end off the rib, as a part of the post's length. No unit. Larger: columns beside the arch are taken for
+/// posts; smaller: posts drawn to the face of a slab are not.
+pub const POST_REACH: f64 = 0.1;
+
+/// The same where no depth of the rib is known, from the axis. No unit. Larger and smaller as above.
+pub const POST_REACH_BLIND: f64 = 0.25;
+
+/// Distance along a dimension, as a part of the span, within which its point stands at a springing, the crown or a face of the
+/// ring. No unit. Larger: dimensions of other parts are taken for the arch's; smaller: those of an older shape are passed over.
+pub const DIMENSION_NEAR: f64 = 0.02;
+
+/// The same across a dimension, whose lines often begin off what they measure. No unit. Larger and smaller as above.
+pub const DIMENSION_BESIDE: f64 = 0.15;
+
+/// Least part of the depth of the ring that a dimension across it must show to be square to it. No unit. Larger: dimensions at the
+/// springings drawn by eye are passed over; smaller: slanting ones are taken for the depth.
+pub const DIMENSION_SQUARE: f64 = 0.99;
+
+/// Largest drawing, bytes, in which title block, dimensions and notes about the scale are looked for: all blocks and texts have to be
+/// kept for that. Larger: more memory; smaller: the sheet number of large drawings is not found.
+pub const SURROUNDINGS: u64 = 64 << 20;
 /// Steps of the walk through the slabs of an outline (edges open at each upright cut, summed) above which it is given up. A
 /// count. Larger: hostile outlines take minutes; smaller: finely surveyed ones are refused.
 pub const SLAB_STEPS: usize = 40_000_000;

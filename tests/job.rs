@@ -155,7 +155,7 @@ fn the_contract_example_has_only_unbuilt_keys() {
         assert!(problem.line.is_some() && !problem.remedy.is_empty());
     }
     let named: Vec<&str> = problems.iter().map(|p| p.message.split('`').nth(1).unwrap()).collect();
-    assert_eq!(named, ["loads.arrow_scale", "limits.dimension", "title.sheet", "title.revision",]);
+    assert!(named.is_empty(), "{named:?}");
 }
 
 /// Each key of the list stands in the example of the contract or in a named exception beside it.
@@ -180,20 +180,10 @@ fn the_example_states_every_known_key() {
 #[test]
 fn what_is_not_built_is_refused_by_name() {
     for (text, key) in [
-        ("[layers]\nposts = \"I\"", "layers.posts"),
         ("[layers]\njoints = \"I\"", "layers.joints"),
-        ("[layers]\nplan = \"I\"", "layers.plan"),
         ("[rib]\njoint_loss = 0.01", "rib.joint_loss"),
-        ("[loads]\nunit = \"kN\"\narrow_scale = 0.1", "loads.arrow_scale"),
         ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20\npassive = 3", "area.passive"),
-        ("[limits]\ndimension = 0.01", "limits.dimension"),
-        (
-            "[[accept.finding]]\ncheck = \"dimension\"\nup_to = \"12 mm\"\nreason = \"r\"\nby = \"b\"",
-            "accept.finding.check",
-        ),
         ("[mark]\nsuggest = true", "mark.suggest"),
-        ("[title]\nsheet = \"NO\"", "title.sheet"),
-        ("[title]\nrevision = \"NO\"", "title.revision"),
         ("[report]\nunits = \"us\"", "report.units"),
         ("[[sheet]]\nmatch = \"b*\"\nrib.joint_loss = 2", "rib.joint_loss"),
     ] {

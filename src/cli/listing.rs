@@ -5,7 +5,7 @@ use std::fmt::Write;
 
 use crate::drawing::Reason;
 use crate::drawing::viewport::Shown;
-use crate::flow::Listing;
+use crate::flow::{Listing, LoadLine};
 use crate::write::text::plain as escape;
 
 /// The listing as text.
@@ -101,7 +101,47 @@ pub fn text(listing: &Listing) -> String {
         }
         Err(refusal) => line(format!("check would refuse: {}", escape(&refusal.to_string()))),
     }
+    match &listing.loads {
+        None => {}
+        Some(Err(refusal)) => line(format!("check would refuse: {}", escape(&refusal.to_string()))),
+        Some(Ok(loads)) if loads.is_empty() => {}
+        Some(Ok(loads)) => {
+            line(String::new());
+            line("loads as they would be taken:".into());
+            for load in loads {
+                line(format!("  {}", load_words(load)));
+            }
+        }
+    }
     out
+}
+
+/// What a load would be taken for, and why.
+fn load_words(load: &LoadLine) -> String {
+    let unit = match (load.in_kn, load.to.is_some()) {
+        (true, true) => "kN/m",
+        (true, false) => "kN",
+        (false, _) => "unit loads",
+    };
+    let [x, y] = load.force;
+    let force = match (x.abs() > 0.0, y <= 0.0) {
+        (true, _) => format!("{x:.4} to the right and {y:.4} upward {unit}"),
+        (false, true) => format!("{:.4} {unit} down", -y),
+        (false, false) => format!("{y:.4} {unit} up"),
+    };
+    let place = match load.to {
+        Some(to) => format!("from x {:.4} m to {:.4} m", load.at[0], to[0]),
+        None => format!("at ({:.4}, {:.4}) m", load.at[0], load.at[1]),
+    };
+    let sense = load.sense.map_or_else(String::new, |s| format!("; {s}"));
+    let span = load.span.as_deref().unwrap_or("over no span, left out");
+    format!(
+        "{} ({}, layer {}) {place}, {span}: {force}, by {}{sense}",
+        escape(&load.label),
+        escape(&load.entity),
+        escape(&load.layer),
+        escape(&load.from)
+    )
 }
 
 fn kinds(counts: &BTreeMap<String, u64>) -> String {

@@ -9,6 +9,7 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use super::gather::keeps;
 use super::insert::Insert;
+use super::names;
 use super::note::{Note, Role};
 use super::outlines;
 use super::roles::{self, CURVES, POINTS};
@@ -32,7 +33,10 @@ pub fn expanded<'o>(
     let mut inherits = false;
     let mut inside = false;
     for record in outline.records.iter().filter(|r| !r.ours && !r.in_paper_space()) {
-        inside |= record.block.is_some() && record.kind != "VIEWPORT";
+        let on_sheet = record
+            .block
+            .is_some_and(|b| outline.blocks.get(b).is_some_and(|b| names::is_paper_space(&b.name)));
+        inside |= record.block.is_some() && !on_sheet && record.kind != "VIEWPORT";
         inherits |= record.kind == "INSERT" && lends_layer(settings, &record.layer)?;
     }
     if !(inside || inherits) {

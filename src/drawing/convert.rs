@@ -7,14 +7,14 @@ use dxf::enums::{
     AttachmentPoint, HorizontalTextJustification as Across, VerticalTextJustification as Upright,
 };
 
-use super::entity::{Attribute, Curve, PointLike, Source, Text};
+use super::entity::{Attribute, Curve, Extended, PointLike, Source, Text};
 use super::lay::{self, Laid};
 use super::nurbs::Nurbs;
 use super::ocs::Frame;
 use super::{read, text};
 use crate::geometry::{Affine, Point, Segment, Vec2};
 use crate::refusal::Refusal;
-use crate::tags::{Decoder, Record};
+use crate::tags::{self, Decoder, Record};
 use crate::tolerance;
 
 /// Where a record stands, with its layer and handle as the file spells them.
@@ -102,6 +102,18 @@ pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusa
                 (lay::flat(&source, &map, poly.location.z, &pieces)?, poly.is_closed())
             }
         }
+        EntityType::Leader(leader) => {
+            let points: Vec<[f64; 3]> = leader.vertices.iter().map(|p| place.point(xyz(p))).collect();
+            (lay::chain(&source, &points)?, false)
+        }
+        EntityType::Solid(s) => {
+            let corners = [&s.first_corner, &s.second_corner, &s.third_corner, &s.fourth_corner];
+            filled(&source, &place, &s.extrusion_direction, corners, record.tags.first(13).is_some())?
+        }
+        EntityType::Trace(t) => {
+            let corners = [&t.first_corner, &t.second_corner, &t.third_corner, &t.fourth_corner];
+            filled(&source, &place, &t.extrusion_direction, corners, record.tags.first(13).is_some())?
+        }
         _ => return Ok(None),
     };
     let Laid { pieces, z, fitted } = laid;
@@ -113,6 +125,25 @@ pub fn curve(record: &Record, decoder: &Decoder) -> Result<Option<Curve>, Refusa
         ));
     }
     Ok(Some(Curve { source, pieces, closed, z, fitted }))
+}
+
+/// The outline of a filled area of three or four corners, which the format gives crosswise.
+fn filled(
+    source: &Source,
+    place: &Affine,
+    normal: &dxf::Vector,
+    [a, b, c, d]: [&dxf::Point; 4],
+    four: bool,
+) -> Result<(Laid, bool), Refusal> {
+    let mut corners: Vec<Point> =
+        if four { vec![flat(a), flat(b), flat(d), flat(c)] } else { vec![flat(a), flat(b), flat(c)] };
+    corners.dedup();
+    if corners.first() == corners.last() {
+        corners.pop();
+    }
+    let map = place.after(&frame(source, normal)?.map());
+    let vertices: Vec<(Point, f64)> = corners.into_iter().map(|p| (p, 0.0)).collect();
+    Ok((lay::flat(source, &map, a.z, &bulged(&vertices, true))?, true))
 }
 
 /// Some points of the curve that a record draws, in space, enough of them to tell its plane; none for what is no curve.
@@ -196,7 +227,28 @@ pub fn point(record: &Record, decoder: &Decoder) -> Result<Option<PointLike>, Re
         }
         _ => return Ok(None),
     };
-    Ok(Some(PointLike { source, at: Point::new(at[0], at[1]), z: at[2], attributes }))
+    let extended = extended(record, decoder);
+    Ok(Some(PointLike { source, at: Point::new(at[0], at[1]), z: at[2], attributes, extended }))
+}
+
+/// Texts and numbers in the extended data of a record, in their order; those of our own marks are not the drawing's.
+pub fn extended(record: &Record, decoder: &Decoder) -> Vec<Extended> {
+    let mut application = String::new();
+    let mut found = Vec::new();
+    for tag in record.tags.iter() {
+        match tag.code {
+            1001 => application = decoder.text(tag.trimmed()),
+            1000 | 1040 | 1070 | 1071 if !application.eq_ignore_ascii_case(tags::APPLICATION) => {
+                found.push(Extended {
+                    application: application.clone(),
+                    code: tag.code,
+                    value: decoder.text(tag.trimmed()),
+                });
+            }
+            _ => {}
+        }
+    }
+    found
 }
 
 /// The text of a record; `None` when it is none or an empty one.

@@ -70,6 +70,19 @@ pub struct PointLike {
     pub z: f64,
     /// Attributes of an INSERT.
     pub attributes: Vec<Attribute>,
+    /// Its extended data.
+    pub extended: Vec<Extended>,
+}
+
+/// A text or a number of an entity's extended data.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Extended {
+    /// The application that it belongs to, as spelled.
+    pub application: String,
+    /// Its group code: 1000 a text, 1040 a number, 1070 and 1071 a whole number.
+    pub code: i32,
+    /// As spelled, without blanks around it.
+    pub value: String,
 }
 
 /// An attribute of a block reference.

@@ -2,11 +2,13 @@
 
 use std::borrow::Cow;
 
-use super::entity::{Curve, PointLike, Source, Text};
+use super::entity::{Curve, PointLike, Text};
 use super::note::{Note, Reason, Role};
 use super::outlook::{self, Line};
-use super::roles::{self, CURVES, POINTS};
+use super::roles::{self, CURVES, LOADS, POINTS};
 use super::space::View;
+use super::stroke::{self, STROKES, Stroke};
+use super::surroundings::{self, Surroundings};
 use super::{Drawing, blocks, convert, names, outlines, reference, unit, viewport};
 use crate::geometry::Point;
 use crate::job::{Role as JobRole, Settings};
@@ -29,7 +31,13 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
     }
     match settings.layers.role_of(candidate.layer) {
         Ok(Some(
-            JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+            JobRole::Axis
+            | JobRole::Loads
+            | JobRole::Intrados
+            | JobRole::Extrados
+            | JobRole::Hinges
+            | JobRole::Posts
+            | JobRole::Plan,
         ))
         | Err(_) => true,
         Ok(Some(JobRole::Road)) => !settings.traffic.is_empty(),
@@ -48,7 +56,9 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
 /// # Errors
 /// As [`tags::scan`].
 pub fn scan(bytes: &tags::Source, settings: &Settings) -> Result<Outline, Refusal> {
-    let keep = |candidate: &Candidate<'_>| keeps(settings, candidate);
+    let all = bytes.len() <= tolerance::SURROUNDINGS;
+    let keep =
+        |candidate: &Candidate<'_>| keeps(settings, candidate) || all && surroundings::keeps(candidate);
     tags::scan(bytes, &Options { keep: Some(&keep), hash: false })
 }
 
@@ -109,6 +119,7 @@ fn read_seen(
     view: View,
     notes: Vec<Note>,
 ) -> Result<Drawing, Refusal> {
+    let original = outline;
     let mut seen = Cow::Borrowed(outline);
     if view != View::XY {
         view.look(&mut seen.to_mut().records);
@@ -120,18 +131,25 @@ fn read_seen(
     // Where no axis is drawn, the ring lines stand for it.
     let outline_of = if axis.is_empty() { [&intrados[..], &extrados[..]].concat() } else { axis.clone() };
     let at = if axis.is_empty() { &intrados } else { &axis };
-    let LoadLayers { layers: load_layers, points, texts } = reader.loads(&axis_layers, at)?;
-    reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points)?;
+    let LoadLayers { layers: load_layers, points, texts, strokes, by_content } =
+        reader.loads(&axis_layers, at)?;
+    reader.one_plane(&[&axis[..], &intrados, &extrados].concat(), &points, &strokes)?;
     reader.hidden(axis_layers.iter().chain(&load_layers).chain(&intrados_layers).chain(&extrados_layers));
     let hinge_layers = roles::named(outline, settings, Role::Hinges, &POINTS)?;
     let (hinges, _) = reader.points(&hinge_layers, &outline.records)?;
     reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
     reader.hidden(hinge_layers.iter());
     let road = reader.road()?;
+    if bytes.len() > tolerance::SURROUNDINGS {
+        reader.notes.push(Note::SurroundingsNotRead);
+    }
+    let height = outline_of.first().map_or(0.0, |c| c.z);
+    let Surroundings { posts, plan, plan_of_rib, dimensions, title } =
+        surroundings::read(original, outline, view, height, settings, &mut reader.notes)?;
     let areas = outlines::read(outline, settings, &mut reader.notes)?;
     reader.areas_in_plane(&areas, [&axis[..], &intrados].concat().first())?;
     reader.parts_not_read()?;
-    reader.not_read(&axis_layers, &load_layers);
+    reader.not_read(&axis_layers, &load_layers, by_content);
     reader.passed_over(Role::Intrados, &intrados_layers, &CURVES);
     reader.passed_over(Role::Extrados, &extrados_layers, &CURVES);
     let fitted = axis.iter().chain(&intrados).chain(&extrados).filter(|c| c.fitted);
@@ -164,6 +182,12 @@ fn read_seen(
         intrados,
         extrados,
         points,
+        strokes,
+        posts,
+        plan,
+        plan_of_rib,
+        dimensions,
+        title,
         hinges,
         road,
         areas,
@@ -179,6 +203,9 @@ struct LoadLayers {
     layers: Vec<String>,
     points: Vec<PointLike>,
     texts: Vec<Text>,
+    strokes: Vec<Stroke>,
+    /// Guessed by what they hold: lines on them are not read.
+    by_content: bool,
 }
 
 /// Layers with the curves on them.
@@ -313,10 +340,9 @@ impl Reader<'_> {
 
     /// The loads: by the patterns, else guessed by name, else by points that stand over the axis.
     fn loads(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
-        let layers = roles::named(self.outline, self.settings, Role::Loads, &POINTS)?;
+        let layers = roles::named(self.outline, self.settings, Role::Loads, &LOADS)?;
         if !layers.is_empty() {
-            let (points, texts) = self.points(&layers, &self.outline.records)?;
-            return Ok(LoadLayers { layers, points, texts });
+            return self.drawn_loads(layers);
         }
         let mut by_name = roles::loads_by_name(self.outline, axis_layers);
         by_name.retain(|n| !outlines::is_area_layer(self.settings, &n.0));
@@ -328,11 +354,21 @@ impl Reader<'_> {
                     reason: Reason::Word(word),
                 });
             }
-            let layers: Vec<String> = by_name.into_iter().map(|n| n.0).collect();
-            let (points, texts) = self.points(&layers, &self.outline.records)?;
-            return Ok(LoadLayers { layers, points, texts });
+            return self.drawn_loads(by_name.into_iter().map(|n| n.0).collect());
         }
         self.loads_by_content(axis_layers, axis)
+    }
+
+    /// Points, texts and lines on layers that are known to hold loads.
+    fn drawn_loads(&self, layers: Vec<String>) -> Result<LoadLayers, Refusal> {
+        let (points, texts) = self.points(&layers, &self.outline.records)?;
+        let mut strokes = Vec::new();
+        for record in in_model(&self.outline.records, &layers) {
+            if STROKES.contains(&record.kind.as_str()) {
+                strokes.extend(stroke::stroke(record, &self.outline.decoder)?);
+            }
+        }
+        Ok(LoadLayers { layers, points, texts, strokes, by_content: false })
     }
 
     fn loads_by_content(&mut self, axis_layers: &[String], axis: &[Curve]) -> Result<LoadLayers, Refusal> {
@@ -365,7 +401,7 @@ impl Reader<'_> {
             layer,
             reason: Reason::PointsOver { over, of },
         });
-        Ok(LoadLayers { layers, points, texts })
+        Ok(LoadLayers { layers, points, texts, strokes: Vec::new(), by_content: true })
     }
 
     fn rescan(&self, layers: &[String], kinds: &[&str]) -> Result<Vec<Record>, Refusal> {
@@ -388,7 +424,7 @@ impl Reader<'_> {
     /// Refuses curves on the layers of axis or ring line that cannot be read: without them it would be another one.
     fn refuse_unread(&self, layers: &[String], role: Role) -> Result<(), Refusal> {
         match in_model(&self.outline.records, layers).find(|r| UNREAD.contains(&r.kind.as_str())) {
-            Some(record) => Err(not_readable(record, role)),
+            Some(record) => Err(roles::not_readable(record, role)),
             None => Ok(()),
         }
     }
@@ -410,13 +446,17 @@ impl Reader<'_> {
     }
 
     /// Refuses curves and points that lie in different planes.
-    fn one_plane(&self, axis: &[Curve], points: &[PointLike]) -> Result<(), Refusal> {
+    fn one_plane(&self, axis: &[Curve], points: &[PointLike], strokes: &[Stroke]) -> Result<(), Refusal> {
         let Some(first) = axis.first() else {
             return Ok(());
         };
         let (left, right) = extent(axis);
         let slack = tolerance::FLAT * (right - left);
-        let others = axis.iter().map(|c| (&c.source, c.z)).chain(points.iter().map(|p| (&p.source, p.z)));
+        let others = axis
+            .iter()
+            .map(|c| (&c.source, c.z))
+            .chain(points.iter().map(|p| (&p.source, p.z)))
+            .chain(strokes.iter().map(|s| (&s.source, s.z)));
         for (source, z) in others {
             if (z - first.z).abs() > slack {
                 return Err(source.refuse(
@@ -441,7 +481,7 @@ impl Reader<'_> {
         for area in areas {
             let hatches = area.hatches.iter().flat_map(|h| &h.loops);
             let all: Vec<Curve> = std::iter::once(axis).chain(&area.curves).chain(hatches).cloned().collect();
-            self.one_plane(&all, &[])?;
+            self.one_plane(&all, &[], &[])?;
         }
         Ok(())
     }
@@ -462,7 +502,13 @@ impl Reader<'_> {
             let count: u64 = layer.model.values().sum();
             let part = match roles::role_of(self.settings, &layer.name)? {
                 Some(
-                    JobRole::Axis | JobRole::Loads | JobRole::Intrados | JobRole::Extrados | JobRole::Hinges,
+                    JobRole::Axis
+                    | JobRole::Loads
+                    | JobRole::Intrados
+                    | JobRole::Extrados
+                    | JobRole::Hinges
+                    | JobRole::Posts
+                    | JobRole::Plan,
                 ) => continue,
                 Some(JobRole::Road) if !self.settings.traffic.is_empty() => continue,
                 Some(role) => role.name(),
@@ -476,9 +522,10 @@ impl Reader<'_> {
     }
 
     /// Tells what stands on the layers of axis and loads and was not read: other types, paper space.
-    fn not_read(&mut self, axis: &[String], loads: &[String]) {
+    fn not_read(&mut self, axis: &[String], loads: &[String], by_content: bool) {
         self.passed_over(Role::Axis, axis, &CURVES);
-        self.passed_over(Role::Loads, loads, &[&POINTS[..], &["TEXT", "MTEXT"]].concat());
+        let lines: &[&str] = if by_content { &[] } else { &STROKES };
+        self.passed_over(Role::Loads, loads, &[&POINTS[..], lines, &["TEXT", "MTEXT"]].concat());
     }
 
     fn passed_over(&mut self, role: Role, layers: &[String], read_kinds: &[&str]) {
@@ -531,20 +578,6 @@ pub(super) fn in_model<'r>(records: &'r [Record], layers: &[String]) -> impl Ite
     records.iter().filter(move |r| {
         r.block.is_none() && !r.ours && layers.contains(&fold(&r.layer)) && !r.in_paper_space()
     })
-}
-
-fn not_readable(record: &Record, role: Role) -> Refusal {
-    let source: Source = convert::source(record);
-    source.refuse(
-        "axis-kind",
-        format!(
-            "layer {} of the {} holds a {}: it is read from LINE, ARC, LWPOLYLINE, POLYLINE, ELLIPSE and SPLINE",
-            record.layer,
-            role.key(),
-            record.kind
-        ),
-        "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",
-    )
 }
 
 /// Least and greatest x of the pieces' ends and middles.

@@ -4,6 +4,7 @@
 
 mod blocks;
 pub mod convert;
+mod dimension;
 mod ends;
 mod entity;
 mod gather;
@@ -20,18 +21,24 @@ pub mod read;
 mod reference;
 mod roles;
 mod space;
+mod stroke;
 mod suggest;
+mod surroundings;
 pub mod text;
+mod title;
 pub mod unit;
 pub mod viewport;
 
 use crate::tags;
 pub use crate::tags::{Doubt, Note as FileNote};
+pub use dimension::Dimension;
 pub use ends::{clusters, near_pairs};
-pub use entity::{Attribute, Curve, PointLike, Source, Text};
+pub use entity::{Attribute, Curve, Extended, PointLike, Source, Text};
 pub use gather::{keeps, read_outlined, scan};
 pub use note::{Note, Reason, Role};
+pub use stroke::{End, Stroke};
 pub use suggest::{Suggestion, suggest};
+pub use title::Title;
 pub use unit::{NoUnit, Unit, UnitSource};
 
 /// What was read from a drawing. Coordinates are drawing units.
@@ -53,6 +60,18 @@ pub struct Drawing {
     pub extrados: Vec<Curve>,
     /// Points on the load layers, in the order of the file.
     pub points: Vec<PointLike>,
+    /// Lines on the load layers, in the order of the file.
+    pub strokes: Vec<Stroke>,
+    /// Lines on the post layers, in the order of the file.
+    pub posts: Vec<Stroke>,
+    /// Lines of the roadway and the rib in plan: x as in the elevation, y across the bridge.
+    pub plan: Vec<PlanLine>,
+    /// In an upright elevation the ordinate of its plane in the coordinates of `plan`.
+    pub plan_of_rib: Option<f64>,
+    /// Dimensions of lengths in model space.
+    pub dimensions: Vec<Dimension>,
+    /// What the title block says.
+    pub title: Title,
     /// Points on the hinge layers, in the order of the file.
     pub hinges: Vec<PointLike>,
     /// Curves of the road line, in the order of the file; read only where the job has traffic.
@@ -65,6 +84,15 @@ pub struct Drawing {
     pub viewports: Vec<viewport::Viewport>,
     /// What was noticed.
     pub notes: Vec<Note>,
+}
+
+/// A line of the roadway or the rib in plan.
+#[derive(Debug, Clone, PartialEq)]
+pub struct PlanLine {
+    /// The entity.
+    pub source: Source,
+    /// Its pieces.
+    pub pieces: Vec<crate::geometry::Segment>,
 }
 
 impl Drawing {

@@ -140,6 +140,11 @@ pub fn loads_word(name: &str) -> Option<&'static str> {
     word_in(name, &LOADS)
 }
 
+/// Whether a block is the paper space of a layout.
+pub fn is_paper_space(block: &str) -> bool {
+    block.get(..12).is_some_and(|b| b.eq_ignore_ascii_case("*PAPER_SPACE"))
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

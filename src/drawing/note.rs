@@ -20,6 +20,10 @@ pub enum Role {
     Hinges,
     /// The line that traffic runs on.
     Road,
+    /// Spandrel posts.
+    Posts,
+    /// The roadway in plan.
+    Plan,
     /// Outlines of what weighs.
     Areas,
 }
@@ -34,6 +38,8 @@ impl Role {
             Self::Extrados => "extrados",
             Self::Hinges => "hinges",
             Self::Road => "road",
+            Self::Posts => "posts",
+            Self::Plan => "plan",
             Self::Areas => "area",
         }
     }
@@ -149,6 +155,33 @@ pub enum Note {
         /// How many.
         pieces: usize,
     },
+    /// `[title]` names a tag that no title block has.
+    TitleMissing {
+        /// Its key in `[title]`.
+        key: &'static str,
+        /// The tag or pattern.
+        pattern: String,
+    },
+    /// Title blocks say different things.
+    TitleUnclear {
+        /// Of what.
+        what: &'static str,
+        /// Its key in `[title]`.
+        key: &'static str,
+        /// What they say.
+        values: Vec<String>,
+    },
+    /// Texts say that the drawing is not to scale.
+    NotToScale {
+        /// The first of them.
+        source: Source,
+        /// What it says.
+        text: String,
+        /// How many.
+        count: usize,
+    },
+    /// The drawing is too large for its title block, dimensions and notes to be looked for.
+    SurroundingsNotRead,
     /// The layouts have viewports, and none shows the whole axis: the marks are seen in model space.
     NotInLayouts {
         /// Viewports square onto the elevation.

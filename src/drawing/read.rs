@@ -27,6 +27,11 @@ fn groups(kind: &str) -> Option<Groups> {
     const POINT: &[i32] = &[10, 20, 30, 210, 220, 230];
     let groups = |reals, needed| Groups { texts: &[], reals, integers: &[], needed };
     Some(match kind {
+        "LEADER" => Groups { integers: &[(71, 0, 1)], ..groups(POINT, &[10, 20]) },
+        "SOLID" | "TRACE" => groups(
+            &[10, 20, 30, 11, 21, 31, 12, 22, 32, 13, 23, 33, 210, 220, 230],
+            &[10, 20, 11, 21, 12, 22],
+        ),
         "LINE" => groups(&[10, 20, 30, 11, 21, 31, 210, 220, 230], &[10, 20, 11, 21]),
         "POINT" => groups(POINT, &[10, 20]),
         "CIRCLE" => groups(&[10, 20, 30, 40, 210, 220, 230], &[10, 20, 40]),
@@ -119,8 +124,8 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
         out.push_str(" 66\n1\n");
     }
     let turned_last = record.tags.own().filter(|t| t.code == 11 || t.code == 50).map(|t| t.code).last();
-    // The crate drops points of a spline that have no height.
-    let flat_spline = kind == "SPLINE" && record.tags.first(30).is_none();
+    // The crate drops points of a spline or a leader that have no height.
+    let flat_spline = matches!(kind, "SPLINE" | "LEADER") && record.tags.first(30).is_none();
     let mut seen = Vec::new();
     let mut columns = false;
     for tag in record.tags.own() {
@@ -166,12 +171,12 @@ fn write_record(out: &mut String, record: &Record, decoder: &Decoder) -> Result<
         }
         seen.push(code);
     }
-    if kind == "LWPOLYLINE" || kind == "SPLINE" {
+    if matches!(kind, "LWPOLYLINE" | "SPLINE" | "LEADER") {
         let count = |code| seen.iter().filter(|&&c| c == code).count();
         if count(10) != count(20) {
             return Err(missing(record, 20));
         }
-        if kind == "SPLINE" && count(30) > 0 && count(30) != count(10) {
+        if kind != "LWPOLYLINE" && count(30) > 0 && count(30) != count(10) {
             return Err(missing(record, 30));
         }
     }

@@ -12,6 +12,9 @@ pub const CURVES: [&str; 6] = ["LINE", "ARC", "LWPOLYLINE", "POLYLINE", "ELLIPSE
 /// Kinds of entities that stand for a load.
 pub const POINTS: [&str; 3] = ["POINT", "CIRCLE", "INSERT"];
 
+/// Kinds of entities that make a layer one of loads: points, and lines that may be arrows or line loads.
+pub const LOADS: [&str; 7] = ["POINT", "CIRCLE", "INSERT", "LINE", "LWPOLYLINE", "POLYLINE", "LEADER"];
+
 /// How many of the entities counted are of these kinds.
 pub fn count(counts: &std::collections::BTreeMap<String, u64>, kinds: &[&str]) -> u64 {
     kinds.iter().filter_map(|k| counts.get(*k)).sum()
@@ -39,6 +42,8 @@ pub fn named(
         Role::Extrados => JobRole::Extrados,
         Role::Hinges => JobRole::Hinges,
         Role::Road => JobRole::Road,
+        Role::Posts => JobRole::Posts,
+        Role::Plan => JobRole::Plan,
         // Areas have tables of their own.
         Role::Areas => return Ok(Vec::new()),
     };
@@ -56,7 +61,8 @@ pub fn named(
     }
     let path = format!("layers.{}", role.key());
     if found.is_empty()
-        && (settings.states(&path) || !matches!(role, Role::Loads | Role::Hinges) && !unusable.is_empty())
+        && (settings.states(&path)
+            || !matches!(role, Role::Loads | Role::Hinges | Role::Posts | Role::Plan) && !unusable.is_empty())
     {
         return Err(nothing_on(outline, settings, role, wanted, kinds, &unusable));
     }
@@ -92,7 +98,7 @@ fn nothing_on(
         return Refusal::new(
             "layer-unusable",
             format!("layer {} for `[layers] {key}` holds nothing of type {}: only {}", layer.name, kinds.join(", "), holds.join(", ")),
-            "Draw axis and ring lines with lines, arcs and polylines and the loads with points, circles and blocks, or name another layer",
+            "Draw axis and ring lines with lines, arcs and polylines and the loads with points, circles, blocks and arrows, or name another layer",
         )
         .on_layer(layer.name.clone());
     }
@@ -168,7 +174,7 @@ pub fn axis_by_name(outline: &Outline) -> Vec<(u8, String, &'static str)> {
 /// Layers whose names say that they hold loads, with the word.
 pub fn loads_by_name(outline: &Outline, axis: &[String]) -> Vec<(String, &'static str)> {
     usable(outline)
-        .filter(|l| count(&l.model, &POINTS) > 0 && !axis.contains(&l.name))
+        .filter(|l| count(&l.model, &LOADS) > 0 && !axis.contains(&l.name))
         .filter_map(|l| names::loads_word(&l.name).map(|word| (l.name.clone(), word)))
         .collect()
 }
@@ -209,5 +215,20 @@ pub fn no_axis(outline: &Outline, candidates: &[String]) -> Refusal {
         "no-axis",
         format!("{what}{listed}{referred}"),
         "Name the layer of the axis in the job file: `[layers]` `axis = \"NAME\"`",
+    )
+}
+
+/// The refusal of an entity on the layer of axis or ring line that cannot be read.
+pub fn not_readable(record: &crate::tags::Record, role: Role) -> Refusal {
+    let source = super::convert::source(record);
+    source.refuse(
+        "axis-kind",
+        format!(
+            "layer {} of the {} holds a {}: it is read from LINE, ARC, LWPOLYLINE, POLYLINE, ELLIPSE and SPLINE",
+            record.layer,
+            role.key(),
+            record.kind
+        ),
+        "Draw it with lines, arcs and polylines, or move what is no part of it to another layer",
     )
 }

@@ -84,6 +84,12 @@ impl View {
         Affine::of_rows(self.right, self.up, self.toward)
     }
 
+    /// From the drawing's coordinates to those of its plan: right as in the elevation, upward away from the one who looks, and
+    /// height. `None` in the x-y plane, where a plan is drawn flat beside the elevation.
+    pub fn plan_map(&self) -> Option<Affine> {
+        (*self != Self::XY).then(|| Affine::of_rows(self.right, self.toward.map(|c| -c), self.up))
+    }
+
     /// Where marks of an elevation lie whose curves are at this height over the plane through the origin.
     pub fn plane(&self, z: f64) -> Plane {
         // Adding nothing turns a negative zero into a plain one.

@@ -2,7 +2,7 @@
 
 use super::note::{Reason, Role};
 use super::outlook::{self, Line};
-use super::roles::{CURVES, POINTS};
+use super::roles::{CURVES, LOADS, POINTS};
 use super::{convert, gather, names, roles};
 use crate::job::{Role as JobRole, Settings};
 use crate::refusal::Refusal;
@@ -32,7 +32,7 @@ pub fn suggest(
     settings: &Settings,
 ) -> Result<Vec<Suggestion>, Refusal> {
     let mut found = Vec::new();
-    let kinds = [&CURVES[..], &POINTS[..]].concat();
+    let kinds = [&CURVES[..], &POINTS[..], &["LEADER"]].concat();
     let mut layers = roles::holding(outline, &kinds, tolerance::GUESS_ENTITIES, &[]);
     let mut claimed = Vec::new();
     for layer in &layers {
@@ -86,6 +86,11 @@ pub fn suggest(
             .filter_map(|r| convert::point(r, &outline.decoder).ok().flatten())
             .collect();
         if points.is_empty() {
+            // Arrows alone.
+            let arrows = gather::in_model(&records, one).any(|r| LOADS.contains(&r.kind.as_str()));
+            if arrows && roles::role_of(settings, layer)? == Some(JobRole::Loads) {
+                found.push(Suggestion { role: Role::Loads, layer: layer.clone(), reason: None });
+            }
             continue;
         }
         let over = |(curves, line): &(Vec<super::Curve>, Line)| {

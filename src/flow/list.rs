@@ -7,6 +7,7 @@ use super::{Plain, settings_for};
 use crate::drawing::viewport::{self, Shown};
 use crate::drawing::{self, Suggestion};
 use crate::job::Job;
+use crate::model::{self, Forces, MagnitudeFrom, Model, Sense};
 use crate::refusal::Refusal;
 use crate::tags::marks::Plane;
 use crate::tags::{Outline, fold};
@@ -37,6 +38,33 @@ pub struct Listing {
     pub suggestions: Vec<Suggestion>,
     /// What a check would take: the axis layers and the load layers; or why it would refuse.
     pub taken: Result<(Vec<String>, Vec<String>), Refusal>,
+    /// What every load of the drawing would be taken for, or why a check would refuse them; `None` where the layers already are.
+    pub loads: Option<Result<Vec<LoadLine>, Refusal>>,
+}
+
+/// One load as a check would take it.
+#[derive(Debug, Clone, PartialEq)]
+pub struct LoadLine {
+    /// Its name.
+    pub label: String,
+    /// Its entity, such as `LINE 2F`.
+    pub entity: String,
+    /// Its layer.
+    pub layer: String,
+    /// Where it acts, m; of a line load the left end.
+    pub at: [f64; 2],
+    /// Of a line load the right end, m.
+    pub to: Option<[f64; 2]>,
+    /// Its components to the right and upward, kN or unit loads; of a line load per metre of plan.
+    pub force: [f64; 2],
+    /// Whether it is in kN.
+    pub in_kn: bool,
+    /// Where its size comes from.
+    pub from: String,
+    /// What tells its sense, where it is drawn as a line.
+    pub sense: Option<&'static str>,
+    /// The span over which it stands.
+    pub span: Option<String>,
 }
 
 /// One layer.
@@ -86,6 +114,7 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
             all.map(|v| (v.scale, None)).collect()
         }
     };
+    let loads = read.as_ref().ok().map(|d| model::build(d, &(&settings).into()).map(|m| load_lines(&m)));
     let taken = read.map(|d| (d.axis_layers, d.load_layers));
     Ok(Listing {
         file: path.display().to_string(),
@@ -99,7 +128,67 @@ pub fn list(path: &Path, job: Option<&Job>) -> Result<Listing, Refusal> {
         viewports,
         suggestions: drawing::suggest(&source, &outline, &settings)?,
         taken,
+        loads,
     })
+}
+
+/// The loads of a model, span by span, then those over none.
+fn load_lines(model: &Model) -> Vec<LoadLine> {
+    let in_kn = model.forces == Forces::Kilonewtons;
+    let line = |load: &model::Load, span: Option<&str>| LoadLine {
+        label: load.label.clone(),
+        entity: load.source.named(),
+        layer: load.set.clone(),
+        at: [load.at.x, load.at.y],
+        to: None,
+        force: [load.force.x, load.force.y],
+        in_kn,
+        from: size_from(load),
+        sense: match load.sense {
+            Sense::Point => None,
+            Sense::Head => Some("sense from its arrowhead"),
+            Sense::Down => Some("taken to act downward: within 30° of the vertical, no arrowhead"),
+            Sense::Rib => Some("taken to act toward the rib: more than 30° from the vertical, no arrowhead"),
+        },
+        span: span.map(str::to_owned),
+    };
+    let mut lines = Vec::new();
+    for span in &model.spans {
+        lines.extend(span.loads.iter().map(|l| line(l, Some(&span.name))));
+        lines.extend(span.line_loads.iter().map(|l| LoadLine {
+            label: l.label.clone(),
+            entity: l.source.named(),
+            layer: l.set.clone(),
+            at: [l.from.x, l.from.y],
+            to: Some([l.to.x, l.to.y]),
+            force: [0.0, -l.down],
+            in_kn: true,
+            from: format!("its label \"{}\", a force per length", l.text),
+            sense: None,
+            span: Some(span.name.clone()),
+        }));
+    }
+    lines.extend(model.off_span.iter().map(|l| line(l, None)));
+    lines
+}
+
+/// Where the size of a load comes from, in words.
+fn size_from(load: &model::Load) -> String {
+    let text = load.text.as_deref().unwrap_or_default();
+    let mut words = match load.magnitude_from {
+        MagnitudeFrom::Label => format!("its label \"{text}\""),
+        MagnitudeFrom::Attribute => format!("its attribute \"{text}\""),
+        MagnitudeFrom::ExtendedData => {
+            format!("its extended data \"{text}\" of {}", load.application.as_deref().unwrap_or_default())
+        }
+        MagnitudeFrom::ArrowLength => "the length of its arrow by [loads] arrow_scale".into(),
+        MagnitudeFrom::Job => "[loads] unlabelled: it has no figure".into(),
+        MagnitudeFrom::Equal => "no load has a figure: all are taken as equal".into(),
+    };
+    if let Some(post) = &load.post {
+        words.push_str(&format!("; it stands on the post {} and acts down it", post.named()));
+    }
+    words
 }
 
 /// The layers of the table in its order, then those that only entities name.

@@ -24,7 +24,7 @@ use crate::verdict;
 use crate::write::annotate;
 
 pub use copy::{Target, beside, carries_marks, mark, marked, may_write_copy, with_marks};
-pub use list::{LayerLine, Listing, list};
+pub use list::{LayerLine, Listing, LoadLine, list};
 pub use unmark::{Unmarked, unmark};
 
 /// What a run depends on beside its files.
@@ -255,6 +255,8 @@ fn judged(
     let drawing = drawing::read_outlined(source, outline, settings)?;
     facts.unit = Some(drawing.unit.name.into());
     facts.unit_source = Some(drawing.unit.source.name().into());
+    facts.sheet.clone_from(&drawing.title.sheet);
+    facts.revision.clone_from(&drawing.title.revision);
     let mut model = model::build(&drawing, &settings.into())?;
     model::backing::trim(&mut model, settings)?;
     model.areas = model::areas::weigh(&model, settings)?;

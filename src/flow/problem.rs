@@ -2,9 +2,9 @@
 
 use crate::geometry::Point;
 use crate::job::{Draw, Govern, RibDepth, Settings, Support};
-use crate::model::{Case, Forces, Model, Span, areas, cases};
+use crate::model::{self, Case, Forces, Model, Span, areas, cases};
 use crate::refusal::Refusal;
-use crate::statics::{self, Depth, Effects, Force, LineKind, Problem, Slender, Unsolved};
+use crate::statics::{self, Depth, Effects, Force, LineKind, LineLoad, Problem, Slender, Unsolved};
 
 /// The problem of one span in one case. With unit loads nothing strains the rib but the loads: a change of temperature has
 /// no size beside an unknown force.
@@ -53,6 +53,7 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
                     .map(|lump| Force { at: lump.at, force: lump.force * case.factor(name(lump)) }),
             )
             .collect(),
+        line_loads: line_loads(span, case),
         entering: standing.iter().enumerate().map(|(i, lump)| (drawn + i, lump.s)).collect(),
         stiffness: rib.elastic_modulus.zip(rib.width).map(|(e, b)| e * KN_PER_M2 * b / (1.0 + rib.creep)),
         effects,
@@ -84,6 +85,17 @@ pub fn problem(model: &Model, span: &Span, case: &Case, settings: &Settings) -> 
         draw,
         ..Problem::new(span.axis.clone())
     })
+}
+
+/// The line loads of a span as a case factors them.
+fn line_loads(span: &Span, case: &Case) -> Vec<LineLoad> {
+    let load = |l: &model::LineLoad| LineLoad {
+        from: l.from.x,
+        to: l.to.x,
+        down: l.down * case.factor(&l.set),
+        varies: case.varies(&l.set),
+    };
+    span.line_loads.iter().map(load).collect()
 }
 
 /// kN/m² in a MPa.

@@ -55,11 +55,11 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("intrados", All),
             ("extrados", All),
             ("loads", All),
-            ("posts", Later),
+            ("posts", All),
             ("joints", Later),
             ("hinges", All),
             ("road", All),
-            ("plan", Later),
+            ("plan", All),
         ],
     ),
     (
@@ -87,7 +87,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         ],
     ),
     ("rib.movement", &[("left", All), ("right", All)]),
-    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", Later), ("decimal", All)]),
+    ("loads", &[("unit", All), ("unlabelled", All), ("arrow_scale", All), ("decimal", All)]),
     (
         "area",
         &[
@@ -135,7 +135,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("geometric_factor", All),
             ("load_factor", All),
             ("pier_push", All),
-            ("dimension", Later),
+            ("dimension", All),
         ],
     ),
     ("accept", &[("assumed", All), ("finding", All)]),
@@ -144,7 +144,16 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         &[
             (
                 "check",
-                Only(&["offset", "ring", "kern", "geometric-factor", "stress", "load-factor", "pier-push"]),
+                Only(&[
+                    "offset",
+                    "ring",
+                    "kern",
+                    "geometric-factor",
+                    "stress",
+                    "load-factor",
+                    "pier-push",
+                    "dimension",
+                ]),
             ),
             ("span", All),
             ("case", All),
@@ -155,7 +164,7 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
         ],
     ),
     ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", Later)]),
-    ("title", &[("sheet", Later), ("revision", Later)]),
+    ("title", &[("sheet", All), ("revision", All)]),
     ("report", &[("units", Only(&["si"]))]),
 ];
 

@@ -43,6 +43,7 @@ impl Case {
 pub fn parts(model: &Model, settings: &Settings) -> Vec<String> {
     let mut parts: Vec<String> =
         model.spans.iter().flat_map(|s| &s.loads).chain(&model.off_span).map(|l| l.set.clone()).collect();
+    parts.extend(model.spans.iter().flat_map(|s| &s.line_loads).map(|l| l.set.clone()));
     if model.own_weight(settings).is_some() {
         parts.push(OWN_WEIGHT.into());
     }

@@ -3,7 +3,7 @@
 use std::fmt;
 
 use crate::job::Decimal;
-use crate::units::ForceUnit;
+use crate::units::{ForceUnit, LengthUnit};
 
 /// A force read from a text.
 #[derive(Debug, Clone, PartialEq)]
@@ -14,6 +14,17 @@ pub struct Figure {
     pub value: f64,
     /// The unit written after it.
     pub unit: Option<ForceUnit>,
+    /// Metres in the length that a force per length is given for; `None`: a force.
+    pub per: Option<f64>,
+}
+
+/// What a figure is read as.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Kind {
+    /// A force: `120 kN`.
+    Force,
+    /// A force per length: `12 kN/m`.
+    PerLength,
 }
 
 /// Why a text gives no force.
@@ -54,14 +65,22 @@ impl fmt::Display for Figure {
 /// # Errors
 /// When the text holds no force, or one that cannot be told.
 pub fn read(text: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
+    read_as(text, decimal, Kind::Force)
+}
+
+/// Reads a label as a force or as a force per length.
+///
+/// # Errors
+/// As [`read`]; of a force per length read as a force [`NoFigure::PerLength`], the other way round [`NoFigure::NotAForce`].
+pub fn read_as(text: &str, decimal: Decimal, kind: Kind) -> Result<Figure, NoFigure> {
     let lines: Vec<String> = text.lines().map(tidy).filter(|l| !l.is_empty()).collect();
     if let [] | [_] = lines.as_slice() {
-        return read_line(&tidy(text), decimal);
+        return read_line(&tidy(text), decimal, kind);
     }
     let mut found = None;
     let mut worst = NoFigure::NotAForce;
     for line in &lines {
-        match read_line(line, decimal) {
+        match read_line(line, decimal, kind) {
             Ok(figure) if found.is_none() => found = Some(figure),
             Ok(_) => return Err(NoFigure::Several),
             Err(why @ (NoFigure::TwoReadings { .. } | NoFigure::Separator(_))) => return Err(why),
@@ -71,7 +90,7 @@ pub fn read(text: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
     }
     match found {
         Some(figure) if figure.name.is_some() => Ok(figure),
-        Some(figure) => Ok(read_line(&tidy(text), decimal).unwrap_or(figure)),
+        Some(figure) => Ok(read_line(&tidy(text), decimal, kind).unwrap_or(figure)),
         None => Err(worst),
     }
 }
@@ -95,7 +114,7 @@ fn tidy(text: &str) -> String {
     out
 }
 
-fn read_line(line: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
+fn read_line(line: &str, decimal: Decimal, kind: Kind) -> Result<Figure, NoFigure> {
     if let Some(at) = line.find(['=', ':', '≈']) {
         let separator = line[at..].chars().next().map_or(1, char::len_utf8);
         let name = line[..at].trim();
@@ -103,25 +122,25 @@ fn read_line(line: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
         if value.contains(['=', ':']) {
             return Err(NoFigure::NotAForce);
         }
-        let mut figure = quantity(value, decimal)?;
+        let mut figure = quantity(value, decimal, kind)?;
         figure.name = (!name.is_empty()).then(|| name.to_owned());
         return Ok(figure);
     }
     if starts_number(line) {
-        return quantity(line, decimal);
+        return quantity(line, decimal, kind);
     }
-    named(line, decimal)
+    named(line, decimal, kind)
 }
 
 /// A name and a figure with nothing between them but a blank: only with a unit, so that `Axis 3` is no force.
-fn named(line: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
+fn named(line: &str, decimal: Decimal, kind: Kind) -> Result<Figure, NoFigure> {
     let Some((name, value)) = line.split_once(' ') else {
         return Err(NoFigure::NotAForce);
     };
     if !starts_number(value) || !name.starts_with(char::is_alphabetic) {
         return Err(NoFigure::NotAForce);
     }
-    let mut figure = quantity(value, decimal)?;
+    let mut figure = quantity(value, decimal, kind)?;
     if figure.unit.is_none() {
         return Err(NoFigure::NotAForce);
     }
@@ -149,7 +168,7 @@ fn starts_number(text: &str) -> bool {
 }
 
 /// A number and perhaps a unit, and nothing else but a remark in parentheses.
-fn quantity(text: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
+fn quantity(text: &str, decimal: Decimal, kind: Kind) -> Result<Figure, NoFigure> {
     if !starts_number(text) {
         return Err(NoFigure::NotAForce);
     }
@@ -163,19 +182,22 @@ fn quantity(text: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
     if !remark.is_empty() && !remark.ends_with(')') {
         return Err(NoFigure::NotAForce);
     }
-    let unit = if unit_text.is_empty() {
-        None
+    let (unit, per) = if unit_text.is_empty() {
+        (None, None)
     } else if let Some(unit) = ForceUnit::parse(unit_text) {
-        Some(unit)
-    } else if let Some((force, _)) = unit_text.split_once('/')
-        && ForceUnit::parse(force.trim_end()).is_some()
-    {
-        return Err(NoFigure::PerLength);
+        (Some(unit), None)
+    } else if let Some((unit, metres)) = per_length(unit_text) {
+        (Some(unit), Some(metres))
     } else if unit_text.chars().all(char::is_alphabetic) {
         return Err(NoFigure::Unit(unit_text.to_owned()));
     } else {
         return Err(NoFigure::NotAForce);
     };
+    match (kind, per) {
+        (Kind::Force, Some(_)) => return Err(NoFigure::PerLength),
+        (Kind::PerLength, None) => return Err(NoFigure::NotAForce),
+        _ => {}
+    }
     let value = number_value(number, decimal).map_err(|e| match e {
         // Name the unit too: the readings are what the user chooses from.
         NoFigure::TwoReadings { written, readings } if unit.is_some() => NoFigure::TwoReadings {
@@ -184,7 +206,25 @@ fn quantity(text: &str, decimal: Decimal) -> Result<Figure, NoFigure> {
         },
         other => other,
     })?;
-    Ok(Figure { name: None, value, unit })
+    Ok(Figure { name: None, value, unit, per })
+}
+
+/// A unit of force over a unit of length, with the metres in the latter: `kN/m`, `lbf / ft`, and the running metre and foot.
+fn per_length(text: &str) -> Option<(ForceUnit, f64)> {
+    match text.to_ascii_lowercase().as_str() {
+        "plf" => return Some((ForceUnit::Lbf, LengthUnit::Ft.metres())),
+        "klf" => return Some((ForceUnit::Kip, LengthUnit::Ft.metres())),
+        _ => {}
+    }
+    let (force, length) = text.split_once('/')?;
+    let force = ForceUnit::parse(force.trim_end())?;
+    let length = length.trim_start();
+    let metres = match length.to_ascii_lowercase().as_str() {
+        "lfm" | "ml" | "m'" => 1.0,
+        "lf" | "lin ft" | "ft'" => LengthUnit::Ft.metres(),
+        _ => LengthUnit::parse(length)?.metres(),
+    };
+    Some((force, metres))
 }
 
 /// Where the number at the start of the text ends: digits, separators, and blanks or apostrophes before groups of three.
@@ -406,6 +446,29 @@ mod tests {
         assert_eq!(read("3,5 t", Decimal::Auto), Err(NoFigure::Unit("t".into())));
         assert_eq!(read("3 mN", Decimal::Auto), Err(NoFigure::Unit("mN".into())));
         assert_eq!(read("12 kN\n13 kN", Decimal::Auto), Err(NoFigure::Several));
+    }
+
+    #[test]
+    fn forces_per_length() {
+        let read = |text: &str| read_as(text, Decimal::Auto, Kind::PerLength);
+        for (text, value, unit, per) in [
+            ("12 kN/m", 12.0, ForceUnit::KN, 1.0),
+            ("g = 12,5 kN / m", 12.5, ForceUnit::KN, 1.0),
+            ("1.2 tf/m", 1.2, ForceUnit::Tf, 1.0),
+            ("0.8 kip/ft", 0.8, ForceUnit::Kip, 0.3048),
+            ("850 LBF/FT", 850.0, ForceUnit::Lbf, 0.3048),
+            ("2 klf", 2.0, ForceUnit::Kip, 0.3048),
+            ("-3 N/mm", -3.0, ForceUnit::N, 0.001),
+            ("q 9 kN/lfm", 9.0, ForceUnit::KN, 1.0),
+        ] {
+            let figure = read(text).unwrap();
+            assert_eq!((figure.value, figure.unit, figure.per), (value, Some(unit), Some(per)), "{text}");
+        }
+        assert_eq!(read("g = 12 kN/m\ndeck").unwrap().name.as_deref(), Some("g"));
+        assert!(matches!(read("1.234 kN/m"), Err(NoFigure::TwoReadings { .. })));
+        for text in ["12 kN", "12", "12 kN/m2", "12 kN/m²", "12 kNm", "12 /m", "deck"] {
+            assert!(read(text).is_err(), "{text}");
+        }
     }
 
     proptest::proptest! {

@@ -6,9 +6,15 @@ pub mod areas;
 pub mod backing;
 pub mod cases;
 pub mod chain;
+pub mod dimensions;
+pub mod drawn;
+pub mod extended;
 pub mod figures;
+pub mod heads;
 pub mod labels;
+pub mod line_loads;
 pub mod loads;
+pub mod marks;
 pub mod matching;
 pub mod middle;
 pub mod noise;
@@ -16,6 +22,8 @@ pub mod note;
 pub mod outline;
 pub mod pieces;
 pub mod piers;
+mod plan;
+mod posts;
 pub mod ring;
 pub mod roof;
 pub mod traffic;
@@ -29,7 +37,10 @@ use crate::refusal::Refusal;
 use crate::tolerance;
 
 pub use cases::Case;
+pub use drawn::Drawn;
+pub use line_loads::LineLoad;
 pub use loads::LoadSettings;
+pub use marks::Sense;
 pub use note::Note;
 pub use ring::Ring;
 
@@ -44,6 +55,8 @@ pub struct Model {
     pub road: Vec<Path>,
     /// Loads that stand over no span.
     pub off_span: Vec<Load>,
+    /// Drawn dimensions of span, rise and depth.
+    pub dimensions: Vec<dimensions::Measured>,
     /// What else weighs on the spans, in the order of the job; put in by [`areas::weigh`].
     pub areas: Vec<areas::Weighed>,
     /// The outlines of the areas as drawn, in the order of the job, drawing units, and a drawing unit in m.
@@ -93,6 +106,8 @@ pub struct Span {
     pub hinges: Vec<Point>,
     /// Its loads, left to right.
     pub loads: Vec<Load>,
+    /// Its line loads, left to right.
+    pub line_loads: Vec<LineLoad>,
 }
 
 /// One load.
@@ -112,6 +127,15 @@ pub struct Load {
     pub magnitude_from: MagnitudeFrom,
     /// The text it was read from.
     pub text: Option<String>,
+    /// The application whose extended data say how large it is.
+    pub application: Option<String>,
+    /// What tells its sense.
+    pub sense: Sense,
+    /// The post that it comes down.
+    pub post: Option<Source>,
+    /// How far it stands to the left of the plane of the rib, looking in the direction of x, m; `None` where no roadway is drawn
+    /// in plan.
+    pub sideways: Option<f64>,
 }
 
 /// Where the magnitude of a load came from.
@@ -121,6 +145,10 @@ pub enum MagnitudeFrom {
     Label,
     /// An attribute of its INSERT.
     Attribute,
+    /// The extended data of its entity.
+    ExtendedData,
+    /// The length of its arrow by the force scale of the job.
+    ArrowLength,
     /// `[loads] unlabelled` of the job.
     Job,
     /// No figures anywhere: all loads are equal.
@@ -129,8 +157,8 @@ pub enum MagnitudeFrom {
 
 /// Builds the model of a drawing.
 ///
-/// Loads that stand for a point act straight down (a negative figure: straight up) and belong to the span over which
-/// they stand; a load over the common springing of two spans belongs to the left one.
+/// Loads drawn as a point act straight down (a negative figure: straight up), those drawn as an arrow along it. They belong to
+/// the span over which they act; a load over the common springing of two spans belongs to the left one.
 ///
 /// # Errors
 /// When the axis cannot be told ([`chain::chains`]) or the loads cannot ([`loads::loads`]).
@@ -140,15 +168,32 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     let mut spans = spans(drawing, &mut notes)?;
     hinges(drawing, &mut spans, settings.depth, &mut notes);
     let road = traffic::road(&drawing.road, metres, &mut notes)?;
-    let (loads, forces) = loads::loads(&drawing.points, &drawing.texts, settings, metres, &mut notes)?;
+    let on_layers =
+        loads::OnLayers { points: &drawing.points, strokes: &drawing.strokes, texts: &drawing.texts };
+    let distance = |p: Point| {
+        let p = (p.to_vec2() * metres).to_point();
+        spans.iter().map(|s| s.axis.nearest(p).1).fold(f64::INFINITY, f64::min)
+    };
+    let loads::Loaded { mut loads, lines, forces } =
+        loads::loads(on_layers, settings, metres, &distance, &mut notes)?;
+    posts::carry(&mut loads, &drawing.posts, &spans, settings.depth, metres, &mut notes);
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
         source: load.source.clone(),
         label: load.label.clone(),
         at: load.at,
-        force: -load.force.y,
+        force: if load.force.x.abs() > 0.0 { load.force.hypot() } else { -load.force.y },
     }));
-    let bare = |s: &&Span| s.loads.is_empty() && !settings.weighs;
+    let reach: Vec<(f64, f64)> = spans.iter().map(|s| chain::across(&s.axis)).collect();
+    for (span, lines) in spans.iter_mut().zip(line_loads::share_out(&lines, &reach, &mut notes)) {
+        span.line_loads = lines;
+    }
+    plan::sideways(&mut spans, &drawing.plan, drawing.plan_of_rib.map(|y| y * metres), metres, &mut notes);
+    let (dimensions, by_hand) = dimensions::measured(&drawing.dimensions, &spans, settings.depth, metres);
+    if !by_hand.is_empty() {
+        notes.push(Note::Drawn(Drawn::TextsByHand { sources: by_hand }));
+    }
+    let bare = |s: &&Span| s.loads.is_empty() && s.line_loads.is_empty() && !settings.weighs;
     notes.extend(spans.iter().filter(bare).map(|s| Note::NoLoads { span: s.name.clone() }));
     Ok(Model {
         spans,
@@ -157,6 +202,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
         off_span,
         areas: Vec::new(),
         outlines: (drawing.areas.clone(), metres),
+        dimensions,
         notes,
     })
 }
@@ -203,6 +249,7 @@ fn spans(drawing: &Drawing, notes: &mut Vec<Note>) -> Result<Vec<Span>, Refusal>
                 ring: Some(ring),
                 hinges: Vec::new(),
                 loads: Vec::new(),
+                line_loads: Vec::new(),
             });
         }
     } else {
@@ -239,6 +286,7 @@ fn spans(drawing: &Drawing, notes: &mut Vec<Note>) -> Result<Vec<Span>, Refusal>
                 ring,
                 hinges: Vec::new(),
                 loads: Vec::new(),
+                line_loads: Vec::new(),
             });
         }
     }

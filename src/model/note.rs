@@ -1,5 +1,6 @@
 //! What was noticed while the model was built: facts, worded elsewhere.
 
+use super::drawn::Drawn;
 use super::figures::NoFigure;
 use crate::drawing::Source;
 use crate::geometry::Point;
@@ -103,6 +104,8 @@ pub enum Note {
         /// The mark kept.
         kept: Source,
     },
+    /// Something about loads as they are drawn.
+    Drawn(Drawn),
     /// No figure anywhere: all loads are equal, and forces are multiples of one of them.
     LoadsEqual {
         /// How many loads there are.

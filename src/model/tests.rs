@@ -34,7 +34,13 @@ fn parabola(x: f64) -> Vec<(f64, f64)> {
 }
 
 fn point(handle: usize, x: f64, y: f64) -> PointLike {
-    PointLike { source: source("POINT", handle), at: Point::new(x, y), z: 0.0, attributes: Vec::new() }
+    PointLike {
+        source: source("POINT", handle),
+        at: Point::new(x, y),
+        z: 0.0,
+        attributes: Vec::new(),
+        extended: Vec::new(),
+    }
 }
 
 fn text(handle: usize, x: f64, y: f64, says: &str) -> Text {
@@ -63,6 +69,12 @@ fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawin
         load_layers: vec!["L".into()],
         axis,
         points,
+        strokes: Vec::new(),
+        posts: Vec::new(),
+        plan: Vec::new(),
+        plan_of_rib: None,
+        dimensions: Vec::new(),
+        title: crate::drawing::Title::default(),
         texts,
         notes: Vec::new(),
     }

@@ -124,8 +124,15 @@ mod tests {
     fn a_half_ring_has_the_centroid_of_the_books() {
         let arc = Segment::Arc { centre: Point::ORIGIN, radius: 5.0, start_angle: PI, sweep: -PI };
         let axis = Path::new([arc]).unwrap();
-        let span =
-            Span { name: String::new(), axis, sources: vec![], ring: None, hinges: vec![], loads: vec![] };
+        let span = Span {
+            name: String::new(),
+            axis,
+            sources: vec![],
+            ring: None,
+            hinges: vec![],
+            loads: vec![],
+            line_loads: vec![],
+        };
         let depth = depths(&span, Some(RibDepth::Constant(0.6))).unwrap();
         let one = pieces(&span, &depth, &[]);
         let (r, big) = (4.7_f64, 5.3_f64);

@@ -7,7 +7,7 @@ use std::path::Path;
 use crate::drawing::{Reason, Role};
 use crate::flow::{self, Environment, Listing};
 use crate::job::Job;
-use crate::outcome::{MagnitudeFrom, Run};
+use crate::outcome::{MagnitudeFrom, Run, Sense};
 use crate::refusal::Refusal;
 use crate::units::ForceUnit;
 use crate::write::text::plain;
@@ -88,6 +88,20 @@ fn text(drawing: &Path, listing: &Listing, run: &Run) -> String {
     add("\n[limits]");
     add("# Without a limit nothing is judged, and the result is headed SHAPE ONLY, NOT CHECKED.");
     add(&entry("# offset", "0.05", "m, largest offset of the line of thrust from the axis: an example"));
+    let senses: Vec<Sense> = run.spans.iter().flat_map(|s| &s.loads).filter_map(|l| l.sense).collect();
+    let down = senses.iter().filter(|s| **s == Sense::Downward).count();
+    let toward = senses.iter().filter(|s| **s == Sense::TowardRib).count();
+    if down + toward > 0 {
+        add("\n[accept]");
+        add(&entry(
+            "assumed",
+            "[\"sense\"]",
+            &format!(
+                "check: {} lines have no arrowhead; {down} act downward, {toward} toward the rib",
+                down + toward
+            ),
+        ));
+    }
     if let Some(error) = &run.error {
         add(&format!("\n# As it stands the drawing is refused: {}", plain(&error.to_string())));
     }
@@ -109,9 +123,17 @@ fn layers(add: &mut impl FnMut(&str), listing: &Listing, role: Role, words: &str
     let taken = match (&listing.taken, role) {
         (Ok((axis, _)), Role::Axis) => axis.clone(),
         (Ok((_, loads)), Role::Loads) => loads.clone(),
-        (Ok(_), Role::Intrados | Role::Extrados | Role::Hinges | Role::Road | Role::Areas) | (Err(_), _) => {
-            Vec::new()
-        }
+        (
+            Ok(_),
+            Role::Intrados
+            | Role::Extrados
+            | Role::Hinges
+            | Role::Road
+            | Role::Posts
+            | Role::Plan
+            | Role::Areas,
+        )
+        | (Err(_), _) => Vec::new(),
     };
     let value = |names: &[String]| match names {
         [one] => quoted(one),
@@ -168,7 +190,7 @@ fn loads(add: &mut impl FnMut(&str), run: &Run) {
 
 /// The unit of force that a label ends with.
 fn unit_of(label: &str) -> Option<ForceUnit> {
-    let words = label.split('(').next().unwrap_or_default().trim_end();
+    let words = label.split(['(', '/']).next().unwrap_or_default().trim_end();
     ForceUnit::parse(words.rsplit(|c: char| !c.is_alphabetic()).next().unwrap_or_default())
 }
 
@@ -185,6 +207,7 @@ mod tests {
             ("85", None),
             ("P = 85 ", None),
             ("", None),
+            ("g = 12 kN/m", Some(ForceUnit::KN)),
             ("橋 5 橋", None),
         ] {
             assert_eq!(unit_of(label), unit, "{label}");

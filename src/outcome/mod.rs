@@ -214,6 +214,29 @@ pub enum MagnitudeFrom {
     Area,
 }
 
+/// What tells the sense of a load drawn as a line. A closed list.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+pub enum Sense {
+    /// Its drawn arrowhead.
+    Arrowhead,
+    /// Inferred: within 30° of the vertical, so downward.
+    Downward,
+    /// Inferred: otherwise toward the rib.
+    TowardRib,
+}
+
+impl Sense {
+    /// In words.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::Arrowhead => "sense from its arrowhead",
+            Self::Downward => "taken to act downward",
+            Self::TowardRib => "taken to act toward the rib",
+        }
+    }
+}
+
 /// One load.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize, JsonSchema)]
 pub struct Load {
@@ -233,6 +256,24 @@ pub struct Load {
     pub magnitude_from: MagnitudeFrom,
     /// The label text it was read from, as drawn.
     pub text: Option<String>,
+    /// Of a piece of a line load its size per metre of plan, downward positive; null for a single load.
+    #[serde(default)]
+    pub per_length: Option<f64>,
+    /// Of a piece of a line load the abscissae of its ends.
+    #[serde(default)]
+    pub over: Option<[f64; 2]>,
+    /// The application whose extended data say how large it is.
+    #[serde(default)]
+    pub application: Option<String>,
+    /// The post that it comes down.
+    #[serde(default)]
+    pub post: Option<Source>,
+    /// How far it stands to the left of the plane of the rib, looking in the direction of x, where the roadway is drawn in plan.
+    #[serde(default)]
+    pub sideways: Option<f64>,
+    /// What tells its sense, where it is drawn as a line; null for a point, which acts downward.
+    #[serde(default)]
+    pub sense: Option<Sense>,
 }
 
 /// One load case.

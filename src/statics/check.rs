@@ -163,6 +163,16 @@ impl<'a> Weights<'a> {
                 }
             }
         }
+        // A load per metre of plan anew from its own ends: the part of it over the stretch, midway between its ends.
+        let (a, b) = (span.drawn(piece.joint(piece.s0, 0).at).x, span.drawn(piece.joint(until, 0).at).x);
+        for line in &problem.line_loads {
+            let (from, to) = (a.max(line.from), b.min(line.to));
+            if to > from {
+                let here = line.down * (to - from);
+                weight += here;
+                about += here * f64::midpoint(from, to);
+            }
+        }
         (weight, about)
     }
 }

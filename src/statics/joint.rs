@@ -46,19 +46,21 @@ impl LoadSets {
     }
 }
 
-/// Weight along the axis of one set: per length on the axis itself, and per area of the ring.
+/// Weight along the axis of one set: per length on the axis itself, per area of the ring, and per length of plan.
 #[derive(Debug, Clone, Copy, Default)]
 pub(super) struct Weight {
     pub on_axis: f64,
     pub of_ring: f64,
+    /// Negative for uplift.
+    pub on_plan: f64,
 }
 
 impl Weight {
     pub fn is_zero(&self) -> bool {
-        self.on_axis <= 0.0 && self.of_ring <= 0.0
+        self.on_axis <= 0.0 && self.of_ring <= 0.0 && self.on_plan.abs() <= 0.0
     }
 
-    /// Per length of axis at a joint of depth `d`.
+    /// Per length of axis at a joint of depth `d`, of what does not depend on the slope of the axis.
     pub fn at(&self, d: f64) -> f64 {
         self.on_axis + self.of_ring * d
     }

@@ -108,6 +108,9 @@ impl Sheet<'_> {
             joints.push(span.joint_at(e.foot, true));
             joints.push(span.joint_at(e.foot, false));
         }
+        for l in &span.laid {
+            joints.extend([span.joint_at(l.s0, true), span.joint_at(l.s1, true)]);
+        }
         joints.extend((1..EVEN).map(|k| span.joint_at(f64::from(k) / f64::from(EVEN), true)));
         // The place alone: the joint may be one without depth.
         joints.extend(worst.map(|p| span.pieces[p.joint.piece].joint(p.joint.s, p.joint.piece)));

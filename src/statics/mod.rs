@@ -12,6 +12,7 @@ mod factors;
 mod joint;
 mod limit;
 mod line;
+mod line_load;
 mod peaks;
 mod piece;
 mod place;
@@ -46,6 +47,20 @@ pub struct Force {
     pub at: Point,
     /// Components to the right and upward, kN.
     pub force: Vec2,
+}
+
+/// A uniform weight per metre of plan over a part of it, as of a deck or a crowd. It enters the axis where a vertical from above
+/// meets it first.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LineLoad {
+    /// Abscissa where it begins, m.
+    pub from: f64,
+    /// Abscissa where it ends, right of `from`, m.
+    pub to: f64,
+    /// Weight per metre of plan, downward positive, kN/m.
+    pub down: f64,
+    /// Whether a load factor multiplies it.
+    pub varies: bool,
 }
 
 /// Depth of the rib or ring along the axis, measured along the joint, m.
@@ -99,6 +114,8 @@ pub struct Problem {
     pub axis: Path,
     /// Point forces, in any order.
     pub forces: Vec<Force>,
+    /// Uniform loads per metre of plan, in any order. What reaches beyond the axis does not act on it.
+    pub line_loads: Vec<LineLoad>,
     /// Uniform downward weight per metre of axis, acting on the axis, kN/m; 0 for a weightless rib.
     pub weight_on_axis: f64,
     /// Unit weight times width of the ring, kN per square metre of elevation: the weight of its true pieces between
@@ -150,6 +167,7 @@ impl Problem {
         Self {
             axis,
             forces: Vec::new(),
+            line_loads: Vec::new(),
             weight_on_axis: 0.0,
             ring_weight: 0.0,
             entering: Vec::new(),

@@ -47,8 +47,10 @@ impl Piece {
                 let density = weight.at(self.ring.0);
                 (density * d, density * integral + weight.of_ring * shift)
             };
-            set.fy -= force;
-            set.moment -= moment;
+            // A weight per length of plan has the integral of x over the plan for its moment.
+            let plan = at.x - self.start.x;
+            set.fy -= force + weight.on_plan * plan;
+            set.moment -= moment + weight.on_plan * plan * f64::midpoint(at.x, self.start.x);
         }
         Joint { s, at, tangent: t * turn.cos + n * turn.sin, depth, loads, piece }
     }
@@ -76,7 +78,8 @@ impl Piece {
     /// Weight per length of axis at a joint of this piece.
     pub fn weight_at(&self, joint: &Joint, r: &Unknowns) -> f64 {
         let depth = self.ring_depth(joint.s);
-        self.weight[0].at(depth) + r[3] * self.weight[1].at(depth)
+        let on_plan = self.weight[0].on_plan + r[3] * self.weight[1].on_plan;
+        self.weight[0].at(depth) + r[3] * self.weight[1].at(depth) + on_plan * joint.tangent.x
     }
 
     /// Depth of the ring that weighs at length `s` of the axis.
@@ -92,8 +95,9 @@ impl Piece {
 
     /// Where the line of action of the weight of a joint crosses the level of its axis point, right of it.
     pub fn weight_offset(&self, joint: &Joint, r: &Unknowns) -> f64 {
-        let weight = self.weight_at(joint, r);
-        if weight > 0.0 { self.weight_arm(joint, r) / weight } else { 0.0 }
+        let (weight, arm) = (self.weight_at(joint, r), self.weight_arm(joint, r));
+        // Where uplift takes away what the ring weighs, no place is meant.
+        if arm.abs() < weight.abs() * self.ring_depth(joint.s) { arm / weight } else { 0.0 }
     }
 
     /// Rate of change of `N` along the axis at a joint of this piece.

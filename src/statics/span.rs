@@ -5,6 +5,7 @@
 //! National grid coordinates, millimetres and meganewtons therefore all give the same arithmetic.
 
 use super::joint::{Affine, Entered, Joint, LoadSets, Loads, Unknowns, Weight, moment_row};
+use super::line_load::{self, Laid};
 use super::piece::Piece;
 use super::place::{check_input, depth_at, depth_table, mean, place};
 use super::{Problem, Reaction, Unsolved};
@@ -36,6 +37,8 @@ pub(super) struct Span {
     pub crushing: f64,
     /// Weight along the axis that stays, and weight that the load factor multiplies.
     pub weight: [Weight; 2],
+    /// Where line loads lie on the axis.
+    pub laid: Vec<Laid>,
 }
 
 impl Span {
@@ -75,16 +78,19 @@ impl Span {
         }
         let depth = depth_table(problem.depth.as_ref(), length, crown.0);
         let total: f64 = entered.iter().map(|e| e.force.hypot()).sum();
-        let load =
-            live + total + (problem.weight_on_axis + problem.ring_weight * mean(&depth) * length) * length;
+        let laid = line_load::lay(&path, problem, origin, length)?;
+        let lines: f64 = laid.iter().map(|l| l.down.abs() * l.plan).sum();
+        let own = (problem.weight_on_axis + problem.ring_weight * mean(&depth) * length) * length;
+        let load = live + total + lines + own;
         let inside = |e: &&Entered| {
             e.force.hypot() > 0.0 && e.foot > tolerance::ONE_JOINT && e.foot < 1.0 - tolerance::ONE_JOINT
         };
         let weight = Weight {
             on_axis: problem.weight_on_axis * length / load,
             of_ring: problem.ring_weight * length * length / load,
+            on_plan: 0.0,
         };
-        let bare = problem.weight_on_axis + problem.ring_weight <= 0.0;
+        let bare = problem.weight_on_axis + problem.ring_weight + lines <= 0.0;
         if live <= 0.0 && bare && entered.iter().find(inside).is_none() {
             return Err(Unsolved::NoLoad);
         }
@@ -105,9 +111,13 @@ impl Span {
             has_depth: problem.depth.is_some(),
             crushing: problem.strength.map_or(0.0, |f| load / (2.0 * f * length)),
             weight,
+            laid,
         };
         for e in &mut span.entered {
             e.force /= load;
+        }
+        for l in &mut span.laid {
+            l.down /= load;
         }
         span.cut(&depth);
         // Measured again on the pieces, which keep the digits of hardly curved arcs.
@@ -162,6 +172,7 @@ impl Span {
             let from = self.entered.partition_point(|e| e.foot <= s0);
             cuts.extend(self.entered[from..].iter().map(|e| e.foot).take_while(|&s| s < s1).filter(inner));
             cuts.extend(depth.iter().map(|d| d.0).filter(inner));
+            cuts.extend(self.laid.iter().flat_map(|l| [l.s0, l.s1]).filter(inner));
             if self.weight.iter().any(|w| w.of_ring > 0.0) {
                 // Short enough for the weight by Gauss.
                 let turn = (whole.curvature * (s1 - s0)).abs();
@@ -181,7 +192,7 @@ impl Span {
                     start: joint.at,
                     tangent: joint.tangent,
                     before: loads,
-                    weight: self.weight,
+                    weight: line_load::add(self.weight, &self.laid, f64::midpoint(a, b)),
                     ..whole
                 };
                 let middle = depth_at(depth, f64::midpoint(a, b));

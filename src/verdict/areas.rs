@@ -78,6 +78,12 @@ fn load(weighed: &Weighed, number: usize, at: Point, force: Vec2) -> Load {
         source: super::source(&weighed.sources.first().cloned().unwrap_or_default()),
         magnitude_from: MagnitudeFrom::Area,
         text: None,
+        per_length: None,
+        over: None,
+        application: None,
+        post: None,
+        sideways: None,
+        sense: None,
     }
 }
 

@@ -3,11 +3,14 @@
 
 mod accept;
 mod areas;
+mod dimensions;
+mod drawn;
 mod limits;
 mod noise;
 mod notes;
 mod piers;
 mod ranges;
+mod sideways;
 mod slender;
 mod spans;
 pub mod traffic;
@@ -125,6 +128,14 @@ pub fn judge(
             findings.extend(about.into_iter().map(|f| Finding { case: case.clone(), ..f }));
         }
     }
+    for span in &model.spans {
+        for case in cases {
+            let mut about = Vec::new();
+            sideways::couples(span, case, &units.force, &mut about);
+            findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
+        }
+    }
+    dimensions::judge(&model.dimensions, settings, &mut findings);
     for (i, case) in cases.iter().enumerate() {
         let pushes: Vec<Option<&Pushes>> =
             extras.iter().map(|of| of.get(i).and_then(|e| e.pushes.as_ref())).collect();

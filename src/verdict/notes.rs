@@ -1,6 +1,6 @@
 //! What reader, builder and statics noticed, in words.
 
-use super::{With, length, note, spans};
+use super::{With, drawn, length, note, spans};
 use crate::drawing;
 use crate::drawing::{Doubt, FileNote, Reason, Role};
 use crate::job::Support;
@@ -76,6 +76,30 @@ fn drawing_note(n: &drawing::Note) -> Finding {
             format!(
                 "none of the {viewports} viewports of the layouts shows the whole axis ({part} show a part): the marks are seen \
                  in model space"
+            ),
+        ),
+        Note::TitleMissing { key, pattern } => note(
+            Check::PassedOver,
+            format!("no title block has an attribute that [title] {key} = \"{pattern}\" names"),
+        )
+        .remedy("name the tag of the attribute as the drawing does"),
+        Note::TitleUnclear { what, key, values } => note(
+            Check::PassedOver,
+            format!("title blocks say different things for the {what} ({}), and none was taken", values.join(", ")),
+        )
+        .remedy(format!("name the tag of the attribute: [title] {key}")),
+        Note::NotToScale { source, text, count } => {
+            let others = if *count > 1 { format!(" and {} more texts", count - 1) } else { String::new() };
+            note(Check::Dimension, format!("\"{text}\"{others} say that the drawing, or a part of it, is not to scale"))
+                .entity(source)
+                .uncheck()
+                .remedy("see to it that the arch is drawn to scale, and remove the note or move it into a block")
+        }
+        Note::SurroundingsNotRead => note(
+            Check::PassedOver,
+            format!(
+                "the drawing is larger than {} MB: title block, dimensions and notes about the scale were not looked for",
+                tolerance::SURROUNDINGS >> 20
             ),
         ),
         Note::CurveFitted { source, pieces } => note(
@@ -167,6 +191,8 @@ fn role_name(role: Role) -> &'static str {
         Role::Extrados => "extrados",
         Role::Hinges => "hinges",
         Role::Road => "road",
+        Role::Posts => "posts",
+        Role::Plan => "plan of the roadway",
     }
 }
 
@@ -266,6 +292,7 @@ fn model_note(n: &model::Note, units: &Units) -> Finding {
             format!("{} stands on {} and was counted once", source.named(), kept.named()),
         )
         .entity(source),
+        Note::Drawn(n) => drawn::finding(n),
         Note::LoadsEqual { count } => note(
             Check::Loads,
             format!("none of the {count} loads has a figure: all were taken as equal, and forces are multiples of one of them"),
@@ -440,7 +467,7 @@ fn uneven_spacing(a: &Analysis, span: &Span) -> Option<(f64, f64)> {
     };
     uneven(a.order.iter().map(|p| p.foot).collect())?;
     let weight = [MagnitudeFrom::SelfWeight, MagnitudeFrom::Area];
-    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from));
+    let drawn = span.loads.iter().filter(|l| !weight.contains(&l.magnitude_from) && l.over.is_none());
     uneven(drawn.map(|l| l.at[0]).collect())
 }
 

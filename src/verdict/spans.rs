@@ -132,14 +132,76 @@ fn listed(model: &Model, span: &model::Span, analysis: &Analysis, settings: &Set
                         .unwrap_or_else(|| super::source(&Default::default())),
                     magnitude_from: outcome::MagnitudeFrom::SelfWeight,
                     text: None,
+                    per_length: None,
+                    over: None,
+                    application: None,
+                    sense: None,
+                    post: None,
+                    sideways: None,
                 },
             ));
         }
     }
+    all.extend(strips(span, &all, analysis.crown.x));
     all.extend(super::areas::listed(model, span, &bounds));
     all.sort_by(|a, b| a.0.total_cmp(&b.0));
     let letters = outcome::bow::spaces(all.len());
     all.into_iter().zip(letters).map(|((_, load), space)| Load { space, ..load }).collect()
+}
+
+/// The line loads in pieces between the feet of the single loads, cut at the crown too, each with the length along the axis under
+/// its middle. The resultants of pieces leave the moments at their ends as they are, so a hand check at the crown holds.
+fn strips(span: &model::Span, single: &[(f64, Load)], crown: f64) -> Vec<(f64, Load)> {
+    let axis = &span.axis;
+    let hair = axis.length() * tolerance::ONE_JOINT;
+    // In the middle of a piece of the ring there is no joint.
+    let feet = single.iter().filter(|l| l.1.magnitude_from != outcome::MagnitudeFrom::SelfWeight);
+    let mut cuts: Vec<f64> = feet.map(|l| axis.point_at(l.0).x).collect();
+    cuts.sort_by(f64::total_cmp);
+    let mut found = Vec::new();
+    for line in &span.line_loads {
+        let (left, right) = (line.from.x, line.to.x);
+        let mut ends: Vec<f64> =
+            cuts.iter().copied().filter(|x| *x > left + hair && *x < right - hair).collect();
+        if ends.is_empty() {
+            let part = |i: u32| left + (right - left) * f64::from(i) / f64::from(BARE_PIECES);
+            ends = (1..BARE_PIECES).map(part).collect();
+        }
+        ends.extend([left, right]);
+        ends.extend(Some(crown).filter(|x| *x > left + hair && *x < right - hair));
+        ends.sort_by(f64::total_cmp);
+        ends.dedup_by(|b, a| *b - *a <= hair);
+        for (i, pair) in ends.windows(2).enumerate() {
+            let Some(piece) = line.between(pair[0], pair[1]) else {
+                continue;
+            };
+            let at = piece.from.midpoint(piece.to);
+            // Where the axis leans over, the uppermost crossing carries.
+            let foot = axis
+                .crossings_of_vertical(at.x)
+                .into_iter()
+                .max_by(|a, b| axis.point_at(*a).y.total_cmp(&axis.point_at(*b).y))
+                .unwrap_or(0.0);
+            let load = Load {
+                label: format!("{}/{}", line.label, i + 1),
+                space: Default::default(),
+                at: xy(at),
+                force: [0.0, -piece.sum()],
+                set: line.set.clone(),
+                source: super::source(&line.source),
+                magnitude_from: outcome::MagnitudeFrom::Label,
+                text: Some(line.text.clone()),
+                per_length: Some(line.down),
+                over: Some([piece.from.x, piece.to.x]),
+                application: None,
+                sense: None,
+                post: None,
+                sideways: None,
+            };
+            found.push((foot, load));
+        }
+    }
+    found
 }
 
 fn load(load: &model::Load) -> Load {
@@ -153,10 +215,23 @@ fn load(load: &model::Load) -> Load {
         magnitude_from: match load.magnitude_from {
             model::MagnitudeFrom::Label => outcome::MagnitudeFrom::Label,
             model::MagnitudeFrom::Attribute => outcome::MagnitudeFrom::Attribute,
+            model::MagnitudeFrom::ExtendedData => outcome::MagnitudeFrom::ExtendedData,
+            model::MagnitudeFrom::ArrowLength => outcome::MagnitudeFrom::ArrowLength,
             model::MagnitudeFrom::Job => outcome::MagnitudeFrom::Job,
             model::MagnitudeFrom::Equal => outcome::MagnitudeFrom::Equal,
         },
         text: load.text.clone(),
+        per_length: None,
+        over: None,
+        application: load.application.clone(),
+        post: load.post.as_ref().map(super::source),
+        sideways: load.sideways,
+        sense: match load.sense {
+            model::Sense::Point => None,
+            model::Sense::Head => Some(outcome::Sense::Arrowhead),
+            model::Sense::Down => Some(outcome::Sense::Downward),
+            model::Sense::Rib => Some(outcome::Sense::TowardRib),
+        },
     }
 }
 

@@ -190,6 +190,12 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
                         MagnitudeFrom::Equal
                     },
                     text: Some(format!("P{} = {p} kN", j + 1)),
+                    per_length: None,
+                    over: None,
+                    application: None,
+                    sense: None,
+                    post: None,
+                    sideways: None,
                 }
             })
             .collect();

@@ -413,6 +413,18 @@ fn load_words(run: &Run, load: &Load) -> String {
     if let Some(text) = &load.text {
         words.push_str(&format!(" \"{text}\""));
     }
+    if let Some(application) = &load.application {
+        words.push_str(&format!(" of {application}"));
+    }
+    if let Some(post) = &load.post {
+        words.push_str(&format!(", down the post {}", post.handle.as_deref().unwrap_or(&post.kind)));
+    }
+    if let Some(sideways) = load.sideways {
+        words.push_str(&format!(", {} beside the rib", metres(sideways)));
+    }
+    if let Some(sense) = load.sense {
+        words.push_str(&format!(", {}", sense.words()));
+    }
     words
 }
 

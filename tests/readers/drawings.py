@@ -32,9 +32,10 @@ LOADS = "Loads é"
 
 
 def fixtures(folder):
-    job = (folder / "good" / "thrustmark.toml").read_text()
-    for path in sorted((folder / "good").glob("*.dxf")):
-        yield "fixtures", path.stem, path.read_bytes(), job.replace(path.name, "drawing.dxf")
+    for name in ("good", "drawn"):
+        job = (folder / name / "thrustmark.toml").read_text()
+        for path in sorted((folder / name).glob("*.dxf")):
+            yield "fixtures", path.stem, path.read_bytes(), job.replace(path.name, "drawing.dxf")
 
 
 def corpus(shared):

@@ -9,7 +9,15 @@ use crate::geometry::{Path, Point, Segment, Vec2};
 use crate::model::Span;
 
 fn span(axis: Path) -> Span {
-    Span { name: String::new(), axis, sources: vec![], ring: None, hinges: vec![], loads: vec![] }
+    Span {
+        name: String::new(),
+        axis,
+        sources: vec![],
+        ring: None,
+        hinges: vec![],
+        loads: vec![],
+        line_loads: vec![],
+    }
 }
 
 /// A ring of radius 6.25 m about (0, −3.75), span 10, rise 2.5, its extrados 0.3 m outside.

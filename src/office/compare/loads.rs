@@ -34,13 +34,13 @@ pub fn loads(old: &Span, new: &Span, units: &Units, found: &mut Vec<Change>) {
     }
 }
 
-/// Loads that somebody drew; pieces of weighed parts are compared by their sums.
+/// Loads that somebody drew; pieces of weighed parts and of line loads are compared by their sums.
 fn drawn(span: &Span) -> Vec<&Load> {
     span.loads.iter().filter(|l| !weighed(l)).collect()
 }
 
 fn weighed(load: &Load) -> bool {
-    matches!(load.magnitude_from, MagnitudeFrom::SelfWeight | MagnitudeFrom::Area)
+    matches!(load.magnitude_from, MagnitudeFrom::SelfWeight | MagnitudeFrom::Area) || load.over.is_some()
 }
 
 fn weights(old: &Span, new: &Span, units: &Units, found: &mut Vec<Change>) {

@@ -146,7 +146,11 @@ impl Prepared<'_> {
             let all = piece.before.times(1.0);
             piece.before = LoadSets { fixed: all, varying: Loads::default() };
             let [a, b] = piece.weight;
-            let sum = Weight { on_axis: a.on_axis + b.on_axis, of_ring: a.of_ring + b.of_ring };
+            let sum = Weight {
+                on_axis: a.on_axis + b.on_axis,
+                of_ring: a.of_ring + b.of_ring,
+                on_plan: a.on_plan + b.on_plan,
+            };
             piece.weight = [sum, Weight::default()];
         }
         span

@@ -264,9 +264,10 @@ fn loads_words(run: &Run, spans: &[Shown]) -> String {
     let (x, y) = loads.iter().fold((0.0, 0.0), |(x, y), l| (x + l.force[0], y + l.force[1]));
     let pieces = |what: MagnitudeFrom| loads.iter().filter(|l| l.magnitude_from == what).count();
     let (own, strips) = (pieces(MagnitudeFrom::SelfWeight), pieces(MagnitudeFrom::Area));
-    let drawn = loads.len() - own - strips;
+    let lines = loads.iter().filter(|l| l.over.is_some()).count();
+    let drawn = loads.len() - own - strips - lines;
     let mut counts = vec![format!("{drawn} load{} as drawn", if drawn == 1 { "" } else { "s" })];
-    for (n, of) in [(own, "self weight"), (strips, "areas")] {
+    for (n, of) in [(own, "self weight"), (strips, "areas"), (lines, "line loads")] {
         if n > 0 {
             counts.push(format!("{n} pieces of {of}"));
         }

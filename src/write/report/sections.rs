@@ -220,16 +220,24 @@ fn from(load: &Load) -> String {
     let from = match load.magnitude_from {
         MagnitudeFrom::Label => "label",
         MagnitudeFrom::Attribute => "attribute",
-        MagnitudeFrom::ExtendedData => "extended data",
+        MagnitudeFrom::ExtendedData => {
+            return format!(
+                "extended data \u{201c}{}\u{201d} of {}{}",
+                load.text.as_deref().unwrap_or_default(),
+                load.application.as_deref().unwrap_or_default(),
+                load.sense.map_or_else(String::new, |s| format!(", {}", s.words()))
+            );
+        }
         MagnitudeFrom::ArrowLength => "length of its arrow",
         MagnitudeFrom::Job => "job file",
         MagnitudeFrom::Equal => "taken as equal",
         MagnitudeFrom::SelfWeight => "self weight",
         MagnitudeFrom::Area => "weighed area",
     };
+    let sense = load.sense.map_or_else(String::new, |s| format!(", {}", s.words()));
     match &load.text {
-        Some(text) => format!("{from} \u{201c}{text}\u{201d}"),
-        None => from.into(),
+        Some(text) => format!("{from} \u{201c}{text}\u{201d}{sense}"),
+        None => format!("{from}{sense}"),
     }
 }
 
