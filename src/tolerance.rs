@@ -353,6 +353,13 @@ pub const ONE_POST: f64 = 1e-6;
 /// Least cosine of the slope of a road beyond its drawn end. Larger: true slopes are flattened; smaller: a road drawn with
 /// an upright end runs to infinity.
 pub const STEEP_ROAD: f64 = 0.1;
+/// How far the rise of a suggested axis may miss that of the drawn one, relative to the span. Larger: the suggestion is not
+/// the funicular of the stated rise; smaller: leaning loads take more steps than rounding allows.
+pub const SUGGESTED_RISE: f64 = 1e-10;
+
+/// Relative accuracy of the least depth that meets the limits. Larger: more depth is suggested than is needed; smaller: more
+/// runs of the whole check.
+pub const SUGGESTED_DEPTH: f64 = 1e-3;
 /// Greatest angle of a line from the vertical at which a load drawn without an arrowhead acts downward, radians (30°). Larger:
 /// raking pushes turn into weights; smaller: leaning posts of a deck do not act downward.
 pub const NEARLY_UPRIGHT: f64 = std::f64::consts::FRAC_PI_6;

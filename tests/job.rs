@@ -183,8 +183,6 @@ fn what_is_not_built_is_refused_by_name() {
         ("[layers]\njoints = \"I\"", "layers.joints"),
         ("[rib]\njoint_loss = 0.01", "rib.joint_loss"),
         ("[[area]]\nname = \"fill\"\nlevel = 3\nunit_weight = 20\npassive = 3", "area.passive"),
-        ("[mark]\nsuggest = true", "mark.suggest"),
-        ("[report]\nunits = \"us\"", "report.units"),
         ("[[sheet]]\nmatch = \"b*\"\nrib.joint_loss = 2", "rib.joint_loss"),
     ] {
         let refusal = refusal(text);

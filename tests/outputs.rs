@@ -33,7 +33,7 @@ const RIB: &str = "open-spandrel-rib.dxf";
 #[test]
 fn all_outputs_in_one_go_and_twice_the_same() {
     let office = office();
-    let names = ["r.html", "p.png", "s.csv", "j.xml", "r.json"];
+    let names = ["r.html", "p.png", "s.csv", "j.xml", "r.json", "r.pdf"];
     let go = || {
         let output = run(
             office.path(),
@@ -53,12 +53,67 @@ fn all_outputs_in_one_go_and_twice_the_same() {
             ],
         );
         assert_eq!(output.status.code(), Some(0), "{}", told(&output));
+        let output = run(office.path(), &["check", RIB, "--report", "r.pdf"]);
+        assert_eq!(output.status.code(), Some(0), "{}", told(&output));
         names.map(|name| fs::read(office.path().join(name)).unwrap())
     };
     let once = go();
     // What this program wrote it may replace; the same comes out again.
     assert_eq!(once, go());
     assert!(once[1].starts_with(b"\x89PNG\r\n"));
+    assert!(once[5].starts_with(b"%PDF-"));
+}
+
+/// The PDF as another program reads it: its text can be selected, its sheets are A4 and numbered. Needs poppler's tools.
+#[test]
+fn a_pdf_report_is_read_by_another_program() {
+    if Command::new("pdftotext").arg("-v").output().is_err() {
+        eprintln!("SKIPPED: there is no pdftotext");
+        return;
+    }
+    let office = office();
+    let output = run(office.path(), &["check", RIB, "masonry-ring.dxf", "--report", "r.pdf"]);
+    assert_eq!(output.status.code(), Some(0), "{}", told(&output));
+    let other = |program: &str, arguments: &[&str]| {
+        let output = Command::new(program).current_dir(office.path()).args(arguments).output().unwrap();
+        assert!(output.status.success() && output.stderr.is_empty(), "{}", told(&output));
+        String::from_utf8(output.stdout).unwrap()
+    };
+    let facts = other("pdfinfo", &["r.pdf"]);
+    let fact =
+        |name: &str| facts.lines().find_map(|l| l.strip_prefix(name)).unwrap_or_default().trim().to_owned();
+    assert!(fact("Page size:").contains("A4"), "{facts}");
+    assert_eq!(fact("Tagged:"), "yes");
+    assert_eq!(fact("JavaScript:"), "no");
+    assert!(fact("Creator:").starts_with("thrustmark"), "{facts}");
+    let count: usize = fact("Pages:").parse().unwrap();
+    let text = other("pdftotext", &["-layout", "r.pdf", "-"]);
+    let pages: Vec<&str> = text.split_terminator('\u{c}').collect();
+    assert_eq!(pages.len(), count);
+    for (i, page) in pages.iter().enumerate() {
+        assert!(page.contains(&format!("Page {} of {count}", i + 1)), "{page}");
+        assert!(page.contains("qualified engineer"), "the caution stands on every sheet");
+    }
+    for words in [
+        "Check of the line of thrust",
+        "open-spandrel-rib.dxf",
+        "masonry-ring.dxf",
+        "WITHIN THE STATED LIMITS",
+        "Loads, by Bow's letters",
+        "Hand check",
+        "Force polygon",
+        "Proof of optimality",
+        "Settings in force",
+        "Prepared by",
+        "Checked by",
+    ] {
+        assert!(text.contains(words), "{words}");
+    }
+    // Every figure of the loads is there, as in the results.
+    let json = run(office.path(), &["check", RIB, "--json", "-"]).stdout;
+    let json: serde_json::Value = serde_json::from_slice(&json).unwrap();
+    let sha256 = json["runs"][0]["drawing"]["sha256"].as_str().unwrap();
+    assert!(text.replace(['\n', ' '], "").contains(sha256));
 }
 
 #[test]
@@ -66,6 +121,7 @@ fn foreign_files_stay_without_force() {
     let office = office();
     for (option, name) in [
         ("--report", "r.html"),
+        ("--report", "r.pdf"),
         ("--picture", "p.svg"),
         ("--picture", "p.png"),
         ("--csv", "s.csv"),
@@ -88,7 +144,7 @@ fn foreign_files_stay_without_force() {
 fn forms_that_are_not_made_are_refused_by_name() {
     let office = office();
     for (option, name, word) in [
-        ("--report", "r.pdf", "r.pdf"),
+        ("--report", "r.txt", ".html and .pdf"),
         ("--picture", "p.jpg", ".svg and .png"),
         ("--picture", "p", ".svg and .png"),
     ] {

@@ -109,8 +109,8 @@ pub struct CheckArgs {
     #[arg(long, value_name = "FILE|-", value_parser = OsStringValueParser::new().map(JsonTarget::from))]
     pub json: Option<JsonTarget>,
 
-    /// Report to read, print on A4 and sign, one HTML file for all drawings
-    #[arg(long, value_name = "FILE.html")]
+    /// Report to read, print on A4 and sign, one HTML or PDF file for all drawings
+    #[arg(long, value_name = "FILE.html|FILE.pdf")]
     pub report: Option<PathBuf>,
 
     /// Picture of elevation, offset diagram and force polygon; with several drawings a folder for SVG pictures

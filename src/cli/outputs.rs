@@ -18,6 +18,9 @@ use crate::write::{csv, json, junit, report};
 /// Bytes at the head of a file that tell whether it is one of ours.
 const HEAD: u64 = 4096;
 
+/// Bytes of a PDF that are searched for its maker; ours are far smaller.
+const LARGEST_REPORT: u64 = 256 << 20;
+
 /// What a file is, by what stands at its head.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 enum Kind {
@@ -26,6 +29,7 @@ enum Kind {
     Csv,
     Junit,
     Report,
+    ReportPdf,
 }
 
 /// The outputs asked for.
@@ -54,11 +58,7 @@ impl<'a> Outputs<'a> {
             taken_once(&mut taken, target)?;
         }
         if let Some(target) = &args.report {
-            ends_with(
-                target,
-                &["html", "htm"],
-                "--report writes .html; .pdf is not made: print the page to PDF",
-            )?;
+            ends_with(target, &["html", "htm", "pdf"], "--report writes .html and .pdf")?;
         }
         for (target, kind) in outputs.files() {
             let ours = ours(kind);
@@ -70,7 +70,10 @@ impl<'a> Outputs<'a> {
 
     fn files(&self) -> impl Iterator<Item = (&Path, Kind)> {
         let args = self.args;
-        [(&args.csv, Kind::Csv), (&args.junit, Kind::Junit), (&args.report, Kind::Report)]
+        let is_pdf =
+            args.report.as_ref().and_then(|p| p.extension()).is_some_and(|e| e.eq_ignore_ascii_case("pdf"));
+        let report = if is_pdf { Kind::ReportPdf } else { Kind::Report };
+        [(&args.csv, Kind::Csv), (&args.junit, Kind::Junit), (&args.report, report)]
             .into_iter()
             .filter_map(|(path, kind)| path.as_deref().map(|p| (p, kind)))
             .chain(self.pictures.iter().map(|(path, kind)| (path.as_path(), *kind)))
@@ -91,6 +94,7 @@ impl<'a> Outputs<'a> {
                 Kind::Csv => csv::stations(document).into_bytes(),
                 Kind::Junit => junit::xml(document, &date).into_bytes(),
                 Kind::Report => report::html(document, &date).into_bytes(),
+                Kind::ReportPdf => report::pdf(document, &date)?,
                 Kind::Svg | Kind::Png => continue,
             };
             let ours = ours(kind);
@@ -187,6 +191,14 @@ fn may_replace<'a>(force: bool, ours: &'a dyn Fn(&Path) -> io::Result<bool>) -> 
     if force { Replace::Any } else { Replace::Ours(ours) }
 }
 
+/// Whether a PDF file names this program as its maker.
+fn is_our_pdf(path: &Path) -> io::Result<bool> {
+    let needle = format!("<xmp:CreatorTool>{} ", report::CREATOR);
+    let mut bytes = Vec::new();
+    File::open(path)?.take(LARGEST_REPORT).read_to_end(&mut bytes)?;
+    Ok(bytes.windows(needle.len()).any(|w| w == needle.as_bytes()))
+}
+
 /// Whether a file of this kind is one that this program wrote, or is empty.
 fn ours(kind: Kind) -> impl Fn(&Path) -> io::Result<bool> {
     move |path| {
@@ -199,6 +211,8 @@ fn ours(kind: Kind) -> impl Fn(&Path) -> io::Result<bool> {
             Kind::Csv => head.starts_with(csv::HEADER),
             Kind::Junit => head.contains(concat!("<testsuites name=\"", env!("CARGO_PKG_NAME"), "\"")),
             Kind::Report => head.contains(report::GENERATOR),
+            // The maker stands at the end of a PDF, where its table of contents is.
+            Kind::ReportPdf => head.is_empty() || head.starts_with("%PDF-") && is_our_pdf(path)?,
         })
     }
 }

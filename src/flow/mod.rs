@@ -6,6 +6,7 @@ mod piers;
 mod problem;
 mod ranges;
 mod sheet;
+mod suggest;
 mod traffic;
 mod unmark;
 
@@ -272,7 +273,8 @@ fn judged(
         extras: &extras,
         traffic: &traffic,
     };
-    let judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
+    let mut judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
+    suggest::add(&computed, settings, &mut judged, environment.today)?;
     Ok((drawing, judged))
 }
 

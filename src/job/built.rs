@@ -163,9 +163,9 @@ pub(super) const TABLES: &[(&str, &[(&str, Built)])] = &[
             ("until", All),
         ],
     ),
-    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", Later)]),
+    ("mark", &[("prefix", All), ("frozen", All), ("text_height", All), ("suggest", All)]),
     ("title", &[("sheet", All), ("revision", All)]),
-    ("report", &[("units", Only(&["si"]))]),
+    ("report", &[("units", All)]),
 ];
 
 /// The keys of the table with this path; empty for a table whose keys the user chooses (`case.factors`).

@@ -7,7 +7,10 @@ mod areas;
 pub mod bow;
 mod ranges;
 mod slender;
+mod suggestion;
 mod traffic;
+
+pub use suggestion::{Move, SuggestedAxis, SuggestedDepth, Suggestion};
 
 use std::collections::BTreeMap;
 
@@ -155,6 +158,9 @@ pub struct Span {
     pub piers: Vec<PierPush>,
     /// The load cases.
     pub cases: Vec<Case>,
+    /// What would suit the loads better; null unless `[mark] suggest` asks for it.
+    #[serde(default)]
+    pub suggestion: Option<Suggestion>,
 }
 
 /// The axis of a span.
@@ -529,6 +535,8 @@ pub enum Check {
     LeftOut,
     /// Traffic: what was taken to be so, what reaches the abutments, what remains uncertain.
     Traffic,
+    /// An axis or a depth that would suit the loads better.
+    Suggestion,
 }
 
 /// What became of a check.

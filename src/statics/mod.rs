@@ -27,6 +27,7 @@ mod span;
 pub mod stress;
 mod string;
 mod subspace;
+mod suggest;
 mod thickness;
 mod through;
 mod ties;
@@ -36,6 +37,7 @@ pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};
 pub use factors::Factors;
 pub use slender::{Bending, Slender};
+pub use suggest::{Funicular, funicular};
 pub use thickness::least_thickness;
 
 use crate::geometry::{Path, Point, Vec2};

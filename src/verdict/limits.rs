@@ -22,14 +22,14 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
     let depth_use = governing.depth_use.filter(|_| ring_applies);
     match (depth_use, limits.ring) {
         (Some(used), stated) if stated.is_some() || (!settings.rib.tension && !elastic_support(settings)) => {
-            judge.ring(used.ratio * 2.0, spans::xy(used.at), stated);
+            judge.ring(governing, used.ratio * 2.0, spans::xy(used.at), stated);
         }
         (None, Some(_)) => judge.not_judged("ring", no_depth(analysis)),
         _ => {}
     }
     if let Some(limit) = limits.kern {
         match depth_use {
-            Some(used) => judge.kern(used.ratio * 6.0, spans::xy(used.at), limit),
+            Some(used) => judge.kern(governing, used.ratio * 6.0, spans::xy(used.at), limit),
             None => judge.not_judged("kern", no_depth(analysis)),
         }
     }
@@ -47,7 +47,7 @@ pub fn span(analysis: &Analysis, span: &Span, settings: &Settings, findings: &mu
         let closest =
             analysis.lines.iter().find(|l| l.kind == LineKind::Closest && l.status == Status::Found);
         match closest.and_then(|l| l.depth_use).filter(|_| ring_applies) {
-            Some(used) => judge.geometric_factor(used.ratio, spans::xy(used.at), limit),
+            Some(used) => judge.geometric_factor(closest, used.ratio, spans::xy(used.at), limit),
             None => judge.not_judged("geometric_factor", no_depth(analysis)),
         }
     }
@@ -131,7 +131,7 @@ impl Judge<'_> {
         self.add(finding);
     }
 
-    fn ring(&mut self, used: f64, at: Xy, stated: Option<f64>) {
+    fn ring(&mut self, line: &Line, used: f64, at: Xy, stated: Option<f64>) {
         let limit = stated.unwrap_or(1.0);
         let holds = used <= limit * (1.0 + tolerance::LIMIT_MET);
         let basis =
@@ -161,16 +161,12 @@ impl Judge<'_> {
             finding.verdict = FindingVerdict::Note;
         }
         if !holds {
-            finding = finding.remedy(format!(
-                "a depth of {:.2} times the present one {}, or an axis nearer to the line of thrust",
-                used / limit,
-                self.near(at)
-            ));
+            finding = finding.remedy(self.deeper_or_moved(line, used / limit, at));
         }
         self.add(finding);
     }
 
-    fn kern(&mut self, used: f64, at: Xy, limit: f64) {
+    fn kern(&mut self, line: &Line, used: f64, at: Xy, limit: f64) {
         let holds = used <= limit * (1.0 + tolerance::LIMIT_MET);
         let best = self.best_case();
         let message = format!(
@@ -196,11 +192,7 @@ impl Judge<'_> {
         }
         let mut finding = self.limit(Check::Kern, "[limits] kern", used, limit, "of d/6", at, holds, message);
         if !holds {
-            finding = finding.remedy(format!(
-                "a depth of {:.2} times the present one {}, or an axis nearer to the line of thrust",
-                used / limit,
-                self.near(at)
-            ));
+            finding = finding.remedy(self.deeper_or_moved(line, used / limit, at));
         }
         self.add(finding);
     }
@@ -264,7 +256,7 @@ impl Judge<'_> {
     }
 
     /// The geometric factor is one over twice the use of the depth by the closest line; the limit is a least value.
-    fn geometric_factor(&mut self, ratio: f64, at: Xy, limit: f64) {
+    fn geometric_factor(&mut self, line: Option<&Line>, ratio: f64, at: Xy, limit: f64) {
         if ratio <= tolerance::FUNICULAR_USE {
             let mut finding = note(
                 Check::GeometricFactor,
@@ -285,11 +277,10 @@ impl Judge<'_> {
         let basis = "[limits] geometric_factor";
         let mut finding = self.limit(Check::GeometricFactor, basis, factor, limit, "1", at, holds, message);
         if !holds {
-            finding = finding.remedy(format!(
-                "a depth of {:.2} times the present one {}, or an axis nearer to the line of thrust",
-                limit / factor,
-                self.near(at)
-            ));
+            finding = finding.remedy(match line {
+                Some(line) => self.deeper_or_moved(line, limit / factor, at),
+                None => format!("a depth of {:.2} times the present one {}", limit / factor, self.near(at)),
+            });
         }
         self.add(finding);
     }
@@ -391,6 +382,23 @@ impl Judge<'_> {
 
     fn direction(&self, signed: f64) -> &'static str {
         if signed >= 0.0 { "upward, toward the line," } else { "downward, toward the line," }
+    }
+
+    /// What mends a line that takes `excess` times the part of the depth that it may: more depth, or an axis moved toward it
+    /// there. To first order: the line moves with the axis and the depth.
+    fn deeper_or_moved(&self, line: &Line, excess: f64, at: Xy) -> String {
+        let mut words = format!("a depth of {excess:.2} times the present one {}", self.near(at));
+        let far = |s: &&crate::statics::Station| (s.at.x - at[0]).hypot(s.at.y - at[1]);
+        let station = line.stations.iter().min_by(|a, b| far(a).total_cmp(&far(b)));
+        match station.and_then(|s| s.eccentricity) {
+            Some(e) if e != 0.0 => words.push_str(&format!(
+                ", or the axis moved there {} by at least {}",
+                self.direction(e),
+                length(e.abs() * (1.0 - 1.0 / excess))
+            )),
+            _ => words.push_str(", or an axis nearer to the line of thrust"),
+        }
+        words
     }
 
     /// The nearest load to a place, in words.

@@ -13,6 +13,7 @@ mod ranges;
 mod sideways;
 mod slender;
 mod spans;
+mod suggest;
 pub mod traffic;
 
 pub use piers::Pushes;
@@ -150,6 +151,14 @@ pub fn judge(
     let verdict = verdict(&mut findings);
     findings.sort_by_key(|f| (rank(f), f.check));
     Judgement { units, spans, findings, verdict }
+}
+
+/// Adds suggestions to what was judged, as notes.
+pub fn add_suggestions(judged: &mut Judgement) {
+    for span in &judged.spans {
+        judged.findings.extend(suggest::findings(span, &judged.units));
+    }
+    judged.findings.sort_by_key(|f| (rank(f), f.check));
 }
 
 /// Worst first: outside, what keeps the run from being judged, accepted exceptions, limits that hold, notes.

@@ -57,6 +57,7 @@ pub fn span(
             })
             .collect(),
         loads: listed,
+        suggestion: None,
         areas: super::areas::shares(model, span),
         piers: Vec::new(),
         ring,

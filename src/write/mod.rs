@@ -15,3 +15,4 @@ pub mod report;
 pub(crate) mod sample;
 pub mod terminal;
 pub mod text;
+pub mod us;

@@ -276,6 +276,7 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
             }),
             loads,
             cases,
+            suggestion: None,
         });
     }
     findings.sort_by_key(|f| f.verdict);
@@ -318,6 +319,34 @@ pub fn run_of(samples: Vec<Sample>) -> Run {
         output: Some("bridge.thrust.dxf".into()),
         error: None,
     }
+}
+
+/// An arch with an axis and a depth suggested.
+pub fn suggested() -> Run {
+    let mut run = Sample { depth: Some(0.5), ..arch(3, 24.0, 6.0) }.limited(0.01).run();
+    let points: Vec<Xy> = vec![[0.0, 0.0], [6.0, 4.5], [12.0, 6.0], [18.0, 4.5], [24.0, 0.0]];
+    let moves = run.spans[0]
+        .loads
+        .iter()
+        .zip(&points[1..])
+        .map(|(load, p)| Move { load: Some(load.label.clone()), at: load.at, by: p[1] - load.at[1] })
+        .collect();
+    let axis = SuggestedAxis {
+        case: "drawn".into(),
+        status: Status::Found,
+        reason: None,
+        horizontal: Some(200.0),
+        points,
+        moves,
+    };
+    let depth = SuggestedDepth {
+        status: Status::Found,
+        factor: Some(1.2),
+        depth_min: Some(0.6),
+        depth_max: Some(0.6),
+    };
+    run.spans[0].suggestion = Some(Suggestion { axes: vec![axis], depth: Some(depth) });
+    run
 }
 
 /// A drawing that was refused.

@@ -3,9 +3,8 @@
 
 use crate::outcome::{Check, Document, Finding, FindingVerdict, Line, Load, Run, Span, Verdict};
 use crate::write::annotate::{CAUTION, check_name, governing, heading, kind_name, worst_case};
-use crate::write::text::{
-    self, against_limit, columns, force, four_digits, metres, millimetres, plain, wrap,
-};
+use crate::write::text::{self, against_limit, columns, force, four_digits, metres, plain, wrap};
+use crate::write::us;
 
 /// How the summary is set.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -30,6 +29,7 @@ const NAMES: usize = 11;
 /// The summary of all drawings, with a newline at the end. One drawing is told at length, several on a line each, the worst
 /// first (with `verbose` at length too).
 pub fn summary(document: &Document, style: &Style) -> String {
+    let document = &*us::told(document);
     let mut out = Page { text: String::new(), width: style.width.max(40), colour: style.colour };
     match document.runs.as_slice() {
         [] => out.line("No drawing was found."),
@@ -232,7 +232,8 @@ fn worst_words(run: &Run, finding: &Finding) -> String {
 fn place(run: &Run, finding: &Finding) -> String {
     let mut words = String::new();
     if let Some(at) = finding.at {
-        words.push_str(&format!(", at x {} m, y {} m", metres(at[0]), metres(at[1])));
+        let (m, _) = text::length_units(&run.units);
+        words.push_str(&format!(", at x {} {m}, y {} {m}", metres(at[0]), metres(at[1])));
     }
     if run.spans.len() > 1
         && let Some(span) = &finding.span
@@ -298,11 +299,12 @@ fn in_full(run: &Run, finding: &Finding) -> String {
 }
 
 fn span_lines(run: &Run, span: &Span, out: &mut Page) {
+    let (m, mm) = text::length_units(&run.units);
     let case = worst_case(run, span);
     let line = case.and_then(governing);
     let total = span.loads.iter().fold((0.0_f64, 0.0_f64), |t, l| (t.0 + l.force[0], t.1 + l.force[1]));
     let mut words = format!(
-        "{} of span {} m, {} {} m; {} load{}, {}",
+        "{} of span {} {m}, {} {} {m}; {} load{}, {}",
         span.kind,
         metres(span.axis.span),
         if span.kind == "cable" { "sag" } else { "rise" },
@@ -334,8 +336,8 @@ fn span_lines(run: &Run, span: &Span, out: &mut Page) {
                     "offset",
                     None,
                     &format!(
-                        "largest {} mm toward the {toward}, at x {} m, y {} m",
-                        millimetres(offset.max_abs),
+                        "largest {} {mm} toward the {toward}, at x {} {m}, y {} {m}",
+                        text::small(offset.max_abs, &run.units),
                         metres(offset.at[0]),
                         metres(offset.at[1])
                     ),
@@ -364,10 +366,11 @@ fn loads(run: &Run, span: &Span, out: &mut Page) {
         out.entry(&name, None, &load_words(run, load));
         name.clear();
     }
+    let (m, _) = text::length_units(&run.units);
     for area in &span.areas {
         let at = area.at.map_or_else(String::new, |at| format!(" at x {}", metres(at[0])));
         let words = format!(
-            "{}: {} pieces, {} m², {} in all{at}",
+            "{}: {} pieces, {} {m}², {} in all{at}",
             area.name,
             area.pieces,
             four_digits(area.area),

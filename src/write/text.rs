@@ -87,8 +87,52 @@ pub fn millimetres(metres: f64) -> String {
 
 /// The same with a plus sign where it is positive.
 pub fn signed_millimetres(metres: f64) -> String {
-    let text = millimetres(metres);
+    signed(millimetres(metres))
+}
+
+fn signed(text: String) -> String {
     if text == "0" || text.starts_with('-') { text } else { format!("+{text}") }
+}
+
+/// A small length of a run as a bare figure: in millimetres, or in inches where the run is told in feet.
+pub fn small(length: f64, units: &Units) -> String {
+    if units.length == "ft" { inches(length) } else { millimetres(length) }
+}
+
+/// The same with a plus sign where it is positive.
+pub fn signed_small(length: f64, units: &Units) -> String {
+    signed(small(length, units))
+}
+
+/// The units of the lengths of a run: of the large ones and of the small ones.
+pub fn length_units(units: &Units) -> (&str, &'static str) {
+    (&units.length, if units.length == "ft" { "in" } else { "mm" })
+}
+
+/// The unit of stress, empty where there is none.
+pub fn stress_unit(units: &Units) -> &str {
+    units.stress.as_deref().unwrap_or_default()
+}
+
+/// A length in feet told in inches as a bare figure, to about the precision of [`millimetres`].
+///
+/// ```
+/// use thrustmark::write::text::inches;
+/// assert_eq!(inches(0.5), "6.00");
+/// assert_eq!(inches(2.0), "24.0");
+/// assert_eq!(inches(1e-6), "0");
+/// ```
+pub fn inches(feet: f64) -> String {
+    let inches = feet * 12.0;
+    let size = inches.abs();
+    let text = if size >= 9.995 {
+        format!("{inches:.1}")
+    } else if size >= 0.0995 {
+        format!("{inches:.2}")
+    } else {
+        format!("{inches:.3}")
+    };
+    if text.trim_start_matches('-').chars().all(|c| c == '0' || c == '.') { "0".into() } else { text }
 }
 
 /// A length told as people say it: metres to three decimals.
@@ -109,7 +153,12 @@ pub fn force_unit(units: &Units) -> &str {
 
 /// The moment unit in ASCII.
 pub fn moment_unit(units: &Units) -> &str {
-    if units.force == "unit load" { "unit loads x m" } else { "kNm" }
+    match (units.force.as_str(), units.length.as_str()) {
+        ("unit load", "ft") => "unit loads x ft",
+        ("unit load", _) => "unit loads x m",
+        ("kip", _) => "kip ft",
+        _ => "kNm",
+    }
 }
 
 /// A value of a finding with its unit: lengths in millimetres, others to three digits.
@@ -117,16 +166,17 @@ pub fn quantity(value: f64, unit: Option<&str>) -> String {
     match unit {
         Some("m") => format!("{} mm", millimetres(value)),
         Some("mm") => format!("{} mm", millimetres(value / 1000.0)),
+        Some("ft") => format!("{} in", inches(value)),
         Some("-" | "" | "1") | None => three_digits(value),
-        Some(unit @ ("kN" | "unit load")) => format!("{} {unit}", four_digits(value)),
+        Some(unit @ ("kN" | "kip" | "unit load")) => format!("{} {unit}", four_digits(value)),
         Some(unit) => format!("{} {unit}", three_digits(value)),
     }
 }
 
-/// Value of a finding in metres when its unit is a length.
+/// Value of a finding in the length unit of its run (m, or ft) when its unit is a length.
 pub fn in_metres(value: f64, unit: Option<&str>) -> Option<f64> {
     match unit {
-        Some("m") => Some(value),
+        Some("m" | "ft") => Some(value),
         Some("mm") => Some(value / 1000.0),
         _ => None,
     }
@@ -213,7 +263,7 @@ fn words(text: &str) -> Vec<String> {
     let is_figure = |w: &str| w.trim_end_matches([',', ';', ':', '.', ')']).parse::<f64>().is_ok();
     let is_unit = |w: &str| {
         let w = w.trim_end_matches([',', ';', ':', '.', ')']);
-        ["m", "mm", "kN", "kNm", "deg", "MPa", "unit", "times"].contains(&w)
+        ["m", "mm", "kN", "kNm", "deg", "MPa", "unit", "times", "ft", "in", "kip", "ksi"].contains(&w)
     };
     let mut out: Vec<String> = Vec::new();
     for word in text.split_whitespace() {

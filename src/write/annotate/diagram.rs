@@ -1,7 +1,7 @@
 //! The offset diagram: the offset of the governing line along each span, exaggerated, on a straight base line.
 
 use crate::geometry::{Point, Vec2};
-use crate::outcome::{Check, Run};
+use crate::outcome::{Check, Run, Units};
 use crate::tags::marks::{Across, Along};
 use crate::write::annotate::elevation;
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
@@ -40,6 +40,7 @@ pub fn draw(
     let reach = drawn_limit.unwrap_or(0.0).max(if negligible { 0.0 } else { largest });
     let factor = exaggeration(reach, h, spans.first().map_or(1.0, |s| s.unit));
 
+    let (_, mm) = text::length_units(&run.units);
     let mut title = if factor > 1.0 {
         format!(
             "along the joints, drawn {} times as large, + toward the extrados",
@@ -49,9 +50,9 @@ pub fn draw(
         "along the joints, to the scale of the elevation, + toward the extrados".to_owned()
     };
     match (limit, drawn_limit) {
-        (Some(l), Some(_)) => title.push_str(&format!("; limit {} mm dashed", text::millimetres(l))),
+        (Some(l), Some(_)) => title.push_str(&format!("; limit {} {mm} dashed", text::small(l, &run.units))),
         (Some(l), None) => {
-            title.push_str(&format!("; limit {} mm lies outside the diagram", text::millimetres(l)))
+            title.push_str(&format!("; limit {} {mm} lies outside the diagram", text::small(l, &run.units)))
         }
         (None, _) => {}
     }
@@ -71,7 +72,7 @@ pub fn draw(
     let up = curves.iter().flatten().map(|p| p.1).fold(drawn_limit.unwrap_or(0.0), f64::max);
     let down = curves.iter().flatten().map(|p| p.1).fold(-drawn_limit.unwrap_or(0.0), f64::min);
     let unit = spans.first().map_or(1.0, |s| s.unit);
-    let bar = Bar::new(reach, up, down, factor * unit, h);
+    let bar = Bar::new(reach, up, down, factor * unit, h, &run.units);
     let base = (y - 3.2 * h - up * factor * unit).min(y - bar.above - 0.5 * h);
 
     scale_bar(canvas, Point::new(corner.x - 2.0 * h, base), &bar);
@@ -142,10 +143,12 @@ struct Bar {
 }
 
 impl Bar {
-    fn new(reach: f64, up: f64, down: f64, scale: f64, h: f64) -> Self {
-        let length = round_down(if reach > 0.0 { reach } else { TALL * h / scale });
+    fn new(reach: f64, up: f64, down: f64, scale: f64, h: f64, units: &Units) -> Self {
+        // A round figure in the unit that it is told in.
+        let round = if units.length == "ft" { 12.0 } else { 1.0 };
+        let length = round_down(round * if reach > 0.0 { reach } else { TALL * h / scale }) / round;
         let drawn = length * scale * if -down > up { -1.0 } else { 1.0 };
-        let words = format!("{} mm", text::millimetres(length));
+        let words = format!("{} {}", text::small(length, units), text::length_units(units).1);
         let half = width(&words, h) / 2.0;
         Self { drawn, above: drawn.max(0.0).max(drawn / 2.0 + half), words }
     }
@@ -224,9 +227,10 @@ fn one(
                 let inset = (right - left) * f64::from(i) / 20.0;
                 [1.25, -1.25].map(|d| {
                     let p = at(right - inset, sign * limit) + Vec2::new(0.0, sign * d * h);
-                    let words = text::signed_millimetres(sign * limit);
+                    let words = text::signed_small(sign * limit, shown.units);
+                    let (_, mm) = text::length_units(shown.units);
                     (
-                        Words::new(format!("limit {words} mm"), p, h)
+                        Words::new(format!("limit {words} {mm}"), p, h)
                             .across(Across::Right)
                             .along(Along::Middle),
                         None,
@@ -259,7 +263,7 @@ fn worst_here(shown: &Shown, canvas: &mut Canvas, base: f64, scale: f64) -> Opti
     let tip = Point::new(foot.x, base + e * scale);
     canvas.circle(Layer::Offsets, "worst", tip, 0.45 * h);
     let away = if e < 0.0 { -1.0 } else { 1.0 };
-    let words = format!("max {} mm", text::signed_millimetres(e));
+    let words = format!("max {} {}", text::signed_small(e, shown.units), text::length_units(shown.units).1);
     let places = (0..30).flat_map(|k| {
         let d = away * (1.6 + 0.5 * f64::from(k)) * h;
         [(0.0, Across::Centre), (0.9 * h, Across::Left), (-0.9 * h, Across::Right)].map(|(dx, across)| {

@@ -176,7 +176,7 @@ fn figure_places(shown: &Shown, s: f64, e: f64, words: &str, h: f64, far: u32) -
 
 fn worst_figure(shown: &Shown, canvas: &mut Canvas) {
     let Some((s, e)) = shown.worst() else { return };
-    let words = format!("max {} mm", text::signed_millimetres(e));
+    let words = format!("max {} {}", text::signed_small(e, shown.units), text::length_units(shown.units).1);
     if !figure(shown, s, e, &words, 24, canvas) {
         below_all(shown, s, e, &words, canvas);
     }
@@ -227,7 +227,7 @@ fn figures(shown: &Shown, canvas: &mut Canvas) -> usize {
     let mut hidden = list.len().saturating_sub(MOST_FIGURES);
     list.truncate(MOST_FIGURES);
     for (s, e) in list {
-        let placed = figure(shown, s, e, &text::signed_millimetres(e), 6, canvas);
+        let placed = figure(shown, s, e, &text::signed_small(e, shown.units), 6, canvas);
         hidden += usize::from(!placed);
     }
     hidden

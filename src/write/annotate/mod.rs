@@ -22,6 +22,7 @@
 //! | `FLAGS` | limits that do not hold | 20 vermilion | continuous | 0.35 |
 //! | `NOTES` | note block, key, sign sketch | 7 black or white | continuous | 0.18 |
 //! | `TRAFFIC` | envelope of traffic, the train at its worst position and the line there | 42 ochre | continuous, envelope dash and two dots, line short dashes | 0.25 |
+//! | `SUGGESTED-AXIS` | funicular of the loads as an axis, switched off; only where it is asked for | 142 blue | dash and two dots | 0.35 |
 //!
 //! Of several cases the governing line of the worst one is drawn heavy (most limits that do not hold, then the largest
 //! offset); the others stand beside it on `OTHER-LINES` and all are listed in the note block.
@@ -34,6 +35,7 @@ mod place;
 pub(super) mod polygon;
 mod ring;
 pub(super) mod shown;
+pub(super) mod suggested;
 pub(super) mod traffic;
 
 pub use crate::outcome::bow::{MOST_LETTERED, letter, spaces};
@@ -148,6 +150,7 @@ pub fn annotate(run: &Run, sheet: &Sheet) -> Marks {
     for shown in &spans {
         traffic::draw(shown, &mut canvas);
     }
+    suggested::draw(&spans, &mut canvas);
 
     let (left, right) = (content.low[0] * unit, content.high[0] * unit);
     let mut y = free_below(sheet, content, &canvas, unit) - 3.0 * h;
@@ -160,7 +163,7 @@ pub fn annotate(run: &Run, sheet: &Sheet) -> Marks {
         application: APPLICATION.into(),
         plane: sheet.plane,
         line_types: pen::line_types(&sheet.prefix, h),
-        layers: pen::layers(&sheet.prefix, sheet.frozen),
+        layers: pen::layers(&sheet.prefix, sheet.frozen, spans.iter().any(|s| suggested::axis(s).is_some())),
         marks: canvas.marks,
         facts: facts(run, sheet),
     }

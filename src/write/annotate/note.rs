@@ -5,7 +5,7 @@ use crate::outcome::{Check, Finding, FindingVerdict, MagnitudeFrom, Run, Status,
 use crate::tags::marks::{Across, Along};
 use crate::write::annotate::pen::{Canvas, Dash, LEADING, Layer, Words};
 use crate::write::annotate::shown::{Shown, governing, kind_name};
-use crate::write::annotate::{Sheet, elevation};
+use crate::write::annotate::{Sheet, elevation, ring, suggested};
 use crate::write::text;
 
 /// Columns of the names and of what stands beside them.
@@ -101,6 +101,9 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
         let name = if several { &shown.span.name } else { "Span" };
         row(name, span_words(run, shown));
     }
+    for shown in spans.iter().filter(|s| ring::is_too_deep(s)) {
+        row("Ring", format!("{}: not drawn, its depth is more than half the span", shown.span.name));
+    }
     // What is the same for all spans is told once.
     for words in told_once(spans.iter().map(|s| (s, line_words(s)))) {
         row("Line", words);
@@ -118,6 +121,13 @@ pub fn rows(run: &Run, sheet: &Sheet, spans: &[Shown]) -> Vec<(String, Vec<Strin
     row("Verdict", verdict_words(run));
     for shown in spans {
         row("Worst", worst_words(shown, several));
+    }
+    for words in
+        told_once(spans.iter().map(|s| {
+            (s, suggested::words(s, &format!("{}SUGGESTED-AXIS", sheet.prefix.to_ascii_uppercase())))
+        }))
+    {
+        row("Suggested", words);
     }
     let mut last = String::new();
     for (name, _) in &mut rows {
@@ -413,7 +423,11 @@ pub fn key(
     let mut samples = more.to_vec();
     samples.extend([
         (Layer::Line, None, "line of thrust".to_owned()),
-        (Layer::Offsets, None, "offset, mm".to_owned()),
+        (
+            Layer::Offsets,
+            None,
+            format!("offset, {}", spans.first().map_or("mm", |s| text::length_units(s.units).1)),
+        ),
     ]);
     samples.extend(other_kinds(spans).into_iter().map(|(name, dash)| (Layer::OtherLines, dash, name)));
     if canvas.marks.iter().any(|m| m.role == "ring") {
@@ -421,6 +435,9 @@ pub fn key(
     }
     if canvas.marks.iter().any(|m| m.layer == Layer::Kern as usize) {
         samples.push((Layer::Kern, Some(Dash::Dots), "middle third".into()));
+    }
+    if canvas.marks.iter().any(|m| m.layer == Layer::Suggested as usize) {
+        samples.push((Layer::Notes, Some(Dash::TwoDots), "suggested axis, off".into()));
     }
     samples.push((Layer::Reactions, None, "thrust on the rib".into()));
     samples.push((Layer::Letters, None, "spaces between loads".into()));

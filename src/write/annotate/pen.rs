@@ -32,6 +32,8 @@ pub enum Layer {
     Notes,
     /// Envelope and worst position of traffic.
     Traffic,
+    /// The suggested axis.
+    Suggested,
     /// The axis; drawn in pictures only, a marked copy has its own.
     Axis,
     /// The loads; drawn in pictures only, as the axis.
@@ -40,7 +42,7 @@ pub enum Layer {
 
 /// Name after the prefix, colour, line type, weight in hundredths of a millimetre. The module docs of `annotate` tell
 /// the colours by name.
-const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 12] = [
+const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 13] = [
     (Layer::Line, "LINE", 142, None, 50),
     (Layer::OtherLines, "OTHER-LINES", 252, None, 25),
     (Layer::Ring, "RING", 8, None, 9),
@@ -53,6 +55,7 @@ const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 12] = [
     (Layer::Flags, "FLAGS", 20, None, 35),
     (Layer::Notes, "NOTES", 7, None, 18),
     (Layer::Traffic, "TRAFFIC", 42, None, 25),
+    (Layer::Suggested, "SUGGESTED-AXIS", 142, Some(Dash::TwoDots), 35),
 ];
 
 /// A kind of broken line.
@@ -84,17 +87,18 @@ pub const DASHES: [(Dash, &str, &str, &[f64]); 5] = [
 /// 0.5 mm of its layer's line weight, which viewers that know line widths take in its place.
 const HEAVY: f64 = 0.16;
 
-/// The layers to be made.
-pub fn layers(prefix: &str, frozen: bool) -> Vec<MarkLayer> {
+/// The layers to be made. That of the suggested axis, the last, is switched off, and left out where nothing is suggested.
+pub fn layers(prefix: &str, frozen: bool, suggested: bool) -> Vec<MarkLayer> {
     LAYERS
         .iter()
-        .map(|&(_, name, colour, dash, weight)| MarkLayer {
+        .filter(|row| suggested || row.0 != Layer::Suggested)
+        .map(|&(layer, name, colour, dash, weight)| MarkLayer {
             name: format!("{prefix}{name}").to_ascii_uppercase(),
             colour,
             line_type: dash.map(|d| d as usize),
             weight: Some(weight),
             frozen,
-            off: false,
+            off: layer == Layer::Suggested,
         })
         .collect()
 }

@@ -16,7 +16,7 @@ const MOST_JOINTS: usize = 400;
 pub fn draw(run: &Run, shown: &Shown, canvas: &mut Canvas) {
     let depths = depths(shown);
     let widest = depths.iter().map(|d| d.1).fold(0.0, f64::max);
-    if widest < VISIBLE * canvas.h {
+    if widest < VISIBLE * canvas.h || is_too_deep(shown) {
         return;
     }
     for side in [1.0, -1.0] {
@@ -38,6 +38,12 @@ pub fn draw(run: &Run, shown: &Shown, canvas: &mut Canvas) {
         canvas.chain(Layer::Kern, "kern", &edge, Some(Dash::Dots));
         canvas.taken.keep_off(&edge);
     }
+}
+
+/// Whether the depth is so large beside the span (a depth in the wrong unit) that ring lines and joints would cross each
+/// other and everything else. The note block says that the ring is not drawn.
+pub fn is_too_deep(shown: &Shown) -> bool {
+    depths(shown).iter().any(|d| d.1 > shown.span.axis.span * shown.unit / 2.0)
 }
 
 /// Length along the axis and depth of the stations that have one, drawing units.

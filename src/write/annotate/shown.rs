@@ -2,7 +2,7 @@
 
 use crate::geometry::{Path, Point, Segment, Vec2};
 use crate::outcome::bow::{self, Group};
-use crate::outcome::{Case, FindingVerdict, Line, LineKind, Run, Span, Status, Xy};
+use crate::outcome::{Case, FindingVerdict, Line, LineKind, Run, Span, Status, Units, Xy};
 use crate::tolerance;
 
 /// A span as it is drawn.
@@ -28,6 +28,8 @@ pub struct Shown<'a> {
     pub forces: Vec<Vec2>,
     /// Drawing units per metre.
     pub unit: f64,
+    /// The units of all results.
+    pub units: &'a Units,
 }
 
 impl<'a> Shown<'a> {
@@ -64,6 +66,7 @@ impl<'a> Shown<'a> {
                 })
                 .collect(),
             unit,
+            units: &run.units,
         }
     }
 

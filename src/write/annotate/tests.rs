@@ -418,6 +418,34 @@ fn worst_case_is_drawn_heavy() {
     assert!(texts(&marks).iter().any(|t| t.0 == "case even"));
 }
 
+/// A depth in the wrong unit would bury the sheet under joints that cross each other.
+#[test]
+fn ring_deeper_than_half_the_span_is_said_and_not_drawn() {
+    let run = Sample { depth: Some(9.0), ..arch(5, 12.0, 3.0) }.run();
+    let marks = assert_calm(&run, &sheet());
+    assert_eq!(has(&marks, "ring") + has(&marks, "joint"), 0);
+    let words = texts(&marks).into_iter().map(|t| t.0).collect::<Vec<_>>().join(" ");
+    assert!(words.contains("not drawn, its depth is more than half the span"), "{words}");
+    let run = Sample { depth: Some(1.0), ..arch(5, 12.0, 3.0) }.run();
+    assert_eq!(has(&assert_calm(&run, &sheet()), "ring"), 2);
+}
+
+#[test]
+fn suggested_axis_stands_on_a_layer_that_is_off() {
+    let run = sample::suggested();
+    let marks = assert_calm(&run, &sheet());
+    let layer = marks.layers.iter().position(|l| l.name == "THRUST-SUGGESTED-AXIS").unwrap();
+    assert!(marks.layers[layer].off);
+    assert_eq!(marks.layers.iter().filter(|l| l.off).count(), 1);
+    let drawn: Vec<_> = marks.marks.iter().filter(|m| m.layer == layer).map(|m| m.role.as_str()).collect();
+    assert_eq!(drawn.iter().filter(|r| **r == "suggested-axis").count(), 1, "{drawn:?}");
+    assert!(drawn.contains(&"suggested-name"), "{drawn:?}");
+    let words = texts(&marks).into_iter().map(|t| t.0).collect::<Vec<_>>().join(" ");
+    assert!(words.contains("Suggested") && words.contains("1.20 times the depth"), "{words}");
+    let plain = annotate(&arch(3, 24.0, 6.0).run(), &sheet());
+    assert!(plain.layers.iter().all(|l| !l.off && !l.name.contains("SUGGESTED")));
+}
+
 #[test]
 fn control_characters_of_names_do_not_reach_the_drawing() {
     let mut run = arch(5, 30.0, 6.0).run();

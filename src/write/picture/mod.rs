@@ -1,9 +1,12 @@
 //! Pictures of a run: the elevation with axis, ring, loads and governing line, the offset diagram, and the force polygon
 //! below. The same layout as on the marked sheet, with what the drawing shows by itself drawn too.
 
+mod forces;
 mod loads;
 pub mod png;
 pub mod svg;
+
+pub use forces::forces;
 
 use crate::geometry::Point;
 use crate::outcome::{Run, Verdict};
@@ -58,7 +61,7 @@ pub struct Look {
 }
 
 /// The look of each layer, in the order of `Layer`.
-pub const LOOKS: [(Layer, Look); 14] = [
+pub const LOOKS: [(Layer, Look); 15] = [
     (Layer::Line, Look { class: "line", colour: [0x0b, 0x5f, 0xa5], width: 2.2, dash: None }),
     (Layer::OtherLines, Look { class: "other", colour: [0x5e, 0x5e, 0x5e], width: 1.2, dash: None }),
     (Layer::Ring, Look { class: "ring", colour: [0x8c, 0x8c, 0x8c], width: 0.7, dash: None }),
@@ -71,6 +74,10 @@ pub const LOOKS: [(Layer, Look); 14] = [
     (Layer::Flags, Look { class: "flag", colour: [0xb8, 0x3a, 0x0b], width: 1.6, dash: None }),
     (Layer::Notes, Look { class: "note", colour: [0x2b, 0x2b, 0x2b], width: 1.0, dash: None }),
     (Layer::Traffic, Look { class: "traffic", colour: [0x85, 0x5b, 0x00], width: 1.2, dash: None }),
+    (
+        Layer::Suggested,
+        Look { class: "suggested", colour: [0x0b, 0x5f, 0xa5], width: 1.4, dash: Some(Dash::TwoDots) },
+    ),
     (Layer::Axis, Look { class: "axis", colour: [0x1a, 0x1a, 0x1a], width: 1.2, dash: None }),
     (Layer::Loads, Look { class: "load", colour: [0x40, 0x40, 0x40], width: 1.1, dash: None }),
 ];
@@ -78,6 +85,11 @@ pub const LOOKS: [(Layer, Look); 14] = [
 /// The look of a mark's layer.
 pub fn look(mark: &Mark) -> Look {
     LOOKS[mark.layer.min(LOOKS.len() - 1)].1
+}
+
+/// The colour of a class, black for one that there is not.
+pub fn look_of(class: &str) -> [u8; 3] {
+    LOOKS.iter().find(|l| l.1.class == class).map_or([0; 3], |l| l.1.colour)
 }
 
 /// Elevation, offset diagram, force polygons, key and caution on one sheet.
@@ -212,10 +224,11 @@ fn lower_heading(run: &Run) -> String {
 
 fn description(run: &Run) -> String {
     let mut words: Vec<String> = Vec::new();
+    let (m, mm) = text::length_units(&run.units);
     for shown in spans(run) {
         let span = &shown.span;
         let mut told = format!(
-            "{}: {} of span {} m, {} {} m, {} loads",
+            "{}: {} of span {} {m}, {} {} {m}, {} loads",
             span.name,
             span.kind,
             text::metres(span.axis.span),
@@ -226,8 +239,8 @@ fn description(run: &Run) -> String {
         if let Some(offset) = shown.line.and_then(|l| l.offset.as_ref()) {
             let toward = if offset.signed < 0.0 { "intrados" } else { "extrados" };
             told.push_str(&format!(
-                "; the line of thrust strays {} mm at most from the axis, toward the {toward}",
-                text::millimetres(offset.max_abs)
+                "; the line of thrust strays {} {mm} at most from the axis, toward the {toward}",
+                text::small(offset.max_abs, &run.units)
             ));
         }
         words.push(told);

@@ -13,7 +13,7 @@ use crate::write::picture::svg::{CAPITAL_PART, pattern};
 use crate::write::picture::{Picture, look};
 
 /// The font: a part of a sans-serif family under the SIL Open Font License, which stands beside it.
-const FONT: &[u8] = include_bytes!("fonts/sheet-sans.ttf");
+pub const FONT: &[u8] = include_bytes!("fonts/sheet-sans.ttf");
 
 /// Pixels of the file per pixel of the picture, so that a zoomed or printed picture stays crisp.
 const SHARPNESS: f64 = 2.0;

@@ -1,12 +1,13 @@
 //! What stands on the spans by outline or up to a level, as a table.
 
-use super::html::{Page, figures, words};
+use super::page::{Page, figures, words};
 use crate::outcome::{AreaShare, Run};
 use crate::write::text::{self, four_digits, metres};
 
 /// A table for each span on which something stands.
 pub fn tables(run: &Run, page: &mut Page) {
     let unit = text::force_unit(&run.units);
+    let (m, _) = text::length_units(&run.units);
     for span in run.spans.iter().filter(|s| !s.areas.is_empty()) {
         let rows: Vec<Vec<String>> = span.areas.iter().map(row).collect();
         page.table(
@@ -17,9 +18,9 @@ pub fn tables(run: &Run, page: &mut Page) {
             &[
                 words("Area"),
                 figures("Pieces"),
-                figures("m²"),
+                figures(format!("{m}²")),
                 figures("Weight"),
-                figures("at x, m"),
+                figures(format!("at x, {m}")),
                 figures("Pieces against whole"),
                 figures("Beyond the left end"),
                 figures("Beyond the right end"),

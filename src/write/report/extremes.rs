@@ -1,6 +1,6 @@
 //! Forces for the check of a section by the code in force: extremes of thrust and of moment, each with what goes with it.
 
-use super::html::{Page, figures, words};
+use super::page::{Page, figures, words};
 use crate::outcome::Run;
 use crate::write::text::{self, four_digits, metres};
 
@@ -25,13 +25,14 @@ pub fn block(run: &Run, page: &mut Page) {
         return;
     }
     page.section("Forces for the check of sections", "table");
+    let (m, _) = text::length_units(&run.units);
     let (force, moment) = (text::force_unit(&run.units), text::moment_unit(&run.units));
     page.table(
         &format!(
             "Extremes over the stations of the governing lines: thrust in {force}, moment in {moment}; with imperfection to \
              either side, amplified, where the rib is slender"
         ),
-        &[words("What"), figures("N"), figures("M"), figures("s, m"), figures("x, m"), figures("y, m")],
+        &[words("What"), figures("N"), figures("M"), figures(format!("s, {m}")), figures(format!("x, {m}")), figures(format!("y, {m}"))],
         &rows,
     );
     page.end();

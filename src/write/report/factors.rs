@@ -1,6 +1,6 @@
 //! Factors of a ring without tension: what they are, the mechanism of the load factor, and what ranges make of them.
 
-use super::html::{Page, figures, words};
+use super::page::{Page, figures, words};
 use crate::outcome::{RangedValue, Ranges, Run, Safety, Span, Status};
 use crate::write::text::{four_digits, metres};
 
@@ -44,7 +44,7 @@ pub fn block(run: &Run, page: &mut Page) {
             figures("Geometric factor"),
             figures("Load factor from"),
             figures("up to"),
-            figures("Least depth, m"),
+            figures(format!("Least depth, {}", run.units.length)),
             figures("of"),
         ],
         &factors,
@@ -52,7 +52,12 @@ pub fn block(run: &Run, page: &mut Page) {
     if !hinges.is_empty() {
         page.table(
             "Mechanism of the greatest load factor: where the ring turns (or slips), from left to right",
-            &[words("Hinge"), words("Edge"), figures("x, m"), figures("y, m")],
+            &[
+                words("Hinge"),
+                words("Edge"),
+                figures(format!("x, {}", run.units.length)),
+                figures(format!("y, {}", run.units.length)),
+            ],
             &hinges,
         );
     }
@@ -124,7 +129,7 @@ mod tests {
         let mut run = sample::arch(5, 30.0, 6.0).run();
         let mut page = Page::default();
         block(&run, &mut page);
-        assert!(page.out.is_empty(), "no factors, no section");
+        assert!(page.blocks.is_empty(), "no factors, no section");
         let value = |v: Option<f64>, found: &str| RangedValue {
             status: if v.is_some() { Status::Found } else { Status::None },
             value: v,
@@ -151,6 +156,7 @@ mod tests {
             }],
         });
         block(&run, &mut page);
+        let told = format!("{:?}", page.blocks);
         for words in [
             "2.345",
             "without bound",
@@ -161,7 +167,7 @@ mod tests {
             "rib.strength = 4.5",
             "sampled",
         ] {
-            assert!(page.out.contains(words), "{words}: {}", page.out);
+            assert!(told.contains(words), "{words}: {told}");
         }
     }
 }

@@ -4,7 +4,7 @@
 //! `M0` is the moment at the crown of a simple beam of the same span and `f` the rise over the chord there (C. Culmann,
 //! *Die graphische Statik*, 1866). A line fitted in another way has another push; the ratio says how far.
 
-use super::html::{Page, figures, words};
+use super::page::{Page, figures, words};
 use crate::geometry::Vec2;
 use crate::outcome::{Case, Run, Span};
 use crate::tolerance;
@@ -92,7 +92,10 @@ pub fn block(run: &Run, page: &mut Page) {
              of the simple beam at the crown and f the rise. Another line has another push; the last column compares.",
         );
         page.table(
-            &format!("Simple beam under the loads; forces in {force}, moments in {moment}, lengths in m"),
+            &format!(
+                "Simple beam under the loads; forces in {force}, moments in {moment}, lengths in {}",
+                run.units.length
+            ),
             &[
                 words("Case"),
                 figures("Total load"),

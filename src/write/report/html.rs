@@ -1,61 +1,51 @@
-//! The page that is being written: text escaped, tables with captions and scopes, ids that are unique.
+//! The report as a page for browsers: text escaped, tables with captions and scopes, ids that are unique.
 
-use crate::write::picture::Picture;
-pub use crate::write::picture::svg::escape;
-use crate::write::picture::svg::{Home, svg};
+use super::page::{Block, Column, Headed};
+use super::{GENERATOR, Head};
+use crate::write::annotate::note::CAUTION;
+use crate::write::picture::svg::{Home, escape, svg};
 use crate::write::text::plain;
 
-/// A page, written from top to bottom.
+const STYLE: &str = include_str!("style.css");
+
+/// The page of a report.
+pub fn html(head: &Head, blocks: &[Block]) -> String {
+    let mut page = Html::default();
+    page.raw("<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n");
+    page.raw(&format!("{GENERATOR} {}\">\n", escape(&head.version)));
+    page.raw("<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n");
+    page.raw("<meta name=\"color-scheme\" content=\"light dark\">\n");
+    page.raw(&format!("<title>{}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n", escape(&head.title)));
+    page.raw("<a class=\"skip\" href=\"#main\">To the results</a>\n");
+    page.raw(&format!(
+        "<header class=\"sheet-head\">\n<p class=\"kind\">{}</p>\n<h1>{}</h1>\n",
+        super::KIND,
+        super::HEADING
+    ));
+    page.raw(&format!("<p class=\"made\">{}</p>\n</header>\n<main id=\"main\">\n", escape(&head.made)));
+    for block in blocks {
+        page.block(block);
+    }
+    page.raw("</main>\n<footer>\n<p>");
+    page.text(CAUTION);
+    page.raw("</p>\n</footer>\n</body>\n</html>\n");
+    page.out
+}
+
+/// The page so far.
 #[derive(Debug, Default)]
-pub struct Page {
-    /// The HTML so far.
-    pub out: String,
-    /// Number of the drawing that is being told.
-    pub number: usize,
+struct Html {
+    out: String,
     parts: usize,
 }
 
-/// A column of a table.
-#[derive(Debug, Clone, Copy)]
-pub struct Column<'a> {
-    /// Its head.
-    pub name: &'a str,
-    /// Whether it holds figures, which stand on the right.
-    pub figures: bool,
-}
-
-/// A column of words.
-pub fn words(name: &str) -> Column<'_> {
-    Column { name, figures: false }
-}
-
-/// A column of figures.
-pub fn figures(name: &str) -> Column<'_> {
-    Column { name, figures: true }
-}
-
-/// The text with a capital at its beginning.
-pub fn sentence(text: &str) -> String {
-    let mut letters = text.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
-}
-
-impl Page {
-    /// HTML as it is.
-    pub fn raw(&mut self, html: &str) {
+impl Html {
+    fn raw(&mut self, html: &str) {
         self.out.push_str(html);
     }
 
-    /// Text, escaped.
-    pub fn text(&mut self, text: &str) {
+    fn text(&mut self, text: &str) {
         self.out.push_str(&escape(&plain(text)));
-    }
-
-    /// A paragraph.
-    pub fn paragraph(&mut self, text: &str) {
-        self.raw("<p>");
-        self.text(text);
-        self.raw("</p>\n");
     }
 
     /// A part of the page that has not been given before.
@@ -64,34 +54,91 @@ impl Page {
         format!("part-{}", self.parts)
     }
 
-    /// The beginning of a section with its heading; [`Page::end`] ends it.
-    pub fn section(&mut self, heading: &str, class: &str) {
-        let id = self.id();
-        self.raw(&format!("<section class=\"{class}\" aria-labelledby=\"{id}\">\n<h3 id=\"{id}\">"));
-        self.text(heading);
-        self.raw("</h3>\n");
-    }
-
-    /// The end of a section.
-    pub fn end(&mut self) {
-        self.raw("</section>\n");
-    }
-
-    /// A list of names and values; those without a value are left out.
-    pub fn list(&mut self, class: &str, rows: &[(String, String)]) {
-        self.raw(&format!("<dl class=\"{class}\">\n"));
-        for (name, value) in rows.iter().filter(|r| !r.1.is_empty()) {
-            self.raw("<div><dt>");
-            self.text(name);
-            self.raw("</dt><dd>");
-            self.text(value);
-            self.raw("</dd></div>\n");
+    fn block(&mut self, block: &Block) {
+        match block {
+            Block::Contents(drawings) => self.contents(drawings),
+            Block::Drawing(Headed { number, name, class, words }) => {
+                self.raw(&format!(
+                    "<article id=\"drawing-{number}\" aria-labelledby=\"drawing-{number}-name\">\n\
+                     <h2 id=\"drawing-{number}-name\">"
+                ));
+                self.text(name);
+                self.raw(&format!("</h2>\n<p class=\"verdict {class}\">{words}</p>\n"));
+            }
+            Block::DrawingEnd => self.raw("</article>\n"),
+            Block::Section { heading, class } => {
+                let id = self.id();
+                self.raw(&format!("<section class=\"{class}\" aria-labelledby=\"{id}\">\n<h3 id=\"{id}\">"));
+                self.text(heading);
+                self.raw("</h3>\n");
+            }
+            Block::End => self.raw("</section>\n"),
+            Block::Paragraph(text) => {
+                self.raw("<p>");
+                self.text(text);
+                self.raw("</p>\n");
+            }
+            Block::Bullets(lines) => {
+                self.raw("<ul>\n");
+                for line in lines {
+                    self.raw("<li>");
+                    self.text(line);
+                    self.raw("</li>\n");
+                }
+                self.raw("</ul>\n");
+            }
+            Block::List { class, rows } => {
+                self.raw(&format!("<dl class=\"{class}\">\n"));
+                for (name, value) in rows {
+                    self.raw("<div><dt>");
+                    self.text(name);
+                    self.raw("</dt><dd>");
+                    self.text(value);
+                    self.raw("</dd></div>\n");
+                }
+                self.raw("</dl>\n");
+            }
+            Block::Table { caption, columns, rows } => self.table(caption, columns, rows),
+            Block::Figure { picture, caption } => {
+                // On narrow screens it scrolls, so that its text stays legible.
+                let id = self.id();
+                self.raw(&format!(
+                    "<figure>\n<div class=\"scroll picture\" role=\"region\" aria-labelledby=\"{id}-caption\" \
+                     tabindex=\"0\">\n"
+                ));
+                let drawn = svg(picture, Home::Page(&id));
+                self.raw(&drawn);
+                self.raw(&format!("</div>\n<figcaption id=\"{id}-caption\">"));
+                self.text(caption);
+                self.raw("</figcaption>\n</figure>\n");
+            }
+            Block::Signatures(roles) => {
+                self.raw("<dl class=\"sign\">\n");
+                for role in *roles {
+                    self.raw(&format!(
+                        "<div><dt>{role}</dt><dd><span class=\"line\">Name</span><span class=\"line\">Signature</span>\
+                         <span class=\"line\">Date</span></dd></div>\n"
+                    ));
+                }
+                self.raw("</dl>\n");
+            }
         }
-        self.raw("</dl>\n");
     }
 
-    /// A table whose first column heads its rows. It may be wider than the page and then scrolls by itself.
-    pub fn table(&mut self, caption: &str, columns: &[Column], rows: &[Vec<String>]) {
+    fn contents(&mut self, drawings: &[Headed]) {
+        self.raw(
+            "<nav aria-labelledby=\"drawings\">\n<h2 id=\"drawings\">Drawings</h2>\n<ol class=\"contents\">\n",
+        );
+        for Headed { number, name, class, words } in drawings {
+            self.raw(&format!("<li><a href=\"#drawing-{number}\">"));
+            self.text(name);
+            self.raw(&format!("</a> <span class=\"tag {class}\">{words}</span></li>\n"));
+        }
+        self.raw("</ol>\n</nav>\n");
+    }
+
+    /// A table may be wider than the page and then scrolls by itself.
+    fn table(&mut self, caption: &str, columns: &[Column], rows: &[Vec<String>]) {
         let id = self.id();
         self.raw(&format!(
             "<div class=\"scroll\" role=\"region\" aria-labelledby=\"{id}\" tabindex=\"0\">\n<table>\n\
@@ -102,7 +149,7 @@ impl Page {
         for column in columns {
             let class = if column.figures { " class=\"n\"" } else { "" };
             self.raw(&format!("<th scope=\"col\"{class}>"));
-            self.text(column.name);
+            self.text(&column.name);
             self.raw("</th>");
         }
         self.raw("</tr></thead>\n<tbody>\n");
@@ -118,18 +165,5 @@ impl Page {
             self.raw("</tr>\n");
         }
         self.raw("</tbody>\n</table>\n</div>\n");
-    }
-
-    /// A picture with its caption. On narrow screens it scrolls, so that its text stays legible.
-    pub fn figure(&mut self, picture: &Picture, caption: &str) {
-        let id = self.id();
-        self.raw(&format!(
-            "<figure>\n<div class=\"scroll picture\" role=\"region\" aria-labelledby=\"{id}-caption\" tabindex=\"0\">\n"
-        ));
-        let drawn = svg(picture, Home::Page(&id));
-        self.raw(&drawn);
-        self.raw(&format!("</div>\n<figcaption id=\"{id}-caption\">"));
-        self.text(caption);
-        self.raw("</figcaption>\n</figure>\n");
     }
 }

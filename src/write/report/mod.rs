@@ -1,57 +1,93 @@
-//! The report: one HTML file that holds everything, needs no network and no script, and prints as a calculation sheet on
-//! A4 paper for those who prepare and check it to sign.
+//! The report: one file that holds everything, as a page for browsers (no network, no script) or as a PDF, set as a
+//! calculation sheet on A4 paper for those who prepare and check it to sign.
 
 mod areas;
+mod envelope;
 mod extremes;
 mod factors;
 mod hand;
 mod html;
+mod page;
+mod pdf;
 mod sections;
 mod stations;
+mod suggestion;
 mod traffic;
 
 use crate::outcome::{Document, Run, Verdict};
-use crate::write::annotate::note::{CAUTION, heading};
-use crate::write::picture;
+use crate::refusal::Refusal;
+use crate::write::annotate::note::heading;
 use crate::write::text::plain;
-use html::{Page, escape};
+use crate::write::{picture, us};
+use page::{Block, Headed, Page};
 
-/// What the head of every report says of its maker.
+/// What the head of every page says of its maker.
 pub const GENERATOR: &str = concat!("<meta name=\"generator\" content=\"", env!("CARGO_PKG_NAME"));
 
-const STYLE: &str = include_str!("style.css");
+pub use pdf::CREATOR;
 
-/// The report on all drawings of a run. `date` is the UTC day, `YYYY-MM-DD`.
+/// What kind of paper it is.
+const KIND: &str = "Calculation sheet";
+/// Its heading.
+const HEADING: &str = "Check of the line of thrust";
+
+/// What stands at the head of a report.
+#[derive(Debug, Clone, PartialEq, Eq)]
+struct Head {
+    /// Its title, for the viewer's window.
+    title: String,
+    /// Program, version and date.
+    made: String,
+    /// The version alone.
+    version: String,
+    /// The UTC day, `YYYY-MM-DD`.
+    date: String,
+}
+
+/// The report on all drawings of a run as a page for browsers. `date` is the UTC day, `YYYY-MM-DD`.
 pub fn html(document: &Document, date: &str) -> String {
-    let title = match document.runs.as_slice() {
-        [run] => format!("Line of thrust: {}", sheet_name(run)),
-        runs => format!("Line of thrust: {} drawings", runs.len()),
-    };
+    let document = &*us::told(document);
+    html::html(&head(document, date), &blocks(document))
+}
+
+/// The same as the bytes of a PDF file.
+///
+/// # Errors
+/// When the font or the PDF library fails, faults of the program.
+pub fn pdf(document: &Document, date: &str) -> Result<Vec<u8>, Refusal> {
+    let document = &*us::told(document);
+    pdf::pdf(&head(document, date), &blocks(document))
+}
+
+fn head(document: &Document, date: &str) -> Head {
+    Head {
+        title: match document.runs.as_slice() {
+            [run] => format!("Line of thrust: {}", sheet_name(run)),
+            runs => format!("Line of thrust: {} drawings", runs.len()),
+        },
+        made: format!("{} {}, {date} UTC", document.tool.name, document.tool.version),
+        version: document.tool.version.clone(),
+        date: date.to_owned(),
+    }
+}
+
+fn blocks(document: &Document) -> Vec<Block> {
     let mut page = Page::default();
-    page.raw("<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n");
-    page.raw(&format!("{GENERATOR} {}\">\n", escape(&document.tool.version)));
-    page.raw("<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n");
-    page.raw("<meta name=\"color-scheme\" content=\"light dark\">\n");
-    page.raw(&format!("<title>{}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n", escape(&title)));
-    page.raw("<a class=\"skip\" href=\"#main\">To the results</a>\n");
-    page.raw("<header class=\"sheet-head\">\n<p class=\"kind\">Calculation sheet</p>\n");
-    page.raw("<h1>Check of the line of thrust</h1>\n");
-    page.raw(&format!(
-        "<p class=\"made\">{} {}, {} UTC</p>\n</header>\n<main id=\"main\">\n",
-        escape(&document.tool.name),
-        escape(&document.tool.version),
-        escape(date)
-    ));
-    if document.runs.len() > 1 {
-        contents(&document.runs, &mut page);
+    let headed: Vec<Headed> = document.runs.iter().enumerate().map(|(i, run)| headed(i + 1, run)).collect();
+    if headed.len() > 1 {
+        page.blocks.push(Block::Contents(headed.clone()));
     }
-    for (i, run) in document.runs.iter().enumerate() {
-        drawing(i + 1, run, &mut page);
+    for (run, headed) in document.runs.iter().zip(headed) {
+        page.blocks.push(Block::Drawing(headed));
+        drawing(run, &mut page);
+        page.blocks.push(Block::DrawingEnd);
     }
-    page.raw("</main>\n<footer>\n<p>");
-    page.text(CAUTION);
-    page.raw("</p>\n</footer>\n</body>\n</html>\n");
-    page.out
+    page.blocks
+}
+
+fn headed(number: usize, run: &Run) -> Headed {
+    let (class, words) = verdict(run);
+    Headed { number, name: sheet_name(run), class, words }
 }
 
 /// The name that people know the drawing by: its sheet number where it is known.
@@ -73,32 +109,10 @@ fn verdict(run: &Run) -> (&'static str, &'static str) {
     }
 }
 
-fn contents(runs: &[Run], page: &mut Page) {
-    page.raw(
-        "<nav aria-labelledby=\"drawings\">\n<h2 id=\"drawings\">Drawings</h2>\n<ol class=\"contents\">\n",
-    );
-    for (i, run) in runs.iter().enumerate() {
-        let (class, words) = verdict(run);
-        page.raw(&format!("<li><a href=\"#drawing-{}\">", i + 1));
-        page.text(&sheet_name(run));
-        page.raw(&format!("</a> <span class=\"tag {class}\">{words}</span></li>\n"));
-    }
-    page.raw("</ol>\n</nav>\n");
-}
-
-fn drawing(number: usize, run: &Run, page: &mut Page) {
-    let (class, words) = verdict(run);
-    page.number = number;
-    page.raw(&format!(
-        "<article id=\"drawing-{number}\" aria-labelledby=\"drawing-{number}-name\">\n\
-         <h2 id=\"drawing-{number}-name\">"
-    ));
-    page.text(&sheet_name(run));
-    page.raw(&format!("</h2>\n<p class=\"verdict {class}\">{words}</p>\n"));
+fn drawing(run: &Run, page: &mut Page) {
     if let Some(error) = &run.error {
         sections::refusal(error, page);
         sections::checked(run, page);
-        page.raw("</article>\n");
         return;
     }
     sections::summary(run, page);
@@ -109,7 +123,9 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     hand::block(run, page);
     factors::block(run, page);
     sections::findings(run, page);
+    suggestion::section(run, page);
     stations::tables(run, page);
+    envelope::section(run, page);
     extremes::block(run, page);
     sections::offsets(run, page);
     traffic::section(run, page);
@@ -117,7 +133,6 @@ fn drawing(number: usize, run: &Run, page: &mut Page) {
     sections::assumptions(run, page);
     sections::settings(run, page);
     sections::signatures(page);
-    page.raw("</article>\n");
 }
 
 #[cfg(test)]

@@ -2,14 +2,14 @@
 
 use serde_json::Value;
 
-use super::html::{self, Page, figures, words};
-use crate::outcome::{Check, Finding, FindingVerdict, Load, MagnitudeFrom, Run, Source, Status};
+use super::page::{Block, Page, figures, sentence, words};
+use crate::outcome::{Check, Finding, FindingVerdict, Load, MagnitudeFrom, Run, Source, Status, Units};
 use crate::refusal::Refusal;
 use crate::write::annotate::note::omitted;
 use crate::write::annotate::shown::Shown;
 use crate::write::annotate::{check_name, governing, kind_name, worst_case};
 use crate::write::picture;
-use crate::write::text::{self, four_digits, metres, millimetres, signed_millimetres};
+use crate::write::text::{self, four_digits, metres, signed_small};
 
 /// Why a drawing was refused, and what would mend it.
 pub fn refusal(error: &Refusal, page: &mut Page) {
@@ -32,10 +32,11 @@ pub fn refusal(error: &Refusal, page: &mut Page) {
 /// The result in a few lines.
 pub fn summary(run: &Run, page: &mut Page) {
     page.section("Result", "plain");
+    let (m, mm) = text::length_units(&run.units);
     for span in &run.spans {
         let Some(case) = worst_case(run, span) else { continue };
         let mut told = format!(
-            "{}: {} of span {} m and {} {} m. ",
+            "{}: {} of span {} {m} and {} {} {m}. ",
             span.name,
             span.kind,
             metres(span.axis.span),
@@ -52,8 +53,8 @@ pub fn summary(run: &Run, page: &mut Page) {
                 if let Some(offset) = &line.offset {
                     let toward = if offset.signed < 0.0 { "intrados" } else { "extrados" };
                     told.push_str(&format!(
-                        "It strays {} mm at most from the axis, toward the {toward}, at x {} m, y {} m.",
-                        millimetres(offset.max_abs),
+                        "It strays {} {mm} at most from the axis, toward the {toward}, at x {} {m}, y {} {m}.",
+                        text::small(offset.max_abs, &run.units),
                         metres(offset.at[0]),
                         metres(offset.at[1])
                     ));
@@ -64,7 +65,7 @@ pub fn summary(run: &Run, page: &mut Page) {
         if span.cases.len() > 1 {
             told.push_str(&format!(" Worst case of {}: {}.", span.cases.len(), case.name));
         }
-        page.paragraph(&html::sentence(&told));
+        page.paragraph(&sentence(&told));
     }
     page.end();
 }
@@ -126,7 +127,7 @@ pub fn checked(run: &Run, page: &mut Page) {
         .collect();
     if !axes.is_empty() {
         page.table(
-            "Axis as read, lengths in m",
+            &format!("Axis as read, lengths in {}", run.units.length),
             &[
                 words("Span"),
                 figures("l"),
@@ -156,16 +157,18 @@ fn entity(source: &Source) -> String {
 pub fn elevation(run: &Run, page: &mut Page) {
     page.section("Elevation and line of thrust", "picture");
     let picture = picture::elevation(run);
-    let mut caption = "Axis thin, governing line of thrust heavy, ring lines faint where a depth is known. Figures at the \
-                       loads: offset of the line from the axis along the joint, mm, positive toward the extrados. Letters: \
-                       spaces between the loads (Bow's notation)."
-        .to_owned();
+    let (_, mm) = text::length_units(&run.units);
+    let mut caption = format!(
+        "Axis thin, governing line of thrust heavy, ring lines faint where a depth is known. Figures at the loads: offset of \
+         the line from the axis along the joint, {mm}, positive toward the extrados. Letters: spaces between the loads \
+         (Bow's notation)."
+    );
     match picture.hidden {
         0 => {}
         1 => caption.push_str(" 1 figure is not shown; the tables hold all."),
         n => caption.push_str(&format!(" {n} figures are not shown; the tables hold all.")),
     }
-    page.figure(&picture, &caption);
+    page.figure(picture, &caption);
     page.end();
 }
 
@@ -173,6 +176,7 @@ pub fn elevation(run: &Run, page: &mut Page) {
 pub fn loads(run: &Run, page: &mut Page) {
     page.section("Loads, by Bow's letters", "table");
     let unit = text::force_unit(&run.units);
+    let (m, _) = text::length_units(&run.units);
     for span in &run.spans {
         let shown = Shown::new(run, span, 1.0);
         let rows: Vec<Vec<String>> = span
@@ -200,8 +204,8 @@ pub fn loads(run: &Run, page: &mut Page) {
             &[
                 words("Spaces"),
                 words("Load"),
-                figures("x, m"),
-                figures("y, m"),
+                figures(format!("x, {m}")),
+                figures(format!("y, {m}")),
                 figures("To the right"),
                 figures("Upward"),
                 words("Magnitude from"),
@@ -246,7 +250,7 @@ pub fn polygon(run: &Run, page: &mut Page) {
     let Some(picture) = picture::polygons(run) else { return };
     page.section("Force polygon", "picture");
     page.figure(
-        &picture,
+        picture,
         "Load line by Bow's letters, pole O of the governing line and its rays. Each ray is parallel to the piece of the \
          line of thrust in the space of the same letter.",
     );
@@ -285,7 +289,8 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
     };
     let mut place = Vec::new();
     if let Some(at) = finding.at {
-        place.push(format!("x {} m, y {} m", metres(at[0]), metres(at[1])));
+        let (m, _) = text::length_units(&run.units);
+        place.push(format!("x {} {m}, y {} {m}", metres(at[0]), metres(at[1])));
     }
     if run.spans.len() > 1 {
         place.extend(finding.span.clone());
@@ -296,7 +301,7 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
     if let Some(source) = &finding.entity {
         place.push(entity(source));
     }
-    let mut said = html::sentence(&finding.message);
+    let mut said = sentence(&finding.message);
     if let Some(accepted) = &finding.accepted {
         said.push_str(&format!(". Accepted by {}: {}", accepted.by, accepted.reason));
         if let Some(until) = &accepted.until {
@@ -322,10 +327,7 @@ fn finding(run: &Run, finding: &Finding) -> Vec<String> {
 pub fn offsets(run: &Run, page: &mut Page) {
     let Some(picture) = picture::offsets(run) else { return };
     page.section("Offset diagram", "picture");
-    page.figure(
-        &picture,
-        "Offset of the governing line from the axis along the span, with the stated limit.",
-    );
+    page.figure(picture, "Offset of the governing line from the axis along the span, with the stated limit.");
     page.end();
 }
 
@@ -362,6 +364,9 @@ pub fn proofs(run: &Run, page: &mut Page) {
          line drawn reaches it but for the gap, relative to the value. The residual is the largest relative error of \
          equilibrium over all joints of the case.",
     );
+    if run.units.length == "ft" {
+        page.paragraph("Values and bounds stand in m and kN, as they were computed.");
+    }
     page.table(
         "Value reached and bound, per line",
         &[words("Line"), figures("Value reached"), figures("Bound"), figures("Gap"), figures("Residual")],
@@ -398,15 +403,9 @@ pub fn assumptions(run: &Run, page: &mut Page) {
     if !omitted.is_empty() {
         lines.push(format!("Left out: {omitted}."));
     }
-    page.raw("<ul>\n");
-    for line in lines {
-        page.raw("<li>");
-        page.text(&html::sentence(&line));
-        page.raw("</li>\n");
-    }
-    page.raw("</ul>\n");
+    page.blocks.push(Block::Bullets(lines.iter().map(|line| sentence(line)).collect()));
     page.figure(
-        &picture::signs(),
+        picture::signs(),
         "Signs: offsets toward the extrados, compression, and moments that go with a positive offset are positive; H is \
          the push of an abutment inward, V its upward reaction; x runs to the right and y upward from the origin of the \
          drawing.",
@@ -450,18 +449,11 @@ fn flatten(path: &str, value: &Value, out: &mut Vec<(String, String)>) {
 /// Places for those who prepared and checked the sheet.
 pub fn signatures(page: &mut Page) {
     page.section("Prepared and checked", "signatures");
-    page.raw("<dl class=\"sign\">\n");
-    for role in ["Prepared by", "Checked by"] {
-        page.raw(&format!(
-            "<div><dt>{role}</dt><dd><span class=\"line\">Name</span><span class=\"line\">Signature</span>\
-             <span class=\"line\">Date</span></dd></div>\n"
-        ));
-    }
-    page.raw("</dl>\n");
+    page.blocks.push(Block::Signatures(&["Prepared by", "Checked by"]));
     page.end();
 }
 
-/// The offset of a station as text, in mm.
-pub fn offset(value: Option<f64>) -> String {
-    value.map(signed_millimetres).unwrap_or_default()
+/// The offset of a station as text, in mm or inches.
+pub fn offset(value: Option<f64>, units: &Units) -> String {
+    value.map(|v| signed_small(v, units)).unwrap_or_default()
 }

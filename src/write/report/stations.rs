@@ -1,6 +1,6 @@
 //! Forces in the joints of the governing lines.
 
-use super::html::{Page, figures};
+use super::page::{Page, figures};
 use super::sections::offset;
 use crate::outcome::{Line, Run, Station};
 use crate::tolerance;
@@ -15,6 +15,8 @@ pub fn tables(run: &Run, page: &mut Page) {
     page.section("Stations of the governing line", "table");
     let force = text::force_unit(&run.units);
     let moment = text::moment_unit(&run.units);
+    let (m, mm) = text::length_units(&run.units);
+    let stress_in = text::stress_unit(&run.units);
     for span in &run.spans {
         let Some(case) = worst_case(run, span) else { continue };
         let Some(line) = governing(case) else {
@@ -25,19 +27,22 @@ pub fn tables(run: &Run, page: &mut Page) {
         let stress = told.iter().any(|t| t.stress_max.is_some());
         let depth = told.iter().any(|t| t.depth.is_some());
         let mut columns = vec![
-            figures("s, m"),
-            figures("x, m"),
-            figures("y, m"),
+            figures(format!("s, {m}")),
+            figures(format!("x, {m}")),
+            figures(format!("y, {m}")),
             figures("N"),
             figures("V"),
             figures("M"),
-            figures("Offset, mm"),
+            figures(format!("Offset, {mm}")),
         ];
         if depth {
-            columns.extend([figures("Depth, m"), figures("Offset / half depth")]);
+            columns.extend([figures(format!("Depth, {m}")), figures("Offset / half depth")]);
         }
         if stress {
-            columns.extend([figures("Stress most, MPa"), figures("least, MPa")]);
+            columns.extend([
+                figures(format!("Stress most, {stress_in}")),
+                figures(format!("least, {stress_in}")),
+            ]);
         }
         let rows: Vec<Vec<String>> = told
             .iter()
@@ -50,7 +55,7 @@ pub fn tables(run: &Run, page: &mut Page) {
                     four_digits(beside(t.thrust, size)),
                     four_digits(beside(t.shear, size)),
                     four_digits(beside(t.moment, size * span.axis.span)),
-                    offset(t.eccentricity),
+                    offset(t.eccentricity, &run.units),
                 ];
                 if depth {
                     row.push(t.depth.map(metres).unwrap_or_default());

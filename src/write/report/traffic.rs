@@ -1,14 +1,11 @@
-//! Traffic in the report: a diagram of the envelope and of the influence lines, and a table of what is worst where.
+//! Traffic in the report: tables of the worst values, of the envelope and of the influence lines.
 
-use super::html::{self, Page, figures, words};
+use super::page::{Column, Page, figures, sentence, words};
 use crate::outcome::{Direction, Run, Span, Status, Traffic, WorstValue};
 use crate::write::text::{four_digits, metres, millimetres, signed_millimetres, three_digits};
 
 /// Stations told in a table.
 const MOST: usize = 24;
-/// Size of a diagram.
-const WIDTH: f64 = 640.0;
-const HEIGHT: f64 = 170.0;
 
 /// The section on traffic; nothing where the job has none.
 pub fn section(run: &Run, page: &mut Page) {
@@ -29,7 +26,7 @@ pub fn section(run: &Run, page: &mut Page) {
 fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
     let head = format!("{}, {} on case {case}", span.name, train.name);
     if train.status != Status::Found {
-        page.paragraph(&html::sentence(&format!(
+        page.paragraph(&sentence(&format!(
             "{head}: not computed: {}",
             train.reason.as_deref().unwrap_or("no reason is known")
         )));
@@ -59,21 +56,30 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
             four_digits(-at.beside[1][1])
         ));
     }
-    page.paragraph(&html::sentence(&told));
-    page.raw(&envelope(span, train, &head));
+    page.paragraph(&sentence(&told));
     for line in &train.influence {
-        let points = |f: &dyn Fn(&crate::outcome::InfluenceOrdinate) -> Option<f64>| -> Vec<(f64, f64)> {
-            line.ordinates.iter().filter_map(|o| Some((o.x, f(o)?))).collect()
-        };
-        for (what, curve) in [
-            ("push, kN per kN", points(&|o| Some(o.push))),
-            ("moment, kN·m per kN", points(&|o| Some(o.moment))),
-            ("eccentricity, mm per kN", points(&|o| o.eccentricity.map(|e| e * 1000.0))),
-        ] {
-            let name =
-                format!("{head}: influence line at {} of the span, {what}", four_digits(line.fraction));
-            page.raw(&diagram(&name, &[("most", curve)]));
-        }
+        let step = line.ordinates.len().div_ceil(MOST).max(1);
+        let rows: Vec<Vec<String>> = line
+            .ordinates
+            .iter()
+            .step_by(step)
+            .map(|o| {
+                vec![
+                    metres(o.x),
+                    four_digits(o.push),
+                    four_digits(o.moment),
+                    o.eccentricity.map(|e| three_digits(e * 1000.0)).unwrap_or_default(),
+                ]
+            })
+            .collect();
+        page.table(
+            &format!(
+                "{head}: influence lines of one kN, joint at {} of the span",
+                four_digits(line.fraction)
+            ),
+            &[figures("x, m"), figures("Push, kN"), figures("Moment, kN·m"), figures("Eccentricity, mm")],
+            &rows,
+        );
     }
     page.table(&format!("{head}: worst values"), &columns(), &worst(train));
     let picked = train.envelope.len().div_ceil(MOST).max(1);
@@ -122,7 +128,7 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
     );
 }
 
-fn columns() -> [html::Column<'static>; 5] {
+fn columns() -> [Column; 5] {
     [words("What"), figures("Value"), words("Unit"), figures("First axle at x, m"), words("Running")]
 }
 
@@ -171,72 +177,4 @@ fn worst(train: &Traffic) -> Vec<Vec<String>> {
         }
     }
     rows
-}
-
-/// The band of offsets along the span.
-fn envelope(span: &Span, train: &Traffic, head: &str) -> String {
-    let curve = |f: &dyn Fn(&crate::outcome::EnvelopeStation) -> Option<f64>| -> Vec<(f64, f64)> {
-        train.envelope.iter().filter_map(|s| Some((s.at[0], f(s)? * 1000.0))).collect()
-    };
-    let mut curves =
-        vec![("most", curve(&|s| s.eccentricity_max)), ("least", curve(&|s| s.eccentricity_min))];
-    if span.ring.is_some() {
-        curves.push(("edge", curve(&|s| s.depth.map(|d| d / 2.0))));
-        curves.push(("edge", curve(&|s| s.depth.map(|d| -d / 2.0))));
-    }
-    diagram(
-        &format!("{head}: offset of the lines of thrust from the axis, mm, toward the extrados upward"),
-        &curves,
-    )
-}
-
-/// Curves over the span, with their extremes in figures.
-fn diagram(name: &str, curves: &[(&str, Vec<(f64, f64)>)]) -> String {
-    let all = || curves.iter().flat_map(|c| &c.1);
-    let fold =
-        |f: fn(f64, f64) -> f64, from: f64, pick: fn(&(f64, f64)) -> f64| all().map(pick).fold(from, f);
-    let (x0, x1) = (fold(f64::min, f64::INFINITY, |p| p.0), fold(f64::max, f64::NEG_INFINITY, |p| p.0));
-    let (y0, y1) = (fold(f64::min, 0.0, |p| p.1), fold(f64::max, 0.0, |p| p.1));
-    if !(x1 > x0 && y1 > y0) {
-        return String::new();
-    }
-    let (left, right, top, bottom) = (70.0, WIDTH - 10.0, 14.0, HEIGHT - 24.0);
-    let place = |p: &(f64, f64)| {
-        (left + (p.0 - x0) / (x1 - x0) * (right - left), bottom - (p.1 - y0) / (y1 - y0) * (bottom - top))
-    };
-    let mut svg = format!(
-        "<figure>\n<svg viewBox=\"0 0 {WIDTH} {HEIGHT}\" role=\"img\" aria-label=\"{0}\" fill=\"none\" stroke=\"currentColor\" \
-         font-size=\"11\">\n",
-        html::escape(name)
-    );
-    let zero = place(&(x0, 0.0)).1;
-    svg.push_str(&format!("<path d=\"M{left} {zero:.1}H{right}\" stroke-width=\"0.6\"/>\n"));
-    for (class, curve) in curves {
-        let mut path = String::new();
-        for (i, p) in curve.iter().enumerate() {
-            let (x, y) = place(p);
-            path.push_str(&format!("{}{x:.1} {y:.1}", if i == 0 { "M" } else { "L" }));
-        }
-        let look = match *class {
-            "edge" => "stroke-width=\"0.8\" stroke-dasharray=\"2 4\"",
-            "least" => "stroke-width=\"1.6\" stroke-dasharray=\"8 3\"",
-            _ => "stroke-width=\"1.6\"",
-        };
-        svg.push_str(&format!("<path d=\"{path}\" {look}/>\n"));
-    }
-    let mut figure = |x: f64, y: f64, anchor: &str, text: &str| {
-        svg.push_str(&format!(
-            "<text x=\"{x:.1}\" y=\"{y:.1}\" text-anchor=\"{anchor}\" fill=\"currentColor\" stroke=\"none\">{}</text>\n",
-            html::escape(text)
-        ));
-    };
-    figure(left - 4.0, top + 4.0, "end", &three_digits(y1));
-    figure(left - 4.0, bottom + 4.0, "end", &three_digits(y0));
-    if zero > top + 12.0 && zero < bottom - 12.0 {
-        figure(left - 4.0, zero + 4.0, "end", "0");
-    }
-    figure(left, HEIGHT - 6.0, "start", &format!("x {} m", metres(x0)));
-    figure(right, HEIGHT - 6.0, "end", &format!("{} m", metres(x1)));
-    svg.push_str(&format!("</svg>\n<figcaption>{}</figcaption>\n</figure>\n", html::escape(name)));
-    svg
 }
