@@ -339,6 +339,20 @@ pub const REVISION_RELATIVE: f64 = 1e-6;
 /// loads of a close row are taken for one that moved; smaller: a load pushed aside a little counts as gone and new.
 pub const REVISION_NEAR: f64 = 0.01;
 
+/// Relative change of the worst values of a moving load at which the distance of its positions is not halved any more all
+/// along. Larger: a peak between two positions is missed; smaller: positions that bring nothing.
+pub const STEP_CHANGE: f64 = 1e-4;
+
+/// The same about the worst positions. Larger: digits of the worst values are lost; smaller: positions that bring nothing.
+pub const STEP_FINE: f64 = 1e-7;
+
+/// Part of the span within which two posts are one, and a post stands at a springing. Larger: narrow posts of a pair are
+/// one; smaller: a post drawn a hair beside the springing leaves a deck span of a hair.
+pub const ONE_POST: f64 = 1e-6;
+
+/// Least cosine of the slope of a road beyond its drawn end. Larger: true slopes are flattened; smaller: a road drawn with
+/// an upright end runs to infinity.
+pub const STEEP_ROAD: f64 = 0.1;
 /// How far the rise of a suggested axis may miss that of the drawn one, relative to the span. Larger: the suggestion is not
 /// the funicular of the stated rise; smaller: leaning loads take more steps than rounding allows.
 pub const SUGGESTED_RISE: f64 = 1e-10;

@@ -332,6 +332,7 @@ const NOT_SHOWN: &[(&str, &str)] = &[
     ("traffic.both_ways", "whether the train also runs from right to left"),
     ("traffic.share", "part of the train on this rib, in place of `effective_width`"),
     ("traffic.dynamic", "factor on the axle loads"),
+    ("traffic.deck", "deck over posts: simple (supported from post to post; the default) or continuous"),
     ("range.low", "least value"),
     ("range.high", "greatest value"),
     ("limits.geometric_factor", "least geometric factor of safety"),

@@ -1,7 +1,7 @@
 //! The summary on a terminal: colours there only and never with `NO_COLOR`, lines as wide as it, the worst thing first.
 //! A terminal is made by `script` of util-linux.
 
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stderr)]
 
 use std::fs;
 use std::path::Path;

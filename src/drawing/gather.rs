@@ -40,6 +40,7 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
             | JobRole::Plan,
         ))
         | Err(_) => true,
+        Ok(Some(JobRole::Road)) => !settings.traffic.is_empty(),
         Ok(_) => {
             candidate.block.is_none()
                 && ((!stated(Role::Axis)
@@ -138,6 +139,7 @@ fn read_seen(
     let (hinges, _) = reader.points(&hinge_layers, &outline.records)?;
     reader.passed_over(Role::Hinges, &hinge_layers, &POINTS);
     reader.hidden(hinge_layers.iter());
+    let road = reader.road()?;
     if bytes.len() > tolerance::SURROUNDINGS {
         reader.notes.push(Note::SurroundingsNotRead);
     }
@@ -187,6 +189,7 @@ fn read_seen(
         dimensions,
         title,
         hinges,
+        road,
         areas,
         texts,
         viewports,
@@ -217,6 +220,19 @@ struct Reader<'a> {
 }
 
 impl Reader<'_> {
+    /// The road line, where traffic runs on it.
+    fn road(&mut self) -> Result<Vec<Curve>, Refusal> {
+        if self.settings.traffic.is_empty() {
+            return Ok(Vec::new());
+        }
+        let layers = roles::named(self.outline, self.settings, Role::Road, &CURVES)?;
+        let curves = self.curves(&layers, &self.outline.records)?;
+        self.refuse_unread(&layers, Role::Road)?;
+        self.passed_over(Role::Road, &layers, &CURVES);
+        self.hidden(layers.iter());
+        Ok(curves)
+    }
+
     /// Intrados and extrados by the patterns; both or none.
     fn ring_lines(&mut self) -> Result<[Layered; 2], Refusal> {
         let read = |role: Role| -> Result<(Vec<String>, Vec<Curve>), Refusal> {
@@ -494,6 +510,7 @@ impl Reader<'_> {
                     | JobRole::Posts
                     | JobRole::Plan,
                 ) => continue,
+                Some(JobRole::Road) if !self.settings.traffic.is_empty() => continue,
                 Some(role) => role.name(),
                 _ => continue,
             };

@@ -74,6 +74,8 @@ pub struct Drawing {
     pub title: Title,
     /// Points on the hinge layers, in the order of the file.
     pub hinges: Vec<PointLike>,
+    /// Curves of the road line, in the order of the file; read only where the job has traffic.
+    pub road: Vec<Curve>,
     /// Outlines of the areas of the job, in its order.
     pub areas: Vec<outlines::Outlines>,
     /// Texts on the load layers, in the order of the file.

@@ -18,6 +18,8 @@ pub enum Role {
     Extrados,
     /// Hinges of the rib.
     Hinges,
+    /// The line that traffic runs on.
+    Road,
     /// Spandrel posts.
     Posts,
     /// The roadway in plan.
@@ -35,6 +37,7 @@ impl Role {
             Self::Intrados => "intrados",
             Self::Extrados => "extrados",
             Self::Hinges => "hinges",
+            Self::Road => "road",
             Self::Posts => "posts",
             Self::Plan => "plan",
             Self::Areas => "area",

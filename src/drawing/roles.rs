@@ -41,6 +41,7 @@ pub fn named(
         Role::Intrados => JobRole::Intrados,
         Role::Extrados => JobRole::Extrados,
         Role::Hinges => JobRole::Hinges,
+        Role::Road => JobRole::Road,
         Role::Posts => JobRole::Posts,
         Role::Plan => JobRole::Plan,
         // Areas have tables of their own.

@@ -87,7 +87,7 @@ pub fn suggest(
             .collect();
         if points.is_empty() {
             // Arrows alone.
-            let arrows = gather::in_model(&records, one).any(|r| LOADS.contains(&r.kind.as_str()));
+            let arrows = gather::in_model(records, one).any(|r| LOADS.contains(&r.kind.as_str()));
             if arrows && roles::role_of(settings, layer)? == Some(JobRole::Loads) {
                 found.push(Suggestion { role: Role::Loads, layer: layer.clone(), reason: None });
             }

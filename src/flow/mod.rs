@@ -7,6 +7,7 @@ mod problem;
 mod ranges;
 mod sheet;
 mod suggest;
+mod traffic;
 mod unmark;
 
 use std::path::{Path, PathBuf};
@@ -264,7 +265,14 @@ fn judged(
     let cases = model::cases::cases(&model, settings)?;
     let analyses = analyse(&model, &cases, settings)?;
     let extras = extras(&model, &cases, settings, &analyses)?;
-    let computed = verdict::Computed { model: &model, cases: &cases, analyses: &analyses, extras: &extras };
+    let traffic = traffic::run(&model, &cases, settings)?;
+    let computed = verdict::Computed {
+        model: &model,
+        cases: &cases,
+        analyses: &analyses,
+        extras: &extras,
+        traffic: &traffic,
+    };
     let mut judged = verdict::judge(settings, &drawing.notes, &computed, environment.today);
     suggest::add(&computed, settings, &mut judged, environment.today)?;
     Ok((drawing, judged))

@@ -169,7 +169,10 @@ fn holds(
     let analyses = analyse(&thicker, cases, &settings)?;
     // What takes more than one analysis decides no limit.
     let extras = vec![vec![verdict::Extra::default(); cases.len()]; thicker.spans.len()];
-    let computed = verdict::Computed { model: &thicker, cases, analyses: &analyses, extras: &extras };
+    // The trains of the job stay with the ring as drawn.
+    let traffic = vec![Vec::new(); analyses.len()];
+    let computed =
+        verdict::Computed { model: &thicker, cases, analyses: &analyses, extras: &extras, traffic: &traffic };
     let judged = verdict::judge(&settings, &[], &computed, today);
     let depends =
         [Check::Ring, Check::Kern, Check::Stress, Check::GeometricFactor, Check::LoadFactor, Check::NoLine];

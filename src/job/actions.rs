@@ -53,6 +53,16 @@ choice! {
     }
 }
 
+choice! {
+    /// How the deck runs over its posts.
+    Deck {
+        /// Simply supported from post to post.
+        Simple = "simple",
+        /// One beam of one stiffness over all of them.
+        Continuous = "continuous",
+    }
+}
+
 /// A length, or one that is chosen in the run. Serialised as a number or `auto`.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Step {
@@ -81,6 +91,9 @@ pub struct Traffic {
     /// How it reaches the rib.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub through: Option<Through>,
+    /// How the deck runs over the posts; `None`: simply supported.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub deck: Option<Deck>,
     /// Width of the ring that carries it, m; at most one of this and `share` is given.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub effective_width: Option<f64>,

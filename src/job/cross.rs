@@ -82,6 +82,14 @@ fn names(settings: &Settings, line: &dyn Fn(&str) -> u64, notes: &Notes) {
         {
             missing(format!("traffic[{place}].case"), "case", case);
         }
+        if traffic.case.is_none() && !case_exists("drawn") {
+            notes.add(
+                "job-missing",
+                line(&format!("traffic[{place}].name")),
+                format!("`traffic.case` of \"{}\" does not say which [[case]] it stands on", traffic.name),
+                "Add `case` with the name of a [[case]]",
+            );
+        }
         for other in traffic.with.keys() {
             let known = |train: &super::actions::Traffic| same_name(&train.name, other);
             if !settings.traffic.iter().any(known) || known(traffic) {

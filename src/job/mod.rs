@@ -29,7 +29,7 @@ use problem::{Problem, combine};
 use section::Notes;
 use tree::{Kind, Table};
 
-pub use actions::{Area, Case, Range, Step, Through, Traffic};
+pub use actions::{Area, Case, Deck, Range, Step, Through, Traffic};
 pub use choice::Choice;
 pub use layers::{Layers, Patterns, Role};
 pub use limits::{Accept, Assumption, Exception, LimitCheck, Limits};
@@ -349,6 +349,7 @@ mod tests {
     fn names_that_point_nowhere() {
         for (text, words) in [
             ("[[traffic]]\nname = \"t\"\ncase = \"dead\"", "no [[case]] named \"dead\""),
+            ("[[case]]\nname = \"dead\"\n[[traffic]]\nname = \"t\"", "which [[case]] it stands on"),
             ("[[traffic]]\nname = \"t\"\nwith = { u = 1 }", "no [[traffic]] named \"u\""),
             ("[[traffic]]\nname = \"t\"\nwith = { T = 1 }", "no [[traffic]] named \"T\""),
             ("[[range]]\nwhat = \"fill.level\"\nlow = 1\nhigh = 2", "no [[area]] named \"fill\""),

@@ -272,6 +272,7 @@ fn traffic(section: &Section<'_>) -> Option<Traffic> {
         name: name.clone().unwrap_or_default(),
         axles,
         through,
+        deck: section.choice("deck"),
         effective_width: section.quantity("effective_width", Length, Positive),
         share: section.number("share", Part),
         dispersal: section.number("dispersal", NotNegative),

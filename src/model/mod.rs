@@ -26,6 +26,7 @@ mod plan;
 mod posts;
 pub mod ring;
 pub mod roof;
+pub mod traffic;
 pub mod weight;
 
 use crate::drawing::outlines::Outlines;
@@ -50,6 +51,8 @@ pub struct Model {
     pub spans: Vec<Span>,
     /// What forces are given in.
     pub forces: Forces,
+    /// The road line in its pieces, left to right, m.
+    pub road: Vec<Path>,
     /// Loads that stand over no span.
     pub off_span: Vec<Load>,
     /// Drawn dimensions of span, rise and depth.
@@ -164,6 +167,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     let mut notes = Vec::new();
     let mut spans = spans(drawing, &mut notes)?;
     hinges(drawing, &mut spans, settings.depth, &mut notes);
+    let road = traffic::road(&drawing.road, metres, &mut notes)?;
     let on_layers =
         loads::OnLayers { points: &drawing.points, strokes: &drawing.strokes, texts: &drawing.texts };
     let distance = |p: Point| {
@@ -194,6 +198,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     Ok(Model {
         spans,
         forces,
+        road,
         off_span,
         areas: Vec::new(),
         outlines: (drawing.areas.clone(), metres),

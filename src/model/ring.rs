@@ -80,7 +80,7 @@ fn one_line(
 }
 
 /// What is wrong with a chain is said of the line that it makes.
-fn named(mut refusal: Refusal, name: &str) -> Refusal {
+pub(super) fn named(mut refusal: Refusal, name: &str) -> Refusal {
     refusal.check = refusal.check.replacen("axis", name, 1);
     let line = |text: &str| {
         text.replace("the axis of the arch", &format!("the {name}"))

@@ -59,6 +59,7 @@ fn drawing(axis: Vec<Curve>, points: Vec<PointLike>, texts: Vec<Text>) -> Drawin
     Drawing {
         intrados: Vec::new(),
         hinges: Vec::new(),
+        road: Vec::new(),
         areas: Vec::new(),
         extrados: Vec::new(),
         plane: crate::tags::marks::Plane::XY,

@@ -123,7 +123,16 @@ fn layers(add: &mut impl FnMut(&str), listing: &Listing, role: Role, words: &str
     let taken = match (&listing.taken, role) {
         (Ok((axis, _)), Role::Axis) => axis.clone(),
         (Ok((_, loads)), Role::Loads) => loads.clone(),
-        (Ok(_), Role::Intrados | Role::Extrados | Role::Hinges | Role::Posts | Role::Plan | Role::Areas)
+        (
+            Ok(_),
+            Role::Intrados
+            | Role::Extrados
+            | Role::Hinges
+            | Role::Road
+            | Role::Posts
+            | Role::Plan
+            | Role::Areas,
+        )
         | (Err(_), _) => Vec::new(),
     };
     let value = |names: &[String]| match names {

@@ -8,6 +8,7 @@ pub mod bow;
 mod ranges;
 mod slender;
 mod suggestion;
+mod traffic;
 
 pub use suggestion::{Move, SuggestedAxis, SuggestedDepth, Suggestion};
 
@@ -21,6 +22,11 @@ pub use ranges::{RangeInput, RangedFactor, RangedValue, Ranges};
 pub use slender::{Buckling, SectionForces};
 
 pub use areas::{AreaShare, PierPush};
+
+pub use traffic::{
+    AtWorst, Axle, Direction, EnvelopeStation, Forces, InfluenceLine, InfluenceOrdinate, PushRange, Traffic,
+    Worst, WorstValue,
+};
 
 /// Version of the results contract.
 pub const CONTRACT: u32 = 1;
@@ -302,7 +308,7 @@ pub struct Case {
     /// The lines of thrust, the governing one first.
     pub lines: Vec<Line>,
     /// Traffic on top of this case.
-    pub traffic: Vec<serde_json::Value>,
+    pub traffic: Vec<Traffic>,
     /// Factors of safety of a ring; null where they do not apply.
     pub safety: Option<Safety>,
     /// Both extremes of thrust and moment of the governing line, each with what goes with it; empty where that line is only
@@ -534,6 +540,8 @@ pub enum Check {
     NoLimit,
     /// What the computation leaves out.
     LeftOut,
+    /// Traffic: what was taken to be so, what reaches the abutments, what remains uncertain.
+    Traffic,
     /// An axis or a depth that would suit the loads better.
     Suggestion,
 }

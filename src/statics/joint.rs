@@ -17,6 +17,10 @@ impl Loads {
         self.fy += force.y;
         self.moment += at.x * force.y - at.y * force.x;
     }
+
+    pub fn plus(&self, other: &Self) -> Self {
+        Self { fx: self.fx + other.fx, fy: self.fy + other.fy, moment: self.moment + other.moment }
+    }
 }
 
 /// The loads before a joint in two sets: those that stay, and those that the load factor multiplies.

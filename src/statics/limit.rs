@@ -6,6 +6,7 @@
 //! interval of the load factor are linear programs. The continuous ring is met by exchange. The multipliers are the
 //! rotations of a mechanism: its hinges, and its virtual work, which gives the same factor.
 
+use super::Status;
 use super::joint::{Affine, Joint, Unknowns};
 use super::peaks::{Measure, Sampling};
 use super::simplex::{MOST, Outcome, Program, Row, Vertex};
@@ -103,6 +104,36 @@ struct Run {
     size: f64,
 }
 
+/// Where a program ended, for the next one of a like span: the joints that it needed and its basis. Without strength only:
+/// the tangents of a curved law belong to one line.
+#[derive(Debug, Clone, Default)]
+pub(super) struct Warm {
+    places: Vec<(usize, f64)>,
+    basis: Option<[usize; MOST]>,
+}
+
+/// Joints that are handed on from program to program.
+const MOST_KEPT: usize = 60;
+
+impl Warm {
+    fn keep(&mut self, run: &Run) {
+        if run.rows.iter().any(|b| b.touched > 0.0) {
+            return;
+        }
+        for bound in &run.rows {
+            let place = (bound.joint.piece, bound.joint.s);
+            if self.places.last() != Some(&place) {
+                self.places.push(place);
+            }
+        }
+        self.basis = run.program.basis();
+        if self.places.len() > MOST_KEPT {
+            self.places.clear();
+            self.basis = None;
+        }
+    }
+}
+
 /// The programs of one ring.
 pub(super) struct Limit<'a> {
     pub span: &'a Span,
@@ -120,6 +151,62 @@ pub(super) struct Limit<'a> {
 impl Limit<'_> {
     /// The extreme of one aim.
     pub fn solve(&self, aim: Aim) -> Extreme {
+        let goal = self.goal(aim);
+        let mut run = self.start(&goal, FIRST_BOX);
+        for joint in self.sampling.spread(START) {
+            self.add(&mut run, joint, 0.0);
+        }
+        let vertex = match self.settle(&mut run) {
+            Ok(vertex) => vertex,
+            Err(ended) => return ended,
+        };
+        let (run, vertex) = self.polish(&goal, run, vertex);
+        self.found(&goal, &run, &vertex)
+    }
+
+    /// The extreme of one aim, without its line or mechanism, from where a like program ended.
+    ///
+    /// # Errors
+    /// Why there is none.
+    pub fn value(&self, aim: Aim, warm: &mut Warm) -> Result<f64, Status> {
+        let goal = self.goal(aim);
+        let mut run = self.start(&goal, FIRST_BOX);
+        let known = warm
+            .places
+            .iter()
+            .all(|&(piece, s)| self.span.pieces.get(piece).is_some_and(|p| p.s0 <= s && s <= p.s1));
+        if warm.places.is_empty() || !known {
+            for joint in self.sampling.spread(START) {
+                self.add(&mut run, joint, 0.0);
+            }
+        } else {
+            for &(piece, s) in &warm.places {
+                self.add(&mut run, self.span.pieces[piece].joint(s, piece), 0.0);
+            }
+            run.program.start_from(warm.basis);
+        }
+        let mut ended = self.settle(&mut run);
+        if matches!(ended, Err(Extreme::Stalled)) && !warm.places.is_empty() {
+            run = self.start(&goal, FIRST_BOX);
+            for joint in self.sampling.spread(START) {
+                self.add(&mut run, joint, 0.0);
+            }
+            ended = self.settle(&mut run);
+        }
+        warm.places.clear();
+        warm.basis = None;
+        match ended {
+            Ok(vertex) => {
+                warm.keep(&run);
+                Ok(goal.sign * (vertex.cost + goal.constant))
+            }
+            Err(Extreme::Unbounded) => Err(Status::Unbounded),
+            Err(Extreme::None(_)) => Err(Status::None),
+            Err(Extreme::Stalled | Extreme::Found { .. }) => Err(Status::Refused),
+        }
+    }
+
+    fn goal(&self, aim: Aim) -> Goal {
         let (unknown, sign) = match aim {
             Aim::LeastPush => (0, 1.0),
             Aim::GreatestPush => (0, -1.0),
@@ -129,14 +216,14 @@ impl Limit<'_> {
         let mut unit = [0.0; 4];
         unit[unknown] = sign;
         let (cost, constant) = self.space.row(&(unit, 0.0));
-        let goal = Goal { unknown, sign, cost, constant };
-        let mut run = self.start(&goal, FIRST_BOX);
-        for joint in self.sampling.spread(START) {
-            self.add(&mut run, joint, 0.0);
-        }
+        Goal { unknown, sign, cost, constant }
+    }
+
+    /// The best vertex in a box that does not hold it.
+    fn settle(&self, run: &mut Run) -> Result<Vertex, Extreme> {
         // Vertices of a large box cost digits: it grows only as long as it holds the optimum.
-        let vertex = loop {
-            let (held, ended) = match self.exchange(&mut run) {
+        loop {
+            let (held, ended) = match self.exchange(run) {
                 Ok(vertex) => {
                     let held = run.program.held(&vertex) * run.size;
                     (held > tolerance::PROOF_GAP * vertex.cost.abs().max(1.0), Ok(vertex))
@@ -144,16 +231,14 @@ impl Limit<'_> {
                 Err((held, ended)) => (held, Err(ended)),
             };
             match ended {
-                Ok(vertex) if !held => break vertex,
-                Ok(_) if run.size >= tolerance::UNBOUNDED => return Extreme::Unbounded,
-                Err(ended) if !held || run.size >= tolerance::UNBOUNDED => return ended,
+                Ok(vertex) if !held => return Ok(vertex),
+                Ok(_) if run.size >= tolerance::UNBOUNDED => return Err(Extreme::Unbounded),
+                Err(ended) if !held || run.size >= tolerance::UNBOUNDED => return Err(ended),
                 _ => {}
             }
             run.size *= BOX_GROWTH;
             run.program.widen(run.size);
-        };
-        let (run, vertex) = self.polish(&goal, run, vertex);
-        self.found(&goal, &run, &vertex)
+        }
     }
 
     /// A program without joints yet.

@@ -31,6 +31,7 @@ mod suggest;
 mod thickness;
 mod through;
 mod ties;
+pub mod traffic;
 
 pub use analyse::{analyse, elastic};
 pub use elastic::{Effects, Flexibility, Place};

@@ -6,7 +6,7 @@
 //! its slope is followed to the peak. A ring of a stated number of voussoirs has its own joints and no others.
 
 use super::Unsolved;
-use super::joint::{Joint, Unknowns};
+use super::joint::{Joint, Loads, Unknowns};
 use super::piece::Piece;
 use super::span::Span;
 use crate::geometry::{Boxes, Point, Vec2};
@@ -74,7 +74,9 @@ impl<'a> Sampling<'a> {
             let s = k as f64 / count as f64;
             let (before, after) = (span.joint_at(s, true), span.joint_at(s, false));
             joints.push(before);
-            if after.loads != before.loads || after.tangent != before.tangent {
+            let loaded = span.entered.partition_point(|e| e.foot < s - tolerance::ONE_JOINT);
+            let loaded = span.entered.get(loaded).is_some_and(|e| e.foot <= s + tolerance::ONE_JOINT);
+            if loaded || after.loads != before.loads || after.tangent != before.tangent {
                 joints.push(after);
             }
         }
@@ -134,6 +136,21 @@ impl<'a> Sampling<'a> {
         let peaks =
             self.joints.iter().map(|j| self.peak(Measure::Eccentricity, &Joint { depth: 1.0, ..*j }, r));
         peaks.max_by(|a, b| a.value.total_cmp(&b.value))
+    }
+
+    /// The same joints of a span that carries other loads: what `fixed` and `varying` say has entered before each piece
+    /// comes to the loads of each joint.
+    pub fn carrying<'b>(&self, span: &'b Span, fixed: &[Loads], varying: &[Loads]) -> Sampling<'b> {
+        let mut joints = self.joints.clone();
+        for joint in &mut joints {
+            if let Some(loads) = fixed.get(joint.piece) {
+                joint.loads.fixed = joint.loads.fixed.plus(loads);
+            }
+            if let Some(loads) = varying.get(joint.piece) {
+                joint.loads.varying = joint.loads.varying.plus(loads);
+            }
+        }
+        Sampling { span, sense: self.sense, joints, separate: self.separate, drawn: self.drawn }
     }
 
     pub fn joints(&self) -> &[Joint] {

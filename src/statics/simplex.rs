@@ -72,6 +72,16 @@ impl Program {
         Self { unknowns, cost: c, rows, lengths, basis: None }
     }
 
+    /// The basis of the last vertex, for a program with like rows.
+    pub fn basis(&self) -> Option<[usize; MOST]> {
+        self.basis
+    }
+
+    /// Starts the next solution from a basis of a program with like rows, where it is of use.
+    pub fn start_from(&mut self, basis: Option<[usize; MOST]>) {
+        self.basis = basis;
+    }
+
     /// Makes the box larger; the basis is kept.
     pub fn widen(&mut self, size: f64) {
         for row in &mut self.rows[..2 * self.unknowns] {

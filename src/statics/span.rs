@@ -4,7 +4,7 @@
 //! Lengths are in units of the axis length, measured from the left springing; forces in units of the total load.
 //! National grid coordinates, millimetres and meganewtons therefore all give the same arithmetic.
 
-use super::joint::{Affine, Entered, Joint, LoadSets, Unknowns, Weight, moment_row};
+use super::joint::{Affine, Entered, Joint, LoadSets, Loads, Unknowns, Weight, moment_row};
 use super::line_load::{self, Laid};
 use super::piece::Piece;
 use super::place::{check_input, depth_at, depth_table, mean, place};
@@ -44,6 +44,12 @@ pub(super) struct Span {
 impl Span {
     /// Puts the loads on the ring and cuts the axis.
     pub fn new(problem: &Problem) -> Result<Self, Unsolved> {
+        Self::with_live(problem, 0.0)
+    }
+
+    /// The same for a span that will carry moving loads of about the size `live`, kN, beside the loads of the problem: it
+    /// may then have none.
+    pub fn with_live(problem: &Problem, live: f64) -> Result<Self, Unsolved> {
         check_input(problem)?;
         let origin = problem.axis.start();
         let length = problem.axis.length();
@@ -74,8 +80,8 @@ impl Span {
         let total: f64 = entered.iter().map(|e| e.force.hypot()).sum();
         let laid = line_load::lay(&path, problem, origin, length)?;
         let lines: f64 = laid.iter().map(|l| l.down.abs() * l.plan).sum();
-        let load =
-            total + lines + (problem.weight_on_axis + problem.ring_weight * mean(&depth) * length) * length;
+        let own = (problem.weight_on_axis + problem.ring_weight * mean(&depth) * length) * length;
+        let load = live + total + lines + own;
         let inside = |e: &&Entered| {
             e.force.hypot() > 0.0 && e.foot > tolerance::ONE_JOINT && e.foot < 1.0 - tolerance::ONE_JOINT
         };
@@ -84,9 +90,8 @@ impl Span {
             of_ring: problem.ring_weight * length * length / load,
             on_plan: 0.0,
         };
-        if problem.weight_on_axis + problem.ring_weight + lines <= 0.0
-            && entered.iter().find(inside).is_none()
-        {
+        let bare = problem.weight_on_axis + problem.ring_weight + lines <= 0.0;
+        if live <= 0.0 && bare && entered.iter().find(inside).is_none() {
             return Err(Unsolved::NoLoad);
         }
         let weight = match problem.weight_varies {
@@ -274,6 +279,17 @@ impl Span {
         }
         other.has_depth = false;
         other
+    }
+
+    /// Puts the loads of `base` on it, and beside them what `varying` and `fixed` say has entered before each piece. Both
+    /// spans have the same pieces.
+    pub fn carry(&mut self, base: &Self, fixed: &[Loads], varying: &[Loads]) {
+        for (i, (piece, from)) in self.pieces.iter_mut().zip(&base.pieces).enumerate() {
+            piece.before = LoadSets {
+                fixed: fixed.get(i).map_or(from.before.fixed, |l| from.before.fixed.plus(l)),
+                varying: varying.get(i).map_or(from.before.varying, |l| from.before.varying.plus(l)),
+            };
+        }
     }
 
     /// Lever arm of the push that a line may count on: the rise, and the depth where one is known.

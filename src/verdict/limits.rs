@@ -57,7 +57,7 @@ pub fn span(analysis: &Analysis, span: &Span, case: usize, settings: &Settings, 
 }
 
 /// Whether the job declares a support that makes the rib an elastic arch.
-fn elastic_support(settings: &Settings) -> bool {
+pub(super) fn elastic_support(settings: &Settings) -> bool {
     matches!(settings.rib.support, Some(Support::Hingeless | Support::TwoHinged | Support::ThreeHinged))
 }
 

@@ -14,6 +14,7 @@ mod sideways;
 mod slender;
 mod spans;
 mod suggest;
+pub mod traffic;
 
 pub use piers::Pushes;
 
@@ -50,6 +51,8 @@ pub struct Computed<'a> {
     pub analyses: &'a [Vec<Analysis>],
     /// Alike, what takes more than one analysis.
     pub extras: &'a [Vec<Extra>],
+    /// Of each span, in order, what the trains of the job came to.
+    pub traffic: &'a [Vec<traffic::Ran>],
 }
 
 /// What takes more than one analysis of a span in a case.
@@ -71,7 +74,7 @@ pub fn judge(
     computed: &Computed<'_>,
     today: Date,
 ) -> Judgement {
-    let Computed { model, cases, analyses, extras } = *computed;
+    let Computed { model, cases, analyses, extras, traffic } = *computed;
     let units = match model.forces {
         Forces::Kilonewtons => Units::si(),
         Forces::UnitLoads => Units::unit_loads(),
@@ -82,11 +85,18 @@ pub fn judge(
         .zip(analyses.iter().zip(extras))
         .map(|(span, computed)| spans::span(model, span, cases, computed, settings))
         .collect();
+    for (span, trains) in spans.iter_mut().zip(traffic) {
+        for ran in trains {
+            if let Some(case) = span.cases.get_mut(ran.case) {
+                case.traffic.push(traffic::outcome(ran));
+            }
+        }
+    }
     let mut findings = Vec::new();
     notes::drawing(noticed, settings, &mut findings);
     notes::model(&model.notes, &units, &mut findings);
     areas::drawing(model, &units, &mut findings);
-    for ((analyses, extras), span) in analyses.iter().zip(extras).zip(&spans) {
+    for (((analyses, extras), span), trains) in analyses.iter().zip(extras).zip(&spans).zip(traffic) {
         for (i, ((analysis, extra), case)) in analyses.iter().zip(extras).zip(cases).enumerate() {
             let mut about = Vec::new();
             if i == 0 {
@@ -98,12 +108,25 @@ pub fn judge(
             }
             notes::analysis(analysis, span, &units, &mut about);
             limits::span(analysis, span, i, settings, &mut about);
+            // Where nothing varies but a train that stands on the case, its load factor is the one that is judged.
+            let still = analysis.safety.as_ref().is_some_and(|s| s.load.is_none());
+            if still && trains.iter().any(|t| t.case == i && t.ended.is_ok()) {
+                about.retain(|f| !f.message.starts_with("the stated limit `load_factor` was not judged"));
+            }
             slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
                 finding.case = Some(case.name.clone());
                 finding
             }));
+        }
+    }
+    for (trains, span) in traffic.iter().zip(&spans) {
+        for ran in trains {
+            let mut about = Vec::new();
+            traffic::findings(ran, span, settings, &mut about);
+            let case = cases.get(ran.case).map(|c| c.name.clone());
+            findings.extend(about.into_iter().map(|f| Finding { case: case.clone(), ..f }));
         }
     }
     for span in &model.spans {

@@ -190,6 +190,7 @@ fn role_name(role: Role) -> &'static str {
         Role::Intrados => "intrados",
         Role::Extrados => "extrados",
         Role::Hinges => "hinges",
+        Role::Road => "road",
         Role::Posts => "posts",
         Role::Plan => "plan of the roadway",
     }
@@ -501,7 +502,10 @@ pub fn left_out(model: &Model, settings: &Settings, findings: &mut Vec<Finding>)
     if model.areas.is_empty() {
         parts.push("fill");
     }
-    parts.extend(["traffic", "everything out of the plane of the elevation"]);
+    if settings.traffic.is_empty() {
+        parts.push("traffic");
+    }
+    parts.push("everything out of the plane of the elevation");
     if model.forces == Forces::UnitLoads {
         parts.push("stresses");
     }

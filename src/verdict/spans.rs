@@ -369,7 +369,7 @@ fn safety(from: &statics::Safety, thickness: Option<&statics::Factor>, ring: Opt
     }
 }
 
-fn hinge(from: &statics::Hinge) -> Hinge {
+pub(super) fn hinge(from: &statics::Hinge) -> Hinge {
     let side = match from.side {
         HingeSide::Extrados => "extrados",
         HingeSide::Intrados => "intrados",

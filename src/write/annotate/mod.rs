@@ -21,6 +21,7 @@
 //! | `REACTIONS` | thrust of the abutments on the rib | 42 ochre | continuous | 0.35 |
 //! | `FLAGS` | limits that do not hold | 20 vermilion | continuous | 0.35 |
 //! | `NOTES` | note block, key, sign sketch | 7 black or white | continuous | 0.18 |
+//! | `TRAFFIC` | envelope of traffic, the train at its worst position and the line there | 42 ochre | continuous, envelope dash and two dots, line short dashes | 0.25 |
 //! | `SUGGESTED-AXIS` | funicular of the loads as an axis, switched off; only where it is asked for | 142 blue | dash and two dots | 0.35 |
 //!
 //! Of several cases the governing line of the worst one is drawn heavy (most limits that do not hold, then the largest
@@ -35,6 +36,7 @@ pub(super) mod polygon;
 mod ring;
 pub(super) mod shown;
 pub(super) mod suggested;
+pub(super) mod traffic;
 
 pub use crate::outcome::bow::{MOST_LETTERED, letter, spaces};
 pub use elevation::check_name;
@@ -145,6 +147,9 @@ pub fn annotate(run: &Run, sheet: &Sheet) -> Marks {
         canvas.taken.boxes.push(Box2::upright(at - corner, at + corner));
     }
     let hidden = elevation::draw(run, &spans, &mut canvas);
+    for shown in &spans {
+        traffic::draw(shown, &mut canvas);
+    }
     suggested::draw(&spans, &mut canvas);
 
     let (left, right) = (content.low[0] * unit, content.high[0] * unit);

@@ -30,6 +30,8 @@ pub enum Layer {
     Flags,
     /// Note block, key and sign sketch.
     Notes,
+    /// Envelope and worst position of traffic.
+    Traffic,
     /// The suggested axis.
     Suggested,
     /// The axis; drawn in pictures only, a marked copy has its own.
@@ -40,7 +42,7 @@ pub enum Layer {
 
 /// Name after the prefix, colour, line type, weight in hundredths of a millimetre. The module docs of `annotate` tell
 /// the colours by name.
-const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 12] = [
+const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 13] = [
     (Layer::Line, "LINE", 142, None, 50),
     (Layer::OtherLines, "OTHER-LINES", 252, None, 25),
     (Layer::Ring, "RING", 8, None, 9),
@@ -52,6 +54,7 @@ const LAYERS: [(Layer, &str, u8, Option<Dash>, i16); 12] = [
     (Layer::Reactions, "REACTIONS", 42, None, 35),
     (Layer::Flags, "FLAGS", 20, None, 35),
     (Layer::Notes, "NOTES", 7, None, 18),
+    (Layer::Traffic, "TRAFFIC", 42, None, 25),
     (Layer::Suggested, "SUGGESTED-AXIS", 142, Some(Dash::TwoDots), 35),
 ];
 

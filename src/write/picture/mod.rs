@@ -61,7 +61,7 @@ pub struct Look {
 }
 
 /// The look of each layer, in the order of `Layer`.
-pub const LOOKS: [(Layer, Look); 14] = [
+pub const LOOKS: [(Layer, Look); 15] = [
     (Layer::Line, Look { class: "line", colour: [0x0b, 0x5f, 0xa5], width: 2.2, dash: None }),
     (Layer::OtherLines, Look { class: "other", colour: [0x5e, 0x5e, 0x5e], width: 1.2, dash: None }),
     (Layer::Ring, Look { class: "ring", colour: [0x8c, 0x8c, 0x8c], width: 0.7, dash: None }),
@@ -73,6 +73,7 @@ pub const LOOKS: [(Layer, Look); 14] = [
     (Layer::Reactions, Look { class: "thrust", colour: [0x85, 0x5b, 0x00], width: 1.8, dash: None }),
     (Layer::Flags, Look { class: "flag", colour: [0xb8, 0x3a, 0x0b], width: 1.6, dash: None }),
     (Layer::Notes, Look { class: "note", colour: [0x2b, 0x2b, 0x2b], width: 1.0, dash: None }),
+    (Layer::Traffic, Look { class: "traffic", colour: [0x85, 0x5b, 0x00], width: 1.2, dash: None }),
     (
         Layer::Suggested,
         Look { class: "suggested", colour: [0x0b, 0x5f, 0xa5], width: 1.4, dash: Some(Dash::TwoDots) },
@@ -174,7 +175,11 @@ fn draw_elevation(run: &Run, spans: &[Shown], canvas: &mut Canvas) -> usize {
         canvas.chain(Layer::Axis, "axis", &shown.chords, None);
     }
     loads::draw(run, spans, canvas);
-    elevation::draw(run, spans, canvas)
+    let hidden = elevation::draw(run, spans, canvas);
+    for shown in spans {
+        crate::write::annotate::traffic::draw(shown, canvas);
+    }
+    hidden
 }
 
 fn picture(run: &Run, canvas: Canvas, what: &str, hidden: usize) -> Picture {

@@ -12,6 +12,7 @@ mod pdf;
 mod sections;
 mod stations;
 mod suggestion;
+mod traffic;
 
 use crate::outcome::{Document, Run, Verdict};
 use crate::refusal::Refusal;
@@ -127,6 +128,7 @@ fn drawing(run: &Run, page: &mut Page) {
     envelope::section(run, page);
     extremes::block(run, page);
     sections::offsets(run, page);
+    traffic::section(run, page);
     sections::proofs(run, page);
     sections::assumptions(run, page);
     sections::settings(run, page);

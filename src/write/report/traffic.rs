@@ -1,0 +1,180 @@
+//! Traffic in the report: tables of the worst values, of the envelope and of the influence lines.
+
+use super::page::{Column, Page, figures, sentence, words};
+use crate::outcome::{Direction, Run, Span, Status, Traffic, WorstValue};
+use crate::write::text::{four_digits, metres, millimetres, signed_millimetres, three_digits};
+
+/// Stations told in a table.
+const MOST: usize = 24;
+
+/// The section on traffic; nothing where the job has none.
+pub fn section(run: &Run, page: &mut Page) {
+    if run.spans.iter().flat_map(|s| &s.cases).all(|c| c.traffic.is_empty()) {
+        return;
+    }
+    page.section("Traffic", "table");
+    for span in &run.spans {
+        for case in &span.cases {
+            for train in &case.traffic {
+                one(span, &case.name, train, page);
+            }
+        }
+    }
+    page.end();
+}
+
+fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
+    let head = format!("{}, {} on case {case}", span.name, train.name);
+    if train.status != Status::Found {
+        page.paragraph(&sentence(&format!(
+            "{head}: not computed: {}",
+            train.reason.as_deref().unwrap_or("no reason is known")
+        )));
+        return;
+    }
+    let mut told = format!("{head}: {} positions", train.positions);
+    if let (Some(step), Some(finest), Some(change)) = (train.step, train.finest_step, train.uncertainty) {
+        told.push_str(&format!(
+            ", {} m apart and down to {} m about the worst; the last halving changed the worst values by {} %",
+            metres(step),
+            metres(finest),
+            three_digits(change * 100.0)
+        ));
+    }
+    if let Some(scale) = train.scale {
+        told.push_str(&format!(". Factor on the stated forces: {}", four_digits(scale)));
+    }
+    if let Some(at) = &train.at_worst
+        && !at.axles.is_empty()
+    {
+        told.push_str(&format!(
+            ". Where the offset is largest {} kN of {} kN reach the rib, {} kN go to the ground on the left and {} kN on \
+             the right",
+            four_digits(-at.on_rib[1]),
+            four_digits(-at.applied[1]),
+            four_digits(-at.beside[0][1]),
+            four_digits(-at.beside[1][1])
+        ));
+    }
+    page.paragraph(&sentence(&told));
+    for line in &train.influence {
+        let step = line.ordinates.len().div_ceil(MOST).max(1);
+        let rows: Vec<Vec<String>> = line
+            .ordinates
+            .iter()
+            .step_by(step)
+            .map(|o| {
+                vec![
+                    metres(o.x),
+                    four_digits(o.push),
+                    four_digits(o.moment),
+                    o.eccentricity.map(|e| three_digits(e * 1000.0)).unwrap_or_default(),
+                ]
+            })
+            .collect();
+        page.table(
+            &format!(
+                "{head}: influence lines of one kN, joint at {} of the span",
+                four_digits(line.fraction)
+            ),
+            &[figures("x, m"), figures("Push, kN"), figures("Moment, kN·m"), figures("Eccentricity, mm")],
+            &rows,
+        );
+    }
+    page.table(&format!("{head}: worst values"), &columns(), &worst(train));
+    let picked = train.envelope.len().div_ceil(MOST).max(1);
+    let rows: Vec<Vec<String>> = train
+        .envelope
+        .iter()
+        .step_by(picked)
+        .map(|s| {
+            let forces = |f: &Option<crate::outcome::Forces>| match f {
+                Some(f) => [four_digits(f.thrust), four_digits(f.moment), metres(f.position)],
+                None => Default::default(),
+            };
+            let e = |v: Option<f64>| v.map(signed_millimetres).unwrap_or_default();
+            let x = |v: Option<f64>| v.map(metres).unwrap_or_default();
+            let mut row = vec![
+                metres(s.at[0]),
+                e(s.eccentricity_min),
+                x(s.position_min),
+                e(s.eccentricity_max),
+                x(s.position_max),
+            ];
+            row.extend(forces(&s.thrust_min));
+            row.extend(forces(&s.thrust_max));
+            row
+        })
+        .collect();
+    page.table(
+        &format!(
+            "{head}: extremes in the joints, each with the x of the first axle; offset in mm, thrust N in kN with its \
+             moment M in kN·m, for the check of the section by the code in force"
+        ),
+        &[
+            figures("x, m"),
+            figures("Offset least"),
+            figures("axle x"),
+            figures("most"),
+            figures("axle x"),
+            figures("N least"),
+            figures("M"),
+            figures("axle x"),
+            figures("N most"),
+            figures("M"),
+            figures("axle x"),
+        ],
+        &rows,
+    );
+}
+
+fn columns() -> [Column; 5] {
+    [words("What"), figures("Value"), words("Unit"), figures("First axle at x, m"), words("Running")]
+}
+
+fn worst(train: &Traffic) -> Vec<Vec<String>> {
+    let mut rows = Vec::new();
+    let mut row = |name: &str, value: &WorstValue, factor: f64, unit: &str| {
+        if value.status == Status::NotAsked {
+            return;
+        }
+        let told = match (value.status, value.value) {
+            (_, Some(v)) if unit == "mm" => millimetres(v),
+            (_, Some(v)) => four_digits(v * factor),
+            (Status::Unbounded, None) => "no bound".into(),
+            (Status::None, None) => "none".into(),
+            _ => "not told".into(),
+        };
+        rows.push(vec![
+            name.to_owned(),
+            told,
+            unit.to_owned(),
+            value.position.map(metres).unwrap_or_default(),
+            match value.direction {
+                Some(Direction::Right) => "to the right".into(),
+                Some(Direction::Left) => "to the left".into(),
+                None => String::new(),
+            },
+        ]);
+    };
+    if let Some(w) = &train.worst {
+        row("Largest offset", &w.offset, 1.0, "mm");
+        row("Largest eccentricity over d/6", &w.kern, 1.0, "1");
+        row("Largest eccentricity over d/2", &w.ring, 1.0, "1");
+        row("Largest edge stress", &w.stress, 1.0, "MPa");
+        row("Least load factor", &w.load_factor, 1.0, "1");
+        row("Greatest lower end of the load factor", &w.load_factor_least, 1.0, "1");
+        row("Least permitted multiple of the train", &w.multiple, 1.0, "1");
+    }
+    if let Some(p) = &train.push {
+        for (name, pair) in [
+            ("push of the governing line, left", &p.left),
+            ("push of the governing line, right", &p.right),
+            ("push of any line inside the ring, left", &p.inside_ring),
+        ] {
+            row(&format!("Least {name}"), &pair[0], 1.0, "kN");
+            row(&format!("Greatest {name}"), &pair[1], 1.0, "kN");
+        }
+    }
+    rows
+}
