@@ -449,3 +449,6 @@ pub const NOISE_POINTS: usize = 16;
 /// Twice the noise over the depth from which on it is told. No unit. Larger: noise that moves a factor by a percent goes unsaid;
 /// smaller: the rounding of coordinates is told.
 pub const NOISE_TOLD: f64 = 1e-3;
+/// Part of the largest figure of a column below which a figure is shown as 0. A ratio. Larger: small figures that mean
+/// something vanish; smaller: what rounding leaves of nothing is shown.
+pub const SHOWN_AS_NOTHING: f64 = 1e-9;

@@ -103,6 +103,44 @@ fn stations_and_junit_of_all_drawings() {
     compare(&office.path().join("results.xml"), "results.xml");
 }
 
+/// The picture in pixels, the report in sheets and the summary of one drawing: the forms that are not text by lines.
+#[test]
+fn one_drawing_in_every_other_form() {
+    let office = office();
+    let name = "masonry-ring";
+    let [png, pdf, txt] = ["png", "pdf", "txt"].map(|end| format!("{name}.{end}"));
+    check(office.path(), &[&format!("{name}.dxf"), "--picture", &png, "--report", &pdf]);
+    let output = Command::new(env!("CARGO_BIN_EXE_thrustmark"))
+        .current_dir(office.path())
+        .args(["check", &format!("{name}.dxf")])
+        .env("SOURCE_DATE_EPOCH", "1790000000")
+        .output()
+        .unwrap();
+    fs::write(office.path().join(&txt), output.stdout).unwrap();
+    compare(&office.path().join(&txt), &txt);
+    let [made, golden] = [office.path().to_owned(), root().join("tests/golden")];
+    if std::env::var_os("THRUSTMARK_WRITE_GOLDEN").is_some() {
+        for file in [&png, &pdf] {
+            fs::copy(made.join(file), golden.join(file)).unwrap();
+        }
+        return;
+    }
+    let pixels = |folder: &Path| {
+        let file = fs::File::open(folder.join(&png)).unwrap();
+        let mut reader = png::Decoder::new(std::io::BufReader::new(file)).read_info().unwrap();
+        let mut bytes = vec![0; reader.output_buffer_size().unwrap()];
+        let info = reader.next_frame(&mut bytes).unwrap();
+        (info.width, info.height, bytes)
+    };
+    let (one, two) = (pixels(&golden), pixels(&made));
+    assert_eq!((one.0, one.1), (two.0, two.1));
+    // An edge may fall a hair to the other side of a pixel with the mathematical library of another machine.
+    let other = one.2.iter().zip(&two.2).filter(|(a, b)| a.abs_diff(**b) > 8).count();
+    assert!(other * 1000 <= one.2.len(), "{other} of {} bytes of the picture differ", one.2.len());
+    let read = |folder: &Path| fs::read(folder.join(&pdf)).unwrap();
+    assert!(read(&golden) == read(&made), "{pdf} differs from its golden file (THRUSTMARK_WRITE_GOLDEN=1 writes it)");
+}
+
 #[test]
 fn differences_are_seen() {
     let row = "a,1,2,3,4,5,6,7,8,9,10,0.1";

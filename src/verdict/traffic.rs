@@ -295,7 +295,8 @@ impl Judge<'_> {
             && !computed.crossing.courses.is_empty()
         {
             let carried = computed.crossing.carried(worst.position.course, worst.position.at);
-            let beside = carried.beside.map(|f| -f.y);
+            // Half of the last digit told: no "-0.0".
+            let beside = carried.beside.map(|f| if f.y.abs() < 0.05 { 0.0 } else { -f.y });
             say(format!(
                 "{} {:.1} kN of {:.1} kN reach the rib; {:.1} kN go to the ground on the left and {:.1} kN on the right",
                 self.told.words(name, worst.position),

@@ -1,7 +1,8 @@
 //! Traffic in the report: tables of the worst values, of the envelope and of the influence lines.
 
 use super::page::{Column, Page, figures, sentence, words};
-use crate::outcome::{Direction, Run, Span, Status, Traffic, WorstValue};
+use crate::outcome::{Direction, InfluenceOrdinate, Run, Span, Status, Traffic, WorstValue};
+use crate::tolerance;
 use crate::write::text::{four_digits, metres, millimetres, signed_millimetres, three_digits};
 
 /// Stations told in a table.
@@ -59,6 +60,13 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
     page.paragraph(&sentence(&told));
     for line in &train.influence {
         let step = line.ordinates.len().div_ceil(MOST).max(1);
+        let largest = |of: fn(&InfluenceOrdinate) -> f64| {
+            line.ordinates.iter().map(|o| of(o).abs()).fold(0.0, f64::max)
+        };
+        let eccentricity = |o: &InfluenceOrdinate| o.eccentricity.unwrap_or(0.0);
+        let most = [largest(|o| o.push), largest(|o| o.moment), largest(eccentricity)];
+        // What rounding leaves of nothing is nothing.
+        let shown = |v: f64, most: f64| if v.abs() <= most * tolerance::SHOWN_AS_NOTHING { 0.0 } else { v };
         let rows: Vec<Vec<String>> = line
             .ordinates
             .iter()
@@ -66,9 +74,9 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
             .map(|o| {
                 vec![
                     metres(o.x),
-                    four_digits(o.push),
-                    four_digits(o.moment),
-                    o.eccentricity.map(|e| three_digits(e * 1000.0)).unwrap_or_default(),
+                    four_digits(shown(o.push, most[0])),
+                    four_digits(shown(o.moment, most[1])),
+                    o.eccentricity.map(|e| three_digits(shown(e, most[2]) * 1000.0)).unwrap_or_default(),
                 ]
             })
             .collect();
