@@ -504,25 +504,31 @@ impl Limit<'_> {
     }
 }
 
+impl Lean {
+    /// Virtual work at this hinge or slip, by a unit of its multiplier, of loads that stand before it.
+    pub(super) fn work(&self, loads: &super::joint::Loads) -> f64 {
+        let (at, n) = (self.joint.at, self.joint.normal());
+        match self.edge {
+            // Moment about the hinge of all loads before it.
+            Edge::Extrados | Edge::Intrados => {
+                let side = if self.edge == Edge::Extrados { 1.0 } else { -1.0 };
+                let q = at + n * (side * self.offset);
+                side * (q.x * loads.fy - q.y * loads.fx - loads.moment)
+            }
+            Edge::Outward => loads.fx * n.x + loads.fy * n.y,
+            Edge::Inward => -(loads.fx * n.x + loads.fy * n.y),
+        }
+    }
+}
+
 /// Virtual work of the mechanism that the multipliers describe: of the loads that stay, of the varying ones at factor 1
 /// (each load's force along its displacement), and what crushing takes. With all hinges in place nothing else does work,
 /// so fixed plus factor times varying is what crushing takes.
 pub(super) fn virtual_work(leans: &[Lean]) -> (f64, f64, f64) {
     let (mut fixed, mut varying, mut crushing) = (0.0, 0.0, 0.0);
     for lean in leans {
-        let (at, n) = (lean.joint.at, lean.joint.normal());
-        let work = |l: &super::joint::Loads| match lean.edge {
-            // Moment about the hinge of all loads before it.
-            Edge::Extrados | Edge::Intrados => {
-                let side = if lean.edge == Edge::Extrados { 1.0 } else { -1.0 };
-                let q = at + n * (side * lean.offset);
-                side * (q.x * l.fy - q.y * l.fx - l.moment)
-            }
-            Edge::Outward => l.fx * n.x + l.fy * n.y,
-            Edge::Inward => -(l.fx * n.x + l.fy * n.y),
-        };
-        fixed += lean.multiplier * work(&lean.joint.loads.fixed);
-        varying += lean.multiplier * work(&lean.joint.loads.varying);
+        fixed += lean.multiplier * lean.work(&lean.joint.loads.fixed);
+        varying += lean.multiplier * lean.work(&lean.joint.loads.varying);
         crushing += lean.multiplier * lean.crushing;
     }
     (fixed, varying, crushing)

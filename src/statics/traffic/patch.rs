@@ -8,7 +8,7 @@
 
 use super::super::LineKind;
 use super::super::joint::{Joint, Loads, Unknowns};
-use super::super::limit::{Edge, Extreme as End, Lean, virtual_work};
+use super::super::limit::{Extreme as End, Lean, virtual_work};
 use super::super::simplex::{MOST, Outcome, Program, Row};
 use super::super::subspace::Subspace;
 use super::envelope::Value;
@@ -367,16 +367,6 @@ fn answer(joint: &Joint, before: &[Loads], change: &[f64; 3]) -> [f64; 2] {
 
 /// Work of loads in the mechanism at one of its hinges.
 fn work(lean: &Lean, before: &[Loads]) -> f64 {
-    let l = before.get(lean.joint.piece).copied().unwrap_or_default();
-    let (at, n) = (lean.joint.at, lean.joint.normal());
-    lean.multiplier
-        * match lean.edge {
-            Edge::Extrados | Edge::Intrados => {
-                let side = if lean.edge == Edge::Extrados { 1.0 } else { -1.0 };
-                let q = at + n * (side * lean.offset);
-                side * (q.x * l.fy - q.y * l.fx - l.moment)
-            }
-            Edge::Outward => l.fx * n.x + l.fy * n.y,
-            Edge::Inward => -(l.fx * n.x + l.fy * n.y),
-        }
+    let loads = before.get(lean.joint.piece).copied().unwrap_or_default();
+    lean.multiplier * lean.work(&loads)
 }
