@@ -475,6 +475,11 @@ fn neighbouring_spans_push_on_their_pier() {
     let verdict = |run: &Run| run.findings.iter().find(|f| f.check == Check::PierPush).map(|f| f.verdict);
     assert_eq!(verdict(&run), Some(thrustmark::outcome::FindingVerdict::Within));
     assert_eq!(verdict(&good(&entities, &job(70.0))), Some(thrustmark::outcome::FindingVerdict::Outside));
+    // A train adds pushes that the limit was not held against.
+    let train = "[[traffic]]\nname = \"axle\"\naxles = [[0.0, 100.0]]\nthrough = \"posts\"\nshare = 1.0\n";
+    let moving = good(&entities, &(job(80.0) + train));
+    assert!(says(&moving, "`pier_push` was not judged: under axle"));
+    assert_eq!(moving.verdict, Some(thrustmark::outcome::Verdict::Unchecked));
     // Rings without tension leave a range: from the least push of one and the greatest of the other.
     let ring =
         |x: f64, handle: u32| polyline("ARCH-AXIS", handle, &[[x, 0.0, -0.5], [x + 10.0, 0.0, 0.0]], false);

@@ -211,3 +211,116 @@ fn marks_report_and_json_tell_it() {
         assert!(first["at"].is_array() && first["eccentricity_min"].is_number());
     }
 }
+
+/// The crossing by posts with changes to its job.
+fn judged(changes: &[(&str, &str)]) -> Run {
+    let run = with("posts.dxf", changes);
+    assert!(run.error.is_none(), "{:?}", run.error);
+    run
+}
+
+fn says(run: &Run, words: &str) -> bool {
+    run.findings.iter().any(|f| f.unchecks && f.message.contains(words))
+}
+
+#[test]
+fn a_train_beside_another_does_not_lose_its_uniform_load() {
+    let beside = "influence = [0.25, 0.5]\nwith = { \"lane\" = 1.0 }\n\n[[sheet.traffic]]\nname = \"lane\"\n\
+                  axles = [[0.0, 10.0]]\nthrough = \"posts\"\nshare = 1.0\n";
+    let change = |more: &str| judged(&[("influence = [0.25, 0.5]", &format!("{beside}{more}"))]);
+    assert_eq!(change("").spans[0].cases[0].traffic[0].status, Status::Found);
+    for more in ["uniform = 9.0\n", "knife = 50.0\n"] {
+        let run = change(more);
+        assert_eq!(run.spans[0].cases[0].traffic[0].status, Status::Refused, "{more}");
+        assert!(says(&run, "would not be counted"));
+        assert_eq!(run.verdict, Some(Verdict::Unchecked));
+    }
+}
+
+/// The train is worked out at the values stated alone, so a limit that holds there holds nowhere else.
+#[test]
+fn a_range_keeps_the_limits_under_a_train_from_being_judged() {
+    let range = "braking = 0.2\n\n[[sheet.range]]\nwhat = \"rib.strength\"\nlow = 5\nhigh = 20\n";
+    let stated = "limits.load_factor = 1.5\nrib.strength = 10";
+    let only =
+        |range: &str| with("fill.dxf", &[("limits.load_factor = 1.5", stated), ("braking = 0.2", range)]);
+    assert!(!says(&only("braking = 0.2"), "not over the ranges"));
+    let run = only(range);
+    assert!(run.error.is_none(), "{:?}", run.error);
+    assert!(says(
+        &run,
+        "under two axles were judged at the values stated, not over the ranges of rib.strength"
+    ));
+}
+
+/// The push of 460 kN with the axle over the crown (by hand, above) beside the push at which the rib buckles: moments can grow
+/// by 1 / (1 - 460 / critical), on the whole at most.
+#[test]
+fn a_limit_that_buckling_could_break_under_a_train_is_not_judged() {
+    let rib = "rib.support = \"three-hinged\"\nrib.depth = 0.5\nrib.width = 1.0\nrib.tension = true\nrib.elastic_modulus = ";
+    let slender = |modulus: f64, limit: f64| {
+        let limit = format!("limits.offset = {limit}");
+        judged(&[
+            ("rib.support = \"three-hinged\"", &format!("{rib}{modulus}")),
+            ("limits.offset = 0.75", &limit),
+        ])
+    };
+    let run = slender(8000.0, 0.75);
+    let critical = run.spans[0].cases[0].lines[0].buckling.as_ref().unwrap().critical.unwrap();
+    let growth = 1.0 / (1.0 - 460.0 / critical);
+    assert!(growth > 1.05 && growth < 2.0, "{growth}");
+    let words = "bending under moving loads is not multiplied for buckling";
+    assert!(says(&run, words), "{:?}", run.findings);
+    assert_ne!(run.verdict, Some(Verdict::Within));
+    assert!(!says(&slender(8000.0, 0.7205 * growth), words));
+    assert!(says(&slender(8000.0, 0.7203 * growth), words));
+}
+
+/// In feet and kips the table of a train is turned like all else.
+#[test]
+fn a_report_in_feet_turns_the_train_too() {
+    let run = judged(&[(
+        "[[sheet]]\nmatch = \"posts.dxf\"",
+        "[report]\nunits = \"us\"\n\n[[sheet]]\nmatch = \"posts.dxf\"",
+    )]);
+    let si = traffic(&run).clone();
+    let tool = thrustmark::outcome::Tool { name: "thrustmark".into(), version: "0".into() };
+    let document =
+        thrustmark::outcome::Document { contract: thrustmark::outcome::CONTRACT, tool, runs: vec![run] };
+    let told = thrustmark::write::us::told(&document);
+    let us = traffic(&told.runs[0]);
+    let (w, v) = (us.worst.as_ref().unwrap(), si.worst.as_ref().unwrap());
+    near(w.offset.value.unwrap() * 0.3048, v.offset.value.unwrap(), 1e-12);
+    near(w.offset.position.unwrap() * 0.3048, v.offset.position.unwrap(), 1e-12);
+    // 460 kN are 103.41 kip [NIST SP 811, 2008, appendix B.8: 4.448 222 kN in a kip-force].
+    near(us.push.as_ref().unwrap().left[1].value.unwrap(), 460.0 / 4.448_222, 1e-6);
+    let (a, b) = (&us.at_worst.as_ref().unwrap().line, &si.at_worst.as_ref().unwrap().line);
+    assert!(a.iter().zip(b).all(|(a, b)| (a[0] * 0.3048 - b[0]).abs() < 1e-9));
+}
+
+/// A build server keeps one of several cases of a name: the limit in the case as drawn passes, and that under the train does not.
+#[test]
+fn each_limit_is_a_test_case_of_its_own() {
+    let run = judged(&[("limits.offset = 0.75", "limits.offset = 0.72")]);
+    let tool = thrustmark::outcome::Tool { name: "thrustmark".into(), version: "0".into() };
+    let document =
+        thrustmark::outcome::Document { contract: thrustmark::outcome::CONTRACT, tool, runs: vec![run] };
+    let xml = thrustmark::write::junit::xml(&document, "2026-12-01");
+    let mut names: Vec<&str> =
+        xml.split("<testcase ").skip(1).map(|t| t.split("time=").next().unwrap()).collect();
+    assert!(names.iter().filter(|n| n.contains("\"offset, span 1, drawn")).count() >= 2, "{names:?}");
+    let all = names.len();
+    names.sort_unstable();
+    names.dedup();
+    assert_eq!(names.len(), all);
+}
+
+/// The search for a depth leaves the trains out, and says so.
+#[test]
+fn a_suggested_depth_says_that_trains_were_left_out() {
+    let run =
+        with("fill.dxf", &[("limits.load_factor = 1.5", "limits.load_factor = 1.5\nmark.suggest = true")]);
+    assert!(run.error.is_none(), "{:?}", run.error);
+    let told = run.findings.iter().find(|f| f.check == Check::Suggestion && f.case.is_none()).unwrap();
+    assert!(told.message.contains("without the trains, whose limits were not looked at"), "{}", told.message);
+}

@@ -138,7 +138,10 @@ fn one_drawing_in_every_other_form() {
     let other = one.2.iter().zip(&two.2).filter(|(a, b)| a.abs_diff(**b) > 8).count();
     assert!(other * 1000 <= one.2.len(), "{other} of {} bytes of the picture differ", one.2.len());
     let read = |folder: &Path| fs::read(folder.join(&pdf)).unwrap();
-    assert!(read(&golden) == read(&made), "{pdf} differs from its golden file (THRUSTMARK_WRITE_GOLDEN=1 writes it)");
+    assert!(
+        read(&golden) == read(&made),
+        "{pdf} differs from its golden file (THRUSTMARK_WRITE_GOLDEN=1 writes it)"
+    );
 }
 
 #[test]

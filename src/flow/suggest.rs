@@ -167,9 +167,9 @@ fn holds(
         RibDepth::Linear(ends) => RibDepth::Linear(ends.map(|d| d * factor)),
     });
     let analyses = analyse(&thicker, cases, &settings)?;
-    // What takes more than one analysis decides no limit.
+    // Ranges take more than one analysis each, and stay with the ring as drawn; the suggestion says so.
     let extras = vec![vec![verdict::Extra::default(); cases.len()]; thicker.spans.len()];
-    // The trains of the job stay with the ring as drawn.
+    // So do the trains of the job.
     let traffic = vec![Vec::new(); analyses.len()];
     let computed =
         verdict::Computed { model: &thicker, cases, analyses: &analyses, extras: &extras, traffic: &traffic };

@@ -176,7 +176,7 @@ pub fn build(drawing: &Drawing, settings: &LoadSettings) -> Result<Model, Refusa
     };
     let loads::Loaded { mut loads, lines, forces } =
         loads::loads(on_layers, settings, metres, &distance, &mut notes)?;
-    posts::carry(&mut loads, &drawing.posts, &spans, settings.depth, metres, &mut notes);
+    posts::carry(&mut loads, &lines, &drawing.posts, &spans, settings.depth, metres, &mut notes);
     let off_span = share_out(loads, &mut spans);
     notes.extend(off_span.iter().map(|load| Note::OffSpan {
         source: load.source.clone(),

@@ -4,7 +4,7 @@
 //! sideways. What the deck holds so is told.
 
 use super::note::Note;
-use super::{Drawn, Load, Span, weight};
+use super::{Drawn, LineLoad, Load, Span, weight};
 use crate::drawing::{Source, Stroke};
 use crate::geometry::{Boxes, Point, Vec2};
 use crate::job::RibDepth;
@@ -39,9 +39,11 @@ impl Post {
     }
 }
 
-/// Puts loads that stand on a post where it meets the rib; `metres` is a drawing unit of the strokes.
+/// Puts loads that stand on a post where it meets the rib; `metres` is a drawing unit of the strokes. Line loads stay spread over
+/// the rib, which is told where they stand on the deck.
 pub fn carry(
     loads: &mut [Load],
+    lines: &[LineLoad],
     strokes: &[Stroke],
     spans: &[Span],
     depth: Option<RibDepth>,
@@ -64,7 +66,7 @@ pub fn carry(
             .min_by(|a, b| a.0.total_cmp(&b.0).then(a.1.foot.x.total_cmp(&b.1.foot.x)));
         let Some((distance, post)) = nearest else { continue };
         if distance > tolerance::ON_POST * above {
-            if stands_on_deck(load, &posts, spans, depth) {
+            if stands_on_deck([load.at; 2], &posts, spans, depth) {
                 between.push(load.source.clone());
             }
             continue;
@@ -79,6 +81,8 @@ pub fn carry(
         load.post = Some(post.source.clone());
         carried += 1;
     }
+    let on_deck = lines.iter().filter(|l| stands_on_deck([l.from, l.to], &posts, spans, depth));
+    between.extend(on_deck.map(|l| l.source.clone()));
     if carried > 0 {
         notes.push(Note::Drawn(Drawn::DownPosts { count: carried, held, own }));
     }
@@ -87,17 +91,19 @@ pub fn carry(
     }
 }
 
-/// Whether a load stands between posts and not on the rib.
-fn stands_on_deck(load: &Load, posts: &[Post], spans: &[Span], depth: Option<RibDepth>) -> bool {
+/// Whether a load from one place to another stands between posts and not on the rib.
+fn stands_on_deck(ends: [Point; 2], posts: &[Post], spans: &[Span], depth: Option<RibDepth>) -> bool {
     let (left, right) =
         posts.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(l, r), p| (l.min(p.top.x), r.max(p.top.x)));
-    let inside = left < load.at.x && load.at.x < right;
-    let on_rib = spans.iter().any(|s| {
-        let (place, distance) = s.axis.nearest(load.at);
-        let half = weight::depths(s, depth).map_or(0.0, |d| weight::depth_at(&d, place) / 2.0);
-        distance <= half + s.axis.length() * tolerance::GAP
-    });
-    inside && !on_rib
+    let inside = left < ends[1].x && ends[0].x < right;
+    let on_rib = |p: Point| {
+        spans.iter().any(|s| {
+            let (place, distance) = s.axis.nearest(p);
+            let half = weight::depths(s, depth).map_or(0.0, |d| weight::depth_at(&d, place) / 2.0);
+            distance <= half + s.axis.length() * tolerance::GAP
+        })
+    };
+    inside && !(on_rib(ends[0]) && on_rib(ends[1]))
 }
 
 /// A stroke as a post; one that is none is told.

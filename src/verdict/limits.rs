@@ -6,8 +6,16 @@ use crate::outcome::{Check, Finding, FindingVerdict, Span, Xy};
 use crate::statics::{Analysis, Line, LineKind, Rule, SpanKind, Status};
 use crate::tolerance;
 
-/// Judges one span in one of its cases (by its number); the findings get the case's name afterwards.
-pub fn span(analysis: &Analysis, span: &Span, case: usize, settings: &Settings, findings: &mut Vec<Finding>) {
+/// Judges one span in one of its cases (by its number); the findings get the case's name afterwards. `moving`: a train that was
+/// computed stands on the case, and has a load factor of its own.
+pub fn span(
+    analysis: &Analysis,
+    span: &Span,
+    case: usize,
+    moving: bool,
+    settings: &Settings,
+    findings: &mut Vec<Finding>,
+) {
     let limits = &settings.limits;
     let governing = &slender::state(&analysis.lines[analysis.governs]);
     let mut judge = Judge { span, case, analysis, findings };
@@ -52,7 +60,7 @@ pub fn span(analysis: &Analysis, span: &Span, case: usize, settings: &Settings, 
         }
     }
     if let Some(limit) = limits.load_factor {
-        judge.load_factor(limit);
+        judge.load_factor(limit, moving);
     }
 }
 
@@ -287,8 +295,8 @@ impl Judge<'_> {
     }
 
     /// The limit holds when the loads as drawn stand (the interval begins at or below 1) and its upper end reaches the
-    /// limit.
-    fn load_factor(&mut self, limit: f64) {
+    /// limit. Where nothing varies but a train, that of the train is judged in its place.
+    fn load_factor(&mut self, limit: f64, moving: bool) {
         let Some(safety) = &self.analysis.safety else {
             let why = match self.analysis.kind {
                 SpanKind::Cable => "a cable has no load factor",
@@ -297,6 +305,9 @@ impl Judge<'_> {
             return self.not_judged("load_factor", why);
         };
         let (Some(upper), Some(least)) = (&safety.load, &safety.load_least) else {
+            if moving {
+                return;
+            }
             return self.not_judged(
                 "load_factor",
                 "nothing varies; name what varies in the case: vary = [\"LAYER\"]",

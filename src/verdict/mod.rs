@@ -18,6 +18,8 @@ pub mod traffic;
 
 pub use piers::Pushes;
 
+use std::collections::BTreeSet;
+
 use jiff::civil::Date;
 
 use crate::drawing;
@@ -107,12 +109,9 @@ pub fn judge(
                 }
             }
             notes::analysis(analysis, span, &units, &mut about);
-            limits::span(analysis, span, i, settings, &mut about);
             // Where nothing varies but a train that stands on the case, its load factor is the one that is judged.
-            let still = analysis.safety.as_ref().is_some_and(|s| s.load.is_none());
-            if still && trains.iter().any(|t| t.case == i && t.ended.is_ok()) {
-                about.retain(|f| !f.message.starts_with("the stated limit `load_factor` was not judged"));
-            }
+            let moving = trains.iter().any(|t| t.case == i && t.ended.is_ok());
+            limits::span(analysis, span, i, moving, settings, &mut about);
             slender::notes(analysis, span, settings, model.forces, &mut about);
             ranges::judge(extra, analysis, span, settings, i == 0, &mut about);
             findings.extend(about.into_iter().map(|mut finding| {
@@ -142,6 +141,11 @@ pub fn judge(
             extras.iter().map(|of| of.get(i).and_then(|e| e.pushes.as_ref())).collect();
         let mut about = Vec::new();
         piers::judge(&case.name, &pushes, settings, &units, &mut spans, &mut about);
+        if spans.len() > 1 && settings.limits.pier_push.is_some() {
+            let trains: BTreeSet<&str> =
+                traffic.iter().flatten().filter(|t| t.case == i).map(|t| t.name.as_str()).collect();
+            about.extend(trains.into_iter().map(piers::moving));
+        }
         findings.extend(about.into_iter().map(|f| Finding { case: Some(case.name.clone()), ..f }));
     }
     notes::cases(cases, &mut findings);

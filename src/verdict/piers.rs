@@ -84,6 +84,14 @@ fn told((low, high): (f64, f64), limit: Option<f64>, place: &str, units: &Units)
     finding.value(worst, force)
 }
 
+/// What is to be said of the limit where a train moves over several spans.
+pub fn moving(train: &str) -> Finding {
+    not_judged(&format!(
+        "under {train} the pushes of each span are told, and not their difference on a pier, which takes the train on both at once"
+    ))
+    .remedy("prove the pier for the pushes told under the train, or take `pier_push` out")
+}
+
 fn not_judged(why: &str) -> Finding {
     note(Check::NotJudged, format!("the stated limit `pier_push` was not judged: {why}")).uncheck()
 }

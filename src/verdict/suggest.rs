@@ -21,9 +21,24 @@ pub fn findings(span: &Span, units: &Units) -> Vec<Finding> {
             _ => "with the axis as drawn, no depth up to eight times the present one would meet the limits"
                 .to_owned(),
         };
+        let message = message + left_out(span);
         out.push(note(Check::Suggestion, message).of(&span.name));
     }
     out
+}
+
+/// What the search for a depth looks at the ring without.
+fn left_out(span: &Span) -> &'static str {
+    let trains = span.cases.iter().any(|c| !c.traffic.is_empty());
+    let ranges = span.cases.iter().any(|c| c.ranges.is_some());
+    match (trains, ranges) {
+        (true, true) => {
+            " (without the trains and at the values stated: their limits were not looked at for it)"
+        }
+        (true, false) => " (without the trains, whose limits were not looked at for it)",
+        (false, true) => " (at the values stated, not over the ranges)",
+        (false, false) => "",
+    }
 }
 
 fn depths([low, high]: [f64; 2]) -> String {

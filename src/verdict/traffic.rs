@@ -244,6 +244,7 @@ pub fn findings(ran: &Ran, span: &Span, settings: &Settings, findings: &mut Vec<
         settings,
     };
     findings.extend(judge.about(computed));
+    findings.extend(judge.ranges());
     findings.extend(judge.limits().into_iter().map(|f| f.of(&span.name)));
 }
 
@@ -291,6 +292,13 @@ impl Judge<'_> {
                 self.traverse.uncertainty * 100.0
             ));
         }
+        if let Some((push, critical, growth)) = self.buckling() {
+            say(format!(
+                "{name}: the push of up to {push:.1} kN is {:.1} % of the {critical:.1} kN at which the rib buckles in its plane; \
+                 bending under the train was not multiplied, and could be {growth:.3} times that told at most",
+                100.0 * push / critical
+            ));
+        }
         if let Some(worst) = self.tally.offset.found
             && !computed.crossing.courses.is_empty()
         {
@@ -315,6 +323,24 @@ impl Judge<'_> {
             );
         }
         all
+    }
+
+    /// Positions of a train are worked out at the values stated alone.
+    fn ranges(&self) -> Option<Finding> {
+        let stated: Vec<&str> = self.settings.range.iter().map(|r| r.what.as_str()).collect();
+        (!stated.is_empty()).then(|| {
+            note(
+                Check::NotJudged,
+                format!(
+                    "the limits under {} were judged at the values stated, not over the ranges of {}",
+                    self.ran.name,
+                    stated.join(", ")
+                ),
+            )
+            .of(&self.span.name)
+            .uncheck()
+            .remedy("state the worst value itself in a job for the check under traffic, and take the range out of it")
+        })
     }
 
     fn limits(&self) -> Vec<Finding> {
@@ -456,10 +482,29 @@ impl Judge<'_> {
         }
     }
 
+    /// Greatest push under the train, the push at which the rib buckles, and the most by which bending can grow: the factor on
+    /// its antisymmetric part, taken on the whole. For moments s + a and s - a at a joint and at its mirror image,
+    /// |s + k a| <= k max(|s + a|, |s - a|) for k >= 1. None where buckling was not looked at.
+    fn buckling(&self) -> Option<(f64, f64, f64)> {
+        let buckling = self.span.cases.get(self.ran.case)?.lines.first()?.buckling.as_ref()?;
+        let critical = buckling.critical?;
+        let pushes = self.tally.push.iter().chain(&self.tally.push_right).filter_map(|e| e.found);
+        let push = pushes.map(|f| f.value.abs()).fold(buckling.push, f64::max);
+        let growth = if push < critical { 1.0 / (1.0 - push / critical) } else { f64::INFINITY };
+        Some((push, critical, growth))
+    }
+
     /// Why a value that holds is still no proof.
     fn doubt(&self, measured: &Measured) -> Option<&'static str> {
         let best = matches!(self.traverse.rule, Rule::RingWithoutTension | Rule::AxisOnly);
+        let grows = self.buckling().is_some_and(|(_, _, growth)| {
+            measured.value * growth > measured.limit * (1.0 + tolerance::LIMIT_MET)
+        });
         match measured.check {
+            Check::Offset | Check::Ring | Check::Kern | Check::Stress if grows => Some(
+                "bending under moving loads is not multiplied for buckling, and with the most that it can grow by the limit \
+                 would not hold",
+            ),
             Check::Kern | Check::Stress if best => {
                 Some("the closest line is the most favourable one, not the state of the rib")
             }

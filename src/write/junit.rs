@@ -4,6 +4,7 @@
 //! `unchecked`; a drawing that could not be read is an error. An accepted exception passes and is listed in the suite's
 //! `system-out`.
 
+use std::collections::BTreeMap;
 use std::fmt::Write as _;
 
 use crate::outcome::{Document, Finding, FindingVerdict, Run, Verdict};
@@ -107,7 +108,21 @@ fn cases(run: &Run) -> Vec<Case> {
         let end = End::Failed { kind, message: message.into() };
         out.push(Case { name: "verdict".into(), end, detail: message.into() });
     }
+    apart(&mut out);
     out
+}
+
+/// Numbers cases of one name, such as a limit held in a case and under each train on it: build servers keep one of a name, and
+/// a failure could be lost behind a pass.
+fn apart(cases: &mut [Case]) {
+    let mut seen: BTreeMap<String, usize> = BTreeMap::new();
+    for case in cases {
+        let count = seen.entry(case.name.clone()).or_insert(0);
+        *count += 1;
+        if *count > 1 {
+            case.name.push_str(&format!(" ({count})"));
+        }
+    }
 }
 
 /// Limits that were held against a value, and what keeps the run from being judged; plain notes are none.

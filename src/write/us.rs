@@ -6,7 +6,7 @@
 
 use std::borrow::Cow;
 
-use crate::outcome::{Case, Document, Finding, Line, Run, Span, Station, Units, Xy};
+use crate::outcome::{Case, Document, Finding, Line, Run, Span, Station, Traffic, Units, WorstValue, Xy};
 
 /// Feet in a metre.
 const FEET: f64 = 1.0 / 0.3048;
@@ -135,6 +135,72 @@ fn case(case: &mut Case, scale: &Scale) {
     if let Some(safety) = &mut case.safety {
         times(&mut safety.least_depth, FEET);
         safety.hinges.iter_mut().for_each(|h| point(&mut h.at));
+    }
+    case.traffic.iter_mut().for_each(|t| traffic(t, scale));
+}
+
+/// A train: what it does to the span, and where it stands for it.
+fn traffic(train: &mut Traffic, scale: &Scale) {
+    train.reason = train.reason.as_deref().map(prose);
+    train.taken.iter_mut().for_each(|t| *t = prose(t));
+    for step in [&mut train.step, &mut train.finest_step] {
+        times(step, FEET);
+    }
+    for station in &mut train.envelope {
+        point(&mut station.at);
+        station.s *= FEET;
+        for length in [
+            &mut station.depth,
+            &mut station.eccentricity_min,
+            &mut station.eccentricity_max,
+            &mut station.position_min,
+            &mut station.position_max,
+        ] {
+            times(length, FEET);
+        }
+        for forces in station.thrust_min.iter_mut().chain(&mut station.thrust_max) {
+            forces.thrust *= scale.force;
+            forces.moment *= scale.moment;
+            forces.position *= FEET;
+        }
+    }
+    let worst = |value: &mut WorstValue, by: f64| {
+        times(&mut value.value, by);
+        times(&mut value.position, FEET);
+        value.at.iter_mut().for_each(point);
+    };
+    if let Some(w) = &mut train.worst {
+        worst(&mut w.offset, FEET);
+        worst(&mut w.stress, KSI);
+        for bare in [&mut w.kern, &mut w.ring, &mut w.load_factor, &mut w.load_factor_least, &mut w.multiple]
+        {
+            worst(bare, 1.0);
+        }
+    }
+    if let Some(push) = &mut train.push {
+        for pair in [&mut push.left, &mut push.right, &mut push.inside_ring] {
+            pair.iter_mut().for_each(|v| worst(v, scale.force));
+        }
+    }
+    train.hinges.iter_mut().for_each(|h| point(&mut h.at));
+    if let Some(at) = &mut train.at_worst {
+        for axle in &mut at.axles {
+            point(&mut axle.at);
+            axle.force *= scale.force;
+        }
+        at.road.iter_mut().chain(&mut at.line).for_each(point);
+        let forces = [&mut at.applied, &mut at.on_rib].into_iter().chain(&mut at.beside);
+        forces.flatten().for_each(|f| *f *= scale.force);
+    }
+    for line in &mut train.influence {
+        point(&mut line.at);
+        line.s *= FEET;
+        for o in &mut line.ordinates {
+            // Of one unit of force: a push is a number, a moment a length, an eccentricity a length for each unit.
+            o.x *= FEET;
+            o.moment *= FEET;
+            times(&mut o.eccentricity, FEET / scale.force);
+        }
     }
 }
 

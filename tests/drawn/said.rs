@@ -257,3 +257,23 @@ fn a_roadway_curved_in_plan_gives_couples() {
     assert!(loads(&bare).iter().all(|l| l.sideways.is_none()));
     assert_eq!(bare.spans[0].cases[0].lines[0].left, with.spans[0].cases[0].lines[0].left);
 }
+
+/// A deck hands its load to the posts, and the moments between them are not those of a load spread over the rib.
+#[test]
+fn a_line_load_over_posts_is_told_as_spread_over_the_rib() {
+    let deck = |posts: bool, y: [f64; 2]| {
+        let mut sheet = arch();
+        sheet.line("ARCH-LOADS", [-5.0, y[0]], [5.0, y[1]]);
+        sheet.text("ARCH-LOADS", [0.0, f64::midpoint(y[0], y[1]) + 0.1], 0.2, "12 kN/m");
+        for x in [-4.0, 0.0, 4.0].into_iter().filter(|_| posts) {
+            sheet.line("ARCH-POSTS", [x, 11.0], [x, axis(x)]);
+        }
+        let run = sheet.run(JOB);
+        assert!(run.error.is_none(), "{:?}", run.error);
+        run
+    };
+    assert_eq!(deck(false, [11.0, 11.0]).verdict, Some(Verdict::Within));
+    let told = deck(true, [11.0, 11.0]);
+    assert!(told.findings.iter().any(|f| f.unchecks && f.message.starts_with("1 loads stand between posts")));
+    assert_eq!(told.verdict, Some(Verdict::Unchecked));
+}

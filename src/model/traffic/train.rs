@@ -121,6 +121,18 @@ pub fn crossing(
     if train.axles.is_empty() && uniform <= 0.0 && knife <= 0.0 {
         return Err(not("it has neither axles nor a uniform load nor a knife edge", "give it `axles`"));
     }
+    // Where such a load is worst is looked for along one train alone.
+    if let Some((other, _)) =
+        others.iter().find(|(o, _)| o.uniform.unwrap_or(0.0) + o.knife.unwrap_or(0.0) > 0.0)
+    {
+        return Err(not(
+            format!(
+                "{} runs beside it and has a uniform load or a knife edge, which would not be counted",
+                other.name
+            ),
+            "give `uniform` and `knife` to the train that the other runs beside",
+        ));
+    }
     let mut crossing = Crossing {
         slots: Vec::new(),
         courses: Vec::new(),

@@ -5,7 +5,7 @@ use crate::geometry::{Point, Vec2};
 use crate::outcome::{Case, Status, Traffic};
 use crate::write::annotate::pen::{Canvas, Dash, Layer, Words};
 use crate::write::annotate::shown::{Shown, point};
-use crate::write::text::{four_digits, millimetres};
+use crate::write::text::{self, small};
 
 /// Length of an axle's arrow in text heights.
 const ARROW: f64 = 4.0;
@@ -54,12 +54,13 @@ pub fn draw(shown: &Shown, canvas: &mut Canvas) {
     let Some(first) = at.axles.first() else { return };
     let tip = point(first.at, shown.unit);
     let sum: f64 = at.axles.iter().map(|a| a.force).sum();
-    let mut text = format!("{}: {} kN", train.name, four_digits(sum));
+    let mut says = format!("{}: {}", train.name, text::force(sum, shown.units));
     if let Some(worst) = train.worst.as_ref().and_then(|w| w.offset.value) {
-        text.push_str(&format!(", offset {} mm", millimetres(worst)));
+        let unit = text::length_units(shown.units).1;
+        says.push_str(&format!(", offset {} {unit}", small(worst, shown.units)));
     }
     let places = [1.0, 2.5, 4.0, 6.0]
-        .map(|up| (Words::new(text.clone(), tip + Vec2::new(0.0, (ARROW + up) * h), h), None));
+        .map(|up| (Words::new(says.clone(), tip + Vec2::new(0.0, (ARROW + up) * h), h), None));
     canvas.place(Layer::Traffic, "traffic-name", places);
 }
 

@@ -98,8 +98,12 @@ fn over(name: &str, ranges: &Ranges) -> Vec<Vec<String>> {
             (Status::None, None) => "none".into(),
             _ => "not found".into(),
         };
-        let with: Vec<String> =
-            value.inputs.iter().map(|(what, v)| format!("{what} = {}", four_digits(*v))).collect();
+        // Keys of the job keep its units, whatever those of the report are.
+        let unit = |what: &str| ranges.inputs.iter().find(|i| i.what == what).map_or("", |i| i.unit.as_str());
+        let each = |(what, v): (&String, &f64)| {
+            format!("{what} = {} {}", four_digits(*v), unit(what)).trim_end().to_owned()
+        };
+        let with: Vec<String> = value.inputs.iter().map(each).collect();
         let found = if value.found == "corners" { "corner, exact" } else { "sampled" };
         vec![
             format!("{name}: {}", factor.replace('_', " ")),

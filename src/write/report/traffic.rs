@@ -1,9 +1,9 @@
 //! Traffic in the report: tables of the worst values, of the envelope and of the influence lines.
 
 use super::page::{Column, Page, figures, sentence, words};
-use crate::outcome::{Direction, InfluenceOrdinate, Run, Span, Status, Traffic, WorstValue};
+use crate::outcome::{Direction, InfluenceOrdinate, Run, Span, Status, Traffic, Units, WorstValue};
 use crate::tolerance;
-use crate::write::text::{four_digits, metres, millimetres, signed_millimetres, three_digits};
+use crate::write::text::{self, four_digits, metres, signed_small, small, three_digits};
 
 /// Stations told in a table.
 const MOST: usize = 24;
@@ -17,14 +17,16 @@ pub fn section(run: &Run, page: &mut Page) {
     for span in &run.spans {
         for case in &span.cases {
             for train in &case.traffic {
-                one(span, &case.name, train, page);
+                one(span, &case.name, train, &run.units, page);
             }
         }
     }
     page.end();
 }
 
-fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
+fn one(span: &Span, case: &str, train: &Traffic, units: &Units, page: &mut Page) {
+    let (m, mm) = text::length_units(units);
+    let (kn, knm) = (text::force_unit(units), text::moment_unit(units));
     let head = format!("{}, {} on case {case}", span.name, train.name);
     if train.status != Status::Found {
         page.paragraph(&sentence(&format!(
@@ -36,7 +38,7 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
     let mut told = format!("{head}: {} positions", train.positions);
     if let (Some(step), Some(finest), Some(change)) = (train.step, train.finest_step, train.uncertainty) {
         told.push_str(&format!(
-            ", {} m apart and down to {} m about the worst; the last halving changed the worst values by {} %",
+            ", {} {m} apart and down to {} {m} about the worst; the last halving changed the worst values by {} %",
             metres(step),
             metres(finest),
             three_digits(change * 100.0)
@@ -49,8 +51,8 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
         && !at.axles.is_empty()
     {
         told.push_str(&format!(
-            ". Where the offset is largest {} kN of {} kN reach the rib, {} kN go to the ground on the left and {} kN on \
-             the right",
+            ". Where the offset is largest {} {kn} of {} {kn} reach the rib, {} {kn} go to the ground on the left and {} \
+             {kn} on the right",
             four_digits(-at.on_rib[1]),
             four_digits(-at.applied[1]),
             four_digits(-at.beside[0][1]),
@@ -58,6 +60,8 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
         ));
     }
     page.paragraph(&sentence(&told));
+    // Small lengths in a large one.
+    let smalls = if mm == "in" { 12.0 } else { 1000.0 };
     for line in &train.influence {
         let step = line.ordinates.len().div_ceil(MOST).max(1);
         let largest = |of: fn(&InfluenceOrdinate) -> f64| {
@@ -76,20 +80,25 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
                     metres(o.x),
                     four_digits(shown(o.push, most[0])),
                     four_digits(shown(o.moment, most[1])),
-                    o.eccentricity.map(|e| three_digits(shown(e, most[2]) * 1000.0)).unwrap_or_default(),
+                    o.eccentricity.map(|e| three_digits(shown(e, most[2]) * smalls)).unwrap_or_default(),
                 ]
             })
             .collect();
         page.table(
             &format!(
-                "{head}: influence lines of one kN, joint at {} of the span",
+                "{head}: influence lines of one {kn}, joint at {} of the span",
                 four_digits(line.fraction)
             ),
-            &[figures("x, m"), figures("Push, kN"), figures("Moment, kN·m"), figures("Eccentricity, mm")],
+            &[
+                figures(format!("x, {m}")),
+                figures(format!("Push, {kn}")),
+                figures(format!("Moment, {knm}")),
+                figures(format!("Eccentricity, {mm}")),
+            ],
             &rows,
         );
     }
-    page.table(&format!("{head}: worst values"), &columns(), &worst(train));
+    page.table(&format!("{head}: worst values"), &columns(m), &worst(train, units));
     let picked = train.envelope.len().div_ceil(MOST).max(1);
     let rows: Vec<Vec<String>> = train
         .envelope
@@ -100,7 +109,7 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
                 Some(f) => [four_digits(f.thrust), four_digits(f.moment), metres(f.position)],
                 None => Default::default(),
             };
-            let e = |v: Option<f64>| v.map(signed_millimetres).unwrap_or_default();
+            let e = |v: Option<f64>| v.map(|v| signed_small(v, units)).unwrap_or_default();
             let x = |v: Option<f64>| v.map(metres).unwrap_or_default();
             let mut row = vec![
                 metres(s.at[0]),
@@ -116,11 +125,11 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
         .collect();
     page.table(
         &format!(
-            "{head}: extremes in the joints, each with the x of the first axle; offset in mm, thrust N in kN with its \
-             moment M in kN·m, for the check of the section by the code in force"
+            "{head}: extremes in the joints, each with the x of the first axle; offset in {mm}, thrust N in {kn} with its \
+             moment M in {knm}, for the check of the section by the code in force"
         ),
         &[
-            figures("x, m"),
+            figures(format!("x, {m}")),
             figures("Offset least"),
             figures("axle x"),
             figures("most"),
@@ -136,18 +145,25 @@ fn one(span: &Span, case: &str, train: &Traffic, page: &mut Page) {
     );
 }
 
-fn columns() -> [Column; 5] {
-    [words("What"), figures("Value"), words("Unit"), figures("First axle at x, m"), words("Running")]
+fn columns(m: &str) -> [Column; 5] {
+    [
+        words("What"),
+        figures("Value"),
+        words("Unit"),
+        figures(format!("First axle at x, {m}")),
+        words("Running"),
+    ]
 }
 
-fn worst(train: &Traffic) -> Vec<Vec<String>> {
+fn worst(train: &Traffic, units: &Units) -> Vec<Vec<String>> {
+    let (_, mm) = text::length_units(units);
     let mut rows = Vec::new();
     let mut row = |name: &str, value: &WorstValue, factor: f64, unit: &str| {
         if value.status == Status::NotAsked {
             return;
         }
         let told = match (value.status, value.value) {
-            (_, Some(v)) if unit == "mm" => millimetres(v),
+            (_, Some(v)) if unit == mm => small(v, units),
             (_, Some(v)) => four_digits(v * factor),
             (Status::Unbounded, None) => "no bound".into(),
             (Status::None, None) => "none".into(),
@@ -166,10 +182,10 @@ fn worst(train: &Traffic) -> Vec<Vec<String>> {
         ]);
     };
     if let Some(w) = &train.worst {
-        row("Largest offset", &w.offset, 1.0, "mm");
+        row("Largest offset", &w.offset, 1.0, mm);
         row("Largest eccentricity over d/6", &w.kern, 1.0, "1");
         row("Largest eccentricity over d/2", &w.ring, 1.0, "1");
-        row("Largest edge stress", &w.stress, 1.0, "MPa");
+        row("Largest edge stress", &w.stress, 1.0, text::stress_unit(units));
         row("Least load factor", &w.load_factor, 1.0, "1");
         row("Greatest lower end of the load factor", &w.load_factor_least, 1.0, "1");
         row("Least permitted multiple of the train", &w.multiple, 1.0, "1");
@@ -180,8 +196,8 @@ fn worst(train: &Traffic) -> Vec<Vec<String>> {
             ("push of the governing line, right", &p.right),
             ("push of any line inside the ring, left", &p.inside_ring),
         ] {
-            row(&format!("Least {name}"), &pair[0], 1.0, "kN");
-            row(&format!("Greatest {name}"), &pair[1], 1.0, "kN");
+            row(&format!("Least {name}"), &pair[0], 1.0, text::force_unit(units));
+            row(&format!("Greatest {name}"), &pair[1], 1.0, text::force_unit(units));
         }
     }
     rows
