@@ -531,7 +531,7 @@ fn the_working_ring_begins_above_its_backing() {
 /// are left, with a as above.
 #[test]
 fn a_line_load_is_left_to_the_backing_with_what_it_stands_on() {
-    let line = "0 LINE|5 B1|8 ARCH-LOADS|10 -5.0|20 4.0|11 5.0|21 4.0|0 TEXT|5 B2|8 ARCH-LOADS|10 0.0|20 4.1|40 0.2|1 10 kN/m|";
+    let line = "0 LINE|5 B1|8 ARCH-LOADS|10 0.0|20 4.0|11 10.0|21 4.0|0 TEXT|5 B2|8 ARCH-LOADS|10 5.0|20 4.1|40 0.2|1 10 kN/m|";
     let job = "[rib]\ndepth = 0.6\nsupport = \"none\"\nbacking = 1.0\n[limits]\ngeometric_factor = 1.01\n";
     let run = good(&(segmental(10.0, 2.5) + line), job);
     let a = (4.75_f64 / 6.55).acos();
