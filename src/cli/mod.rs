@@ -14,6 +14,7 @@ use std::io::{self, IsTerminal, Write};
 use std::num::NonZeroUsize;
 use std::path::{Path, PathBuf};
 use std::process::ExitCode;
+use std::sync::OnceLock;
 
 use clap::Parser;
 use serde::Serialize;
@@ -63,7 +64,10 @@ pub fn run() -> ExitCode {
     batch::keep_panics();
     let args = match Args::try_parse() {
         Ok(args) => args,
-        Err(error) => error.exit(),
+        Err(error) => {
+            lost(error.print().and_then(|()| io::stdout().flush()));
+            return ExitCode::from(ended(u8::try_from(error.exit_code()).unwrap_or(REFUSED)));
+        }
     };
     let done = match &args.command {
         Command::Mark(mark) => check(&mark.check, Some(mark.output.as_deref()), None),
@@ -86,10 +90,10 @@ pub fn run() -> ExitCode {
             0
         }),
     };
-    ExitCode::from(done.unwrap_or_else(|refusal| {
+    ExitCode::from(ended(done.unwrap_or_else(|refusal| {
         tell(&format!("thrustmark: {}\n", plain(&refusal.to_string())));
         REFUSED
-    }))
+    })))
 }
 
 /// The schema of what a command writes as JSON.
@@ -284,9 +288,39 @@ fn colour(stdout: bool) -> bool {
     terminal && !refused && std::env::var_os("TERM").is_none_or(|t| t != "dumb")
 }
 
-/// Writes results to stdout. A reader that has gone away (a closed pipe) is no error.
+/// Why results could not be written to stdout, when they could not.
+static LOST: OnceLock<io::Error> = OnceLock::new();
+
+/// Writes results to stdout. A reader that has gone away (a closed pipe) is no error; any other failure, a full disk
+/// say, makes the run end as refused, because what was asked for is not there.
 fn say(text: &str) {
-    let _ = io::stdout().lock().write_all(text.as_bytes());
+    let mut out = io::stdout().lock();
+    lost(out.write_all(text.as_bytes()).and_then(|()| out.flush()));
+}
+
+fn lost(written: io::Result<()>) {
+    if let Err(error) = written
+        && error.kind() != io::ErrorKind::BrokenPipe
+    {
+        // The first failure is the one to tell.
+        let _ = LOST.set(error);
+    }
+}
+
+/// The status of a run, once it is known whether its results were written.
+fn ended(status: u8) -> u8 {
+    match LOST.get() {
+        None => status,
+        Some(error) => {
+            let refusal = Refusal::new(
+                "stdout",
+                format!("the results could not be written to standard output: {error}"),
+                "Look at the space left, or send the results elsewhere.",
+            );
+            tell(&format!("thrustmark: {}\n", plain(&refusal.to_string())));
+            REFUSED
+        }
+    }
 }
 
 /// Writes talk to stderr.

@@ -49,8 +49,12 @@ pub fn expanded<'o>(
     };
     let second = tags::scan(bytes, &Options { keep: Some(&keep), hash: false })?;
     let mut blocks = Blocks::new(outline, settings, &second.records)?;
-    for record in second.records.iter().filter(|r| r.block.is_none() && !r.ours && !r.in_paper_space()) {
-        blocks.place(record, &record.layer, &Affine::IDENTITY)?;
+    // Counted first, so that what is refused for its number takes no memory.
+    for counting in [true, false] {
+        (blocks.counting, blocks.steps) = (counting, 0);
+        for record in second.records.iter().filter(|r| r.block.is_none() && !r.ours && !r.in_paper_space()) {
+            blocks.place(record, &record.layer, &Affine::IDENTITY)?;
+        }
     }
     let Blocks { placed, passed_over, .. } = blocks;
     notes.extend(passed_over.into_iter().map(|((role, block, layer), count)| Note::InBlock {
@@ -108,6 +112,8 @@ struct Blocks<'r> {
     /// The blocks that are being placed, outermost first.
     open: Vec<usize>,
     steps: usize,
+    /// Whether what blocks bring in is only counted.
+    counting: bool,
     placed: Vec<Record>,
     passed_over: BTreeMap<(Role, String, String), u64>,
 }
@@ -143,6 +149,7 @@ impl<'r> Blocks<'r> {
             content,
             open: Vec::new(),
             steps: 0,
+            counting: false,
             placed: Vec::new(),
             passed_over: BTreeMap::new(),
         };
@@ -206,7 +213,7 @@ impl<'r> Blocks<'r> {
             return Ok(());
         }
         if self.is_load(insert) {
-            if own {
+            if own && !self.counting {
                 self.pass_over(block);
             }
             return Ok(());
@@ -241,6 +248,9 @@ impl<'r> Blocks<'r> {
                 continue;
             }
             self.step(record)?;
+            if self.counting {
+                continue;
+            }
             let mut record = record.clone();
             record.layer = on.to_owned();
             record.block = None;

@@ -44,8 +44,8 @@ pub use settings::{
 /// Name of the job file that is looked for.
 pub const FILE_NAME: &str = "thrustmark.toml";
 
-/// Largest job file that is read, bytes. A job is a few kilobytes; anything near this is some other file.
-pub const LARGEST: u64 = 4 << 20;
+/// Largest job file that is read, bytes. A job is a few kilobytes; one of this size that is all array takes 100 MB to parse.
+pub const LARGEST: u64 = 1 << 20;
 
 /// A job file that was read and found good on its own.
 #[derive(Debug, Clone)]
@@ -205,7 +205,7 @@ fn decode(bytes: &[u8]) -> Result<&str, Problem> {
         remedy: remedy.to_owned(),
     };
     if bytes.len() as u64 > LARGEST {
-        return Err(problem(1, "The job file is larger than 4 MiB", "Check that it is the file you meant"));
+        return Err(problem(1, "The job file is larger than 1 MiB", "Check that it is the file you meant"));
     }
     std::str::from_utf8(bytes).map_err(|error| {
         let before = &bytes[..error.valid_up_to()];
