@@ -527,6 +527,31 @@ fn the_working_ring_begins_above_its_backing() {
     near(ring.depth_min, 0.4, 1e-9);
 }
 
+/// Of 10 kN/m over the whole span the part over the working ring acts, and is listed; the rest is told. 2 x 6.25 sin a m of 10 m
+/// are left, with a as above.
+#[test]
+fn a_line_load_is_left_to_the_backing_with_what_it_stands_on() {
+    let line = "0 LINE|5 B1|8 ARCH-LOADS|10 0.0|20 4.0|11 10.0|21 4.0|0 TEXT|5 B2|8 ARCH-LOADS|10 5.0|20 4.1|40 0.2|1 10 kN/m|";
+    let job = "[rib]\ndepth = 0.6\nsupport = \"none\"\nbacking = 1.0\n[limits]\ngeometric_factor = 1.01\n";
+    let run = good(&(segmental(10.0, 2.5) + line), job);
+    let a = (4.75_f64 / 6.55).acos();
+    let left = 10.0 * 2.0 * 6.25 * a.sin();
+    let middle = f64::midpoint(run.spans[0].axis.left[0], run.spans[0].axis.right[0]);
+    near(-run.spans[0].cases[0].total_load[1], left, 1e-9);
+    near(-run.spans[0].loads.iter().map(|l| l.force[1]).sum::<f64>(), left, 1e-9);
+    assert!(run.spans[0].loads.iter().all(|l| (l.at[0] - middle).abs() < 6.25 * a.sin()));
+    assert!(says(&run, &format!("({:.3})", 100.0 - left)));
+    // The ring is cut once: over another backing, or depth, no factor is worked out, and none is said to hold.
+    let over = |what: &str, low: f64, high: f64| {
+        let range = format!("[[range]]\nwhat = \"{what}\"\nlow = {low}\nhigh = {high}\n");
+        let run = good(&(segmental(10.0, 2.5) + line), &format!("{job}{range}"));
+        assert!(says(&run, &format!("the range over {what} changes no factor")));
+        assert_eq!(run.verdict, Some(thrustmark::outcome::Verdict::Unchecked));
+    };
+    over("rib.backing", 0.8, 1.2);
+    over("rib.depth", 0.5, 0.7);
+}
+
 /// Ring lines surveyed point by point: what their noise could move is told; the same ring without noise says nothing.
 #[test]
 fn the_noise_of_a_survey_is_told() {

@@ -265,7 +265,6 @@ fn set(settings: &mut Settings, what: &str, value: f64) {
         "strength" => rib.strength = Some(value),
         "friction" => rib.friction = Some(value),
         "joint_loss" => rib.joint_loss = value,
-        "backing" => rib.backing = Some(value),
         _ => {}
     }
 }
@@ -280,6 +279,9 @@ fn idle(model: &Model, span: &Span, settings: &Settings, analysis: &Analysis, wh
     let weighs = model.own_weight(settings).is_some();
     let lends = settings.area.iter().any(|a| a.width.is_none());
     match (table, key) {
+        ("rib", "depth") if settings.rib.backing.is_some() => Some(
+            "the ring was cut at its backing for the depth stated, and is not cut anew for another".into(),
+        ),
         ("rib", "depth") if span.ring.is_some() => Some("the depth was read from the ring lines".into()),
         ("rib", "unit_weight" | "strength" | "width") if !sized => {
             Some("beside loads of unknown size it has no measure".into())
@@ -288,9 +290,11 @@ fn idle(model: &Model, span: &Span, settings: &Settings, analysis: &Analysis, wh
         ("rib", "width") if !weighs && !lends && settings.rib.strength.is_none() => {
             Some("neither weight nor strength of the rib counts".into())
         }
-        ("rib", "depth" | "width" | "unit_weight" | "strength" | "friction" | "joint_loss" | "backing") => {
-            None
+        // The spans were cut there before anything was worked out, and are not cut anew.
+        ("rib", "backing") => {
+            Some("the ring was cut at the level stated, and is not cut anew for another".into())
         }
+        ("rib", "depth" | "width" | "unit_weight" | "strength" | "friction" | "joint_loss") => None,
         ("rib", _) => {
             Some("it counts in the elastic line, and not in a factor of a ring without tension".into())
         }

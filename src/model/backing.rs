@@ -2,7 +2,8 @@
 
 use super::note::Note;
 use super::roof::Roof;
-use super::{Model, Ring, Span, weight};
+use super::{LineLoad, Model, Ring, Span, weight};
+use crate::drawing::Source;
 use crate::geometry::{Path, Segment};
 use crate::job::{RibDepth, Settings};
 use crate::refusal::Refusal;
@@ -34,6 +35,16 @@ pub fn trim(model: &mut Model, settings: &Settings) -> Result<(), Refusal> {
         let (kept, gone): (Vec<_>, Vec<_>) =
             loads.into_iter().partition(|l| (start.x - slack..=end.x + slack).contains(&l.at.x));
         span.loads = kept;
+        let mut gone: Vec<(Source, String, f64)> =
+            gone.iter().map(|l| (l.source.clone(), l.label.clone(), -l.force.y)).collect();
+        for line in std::mem::take(&mut span.line_loads) {
+            let kept = line.between(start.x, end.x);
+            let rest = line.sum() - kept.as_ref().map_or(0.0, LineLoad::sum);
+            if rest.abs() > tolerance::STRAIGHT_LINE * line.sum().abs() {
+                gone.push((line.source.clone(), line.label.clone(), rest));
+            }
+            span.line_loads.extend(kept);
+        }
         let hinges = std::mem::take(&mut span.hinges);
         let reach = slack.max(tolerance::GAP * span.axis.length());
         let depths = weight::depths(span, settings.rib.depth);
@@ -50,7 +61,7 @@ pub fn trim(model: &mut Model, settings: &Settings) -> Result<(), Refusal> {
             left: start,
             right: end,
             off: [from, whole - to],
-            loads: gone.iter().map(|l| (l.source.clone(), l.label.clone(), -l.force.y)).collect(),
+            loads: gone,
         });
     }
     model.notes.extend(notes);
