@@ -141,6 +141,8 @@ fn a_source_that_changes_while_it_is_read_gives_no_mixture() {
     let path = folder.join("ring.dxf");
     let before = drawing(30_000, "5600.0").into_bytes();
     let other = drawing(31_000, "5500.0").into_bytes();
+    // A change that comes before the drawing is opened makes another whole drawing of it.
+    let appended = [&before[..], b"  0\nLINE\n"].concat();
     let copy = folder.join("copy-ring.dxf");
     let mark = ["mark", "ring.dxf", "--output", "copy-ring.dxf"];
     let begun = Instant::now();
@@ -164,7 +166,10 @@ fn a_source_that_changes_while_it_is_read_gives_no_mixture() {
         if output.status.code() == Some(0) {
             ended(&run(folder, &["unmark", "copy-ring.dxf", "--output", "back.dxf", "--force"]), 0);
             let back = fs::read(folder.join("back.dxf")).unwrap();
-            assert!(back == before || back == other, "change {i}: the copy holds neither drawing");
+            assert!(
+                [&before, &other, &appended].contains(&&back),
+                "change {i}: the copy holds neither drawing"
+            );
         } else {
             ended(&output, 2);
             refusals[i % 4] += 1;
