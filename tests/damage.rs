@@ -1,7 +1,7 @@
 //! Drawings that were damaged on their way: cut anywhere, or with bytes changed. They are refused or answered, never with
 //! a panic. What was cut off is never `within`; what was changed is not where the whole drawing is not.
 
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stderr)]
 
 use std::fs;
 use std::panic::{AssertUnwindSafe, catch_unwind};

@@ -2,7 +2,7 @@
 //! hands. The source stays as it was, nothing incomplete stands under an output's name, and the status is true.
 
 #![cfg(unix)]
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stderr)]
 
 use std::fs::{self, File, Permissions};
 use std::io::Write;
@@ -265,7 +265,7 @@ fn without_rights_it_says_which_are_missing() {
         ended(&output, 0);
     }
     fs::set_permissions(folder, Permissions::from_mode(0o777)).unwrap();
-    fs::set_permissions(folder.join("ring.dxf"), Permissions::from_mode(0)).unwrap();
+    fs::set_permissions(folder.join("ring.dxf"), Permissions::from_mode(0o0)).unwrap();
     if let Some(output) = unprivileged(folder, &["mark", "ring.dxf"]) {
         refused(&output, "ring.dxf");
     }

@@ -6,7 +6,7 @@
 //! for each thread that are never used.
 
 #![cfg(unix)]
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stderr)]
 
 use std::fmt::Write as _;
 use std::fs;

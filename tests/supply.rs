@@ -1,6 +1,6 @@
 //! What the program is made of: licences as `.deny.toml` allows them, one registry, nothing that speaks to a network.
 
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stderr)]
 
 use std::collections::BTreeSet;
 use std::fs;
