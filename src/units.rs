@@ -9,6 +9,9 @@ use std::fmt;
 
 use serde::{Serialize, Serializer};
 
+/// kN/m² in a MPa.
+pub const KN_PER_M2: f64 = 1000.0;
+
 /// Standard gravity, m/s²: the weight of one kilogram in newtons (3rd CGPM, 1901).
 pub const STANDARD_GRAVITY: f64 = 9.806_65;
 

@@ -30,17 +30,9 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
         return true;
     }
     match settings.layers.role_of(candidate.layer) {
-        Ok(Some(
-            JobRole::Axis
-            | JobRole::Loads
-            | JobRole::Intrados
-            | JobRole::Extrados
-            | JobRole::Hinges
-            | JobRole::Posts
-            | JobRole::Plan,
-        ))
-        | Err(_) => true,
-        Ok(Some(JobRole::Road)) => !settings.traffic.is_empty(),
+        Err(_) => true,
+        Ok(Some(role)) if is_read(role, settings) => true,
+        Ok(Some(JobRole::Road)) => false,
         Ok(_) => {
             candidate.block.is_none()
                 && ((!stated(Role::Axis)
@@ -48,6 +40,16 @@ pub fn keeps(settings: &Settings, candidate: &Candidate<'_>) -> bool {
                     && names::axis_word(candidate.layer).is_some())
                     || (!stated(Role::Loads) && names::loads_word(candidate.layer).is_some()))
         }
+    }
+}
+
+/// Whether what stands on the layers of a role is read under these settings.
+fn is_read(role: JobRole, settings: &Settings) -> bool {
+    use JobRole::{Axis, Extrados, Hinges, Intrados, Loads, Plan, Posts, Road};
+    match role {
+        Axis | Loads | Intrados | Extrados | Hinges | Posts | Plan => true,
+        Road => !settings.traffic.is_empty(),
+        _ => false,
     }
 }
 
@@ -501,16 +503,7 @@ impl Reader<'_> {
         for layer in &self.outline.census {
             let count: u64 = layer.model.values().sum();
             let part = match roles::role_of(self.settings, &layer.name)? {
-                Some(
-                    JobRole::Axis
-                    | JobRole::Loads
-                    | JobRole::Intrados
-                    | JobRole::Extrados
-                    | JobRole::Hinges
-                    | JobRole::Posts
-                    | JobRole::Plan,
-                ) => continue,
-                Some(JobRole::Road) if !self.settings.traffic.is_empty() => continue,
+                Some(role) if is_read(role, self.settings) => continue,
                 Some(role) => role.name(),
                 _ => continue,
             };

@@ -65,20 +65,17 @@ pub fn read(
         .filter(|r| r.kind == "DIMENSION" && !r.in_paper_space())
         .filter_map(|r| dimension::dimension(r, &view, decoder))
         .collect();
-    let blocks_and_sheets: Vec<Record> = outline
-        .records
-        .iter()
-        .filter(|r| r.kind == "INSERT" && !r.ours && r.placement.is_none())
-        .cloned()
-        .collect();
-    let title = title::title(&blocks_and_sheets, settings, decoder, notes);
+    // What inserted blocks bring in has a placement; the references of the sheet itself have none.
+    let references = outline.records.iter().filter(|r| r.placement.is_none());
+    let title = title::title(references, settings, decoder, notes);
     let mut warnings = Vec::new();
     for record in outline.records.iter().filter(|r| !r.ours && matches!(r.kind.as_str(), "TEXT" | "MTEXT")) {
         // Long paragraphs come in parts of which the last one has code 1.
         let says: String =
             record.tags.own().filter(|t| matches!(t.code, 1 | 3)).map(|t| decoder.text(t.value)).collect();
-        if dimension::not_to_scale(&super::text::plain_paragraph(&says)) {
-            warnings.push((convert::source(record), super::text::plain_paragraph(&says)));
+        let says = super::text::plain_paragraph(&says);
+        if dimension::not_to_scale(&says) {
+            warnings.push((convert::source(record), says));
         }
     }
     let count = warnings.len();

@@ -105,9 +105,13 @@ const REVISION: [&str; 24] = [
 
 /// The title block of a drawing: of all references with attributes outside of blocks. What the job names counts; else the
 /// usual tags, of which the surest counts. Of blocks that say different things none is believed, and that is told.
-pub fn title(records: &[Record], settings: &Settings, decoder: &Decoder, notes: &mut Vec<Note>) -> Title {
+pub fn title<'r>(
+    records: impl Iterator<Item = &'r Record>,
+    settings: &Settings,
+    decoder: &Decoder,
+    notes: &mut Vec<Note>,
+) -> Title {
     let blocks: Vec<(Source, Vec<(String, String)>)> = records
-        .iter()
         .filter(|r| r.kind == "INSERT" && !r.ours && r.children.iter().any(|c| c.kind == "ATTRIB"))
         .map(|r| (convert::source(r), attributes(r, decoder)))
         .collect();

@@ -5,6 +5,7 @@ use crate::job::{Draw, Govern, RibDepth, Settings, Support};
 use crate::model::{self, Case, Forces, Model, Span, areas, cases};
 use crate::refusal::Refusal;
 use crate::statics::{self, Depth, Effects, Force, LineKind, LineLoad, Problem, Slender, Unsolved};
+use crate::units::KN_PER_M2;
 
 /// The problem of one span in one case. With unit loads nothing strains the rib but the loads: a change of temperature has
 /// no size beside an unknown force.
@@ -97,9 +98,6 @@ fn line_loads(span: &Span, case: &Case) -> Vec<LineLoad> {
     };
     span.line_loads.iter().map(load).collect()
 }
-
-/// kN/m² in a MPa.
-const KN_PER_M2: f64 = 1000.0;
 
 /// What strains the rib beside its loads.
 fn effects(settings: &Settings) -> Result<Effects, Refusal> {

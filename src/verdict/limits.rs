@@ -76,6 +76,15 @@ fn no_depth(analysis: &Analysis) -> &'static str {
     }
 }
 
+/// A stated limit that what was computed keeps to, and that cannot be judged by it all the same.
+fn open_limit(key: &str, value: f64, limit: f64, unit: &str, at: Xy, message: &str, why: &str) -> Finding {
+    let message = format!("{message}. The stated limit `{key}` was not judged: {why}");
+    let mut finding = note(Check::NotJudged, message).value(value, unit).at(at).uncheck();
+    finding.limit = Some(limit);
+    finding.basis = Some(format!("[limits] {key}"));
+    finding
+}
+
 struct Judge<'a> {
     span: &'a Span,
     case: usize,
@@ -183,19 +192,9 @@ impl Judge<'_> {
             if best { "best case: " } else { "" }
         );
         if holds && best {
-            let mut finding = note(
-                Check::NotJudged,
-                format!(
-                    "{message}. The stated limit `kern` was not judged: the closest line is the most favourable one, \
-                     not the state of the rib"
-                ),
-            )
-            .value(used, "of d/6")
-            .at(at)
-            .uncheck()
-            .remedy("declare the support of the rib ([rib] support), so that its own line can be judged");
-            finding.limit = Some(limit);
-            finding.basis = Some("[limits] kern".into());
+            let why = "the closest line is the most favourable one, not the state of the rib";
+            let finding = open_limit("kern", used, limit, "of d/6", at, &message, why)
+                .remedy("declare the support of the rib ([rib] support), so that its own line can be judged");
             self.add(finding);
             return;
         }
@@ -246,14 +245,7 @@ impl Judge<'_> {
             } else {
                 "the line leaves the section, or its kern, at some joints"
             };
-            let mut finding =
-                note(Check::NotJudged, format!("{message}. The stated limit `stress` was not judged: {why}"))
-                    .value(value, "MPa")
-                    .at(at)
-                    .uncheck();
-            finding.limit = Some(limit);
-            finding.basis = Some("[limits] stress".into());
-            self.add(finding);
+            self.add(open_limit("stress", value, limit, "MPa", at, &message, why));
             return;
         }
         let mut finding =

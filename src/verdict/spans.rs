@@ -12,6 +12,7 @@ use crate::outcome::{
 };
 use crate::statics::{self, Analysis, HingeSide, Rule, SpanKind, Support, stress};
 use crate::tolerance;
+use crate::units::KN_PER_M2;
 
 /// Puts a span together.
 pub fn span(
@@ -403,7 +404,6 @@ impl Section {
     /// Greatest and least compression of a rectangle, MPa. An elastic line that leaves the kern of a ring without tension
     /// is not valid there, and gives no stress.
     fn stress(&self, line: &statics::Line, s: &statics::Station) -> Option<[f64; 2]> {
-        const KN_PER_M2: f64 = 1000.0;
         let (depth, width) = (s.depth?, self.width?);
         let cracked = s.eccentricity.is_none_or(|e| e.abs() > depth / 6.0 * (1.0 + tolerance::LIMIT_MET));
         let edges = if self.tension {

@@ -10,6 +10,7 @@ use crate::outcome::{
 use crate::statics::traffic::{Extreme, Influence, Position, Tally, Traverse};
 use crate::statics::{LineKind, Rule};
 use crate::tolerance;
+use crate::units::KN_PER_M2;
 
 /// One train on one span.
 #[derive(Debug, Clone)]
@@ -32,8 +33,6 @@ pub struct Computed {
     /// Influence lines; `None` inside where the governing line has none, outside where none is asked for.
     pub influence: Option<Option<Vec<Influence>>>,
 }
-
-const KN_PER_M2: f64 = 1000.0;
 
 /// The train as the results hold it.
 pub fn outcome(ran: &Ran) -> Traffic {
